@@ -1,0 +1,85 @@
+"""A formula graph as a tape: one instruction per distinct operation, operands before users.
+
+Values are plain numbers in coherent SI; units were checked on the tree before.
+Equal operations are stored once, so a quantity used twice is computed once and moves once.
+"""
+
+from dataclasses import dataclass, field
+from enum import Enum
+from fractions import Fraction
+
+
+class Op(Enum):
+    """What an instruction does with its arguments."""
+
+    INPUT = "input"  # no arguments; ``value`` is the column of the input, an int
+    CONST = "const"  # no arguments; ``value`` is a Fraction where exact, else a float
+    ADD = "+"
+    SUB = "-"
+    MUL = "*"
+    DIV = "/"
+    NEG = "neg"
+    POWER = "power"  # one argument; ``value`` is the exponent, a Fraction
+    POW = "pow"  # base and exponent, both arguments; the base must be positive
+    SQRT = "sqrt"
+    EXP = "exp"
+    LN = "ln"
+    LOG10 = "log10"
+    SIN = "sin"
+    COS = "cos"
+    TAN = "tan"
+    ASIN = "asin"
+    ACOS = "acos"
+    ATAN = "atan"
+    ABS = "abs"
+    MIN = "min"  # two arguments
+    MAX = "max"  # two arguments
+    FLOOR = "floor"
+    CEIL = "ceil"
+    IF = "if"  # condition, value if true, value if false
+    LT = "<"  # the rest yield conditions
+    LE = "<="
+    AND = "and"
+    OR = "or"
+    NOT = "not"
+
+
+@dataclass(frozen=True, slots=True)
+class Instruction:
+    """One operation; ``args`` are indices of earlier instructions."""
+
+    op: Op
+    args: tuple[int, ...] = ()
+    value: Fraction | float | int | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Tape:
+    """Instructions in order of computation and the number of input columns they read."""
+
+    instructions: tuple[Instruction, ...]
+    n_inputs: int
+
+
+@dataclass(slots=True)
+class TapeBuilder:
+    """Collects instructions; asking twice for the same operation gives the same index."""
+
+    n_inputs: int
+    _instructions: list[Instruction] = field(default_factory=list)
+    _index: dict[Instruction, int] = field(default_factory=dict)
+
+    def add(self, op: Op, *args: int, value: Fraction | float | int | None = None) -> int:
+        """Index of the instruction, new or already there."""
+        if op is Op.MUL and args[0] == args[1]:
+            op, args, value = Op.POWER, args[:1], Fraction(2)
+        instruction = Instruction(op, args, value)
+        at = self._index.get(instruction)
+        if at is None:
+            at = self._index[instruction] = len(self._instructions)
+            self._instructions.append(instruction)
+        return at
+
+    def tape(self) -> Tape:
+        """The tape so far."""
+        return Tape(tuple(self._instructions), self.n_inputs)

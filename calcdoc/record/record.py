@@ -1,0 +1,459 @@
+"""The record: everything a page shows, in order, with nothing left to compute.
+
+Texts of numbers and formulas are written in the language of the design text (``-3.2 V``,
+``1.8e-3 Ω``, ``sqrt(2)*230 V - 2*0.95 V``): they can be parsed again, and each view typesets them.
+Contract keys of the JSON are the attribute names. Symbols, ids and lines are unique in a record.
+"""
+
+from msgspec import Struct
+
+SCHEMA = "calcdoc-record/1"
+
+
+class Plain(Struct, frozen=True, kw_only=True):
+    """Base of all record types: frozen, keyword only, plain data."""
+
+
+# --- prose -----------------------------------------------------------------------------------
+
+
+class Words(Plain, tag_field="kind", tag="text"):
+    """Plain text inside a paragraph."""
+
+    text: str
+
+
+class Emphasis(Plain, tag_field="kind", tag="emphasis"):
+    """Emphasised text; ``strong`` for the heavier kind."""
+
+    strong: bool
+    inline: tuple["Inline", ...]
+
+
+class Code(Plain, tag_field="kind", tag="code"):
+    """A code span."""
+
+    text: str
+
+
+class Link(Plain, tag_field="kind", tag="link"):
+    """A link whose address was found harmless (http, https, mailto, #)."""
+
+    address: str
+    inline: tuple["Inline", ...]
+
+
+class Picture(Plain, tag_field="kind", tag="picture"):
+    """A picture of the design's folder, embedded."""
+
+    name: str
+    alternative: str
+    media_type: str
+    data: str
+    """Base64 of the file."""
+
+
+class Break(Plain, tag_field="kind", tag="break"):
+    """A forced line break."""
+
+
+class Value(Plain, tag_field="kind", tag="value"):
+    """``{V_pk}`` in prose: a quantity's value, linked to its line."""
+
+    symbol: str
+    form: str
+    """``equation`` ("V_pk = 325.3 V"), or ``value``, ``least``, ``greatest`` (the number alone)."""
+    text: str
+    """The number with unit, as in ``325.3 V``."""
+
+
+class Verdict(Plain, tag_field="kind", tag="verdict"):
+    """``{C4}`` in prose: a criterion's name with its verdict."""
+
+    id: str
+    text: str
+    """The verdict in words."""
+
+
+Inline = Words | Emphasis | Code | Link | Picture | Break | Value | Verdict
+
+
+class Heading(Plain, tag_field="kind", tag="heading"):
+    """A heading; numbered when it opens a section."""
+
+    level: int
+    """2 opens a numbered section, 3 and more are below it (1 and 2 when the author starts at 1)."""
+    number: str
+    """``"3"``, or empty when not numbered."""
+    anchor: str
+    inline: tuple[Inline, ...]
+
+
+class Paragraph(Plain, tag_field="kind", tag="paragraph"):
+    """A paragraph of prose."""
+
+    inline: tuple[Inline, ...]
+
+
+class Items(Plain, tag_field="kind", tag="items"):
+    """A list; ``start`` is None when it is not numbered."""
+
+    start: int | None
+    items: tuple[tuple["Block", ...], ...]
+
+
+class Quote(Plain, tag_field="kind", tag="quote"):
+    """A quotation."""
+
+    blocks: tuple["Block", ...]
+
+
+class Listing(Plain, tag_field="kind", tag="listing"):
+    """A fenced block that is no part of the calculation, shown as code."""
+
+    text: str
+
+
+class Grid(Plain, tag_field="kind", tag="grid"):
+    """A pipe table of the prose."""
+
+    align: tuple[str, ...]
+    """Per column ``left``, ``right``, ``center`` or empty."""
+    head: tuple[tuple[Inline, ...], ...]
+    rows: tuple[tuple[tuple[Inline, ...], ...], ...]
+
+
+class Rule(Plain, tag_field="kind", tag="rule"):
+    """A thematic break."""
+
+
+class QuantityLine(Plain, tag_field="kind", tag="quantity"):
+    """Here stands the working line of a quantity."""
+
+    symbol: str
+
+
+class CriterionLine(Plain, tag_field="kind", tag="criterion"):
+    """Here stands a criterion."""
+
+    id: str
+
+
+class SentenceLine(Plain, tag_field="kind", tag="sentence"):
+    """Here stands an assumption that is a sentence."""
+
+    id: str
+
+
+class CautionBox(Plain, tag_field="kind", tag="caution"):
+    """Here stands a caution of the author."""
+
+    signal: str
+    blocks: tuple["Block", ...]
+
+
+Block = (
+    Heading
+    | Paragraph
+    | Items
+    | Quote
+    | Listing
+    | Grid
+    | Rule
+    | QuantityLine
+    | CriterionLine
+    | SentenceLine
+    | CautionBox
+)
+
+# --- title block ------------------------------------------------------------------------------
+
+
+class People(Plain):
+    """Who prepared, checked and approved; empty where not named."""
+
+    prepared: str
+    checked: str
+    approved: str
+
+
+class Issue(Plain):
+    """One row of the revision history."""
+
+    revision: str
+    date: str
+    reason: str
+
+
+class Document(Plain):
+    """The title block."""
+
+    number: str
+    title: str
+    revision: str
+    date: str
+    status: str
+    """``draft`` or ``for issue``."""
+    product: str
+    owner: str
+    language: str
+    paper: str
+    """``A4`` or ``letter``."""
+    digits: int
+    replaces: str
+    people: People
+    history: tuple[Issue, ...]
+
+
+# --- the calculation --------------------------------------------------------------------------
+
+
+class CaseValues(Plain):
+    """A quantity in one case."""
+
+    nominal: float | None
+    least: float | None
+    greatest: float | None
+
+
+class Quantity(Plain):
+    """One quantity: an input with its band or a working line. Numbers are in ``unit``."""
+
+    symbol: str
+    line: str
+    kind: str
+    """``condition``, ``input``, ``assumption``, ``derived`` (later also solved, settled, method)."""
+    unit: str
+    """Empty for a plain number."""
+    nominal: float | list[float]
+    least: float | list[float]
+    greatest: float | list[float]
+    index: tuple[int, ...] | None
+    at_least: dict[str, str]
+    """The combination that gives the least value, e.g. ``{"V_line": "207 V"}``."""
+    at_greatest: dict[str, str]
+    proof: str
+    """``exact``, ``bounded`` or ``searched``."""
+    formula: str
+    """Empty for an input."""
+    substitution: str
+    """The formula with nominal values; empty for an input."""
+    result: str
+    """The nominal value with unit, as in ``323.4 V``."""
+    steps: tuple[str, ...]
+    residual: str | None
+    depends_on: tuple[str, ...]
+    used_by: tuple[str, ...]
+    """Symbols and criterion ids, in order."""
+    description: str
+    basis: str
+    by_case: dict[str, CaseValues]
+    # beyond the contract, for the pages
+    id: str
+    """Id of an assumption (``A1``), else empty."""
+    state: str
+    """``open`` or ``closed`` for an assumption, else empty."""
+    units_carried: str
+    """As in ``mA·ms/µF = V``; empty where nothing is reduced."""
+    tolerance: str
+    """The band as a reader writes it: ``230 V × (1 ± 10 %)``, ``(230 ± 23) V``, ``28.5 V to 31.8 V``,
+    typeset already (no-break spaces, true minus); empty when the quantity does not vary."""
+    least_text: str
+    greatest_text: str
+    varies: bool
+    notes: tuple[str, ...]
+    """Sentences for the reader: the extreme lies inside the band, the nominal is the middle, ..."""
+
+
+class CriterionCase(Plain):
+    """A criterion in one case."""
+
+    value: float | None
+    limit: float | None
+    margin: float | None
+    verdict: str
+
+
+class Criterion(Plain):
+    """One acceptance criterion with its verdict. Numbers are in ``unit`` at the governing point."""
+
+    id: str
+    line: str
+    text: str
+    """The inequality as written, or the text of a test, without the clauses."""
+    method: str
+    """``extremes``, ``nominal``, ``point`` (an operating point), ``test``, ``inspection``, ``none``."""
+    value: float | None
+    limit: float | None
+    unit: str
+    relation: str
+    """``<=``, ``>=``, ``<`` or ``>`` of the governing side, read value first; empty for a test."""
+    margin: float | None
+    margin_abs: float | None
+    verdict: str
+    """``pass``, ``fail``, ``not decided``, ``not applicable``, ``by test``, ``by inspection``."""
+    accepted: str | None
+    case: str
+    governing: dict[str, str]
+    by_case: dict[str, CriterionCase]
+    rows: tuple[CriterionCase, ...]
+    interval: tuple[float, float] | None
+    standard_error: float | None
+    unverified: tuple[str, ...]
+    description: str
+    basis: str
+    reason: str
+    """Why it is not applicable or not decided; for a test, what is open."""
+    # beyond the contract, for the pages
+    clauses: str
+    """The clauses as written: ``by extremes with margin 10 %``; may be empty."""
+    substitution: str
+    """The value side with numbers, when it is more than one symbol; else empty."""
+    value_text: str
+    limit_text: str
+    """Rounded to as many digits as the verdict needs, e.g. ``88.1 V``."""
+    margin_text: str
+    """``8.2 %`` or, where there is no share, ``4.1 K``."""
+    remark: str
+    """As in ``short by 7.2 V (-180 % of the limit)``, ``equal to the limit``; may be empty."""
+    proof: str
+
+
+class Crosscheck(Plain):
+    """Two ways to one quantity (comes with a later capability; the list is empty until then)."""
+
+    id: str
+    first: str
+    second: str
+    unit: str
+    difference: float | None
+    allowed: float | None
+    agrees: bool
+
+
+class Assumption(Plain):
+    """One row of the assumptions register."""
+
+    id: str
+    text: str
+    """The sentence, or the statement of the quantity (``R_th = 60 K/W ± 15 %``)."""
+    symbol: str
+    """The symbol it defines, else empty."""
+    reason: str
+    state: str
+    """``open`` or ``closed``."""
+    note: str
+    """What stands behind ``open:`` or ``closed:``."""
+    rests_on_it: tuple[str, ...]
+    """Line numbers and criterion ids that depend on it, through all steps."""
+    line: str
+
+
+class Hazard(Plain):
+    """A declared hazard with what was computed for it."""
+
+    kind: str
+    """``supply``, ``stored`` or ``not isolated``."""
+    text: str
+    """The statement as written."""
+    result: str
+    """Computed value, e.g. ``14.2 s`` to 60 V; empty where none."""
+
+
+class Caution(Plain):
+    """A caution: on the cover, and where the author placed it in the body."""
+
+    signal: str
+    """``danger``, ``warning``, ``caution`` or ``notice``."""
+    text: str
+    """Plain text; numbers in it are typeset already."""
+    origin: str
+    """``general``, ``hazards``, ``assumptions`` or ``author``."""
+
+
+class Reference(Plain):
+    """A cited document."""
+
+    key: str
+    title: str
+    edition: str
+    held: str
+    cited_by: tuple[str, ...]
+    """Line numbers and criterion ids."""
+
+
+class File(Plain):
+    """A file the text used."""
+
+    name: str
+    sha256: str
+
+
+class Source(Plain):
+    """Where the record came from."""
+
+    name: str
+    sha256: str
+    files: tuple[File, ...]
+
+
+class Tool(Plain):
+    """What computed the record."""
+
+    version: str
+    libraries: dict[str, str]
+
+
+class Problem(Plain):
+    """A warning the text gave rise to."""
+
+    code: str
+    severity: str
+    message: str
+    line: int
+    column: int
+    help: str
+
+
+class Tally(Plain):
+    """How many criteria have which verdict, and what is open."""
+
+    passed: int
+    failed: int
+    accepted: int
+    undecided: int
+    not_applicable: int
+    by_test: int
+    by_inspection: int
+    open_assumptions: int
+    unverified: int
+    bottom_line: str
+    """One sentence: ``5 pass, 1 fail, 1 by test``; never "all pass" while tests are open."""
+
+
+class Record(Plain):
+    """A calculation record."""
+
+    schema: str
+    document: Document
+    purpose: str
+    """The first paragraph of the text, as plain text with values filled in."""
+    verdict: Tally
+    source: Source
+    tool: Tool
+    sampling: dict[str, int] | None
+    cases: tuple[str, ...]
+    quantities: tuple[Quantity, ...]
+    relations: tuple[str, ...]
+    criteria: tuple[Criterion, ...]
+    crosschecks: tuple[Crosscheck, ...]
+    assumptions: tuple[Assumption, ...]
+    hazards: tuple[Hazard, ...]
+    cautions: tuple[Caution, ...]
+    references: tuple[Reference, ...]
+    methods: tuple[str, ...]
+    """The method statement: one sentence each, how bands were combined, what is exact."""
+    figures: tuple[str, ...]
+    notices: tuple[str, ...]
+    problems: tuple[Problem, ...]
+    body: tuple[Block, ...]
