@@ -1,0 +1,71 @@
+"""Symbols: how they are written, when two are the same, and which words are taken."""
+
+import difflib
+import re
+import unicodedata
+from collections.abc import Iterable
+from functools import lru_cache
+from typing import Final
+
+LETTER: Final = r"A-Za-z\u00aa\u00b5\u00ba\u00c0-\u00d6\u00d8-\u00f6\u00f8-\u024f\u0370-\u03ff\u1f00-\u1fff\u2126\u2206"
+SYMBOL: Final = re.compile(rf"[{LETTER}][{LETTER}0-9]*(?:_[{LETTER}0-9]+)*")
+"""A letter, then letters and digits, then ``_`` and a subscript (which may hold ``_`` again)."""
+
+GREEK: Final = {
+    "alpha": "α", "beta": "β", "gamma": "γ", "delta": "δ", "epsilon": "ε", "zeta": "ζ",
+    "eta": "η", "theta": "θ", "iota": "ι", "kappa": "κ", "lambda": "λ", "mu": "μ", "nu": "ν",
+    "xi": "ξ", "omicron": "ο", "pi": "π", "rho": "ρ", "sigma": "σ", "tau": "τ",
+    "upsilon": "υ", "phi": "φ", "chi": "χ", "psi": "ψ", "omega": "ω",
+    "Gamma": "Γ", "Delta": "Δ", "Theta": "Θ", "Lambda": "Λ", "Xi": "Ξ", "Pi": "Π",
+    "Sigma": "Σ", "Phi": "Φ", "Psi": "Ψ", "Omega": "Ω",
+}  # fmt: skip
+"""Spelled letters, when they are the whole base of a symbol."""
+
+_LOOK_ALIKES: Final = str.maketrans({"\u00b5": "\u03bc", "\u2206": "Δ", "\u2126": "Ω"})
+
+FUNCTIONS: Final = {
+    "sqrt": (1, 1), "exp": (1, 1), "ln": (1, 1), "log10": (1, 1), "sin": (1, 1), "cos": (1, 1),
+    "tan": (1, 1), "asin": (1, 1), "acos": (1, 1), "atan": (1, 1), "abs": (1, 1),
+    "min": (1, 99), "max": (1, 99), "floor": (1, 1), "ceil": (1, 1), "sum": (1, 99),
+    "rss": (1, 99), "if": (3, 3), "lookup": (1, 9),
+}  # fmt: skip
+"""Functions with the least and greatest number of arguments."""
+
+CONSTANTS: Final = ("pi", "k_B", "q_e", "h_P", "c_0", "epsilon_0", "mu_0")
+CLAUSE_WORDS: Final = frozenset(
+    "by in at with for when and or not as from to of within where over against each bias odd even"
+    .split()
+)
+
+
+@lru_cache(maxsize=4096)
+def fold(name: str) -> str:
+    """The one spelling that all spellings of a symbol share.
+
+    >>> fold("theta_JA") == fold("θ_JA"), fold("\u2206V") == fold("ΔV")
+    (True, True)
+    """
+    base, joint, subscript = unicodedata.normalize("NFC", name).translate(_LOOK_ALIKES).partition("_")
+    return GREEK.get(base, base).translate(_LOOK_ALIKES) + joint + subscript
+
+
+_TAKEN: Final = {
+    **{fold(word): "a function" for word in FUNCTIONS},
+    **{fold(word): "a constant" for word in CONSTANTS},
+    **{fold(word): "a word of the language" for word in CLAUSE_WORDS},
+}
+
+
+def taken_as(name: str) -> str | None:
+    """What a reserved word stands for (``a function``), or None for a free name."""
+    return _TAKEN.get(fold(name))
+
+
+def nearest(name: str, known: Iterable[str]) -> str | None:
+    """The known name most like an unknown one, or None when nothing is like it."""
+    candidates = list(known)
+    for candidate in candidates:
+        if fold(candidate).lower() == fold(name).lower():
+            return candidate
+    close = difflib.get_close_matches(name, candidates, n=1, cutoff=0.6)
+    return close[0] if close else None

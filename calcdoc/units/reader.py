@@ -1,0 +1,102 @@
+"""From unit words to units, with factors and dimensions from Pint and our own registry file."""
+
+import difflib
+from collections.abc import Iterable
+from fractions import Fraction
+from functools import cache
+from importlib import resources
+from typing import TYPE_CHECKING, Final
+
+from calcdoc.units.dimension import BASE_NAMES, Dimension
+from calcdoc.units.unit import Unit
+from calcdoc.units.words import ALONE, PREFIXED, PREFIXES, SPELLED
+
+if TYPE_CHECKING:
+    import pint
+
+_LOOK_ALIKES: Final = str.maketrans({"\u03bc": "µ", "\u2126": "Ω"})
+
+
+@cache
+def _registry() -> "pint.UnitRegistry[Fraction]":
+    """Pint with our own file only: exact fractions, none of its surprise units."""
+    import pint  # noqa: PLC0415  (slow, and needed only once a unit is read)
+
+    with resources.as_file(resources.files("calcdoc.units") / "registry.txt") as path:
+        return pint.UnitRegistry(
+            str(path), non_int_type=Fraction, on_redefinition="raise", cache_folder=None
+        )
+
+
+@cache
+def _split(word: str) -> tuple[str, str, str] | None:
+    """A unit word as (prefix, base word, registry name), or None when it is not on the list."""
+    word = word.translate(_LOOK_ALIKES)
+    for base, name in (*PREFIXED.items(), *ALONE.items()):
+        if word == base:
+            return "", base, name
+    for spelled, base in SPELLED.items():
+        if word == spelled:
+            return "", base, (PREFIXED | ALONE)[base]
+    for prefix, prefix_name in (*PREFIXES.items(), ("u", "micro")):
+        base = word.removeprefix(prefix)
+        base = SPELLED.get(base, base)
+        if word.startswith(prefix) and base in PREFIXED:
+            return "µ" if prefix == "u" else prefix, base, prefix_name + PREFIXED[base]
+    return None
+
+
+def known_word(word: str) -> bool:
+    """Whether a word is on the closed list of unit words, with or without prefix."""
+    return _split(word) is not None
+
+
+@cache
+def _atom(word: str) -> tuple[str, Fraction, Dimension]:
+    """Printed form, exact factor to the coherent SI unit, and dimension of one known word."""
+    parts = _split(word)
+    assert parts is not None, word
+    prefix, base, name = parts
+    factor, _ = _registry().get_base_units(name)
+    found = _registry().get_dimensionality(name)
+    exponents = tuple(Fraction(found.get(each, 0)) for each in BASE_NAMES)
+    # Pint's root of mass is the gram; the coherent unit is the kilogram.
+    return prefix + base, Fraction(factor) / 1000 ** exponents[1], Dimension(exponents)
+
+
+def unit_of(words: Iterable[tuple[str, int]]) -> Unit:
+    """The unit of words with exponents, all of them known.
+
+    >>> unit_of([("uF", 1)]).text
+    'µF'
+    >>> unit_of([("°C", 1), ("W", -1)]).text
+    'K/W'
+    """
+    merged: dict[str, int] = {}
+    factor, dimension = Fraction(1), Dimension()
+    pairs = list(words)
+    celsius = [each for each, _ in pairs] in (["°C"], ["degC"]) and pairs[0][1] == 1
+    for word, power in pairs:
+        printed, size, of_word = _atom(word)
+        if printed == "°C" and not celsius:
+            printed = "K"
+        merged[printed] = merged.get(printed, 0) + power
+        factor *= size**power
+        dimension *= of_word**power
+    kept = tuple((word, power) for word, power in merged.items() if power)
+    return Unit(kept, factor, dimension, celsius)
+
+
+@cache
+def _all_words() -> tuple[str, ...]:
+    common = [p + b for p in ("p", "n", "µ", "m", "k", "M", "G") for b in PREFIXED]
+    return (*PREFIXED, *ALONE, *common)
+
+
+def nearest_word(word: str) -> str | None:
+    """The listed unit word most like an unknown one, or None when nothing is like it."""
+    for candidate in _all_words():
+        if candidate.lower() == word.lower():
+            return candidate
+    close = difflib.get_close_matches(word, _all_words(), n=1, cutoff=0.5)
+    return close[0] if close else None
