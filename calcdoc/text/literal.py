@@ -13,7 +13,7 @@ from calcdoc.text.nodes import Number, Quantity, UnitText, UnitWord
 from calcdoc.text.scan import Scanner, shown
 from calcdoc.units import Unit, known_word, nearest_word, unit_of
 
-NUMBER: Final = re.compile(r"[0-9]+(?:\.[0-9]+)?(?:[eE][+-]?[0-9]+)?")
+NUMBER: Final = re.compile(r"[0-9]+(?:\.[0-9]+)?(?:[eE]([+-]?[0-9]+))?")
 _GLUED: Final = re.compile(rf"[{LETTER}0-9_.%°]+")
 _DECIMAL_COMMA: Final = re.compile(r",[0-9]")
 _RANGE: Final = re.compile(r"\.\.")
@@ -25,6 +25,7 @@ _SPACED: Final = re.compile(rf"[ \n]+(?=[{LETTER}°%])")
 _EXPONENT: Final = re.compile(r"\^(-?[0-9]{1,2})(?![0-9])|([⁻]?[⁰¹²³⁴⁵⁶⁷⁸⁹]{1,2})")
 _LOWERED: Final = str.maketrans("⁰¹²³⁴⁵⁶⁷⁸⁹⁻", "0123456789-")
 _DIGITS_MOST: Final = 60
+_EXPONENT_MOST: Final = 99
 
 
 def quantity(scanner: Scanner, *, comma_separates: bool = False) -> Number | Quantity:
@@ -54,9 +55,10 @@ def _number(scanner: Scanner, *, comma_separates: bool) -> tuple[str, int]:
         assert again is not None
         _number_mistake(scanner, start, again.end(), "a number is written without blanks",
                         f"write {found.group()}{again.group()} if it is one number")
-    if len(found.group()) > _DIGITS_MOST:
-        _number_mistake(scanner, start, found.end(), "this number has too many digits",
-                        f"write it with at most {_DIGITS_MOST} characters")
+    if len(found.group()) > _DIGITS_MOST or abs(int(found[1] or 0)) > _EXPONENT_MOST:
+        _number_mistake(scanner, start, found.end(), "this number is too long or too large",
+                        f"write at most {_DIGITS_MOST} characters and powers of ten up to"
+                        f" {_EXPONENT_MOST}")
     return found.group(), start
 
 

@@ -1,0 +1,286 @@
+"""CommonMark to our own prose tree; the only place that asks markdown-it.
+
+Fences of the calculation are handed to a reader that is passed in, with the file position of
+each of their lines.
+"""
+
+import re
+from collections.abc import Callable
+from dataclasses import dataclass, field
+from functools import cache
+from typing import TYPE_CHECKING, Final
+
+from calcdoc.problems import Finding, error, warning
+from calcdoc.source import SourceFile, Span
+from calcdoc.text import prose
+
+if TYPE_CHECKING:
+    from markdown_it import MarkdownIt
+    from markdown_it.rules_inline import StateInline
+    from markdown_it.token import Token
+
+MENTION: Final = re.compile(r"\{([^{}\s:]+)(?::([a-z]+))?\}")
+_SAFE: Final = ("http://", "https://", "mailto:", "#")
+_DEEPEST: Final = 20
+
+
+@dataclass(frozen=True, slots=True)
+class Fence:
+    """A fenced block: its info words and its lines with their places in the file."""
+
+    word: str
+    info: str
+    lines: tuple[str, ...]
+    places: tuple[int, ...]
+    """Offset of each line's first character."""
+    opening: Span
+    """The info word, or the whole opening line when it has none."""
+    closed: bool
+
+
+FenceReader = Callable[[Fence], prose.Block | None]
+
+
+@cache
+def _reader() -> "MarkdownIt":
+    from markdown_it import MarkdownIt  # noqa: PLC0415  (needed only here)
+
+    markdown = MarkdownIt("commonmark", {"html": False, "maxNesting": _DEEPEST})
+    markdown.enable("table")
+    # Escapes must stay apart from text, or `\{` would look like the begin of a mention.
+    markdown.inline.ruler.before("link", "mention", _mention_rule)
+    return markdown
+
+
+def _mention_rule(state: "StateInline", silent: bool) -> bool:
+    found = MENTION.match(state.src, state.pos)
+    if found is None:
+        return False
+    if not silent:
+        token = state.push("mention", "", 0)
+        token.content = found.group()
+        token.meta = {"at": state.pos}
+    state.pos = found.end()
+    return True
+
+
+@dataclass(slots=True)
+class _Builder:
+    """Walks the flat token list once and builds the tree."""
+
+    source: SourceFile
+    first_line: int
+    """Line of the file (from 1) on which the parsed text begins."""
+    read_fence: FenceReader
+    findings: list[Finding]
+    tokens: "list[Token]" = field(default_factory=list)
+    at: int = 0
+    cursor: int = 0
+    """Where in the file the search for the next inline text begins."""
+
+    def blocks(self, until: str) -> tuple[prose.Block, ...]:
+        """Blocks up to a closing token, which is taken."""
+        found: list[prose.Block] = []
+        while self.at < len(self.tokens) and self.tokens[self.at].type != until:
+            block = self.block()
+            if block is not None:
+                found.append(block)
+        self.at += 1
+        return tuple(found)
+
+    def block(self) -> prose.Block | None:
+        """The block that begins here."""
+        token = self.tokens[self.at]
+        self.at += 1
+        match token.type:
+            case "heading_open":
+                return prose.Heading(int(token.tag[1]), self.inline("heading_close"))
+            case "paragraph_open":
+                return prose.Paragraph(self.inline("paragraph_close"))
+            case "bullet_list_open":
+                return prose.Items(None, self.items("bullet_list_close"))
+            case "ordered_list_open":
+                start = int(token.attrs.get("start", 1))
+                return prose.Items(start, self.items("ordered_list_close"))
+            case "blockquote_open":
+                return prose.Quote(self.blocks("blockquote_close"))
+            case "table_open":
+                return self.table()
+            case "fence":
+                return self.fence(token)
+            case "hr":
+                return prose.Rule()
+            case "code_block":
+                return prose.Listing(token.content)
+            case _:
+                return None
+
+    def items(self, until: str) -> tuple[tuple[prose.Block, ...], ...]:
+        """The items of a list."""
+        found = []
+        while self.tokens[self.at].type != until:
+            self.at += 1
+            found.append(self.blocks("list_item_close"))
+        self.at += 1
+        return tuple(found)
+
+    def table(self) -> prose.Grid:
+        """A pipe table."""
+        rows: list[tuple[tuple[prose.Inline, ...], ...]] = []
+        cells: list[tuple[prose.Inline, ...]] = []
+        align: list[str] = []
+        while (token := self.tokens[self.at]).type != "table_close":
+            self.at += 1
+            if token.type in ("th_open", "td_open"):
+                cells.append(self.inline(token.type.replace("open", "close")))
+                if token.type == "th_open":
+                    align.append(str(token.attrs.get("style", "")).partition(":")[2])
+            elif token.type == "tr_close":
+                rows.append(tuple(cells))
+                cells = []
+        self.at += 1
+        return prose.Grid(tuple(align), rows[0], tuple(rows[1:]))
+
+    def inline(self, until: str) -> tuple[prose.Inline, ...]:
+        """The inline content of a paragraph, heading or cell."""
+        found: tuple[prose.Inline, ...] = ()
+        while (token := self.tokens[self.at]).type != until:
+            self.at += 1
+            if token.type == "inline":
+                places = _InlinePlaces(self, token)
+                found += _InlineBuilder(self, token.children or [], places).nodes(None)
+        self.at += 1
+        return found
+
+    def fence(self, token: "Token") -> prose.Block | None:
+        """A fenced block, handed to its reader."""
+        assert token.map is not None
+        begin, end = token.map
+        lines = tuple(token.content.split("\n")[:-1])
+        first = self.first_line + begin
+        places = [self.place(first + 1 + k, line) for k, line in enumerate(lines)]
+        word = token.info.split()[0] if token.info.split() else ""
+        opening = self.source.line(first)
+        start = self.source.line_start(first)
+        column = opening.rfind(word) if word else 0
+        span = self.source.span(start + column, start + column + len(word) if word else start + len(opening))
+        closed = len(lines) == end - begin - 2
+        return self.read_fence(Fence(word, token.info, lines, tuple(places), span, closed))
+
+    def place(self, number: int, content: str) -> int:
+        """Offset of a content line in the file: it is the end of its source line."""
+        line = self.source.line(number)
+        start = self.source.line_start(number)
+        if line.endswith(content):
+            return start + len(line) - len(content)
+        stripped = content.lstrip(" ")
+        return start + max(0, len(line) - len(stripped))
+
+
+class _InlinePlaces:
+    """Where characters of an inline text stand in the file, found line by line."""
+
+    def __init__(self, builder: _Builder, token: "Token") -> None:
+        self.source = builder.source
+        first, last = token.map or (0, 0)
+        low = self.source.line_start(builder.first_line + first)
+        high = self.source.line_start(builder.first_line + last)
+        self.cursor = max(low, builder.cursor) if builder.cursor < high else low
+        self.high = high
+        self.builder = builder
+
+    def find(self, text: str) -> Span:
+        """The next place of a text; the block's first character when it is written otherwise."""
+        at = self.source.text.find(text, self.cursor, self.high)
+        if at < 0:
+            return self.source.span(self.cursor, self.cursor + 1)
+        self.cursor = self.builder.cursor = at + len(text)
+        return self.source.span(at, at + len(text))
+
+
+@dataclass(slots=True)
+class _InlineBuilder:
+    """Walks the children of an inline token."""
+
+    builder: _Builder
+    children: "list[Token]"
+    places: _InlinePlaces
+    at: int = 0
+
+    def nodes(self, until: str | None) -> tuple[prose.Inline, ...]:
+        """Inline nodes up to a closing token, neighbouring texts joined."""
+        found: list[prose.Inline] = []
+        while self.at < len(self.children) and self.children[self.at].type != until:
+            token = self.children[self.at]
+            self.at += 1
+            for node in self.node(token):
+                if isinstance(node, prose.Words) and found and isinstance(found[-1], prose.Words):
+                    found[-1] = prose.Words(found[-1].text + node.text)
+                else:
+                    found.append(node)
+        self.at += 1
+        return tuple(found)
+
+    def node(self, token: "Token") -> tuple[prose.Inline, ...]:
+        """What one token stands for."""
+        match token.type:
+            case "text" | "text_special":
+                return (prose.Words(token.content),)
+            case "softbreak":
+                return (prose.Words(" "),)
+            case "hardbreak":
+                return (prose.Break(),)
+            case "code_inline":
+                self.places.find(token.content)
+                return (prose.Code(token.content),)
+            case "em_open" | "strong_open":
+                strong = token.type == "strong_open"
+                return (prose.Emphasis(strong, self.nodes(token.type.replace("open", "close"))),)
+            case "link_open":
+                return self.link(str(token.attrs.get("href", "")))
+            case "image":
+                path = str(token.attrs.get("src", ""))
+                return (prose.Picture(path, token.content, self.places.find(path)),)
+            case "mention":
+                return (self.mention(token.content),)
+            case _:
+                return ()
+
+    def link(self, address: str) -> tuple[prose.Inline, ...]:
+        """A link, or its text alone when the address is not a plain web or mail address."""
+        inline = self.nodes("link_close")
+        span = self.places.find(address)
+        if address.lower().startswith(_SAFE):
+            return (prose.Link(address, inline),)
+        self.builder.findings.append(warning(
+            "link-refused", "this link is shown as plain text", span,
+            help="links begin with https://, http://, mailto: or #"))
+        return inline
+
+    def mention(self, text: str) -> prose.Mention:
+        """A name in braces."""
+        found = MENTION.fullmatch(text)
+        assert found is not None
+        span = self.places.find(text)
+        form = found[2] or ""
+        if form not in ("", "value", "least", "greatest"):
+            self.builder.findings.append(error(
+                "unknown-name", f"`:{form}` is not a form of a value", span,
+                help="write {name}, {name:value}, {name:least} or {name:greatest}"))
+        return prose.Mention(found[1], form, span)
+
+
+def read_prose(
+    source: SourceFile, text: str, first_line: int, read_fence: FenceReader
+) -> tuple[tuple[prose.Block, ...], list[Finding]]:
+    """Parse CommonMark that begins on a line of the file.
+
+    Args:
+        source: The file, for positions.
+        text: The lines to parse, as they stand in the file.
+        first_line: The line of the file (from 1) the text begins on.
+        read_fence: Makes a block of a fenced block, or None to leave it out.
+    """
+    builder = _Builder(source, first_line, read_fence, [])
+    builder.tokens = _reader().parse(text)
+    return builder.blocks("end of text"), builder.findings

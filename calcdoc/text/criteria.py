@@ -1,0 +1,129 @@
+"""Acceptance criteria: an inequality with clauses, or a verdict that is not calculated."""
+
+import re
+from dataclasses import replace
+from typing import Final, NoReturn
+
+from calcdoc.problems import Mistake, error
+from calcdoc.text.cells import basis, columns, label, labelled, plain
+from calcdoc.text.formula import formula
+from calcdoc.text.given import given
+from calcdoc.text.literal import resolve
+from calcdoc.text.nodes import Node
+from calcdoc.text.passage import Passage
+from calcdoc.text.scan import Scanner
+from calcdoc.text.statements import Clauses, Inequality, Label, Margin, PointValue, Uncalculated
+
+_UNCALCULATED: Final = re.compile(r"(by test|by inspection|not applicable)\s*:\s*")
+_ANY_OF: Final = re.compile(r"any of\b")
+_ACCEPT: Final = re.compile(r"accept\s+[A-Za-z]")
+_COMPARE: Final = re.compile(r"<=|>=|<|>")
+_COMMA: Final = re.compile(r",")
+_EQUALS: Final = re.compile(r"=(?!=)")
+_NOMINAL: Final = re.compile(r"nominal\b")
+_CLAUSE: Final = re.compile(r"(by|at|in|with|for|when)\b")
+_METHOD: Final = re.compile(r"(extremes|root sum square|sampling)\b")
+_MARGIN: Final = re.compile(r"margin\b")
+_LATER: Final = {"in": "`in` cases", "for": "`for` a series", "when": "a condition `when`"}
+CRITERION_COLUMNS: Final = ("criterion", "description", "basis")
+
+
+def criterion(statement: Passage) -> Inequality | Uncalculated:
+    """``ID ":" (inequality clause* | verdict ":" text) | description | basis``"""  # noqa: D400, D415
+    first, description, source = columns(statement, CRITERION_COLUMNS)
+    if found := _ACCEPT.match(first.text):
+        _later(Scanner(first), found.start(), found.end() - 1, "an accepted failure")
+    name, scanner = labelled(first, "the id of the criterion and a colon, as in R1:")
+    if found := scanner.take(_UNCALCULATED):
+        text = plain(first.part(found.end(), len(first.text)))
+        if not text:
+            scanner.refuse(f"what `{found[1]}` is about")
+        return Uncalculated(name, found[1], text, plain(description), basis(source), first.whole)
+    if found := scanner.look(_ANY_OF):
+        _later(scanner, *found.span(), "`any of`")
+    operands, operators = _inequality(scanner)
+    clauses = _clauses(scanner)
+    return Inequality(name, operands, operators, clauses, plain(description), basis(source),
+                      first.whole)
+
+
+def _inequality(scanner: Scanner) -> tuple[tuple[Node, ...], tuple[str, ...]]:
+    """``inequality = sum compare sum [compare sum]``, both signs pointing the same way."""
+    start = scanner.at
+    operands, operators = [formula(scanner)], []
+    while found := scanner.take(_COMPARE):
+        operators.append(found.group())
+        operands.append(formula(scanner))
+    if not operators:
+        scanner.refuse("<=, >=, < or >")
+    span = scanner.span(start, scanner.at)
+    if len(operators) > 2:  # noqa: PLR2004  (one or two sides)
+        raise Mistake(error("criterion-form", "a criterion has one or two limits", span,
+                            help="write the further limits as criteria of their own"))
+    if len({sign[0] for sign in operators}) > 1:
+        raise Mistake(error("criterion-form", "both signs of a two-sided criterion point the same way",
+                            span, help="write the least first: a <= x <= b"))
+    return tuple(operands), tuple(operators)
+
+
+def _clauses(scanner: Scanner) -> Clauses:
+    """``clause = "by" method | "at" point | "with margin" quantity``, each once, in any order."""
+    clauses, seen = Clauses(), set()
+    scanner.blanks()
+    begin = scanner.at
+    while not scanner.ended:
+        found = scanner.take(_CLAUSE)
+        if found is None:
+            scanner.refuse("an operator, a clause (by, at, with margin) or the end of the criterion")
+        word = found[1]
+        if word in seen:
+            raise Mistake(error("criterion-form", f"the clause `{word}` stands here twice",
+                                scanner.span(*found.span()), help="keep one of them"))
+        seen.add(word)
+        clauses = _clause(scanner, clauses, word, found.start())
+    text = " ".join(scanner.passage.text[begin:].split())
+    return replace(clauses, text=text)
+
+
+def _clause(scanner: Scanner, clauses: Clauses, word: str, start: int) -> Clauses:
+    if word in _LATER:
+        _later(scanner, start, scanner.at, _LATER[word])
+    if word == "by":
+        found = scanner.take(_METHOD)
+        if found is None:
+            scanner.refuse("`extremes`, `root sum square` or `sampling`")
+        if found[1] != "extremes":
+            _later(scanner, *found.span(), f"`by {found[1]}`")
+        return clauses
+    if word == "with":
+        scanner.expect(_MARGIN, "`margin` after `with`")
+        return replace(clauses, margin=_margin(scanner))
+    if scanner.take(_NOMINAL):
+        return replace(clauses, at_nominal=True)
+    return replace(clauses, at=_point(scanner))
+
+
+def _margin(scanner: Scanner) -> Margin:
+    value = given(scanner)
+    unit = value.units[0] if value.units else None
+    is_share = unit is not None and [each.word for each in unit.words] == ["%"]
+    if value.varies or value.nominal < 0 or (unit and resolve(unit).celsius):
+        raise Mistake(error("criterion-form", "a margin is one value that is not negative", value.span,
+                            help="write a share of the limit (10 %) or a difference (5 K)"))
+    return Margin(value, is_share, value.span)
+
+
+def _point(scanner: Scanner) -> tuple[PointValue, ...]:
+    """``point = SYMBOL "=" given ("," SYMBOL "=" given)*``"""  # noqa: D400, D415
+    values: list[PointValue] = []
+    while True:
+        symbol: Label = label(scanner, "`nominal`, or a symbol with its value")
+        scanner.expect(_EQUALS, "`=`")
+        values.append(PointValue(symbol, given(scanner)))
+        if scanner.take(_COMMA) is None:
+            return tuple(values)
+
+
+def _later(scanner: Scanner, start: int, end: int, what: str) -> NoReturn:
+    raise Mistake(error("not-available-yet", f"{what} is not available yet",
+                        scanner.span(start, end), help="it is reserved for a coming version"))

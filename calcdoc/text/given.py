@@ -1,0 +1,223 @@
+"""A given value: nominal with least and greatest, exactly as the author's digits say.
+
+``230 V``, ``230 V ± 10 %``, ``230 V ± 23 V``, ``10 µF -20 % +50 %``, ``28.5 .. 30.0 .. 31.8 V``,
+``-20 .. 45 °C``. Limits are fractions here and are rounded once, when they become floats.
+"""
+
+import re
+from dataclasses import dataclass
+from enum import Enum
+from fractions import Fraction
+from typing import Final, NoReturn
+
+from calcdoc.problems import Mistake, error
+from calcdoc.source import Span
+from calcdoc.text import literal
+from calcdoc.text.nodes import Number, Quantity, UnitText
+from calcdoc.text.scan import Scanner
+from calcdoc.text.unparse import unit_text
+from calcdoc.units import ONE, PLAIN, Unit
+
+_SIGN: Final = re.compile(r"[+-]")
+_PLUS_MINUS: Final = re.compile(r"±|\+/-")
+_RANGE: Final = re.compile(r"\.\.")
+_LATER: Final = re.compile(r"(as|bias|each)\b")
+
+
+class Style(Enum):
+    """How the author stated the band; it decides how the record prints it."""
+
+    FIXED = "fixed"
+    RELATIVE = "relative"  # ± 10 %
+    ABSOLUTE = "absolute"  # ± 23 V
+    UNEQUAL = "unequal"  # -20 % +50 %
+    LIMITS = "limits"  # three values
+    RANGE = "range"  # two values; the nominal is the middle
+
+
+@dataclass(frozen=True, slots=True)
+class Given:
+    """A value with its band, as numbers in ``unit``; always least <= nominal <= greatest."""
+
+    unit: Unit
+    nominal: Fraction
+    least: Fraction
+    greatest: Fraction
+    style: Style
+    digits: str
+    """The nominal as written (for a range: the middle, in plain digits)."""
+    spread: tuple[str, ...]
+    """The parts of the tolerance as written: ``("10 %",)``, ``("-20 %", "+50 %")``, ..."""
+    units: tuple[UnitText, ...]
+    """Every unit as written; a joined word may be mistaken for a symbol."""
+    span: Span
+
+    @property
+    def si(self) -> tuple[float, float, float]:
+        """Least, nominal and greatest in the coherent SI unit (kelvin for a temperature)."""
+        least, nominal, greatest = (
+            float(self.unit.to_si(each)) for each in (self.least, self.nominal, self.greatest)
+        )
+        return least, nominal, greatest
+
+    @property
+    def varies(self) -> bool:
+        """Whether the value has a band."""
+        return self.least < self.greatest
+
+
+@dataclass(frozen=True, slots=True)
+class _Part:
+    """A signed number, with a unit or without."""
+
+    value: Fraction
+    digits: str
+    unit: UnitText | None
+    span: Span
+
+
+def given(scanner: Scanner) -> Given:
+    """``given = part [".." part [".." part]] | part tolerance``"""  # noqa: D400, D415
+    first = _signed(scanner)
+    if scanner.take(_RANGE):
+        parts = [first, _signed(scanner)]
+        if scanner.take(_RANGE):
+            parts.append(_signed(scanner))
+        value = _limits(parts)
+    else:
+        value = _with_tolerance(scanner, first)
+    if later := scanner.look(_LATER):
+        raise Mistake(error("not-available-yet", f"`{later.group()}` is not available yet",
+                            scanner.span(*later.span()),
+                            help="state the band alone: ± 10 %, -20 % +50 %, or limits a .. b"))
+    return value
+
+
+def _signed(scanner: Scanner) -> _Part:
+    sign = scanner.take(_SIGN)
+    if sign is None and not scanner.look(literal.NUMBER):
+        scanner.refuse("a value with its unit, as in 230 V")
+    scanner.blanks()
+    start = sign.start() if sign else scanner.at
+    node = literal.quantity(scanner)
+    minus = sign is not None and sign.group() == "-"
+    unit = node.unit if isinstance(node, Quantity) else None
+    value = Fraction(node.digits)
+    digits = f"-{node.digits}" if minus else node.digits
+    return _Part(-value if minus else value, digits, unit, scanner.span(start, scanner.at))
+
+
+def _unit(part: _Part) -> Unit:
+    return literal.resolve(part.unit) if part.unit else PLAIN
+
+
+def _with_tolerance(scanner: Scanner, first: _Part) -> Given:
+    """``tolerance = ("±" | "+/-") part | sign part sign part``"""  # noqa: D400, D415
+    if found := scanner.take(_PLUS_MINUS):
+        part = _signed(scanner)
+        if part.value <= 0 or scanner.passage.text[found.end():].lstrip()[:1] in ("+", "-"):
+            _refuse("a tolerance after ± is more than zero and has no sign", part.span,
+                    "write ± 10 %, or -20 % +50 % for unequal parts")
+        change = _change(first, part)
+        return _value(first, (first.value - change, first.value + change),
+                      Style.RELATIVE if _is_share(part) else Style.ABSOLUTE, (part,))
+    if scanner.look(_SIGN):
+        parts = [_signed(scanner)]
+        if scanner.look(_SIGN) is None:
+            scanner.refuse("the other part of the tolerance, as in -20 % +50 %")
+        parts.append(_signed(scanner))
+        changes = sorted(_change(first, part) for part in parts)
+        spread = tuple(sorted(parts, key=lambda part: part.value))
+        return _value(first, (first.value + changes[0], first.value + changes[1]),
+                      Style.UNEQUAL, spread)
+    return _value(first, (first.value, first.value), Style.FIXED, ())
+
+
+def _is_share(part: _Part) -> bool:
+    """Whether a tolerance is a share of the value (per cent or ppm)."""
+    return part.unit is not None and [w.word for w in part.unit.words] in (["%"], ["ppm"])
+
+
+def _change(first: _Part, part: _Part) -> Fraction:
+    """The change a part of a tolerance makes, in the unit of the value."""
+    unit = _unit(first)
+    span = first.span.to(part.span)
+    if _is_share(part):
+        if _is_share(first):
+            _refuse(f"{_shown(first)} with a tolerance in per cent can be read in two ways", span,
+                    "write the limits, as in 85 .. 90 .. 95 %")
+        if unit.celsius:
+            _refuse("a share of a temperature on the Celsius scale means nothing", span,
+                    "write the tolerance as a difference in kelvin, as in ± 5 K")
+        if first.value == 0:
+            _refuse("a share of zero is zero", span, "write the tolerance with a unit, or as limits")
+        return abs(first.value) * part.value * _unit(part).factor
+    other = _unit(part)
+    if unit.celsius and other.celsius:
+        _refuse("a difference of temperatures is in kelvin", part.span, f"write {part.digits} K")
+    if other.dimension != unit.dimension:
+        _refuse(f"the tolerance is {other.dimension.in_words()}, the value {unit.dimension.in_words()}",
+                part.span, "give the tolerance in per cent or in the unit of the value")
+    if unit.dimension == ONE and (_is_share(first) or part.unit):
+        _refuse("a plain number with a tolerance in another unit can be read in two ways", span,
+                "write the limits, as in 0.8 .. 0.9 .. 1.0")
+    return part.value * other.factor / unit.factor
+
+
+def _value(first: _Part, limits: tuple[Fraction, Fraction], style: Style,
+           parts: tuple[_Part, ...]) -> Given:
+    least, greatest = limits
+    span = first.span.to(parts[-1].span) if parts else first.span
+    for part in parts:
+        if part.span.end > span.end:
+            span = first.span.to(part.span)
+    if not least <= first.value <= greatest:
+        _refuse("the tolerance leaves out the value itself", span,
+                "one part is below (-20 %), the other above (+50 %)")
+    signed = tuple(p.digits if style is not Style.UNEQUAL or p.value < 0 else f"+{p.digits}"
+                   for p in parts)
+    spread = tuple(f"{d} {unit_text(p.unit)}" if p.unit else d
+                   for d, p in zip(signed, parts, strict=True))
+    units = tuple(part.unit for part in (first, *parts) if part.unit)
+    return Given(_unit(first), first.value, least, greatest, style, first.digits, spread, units, span)
+
+
+def _limits(parts: list[_Part]) -> Given:
+    """Two or three values; a unit may follow each, all equal, or the last only."""
+    span = parts[0].span.to(parts[-1].span)
+    unit_part = parts[-1]
+    unit = _unit(unit_part)
+    for part in parts[:-1]:
+        if part.unit and _unit(part) != unit:
+            _refuse(f"the limits are in different units, {unit_text(part.unit)} and"
+                    f" {unit_text(unit_part.unit) if unit_part.unit else 'none'}", span,
+                    "write one unit, after the last value or after each")
+    values = [part.value for part in parts]
+    if sorted(values) != values:
+        wanted = " .. ".join(p.digits for p in sorted(parts, key=lambda part: part.value))
+        _refuse("the limits are not in rising order", span,
+                f"write the least first: {wanted}{' ' + unit.text if unit.text else ''}")
+    three = len(parts) == 3  # noqa: PLR2004  (least, nominal, greatest)
+    nominal = values[1] if three else (values[0] + values[1]) / 2
+    digits = parts[1].digits if three else _decimal(nominal)
+    units = tuple(part.unit for part in parts if part.unit)
+    return Given(unit, nominal, values[0], values[-1], Style.LIMITS if three else Style.RANGE, digits,
+                 (parts[0].digits, parts[-1].digits), units, span)
+
+
+def _decimal(value: Fraction) -> str:
+    """A fraction with a finite decimal expansion, in plain digits."""
+    whole, power = value, 0
+    while whole.denominator != 1:
+        whole, power = whole * 10, power + 1
+    text = f"{abs(whole.numerator):0{power + 1}d}"
+    body = f"{text[:-power]}.{text[-power:]}" if power else text
+    return f"-{body}" if value < 0 else body
+
+
+def _shown(part: _Part) -> str:
+    return f"{part.digits} {unit_text(part.unit)}" if part.unit else part.digits
+
+
+def _refuse(message: str, span: Span, advice: str) -> NoReturn:
+    raise Mistake(error("tolerance", message, span, help=advice))

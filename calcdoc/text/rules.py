@@ -1,0 +1,156 @@
+"""One function for each kind of statement; a block word names the rule of its lines."""
+
+import re
+from collections.abc import Callable, Mapping
+from typing import Final, NoReturn
+
+from calcdoc.problems import Mistake, error
+from calcdoc.text import literal
+from calcdoc.text.cells import basis, columns, label, labelled, plain, state
+from calcdoc.text.formula import formula
+from calcdoc.text.given import given
+from calcdoc.text.names import SYMBOL
+from calcdoc.text.passage import Passage
+from calcdoc.text.scan import Scanner
+from calcdoc.text.statements import (
+    Basis, Definition, GivenStatement, HazardStatement, Kind, Label, ReferenceStatement,
+    SentenceStatement, Statement,
+)
+
+_EQUALS: Final = re.compile(r"=(?!=)")
+_BRACKET: Final = re.compile(r"\[")
+_ID: Final = re.compile(rf"({SYMBOL.pattern})\s*:")
+_SYMBOL_EQUALS: Final = re.compile(rf"{SYMBOL.pattern}\s*(?:\[[^\]]*\])?\s*=")
+_LATER_DERIVE: Final = re.compile(r"(relation|settle|restate|sensitivity)\s+\S|[^=]*\s(from)\s")
+_AT: Final = re.compile(r"at\b")
+_THROUGH: Final = re.compile(r"through\b")
+_FOR: Final = re.compile(r"for\b")
+_HAZARD: Final = re.compile(r"(supply|stored|not isolated)(?=\s|$)")
+
+GIVEN_COLUMNS: Final = ("statement", "description", "basis")
+
+
+def condition(statement: Passage) -> Statement:
+    """``SYMBOL = given | description | basis``"""  # noqa: D400, D415
+    return _given_statement(Kind.CONDITION, statement)
+
+
+def input_(statement: Passage) -> Statement:
+    """``SYMBOL = given | description | basis``"""  # noqa: D400, D415
+    return _given_statement(Kind.INPUT, statement)
+
+
+def _given_statement(kind: Kind, statement: Passage) -> GivenStatement:
+    first, description, source = columns(statement, GIVEN_COLUMNS)
+    scanner = Scanner(first)
+    return _given(kind, scanner, None, description, basis(source), "")
+
+
+def _given(  # noqa: PLR0913  (the parts of a statement)
+    kind: Kind, scanner: Scanner, name: Label | None, description: Passage, source: Basis, mark: str
+) -> GivenStatement:
+    begin = scanner.at
+    symbol = label(scanner, "a symbol, as in V_line = 230 V ± 10 %")
+    if scanner.look(_BRACKET):
+        scanner.refuse("`=` (the unit of a given value stands after its number)")
+    scanner.expect(_EQUALS, "`=`")
+    if scanner.look(re.compile('"')):
+        _later(scanner, scanner.at, "a text value")
+    value = given(scanner)
+    if not scanner.ended:
+        scanner.refuse("a tolerance or the end of the statement (a given value is no formula)")
+    text = " ".join(scanner.passage.text[begin:].split())
+    return GivenStatement(kind, symbol, value, plain(description), source, name, mark, text,
+                          scanner.passage.whole)
+
+
+def assumption(statement: Passage) -> Statement:
+    """``[ID ":"] SYMBOL = given | description | state basis`` or ``ID ":" sentence | ...``"""  # noqa: D400, D415
+    first, description, last = columns(statement, GIVEN_COLUMNS)
+    scanner, name = Scanner(first), None
+    if _ID.match(first.text):
+        name, scanner = labelled(first, "an id, as in A1:")
+    is_quantity = _SYMBOL_EQUALS.match(first.text, scanner.at)
+    if name is None and not is_quantity:
+        scanner.refuse("an id and a colon, or a symbol and `=`, as in A1: R_th = 60 K/W ± 15 %")
+    mark, rest = state(last)
+    if is_quantity:
+        return _given(Kind.ASSUMPTION, scanner, name, description, basis(rest), mark)
+    assert name is not None
+    text = plain(first.part(scanner.at, len(first.text)))
+    if not text:
+        scanner.refuse("the assumption as a sentence or as a symbol with its value")
+    return SentenceStatement(name, text, plain(description), basis(rest), mark, first.whole)
+
+
+def derivation(statement: Passage) -> Statement:
+    """``SYMBOL ["[" unit "]"] = sum | description | basis``"""  # noqa: D400, D415
+    first, description, source = columns(statement, GIVEN_COLUMNS)
+    scanner = Scanner(first)
+    if found := _LATER_DERIVE.match(first.text):
+        group = 1 if found[1] else 2
+        _later(scanner, found.start(group), f"`{found[group]}`", found.end(group))
+    symbol = label(scanner, "a symbol, as in V_pk [V] = sqrt(2)*V_line")
+    unit = None
+    if first.text[scanner.at : scanner.at + 1] == "[":
+        _later(scanner, scanner.at, "a series (`X[n]`; a unit stands after a blank: `X [V]`)")
+    if scanner.look(_BRACKET):
+        unit = literal.bracketed_unit(scanner)
+    scanner.expect(_EQUALS, "`=`" if unit else "`=` or a unit in brackets")
+    tree = formula(scanner)
+    if found := scanner.look(_FOR):
+        _later(scanner, found.start(), "a series with `for`", found.end())
+    if not scanner.ended:
+        scanner.refuse("an operator or the end of the formula")
+    return Definition(symbol, literal.resolve(unit) if unit else None, unit, tree,
+                      plain(description), basis(source), first.whole)
+
+
+def hazard(statement: Passage) -> Statement:
+    """``"supply" SYMBOL | "stored" SYMBOL "at" SYMBOL ["through" SYMBOL] | "not isolated"``"""  # noqa: D400, D415
+    first, _ = columns(statement, ("statement", "description"))
+    scanner = Scanner(first)
+    found = scanner.take(_HAZARD)
+    if found is None:
+        scanner.refuse("`supply V`, `stored C at V through R` or `not isolated`")
+    symbols: list[Label] = []
+    if found[1] != "not isolated":
+        symbols.append(label(scanner, "a symbol"))
+    if found[1] == "stored":
+        scanner.expect(_AT, "`at` and the voltage")
+        symbols.append(label(scanner, "the symbol of the voltage"))
+        if scanner.take(_THROUGH):
+            symbols.append(label(scanner, "the symbol of the bleed resistor"))
+    if not scanner.ended:
+        scanner.refuse("the end of the statement")
+    return HazardStatement(found[1], tuple(symbols), plain(first), first.whole)
+
+
+def reference(statement: Passage) -> Statement:
+    """``KEY | title | edition or issue, date | where held``"""  # noqa: D400, D415
+    key, title, edition, held = columns(statement, ("key", "title", "edition", "where held"))
+    if not key.text or not title.text:
+        raise Mistake(error("columns", "a reference has a key and a title", statement.whole,
+                            help="write KEY | title | edition or issue, date | where held"))
+    if found := re.search(r"[\[\],]", key.text):
+        raise Mistake(error("columns", "the key of a reference holds no bracket and no comma",
+                            key.span(*found.span()), help="they separate it where it is cited"))
+    return ReferenceStatement(plain(key), plain(title), plain(edition), plain(held), key.whole)
+
+
+def _later(scanner: Scanner, start: int, what: str, end: int | None = None) -> NoReturn:
+    raise Mistake(error("not-available-yet", f"{what} is not available yet",
+                        scanner.span(start, end if end is not None else start + 1),
+                        help="it is reserved for a coming version"))
+
+
+RULES: Final[Mapping[str, Callable[[Passage], Statement]]] = {
+    "conditions": condition,
+    "inputs": input_,
+    "assumptions": assumption,
+    "derive": derivation,
+    "hazards": hazard,
+    "references": reference,
+}
+"""The rule of a block's lines; ``criteria`` has a file of its own."""
+
