@@ -1,0 +1,158 @@
+"""One pass over the tape: ranges and slopes of every instruction over many boxes at once.
+
+Each column is a box of its own. The pass carries, for every instruction, an interval that
+contains its values over the box, one at the centre of the box, and the interval slopes with
+respect to the inputs named by the column's slots. Where an operation meets the same input on two
+sides, the interval is cut by the mean-value form: the centre plus slopes times half widths.
+"""
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+from fractions import Fraction
+
+import numpy as np
+
+from calcdoc.analysis import intervals as iv
+from calcdoc.analysis.points import BoolArray, FloatArray, IntArray
+from calcdoc.analysis.slopes import Tangent, tangent
+from calcdoc.analysis.tape import Instruction, Op, Tape
+
+
+@dataclass(frozen=True, slots=True)
+class Dependence:
+    """What each instruction depends on, for all passes over one tape."""
+
+    order: tuple[int, ...]
+    """Instructions looked at, ascending and closed under arguments."""
+    inputs: BoolArray
+    """Shape (n_instructions, n_inputs): False where the input certainly has no effect."""
+    meets: frozenset[int]
+    """Instructions whose arguments depend on a common input."""
+    lost: frozenset[int]
+    """Instructions that do not depend on some input that an argument depends on."""
+
+    @classmethod
+    def of(cls, tape: Tape, order: tuple[int, ...], inputs: BoolArray) -> "Dependence":
+        """Derive the sets from the table of :func:`calcdoc.analysis.vanish.dependence`."""
+        meets, lost = set(), set()
+        for at in order:
+            args = tape.instructions[at].args
+            if len(args) > 1:
+                counts = inputs[list(args)].sum(axis=0)
+                if (counts > 1).any():
+                    meets.add(at)
+                    if ((counts > 0) & ~inputs[at]).any():
+                        lost.add(at)
+            elif args and (inputs[args[0]] & ~inputs[at]).any():
+                lost.add(at)
+        return cls(order, inputs, frozenset(meets), frozenset(lost))
+
+
+@dataclass(frozen=True, slots=True)
+class Boxes:
+    """Boxes as columns."""
+
+    low: FloatArray
+    """Shape (n_inputs, n_columns)."""
+    high: FloatArray
+    """Shape (n_inputs, n_columns)."""
+    slots: IntArray
+    """Shape (n_slots, n_columns): the inputs whose slopes are wanted, -1 for none."""
+
+    def centre(self) -> FloatArray:
+        """Middle of each box, surely inside it; shape (n_inputs, n_columns)."""
+        return np.clip(self.low + 0.5 * (self.high - self.low), self.low, self.high)
+
+
+@dataclass(frozen=True, slots=True)
+class Swept:
+    """Ranges and slopes found by one pass, by instruction."""
+
+    values: dict[int, FloatArray] = field(default_factory=dict)
+    """Intervals of shape (2, n_columns)."""
+    moves: dict[int, Tangent] = field(default_factory=dict)
+    """Tangents of shape (2, n_slots, n_columns); None where nothing moves."""
+
+
+def sweep(tape: Tape, order: Sequence[int], boxes: Boxes, depends: Dependence) -> Swept:
+    """Carry all boxes through the instructions ``order`` (ascending, closed under arguments)."""
+    n_columns = boxes.low.shape[1]
+    centre = boxes.centre()
+    half = _half_widths(boxes, centre)
+    swept = Swept()
+    both: dict[int, FloatArray] = {}  # boxes, then their centres, as columns of one array
+    with np.errstate(all="ignore"):
+        for at in order:
+            step = tape.instructions[at]
+            if step.op is Op.INPUT:
+                assert isinstance(step.value, int)
+                row = step.value
+                both[at] = np.array(
+                    (
+                        np.concatenate((boxes.low[row], centre[row])),
+                        np.concatenate((boxes.high[row], centre[row])),
+                    )
+                )
+                swept.values[at] = both[at][:, :n_columns]
+                swept.moves[at] = _seed(boxes.slots, row)
+                continue
+            both[at] = _value(step, [both[arg] for arg in step.args], 2 * n_columns)
+            value = swept.values[at] = both[at][:, :n_columns]
+            args = tuple(swept.values[arg] for arg in step.args)
+            moves = tuple(swept.moves[arg] for arg in step.args)
+            move = tangent(step, args, moves, value) if step.args else None
+            if move is not None and at in depends.lost:
+                move = _forget(move, boxes.slots, depends.inputs[at])
+            swept.moves[at] = move
+            if at in depends.meets:
+                _cut(value, both[at][:, n_columns:], move, half)
+    return swept
+
+
+def _half_widths(boxes: Boxes, centre: FloatArray) -> FloatArray:
+    """Largest distance from the centre for each slot, rounded up; shape (n_slots, n_columns)."""
+    columns = np.arange(boxes.low.shape[1])
+    reach = np.maximum(boxes.high - centre, centre - boxes.low)
+    half = np.where(boxes.slots >= 0, reach[boxes.slots, columns], 0.0)
+    return np.where(half > 0.0, np.nextafter(half, np.inf), 0.0)
+
+
+def _seed(slots: IntArray, row: int) -> Tangent:
+    """Tangent of an input: one in its own slots."""
+    own = slots == row
+    return np.stack((own, own)).astype(np.float64) if own.any() else None
+
+
+def _value(step: Instruction, args: list[FloatArray], n_columns: int) -> FloatArray:
+    """Interval of one instruction over boxes and centres, by natural interval arithmetic."""
+    if step.op is Op.CONST:
+        assert step.value is not None
+        number = float(step.value)
+        out = np.full((2, n_columns), number)
+        return out if step.value == number else iv.outward(out)
+    if step.op is Op.POWER:
+        assert isinstance(step.value, Fraction | int)
+        return iv.power(args[0], Fraction(step.value))
+    if step.op is Op.IF:
+        return iv.choose(args[0], args[1], args[2])
+    if len(args) == 1:
+        return iv.ONE[step.op](args[0])
+    return iv.TWO[step.op](args[0], args[1])
+
+
+def _forget(move: FloatArray, slots: IntArray, depends: BoolArray) -> Tangent:
+    """Zero the slopes to inputs that certainly have no effect."""
+    kept = depends[slots] & (slots >= 0)
+    return np.where(kept, move, 0.0) if kept.any() else None
+
+
+def _cut(value: FloatArray, centre: FloatArray, move: Tangent, half: FloatArray) -> None:
+    """Cut ``value`` in place to the mean-value form around the centre."""
+    if move is None:
+        np.copyto(value, centre)
+        return
+    steep = np.maximum(-move[0], move[1]) * half
+    np.copyto(steep, 0.0, where=half == 0.0)  # a thin side stays thin, however steep
+    reach = np.nextafter(steep, np.inf).sum(axis=0) * (1.0 + 1e-14)
+    np.fmax(value[0], np.nextafter(centre[0] - reach, -np.inf), out=value[0])
+    np.fmin(value[1], np.nextafter(centre[1] + reach, np.inf), out=value[1])
