@@ -1,0 +1,150 @@
+"""One namespace for a whole document: symbols and ids, each defined once, all known."""
+
+from collections.abc import Iterable, Iterator, Mapping
+from dataclasses import dataclass
+
+from calcdoc.model.constants import CONSTANTS
+from calcdoc.problems import Finding, Place, error
+from calcdoc.text.document import Document
+from calcdoc.text.names import fold, nearest, taken_as
+from calcdoc.text.nodes import Node, Quantity, UnitText, names, walk
+from calcdoc.text.scan import shown
+from calcdoc.text.statements import (
+    Definition, GivenStatement, HazardStatement, Inequality, Label, SentenceStatement, Statement,
+    Uncalculated,
+)
+
+Valued = GivenStatement | Definition
+
+
+@dataclass(frozen=True, slots=True)
+class Namespace:
+    """Every name of a document with the statement that defines it, by key."""
+
+    quantities: Mapping[str, Valued]
+    labels: Mapping[str, Label]
+    """Symbols and ids alike."""
+
+    def spelled(self) -> list[str]:
+        """Every symbol as typed where it is defined."""
+        return [each.symbol.name for each in self.quantities.values()]
+
+
+def collect(document: Document) -> tuple[Namespace, list[Finding]]:
+    """Every symbol and id, and what is defined twice or takes a reserved word."""
+    quantities: dict[str, Valued] = {}
+    labels: dict[str, Label] = {}
+    findings: list[Finding] = []
+    for statement, label, what in _labels(document.statements):
+        taken = taken_as(label.name)
+        first = labels.get(label.key)
+        if taken:
+            findings.append(error("reserved-word", f"{shown(label.name)} is {taken}", label.span,
+                                  help="give it a subscript or another name"))
+        elif first:
+            findings.append(error(
+                "defined-twice", f"{shown(label.name)} is defined twice", label.span,
+                related=(Place(first.span, "first here"),), help=_advice(what)))
+        else:
+            labels[label.key] = label
+            if what == "symbol" and isinstance(statement, GivenStatement | Definition):
+                quantities[label.key] = statement
+    return Namespace(quantities, labels), findings
+
+
+def _labels(statements: Iterable[Statement]) -> Iterator[tuple[Statement, Label, str]]:
+    for each in statements:
+        if isinstance(each, GivenStatement):
+            if each.id:
+                yield each, each.id, "id"
+            yield each, each.symbol, "symbol"
+        elif isinstance(each, Definition):
+            yield each, each.symbol, "symbol"
+        elif isinstance(each, SentenceStatement | Inequality | Uncalculated):
+            yield each, each.id, "id"
+
+
+def _advice(what: str) -> str:
+    if what == "symbol":
+        return "give one of them another subscript, or remove it"
+    return "symbols and the ids of criteria and assumptions share one set of names; choose another id"
+
+
+def unknown_names(document: Document, space: Namespace) -> list[Finding]:
+    """Names that are used but nowhere defined, with the nearest one that is."""
+    findings = []
+    for label in _used(document.statements):
+        if label.key in space.quantities or label.key in CONSTANTS:
+            continue
+        findings.append(_unknown(label, space))
+    return findings
+
+
+def _unknown(label: Label, space: Namespace) -> Finding:
+    if label.key in space.labels:
+        return error("unknown-symbol", f"{shown(label.name)} is an id, not a quantity", label.span,
+                     help="use the symbol it speaks of")
+    near = nearest(label.name, [*space.spelled(), *CONSTANTS])
+    advice = f"did you mean {near}?" if near else "define it in inputs, conditions or derive"
+    return error("unknown-symbol", f"there is no symbol {shown(label.name)}", label.span, help=advice)
+
+
+def _used(statements: Iterable[Statement]) -> Iterator[Label]:
+    """Every name a statement uses, where it stands."""
+    for each in statements:
+        for tree in trees(each):
+            for name in names(tree):
+                yield Label(name.name, name.span)
+        if isinstance(each, HazardStatement):
+            yield from each.symbols
+        if isinstance(each, Inequality):
+            yield from (point.symbol for point in each.clauses.at)
+
+
+def trees(statement: Statement) -> tuple[Node, ...]:
+    """The formulas of a statement."""
+    if isinstance(statement, Definition):
+        return (statement.formula,)
+    return statement.operands if isinstance(statement, Inequality) else ()
+
+
+def two_readings(document: Document, space: Namespace) -> list[Finding]:
+    """Units whose joined word is also a symbol: ``1 s/m`` with a symbol m."""
+    findings = []
+    for statement in document.statements:
+        for unit in _units(statement):
+            for word in unit.words[1:]:
+                label = space.labels.get(fold(word.word))
+                if label is None or fold(word.word) not in space.quantities:
+                    continue
+                findings.append(error(
+                    "two-readings", f"{shown(word.word)} is a unit here and a symbol of this design",
+                    word.span, related=(Place(label.span, "the symbol"),),
+                    help=f"for the symbol write ({_before(unit, word.word)}){word.joint}{word.word};"
+                    " for the unit give the symbol another name"))
+    return findings
+
+
+def _before(unit: UnitText, word: str) -> str:
+    kept = [each.word for each in unit.words if each.word != word]
+    return "1 " + "·".join(kept)
+
+
+def _units(statement: Statement) -> Iterator[UnitText]:
+    for tree in trees(statement):
+        for node in walk(tree):
+            if isinstance(node, Quantity):
+                yield node.unit
+    if isinstance(statement, GivenStatement):
+        yield from statement.given.units
+    if isinstance(statement, Inequality):
+        for point in statement.clauses.at:
+            yield from point.given.units
+        if statement.clauses.margin:
+            yield from statement.clauses.margin.value.units
+
+
+def direct_uses(tree: Node, space: Namespace) -> tuple[str, ...]:
+    """Keys of the quantities a formula mentions, in order, each once."""
+    keys = (fold(name.name) for name in names(tree))
+    return tuple(dict.fromkeys(key for key in keys if key in space.quantities))
