@@ -1,6 +1,6 @@
-"""The text as one string, and places in it.
+r"""The text as one string, and places in it.
 
-Offsets count characters of the normalised text (line ends are ``\\n``, no byte-order mark).
+Offsets count characters of the normalised text (line ends are ``\n``, no byte-order mark).
 Lines and columns are computed here, for views, and nowhere else.
 """
 
@@ -25,9 +25,9 @@ class Span:
 
 @dataclass(frozen=True)
 class SourceFile:
-    """One text file, read and normalised.
+    r"""One text file, read and normalised.
 
-    >>> SourceFile("a.md", "one\\ntwo\\n").position(5)
+    >>> SourceFile("a.md", "one\ntwo\n").position(5)
     (2, 2)
     """
 

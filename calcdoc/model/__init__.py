@@ -1,0 +1,1 @@
+"""The design checked: names, circles, units and temperatures."""

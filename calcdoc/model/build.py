@@ -13,10 +13,19 @@ from calcdoc.problems.views import has_errors
 from calcdoc.text import prose
 from calcdoc.text.document import Document, walk
 from calcdoc.text.names import fold, nearest
+from calcdoc.text.nodes import names
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
-    Basis, Definition, GivenStatement, HazardStatement, Inequality, Label, ReferenceStatement,
-    SentenceStatement, Statement, Uncalculated,
+    Basis,
+    Definition,
+    GivenStatement,
+    HazardStatement,
+    Inequality,
+    Label,
+    ReferenceStatement,
+    SentenceStatement,
+    Statement,
+    Uncalculated,
 )
 from calcdoc.units import Dimension
 from calcdoc.units.dimension import CURRENT, TIME, VOLTAGE
@@ -39,19 +48,26 @@ def build(document: Document) -> tuple[Model | None, tuple[Finding, ...]]:
 
 
 def _uses(statement: GivenStatement | Definition, space: Namespace) -> tuple[str, ...]:
-    return (namespace.direct_uses(statement.formula, space)
-            if isinstance(statement, Definition) else ())
+    return (
+        namespace.direct_uses(statement.formula, space) if isinstance(statement, Definition) else ()
+    )
 
 
 class _Builder:
     """Types quantities in order, then criteria and hazards."""
 
-    def __init__(self, document: Document, space: Namespace, uses: dict[str, tuple[str, ...]],
-                 order: tuple[str, ...]) -> None:
+    def __init__(
+        self,
+        document: Document,
+        space: Namespace,
+        uses: dict[str, tuple[str, ...]],
+        order: tuple[str, ...],
+    ) -> None:
         self.document, self.space, self.uses, self.order = document, space, uses, order
         self.findings: list[Finding] = []
         self.types: dict[str, Typed | None] = dict.fromkeys(
-            (*space.quantities, *(fold(name) for name in _undefined(document, space))))
+            (*space.quantities, *(fold(name) for name in _undefined(document, space)))
+        )
         self.checker = Checker(self.types, {k: v.span for k, v in space.labels.items()})
         self.criteria: list[Judged | Uncalculated] = []
         self.discharges: list[Discharge] = []
@@ -94,14 +110,25 @@ class _Builder:
         if unit is None or text is None:
             return
         if unit.dimension != typed.dimension:
-            raise Mistake(error(
-                "display-unit", f"{shown(statement.symbol.name)} is {typed.dimension.in_words()},"
-                f" {shown(unit.text)} is the unit of {unit.dimension.in_words()}", text.span,
-                related=(Place(statement.formula.span, typed.dimension.in_words()),),
-                help="change the unit in brackets or the formula"))
+            raise Mistake(
+                error(
+                    "display-unit",
+                    f"{shown(statement.symbol.name)} is {typed.dimension.in_words()},"
+                    f" {shown(unit.text)} is the unit of {unit.dimension.in_words()}",
+                    text.span,
+                    related=(Place(statement.formula.span, typed.dimension.in_words()),),
+                    help="change the unit in brackets or the formula",
+                )
+            )
         if unit.celsius and typed.weight != 1:
-            raise Mistake(error("temperature", "a difference of temperatures is shown in K",
-                                text.span, help="write [K]"))
+            raise Mistake(
+                error(
+                    "temperature",
+                    "a difference of temperatures is shown in K",
+                    text.span,
+                    help="write [K]",
+                )
+            )
 
     def _criterion(self, statement: Inequality) -> None:
         try:
@@ -113,57 +140,99 @@ class _Builder:
             pass
         else:
             used = dict.fromkeys(
-                key for tree in statement.operands
-                for key in namespace.direct_uses(tree, self.space))
+                key
+                for tree in statement.operands
+                for key in namespace.direct_uses(tree, self.space)
+            )
             self.criteria.append(Judged(statement, typed, tuple(used)))
 
     def _check_clauses(self, statement: Inequality, typed: Typed) -> None:
         margin = statement.clauses.margin
         if margin and margin.is_share and typed.weight:
-            raise Mistake(error("temperature", "a share of a temperature on the Celsius scale means"
-                                " nothing", margin.span, help="write the margin in K"))
+            raise Mistake(
+                error(
+                    "temperature",
+                    "a share of a temperature on the Celsius scale means nothing",
+                    margin.span,
+                    help="write the margin in K",
+                )
+            )
         if margin and not margin.is_share and margin.value.unit.dimension != typed.dimension:
-            raise Mistake(error(
-                "unit-mismatch", f"the margin is {margin.value.unit.dimension.in_words()}, the"
-                f" criterion compares {typed.dimension.in_words()}", margin.span,
-                help="give the margin in per cent of the limit or in its unit"))
+            raise Mistake(
+                error(
+                    "unit-mismatch",
+                    f"the margin is {margin.value.unit.dimension.in_words()}, the"
+                    f" criterion compares {typed.dimension.in_words()}",
+                    margin.span,
+                    help="give the margin in per cent of the limit or in its unit",
+                )
+            )
         for point in statement.clauses.at:
-            self._check_point(point.symbol, Typed(point.given.unit.dimension,
-                                                  _weight(point.given.unit.celsius)))
+            self._check_point(
+                point.symbol, Typed(point.given.unit.dimension, _weight(point.given.unit.celsius))
+            )
         twice = [p.symbol for p in statement.clauses.at]
         for at, symbol in enumerate(twice):
             if symbol.key in [each.key for each in twice[:at]]:
-                raise Mistake(error("operating-point", f"{shown(symbol.name)} has two values here",
-                                    symbol.span, help="keep one of them"))
+                raise Mistake(
+                    error(
+                        "operating-point",
+                        f"{shown(symbol.name)} has two values here",
+                        symbol.span,
+                        help="keep one of them",
+                    )
+                )
 
     def _check_point(self, symbol: Label, typed: Typed) -> None:
         target = self.space.quantities.get(symbol.key)
         if target is None:
             raise Unknown
         if isinstance(target, Definition):
-            raise Mistake(error("operating-point", f"{shown(symbol.name)} is derived, an operating"
-                                " point sets conditions and inputs", symbol.span,
-                                related=(Place(target.symbol.span, "derived here"),)))
+            raise Mistake(
+                error(
+                    "operating-point",
+                    f"{shown(symbol.name)} is derived, an operating"
+                    " point sets conditions and inputs",
+                    symbol.span,
+                    related=(Place(target.symbol.span, "derived here"),),
+                )
+            )
         expected = self.types[symbol.key]
         if expected is not None and (expected.dimension, expected.weight) != (
-                typed.dimension, typed.weight):
-            raise Mistake(error(
-                "unit-mismatch", f"{shown(symbol.name)} is {expected.dimension.in_words()}, the value"
-                f" here is {typed.dimension.in_words()}", symbol.span,
-                related=(Place(target.symbol.span, "defined here"),)))
+            typed.dimension,
+            typed.weight,
+        ):
+            raise Mistake(
+                error(
+                    "unit-mismatch",
+                    f"{shown(symbol.name)} is {expected.dimension.in_words()}, the value"
+                    f" here is {typed.dimension.in_words()}",
+                    symbol.span,
+                    related=(Place(target.symbol.span, "defined here"),),
+                )
+            )
 
     def _hazard(self, statement: HazardStatement) -> None:
         wanted: tuple[tuple[Dimension, str], ...] = (
-            ((VOLTAGE, "a voltage"),) if statement.kind == "supply" else
-            ((CURRENT * TIME / VOLTAGE, "a capacitance"), (VOLTAGE, "a voltage"),
-             (VOLTAGE / CURRENT, "a resistance")))
+            ((VOLTAGE, "a voltage"),)
+            if statement.kind == "supply"
+            else (
+                (CURRENT * TIME / VOLTAGE, "a capacitance"),
+                (VOLTAGE, "a voltage"),
+                (VOLTAGE / CURRENT, "a resistance"),
+            )
+        )
         for symbol, (dimension, words) in zip(statement.symbols, wanted, strict=False):
             typed = self.types.get(symbol.key)
             if typed and typed.dimension != dimension:
-                self.findings.append(error(
-                    "unit-mismatch", f"expected {words}, {shown(symbol.name)} is"
-                    f" {typed.dimension.in_words()}", symbol.span,
-                    help="name the symbol of the " + words.removeprefix("a ")))
+                self.findings.append(
+                    error(
+                        "unit-mismatch",
+                        f"expected {words}, {shown(symbol.name)} is {typed.dimension.in_words()}",
+                        symbol.span,
+                        help="name the symbol of the " + words.removeprefix("a "),
+                    )
+                )
         if statement.kind == "stored":
             keys = [symbol.key for symbol in statement.symbols]
             self.discharges.append(Discharge(keys[0], keys[1], (*keys, None)[2], statement))
@@ -175,11 +244,15 @@ class _Builder:
             typed = self.types[key]
             assert typed is not None, key
             unit = statement.unit if isinstance(statement, Definition) else statement.given.unit
-            variables[key] = Variable(key, statement.symbol.name, typed, unit, statement,
-                                      self.uses[key])
+            variables[key] = Variable(
+                key, statement.symbol.name, typed, unit, statement, self.uses[key]
+            )
         given = self.document.statements
         return Model(
-            self.document, variables, self.order, tuple(self.criteria),
+            self.document,
+            variables,
+            self.order,
+            tuple(self.criteria),
             tuple(each for each in given if isinstance(each, SentenceStatement)),
             tuple(each for each in given if isinstance(each, HazardStatement)),
             tuple(self.discharges),
@@ -194,7 +267,7 @@ def _weight(celsius: bool) -> Fraction:
 def _undefined(document: Document, space: Namespace) -> Iterator[str]:
     for statement in document.statements:
         for tree in namespace.trees(statement):
-            for name in namespace.names(tree):
+            for name in names(tree):
                 if fold(name.name) not in space.quantities:
                     yield name.name
 
@@ -206,45 +279,74 @@ def check_references(document: Document, _: Namespace) -> list[Finding]:
     for each in document.statements:
         if isinstance(each, ReferenceStatement):
             if each.key in keys:
-                findings.append(error("defined-twice", f"the reference {shown(each.key)} stands here"
-                                      " twice", each.span,
-                                      related=(Place(keys[each.key].span, "first here"),),
-                                      help="keep one of them"))
+                findings.append(
+                    error(
+                        "defined-twice",
+                        f"the reference {shown(each.key)} stands here twice",
+                        each.span,
+                        related=(Place(keys[each.key].span, "first here"),),
+                        help="keep one of them",
+                    )
+                )
             keys.setdefault(each.key, each)
     for basis in _bases(document.statements):
         for citation in basis.citations:
             if citation.key not in keys:
                 near = nearest(citation.key, keys)
-                findings.append(error(
-                    "unknown-citation", f"there is no reference {shown(citation.key)}", citation.span,
-                    help=f"did you mean [{near}]?" if near else
-                    "add it to a `references` block: KEY | title | edition | where held"))
+                findings.append(
+                    error(
+                        "unknown-citation",
+                        f"there is no reference {shown(citation.key)}",
+                        citation.span,
+                        help=f"did you mean [{near}]?"
+                        if near
+                        else "add it to a `references` block: KEY | title | edition | where held",
+                    )
+                )
     return findings
 
 
 def _bases(statements: tuple[Statement, ...]) -> Iterator[Basis]:
     for each in statements:
-        if isinstance(each, GivenStatement | SentenceStatement | Definition | Inequality | Uncalculated):
+        if isinstance(
+            each, GivenStatement | SentenceStatement | Definition | Inequality | Uncalculated
+        ):
             yield each.basis
 
 
 def check_mentions(document: Document, space: Namespace) -> list[Finding]:
     """Every ``{name}`` in prose is a symbol, or without a form the id of a criterion."""
-    ids = {each.id.key for each in document.statements if isinstance(each, Inequality | Uncalculated)}
+    ids = {
+        each.id.key for each in document.statements if isinstance(each, Inequality | Uncalculated)
+    }
     findings = []
     for mention in mentions(document.body):
         key = fold(mention.name)
         if key in space.quantities or (key in ids and not mention.form):
             continue
         if key in ids:
-            findings.append(error("unknown-name", f"{shown(mention.name)} is a criterion, it has no"
-                                  f" {mention.form}", mention.span, help=f"write {{{mention.name}}}"))
+            findings.append(
+                error(
+                    "unknown-name",
+                    f"{shown(mention.name)} is a criterion, it has no {mention.form}",
+                    mention.span,
+                    help=f"write {{{mention.name}}}",
+                )
+            )
             continue
-        spelled = [*space.spelled(), *(space.labels[each].name for each in ids if each in space.labels)]
+        spelled = [
+            *space.spelled(),
+            *(space.labels[each].name for each in ids if each in space.labels),
+        ]
         near = nearest(mention.name, spelled)
-        findings.append(error(
-            "unknown-name", f"there is no symbol or criterion {shown(mention.name)}", mention.span,
-            help=(f"did you mean {{{near}}}? " if near else "") + "For a plain brace write \\{"))
+        findings.append(
+            error(
+                "unknown-name",
+                f"there is no symbol or criterion {shown(mention.name)}",
+                mention.span,
+                help=(f"did you mean {{{near}}}? " if near else "") + "For a plain brace write \\{",
+            )
+        )
     return findings
 
 

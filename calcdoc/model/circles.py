@@ -46,10 +46,13 @@ def _settled(key: str, uses: Mapping[str, tuple[str, ...]], state: Mapping[str, 
 
 
 def _circle(path: list[str], used: str, labels: Mapping[str, Label]) -> Finding:
-    around = [*path[path.index(used):], used]
+    around = [*path[path.index(used) :], used]
     shape = " → ".join(labels[key].name for key in around)
     first, *rest = around[:-1]
-    return error("circle", f"{shown(labels[first].name)} depends on itself: {shape}",
-                 labels[first].span,
-                 related=tuple(Place(labels[key].span, "part of the circle") for key in rest[:5]),
-                 help="define one of them without the others")
+    return error(
+        "circle",
+        f"{shown(labels[first].name)} depends on itself: {shape}",
+        labels[first].span,
+        related=tuple(Place(labels[key].span, "part of the circle") for key in rest[:5]),
+        help="define one of them without the others",
+    )

@@ -31,14 +31,23 @@ CONSTANTS: Final = {
     fold(name): constant
     for name, constant in {
         "pi": Constant(None, ONE, "", "ratio of a circle's circumference to its diameter"),
-        "k_B": Constant(Fraction("1.380649e-23"), _ENERGY / TEMPERATURE, "J/K",
-                        "Boltzmann constant"),
+        "k_B": Constant(
+            Fraction("1.380649e-23"), _ENERGY / TEMPERATURE, "J/K", "Boltzmann constant"
+        ),
         "q_e": Constant(Fraction("1.602176634e-19"), CURRENT * TIME, "C", "elementary charge"),
         "h_P": Constant(Fraction("6.62607015e-34"), _ENERGY * TIME, "J·s", "Planck constant"),
         "c_0": Constant(Fraction(299792458), LENGTH / TIME, "m/s", "speed of light in vacuum"),
-        "epsilon_0": Constant(Fraction("8.8541878188e-12"), CURRENT * TIME / VOLTAGE / LENGTH,
-                              "F/m", "electric constant"),
-        "mu_0": Constant(Fraction("1.25663706127e-6"), VOLTAGE * TIME / CURRENT / LENGTH,
-                         "H/m", "magnetic constant"),
+        "epsilon_0": Constant(
+            Fraction("8.8541878188e-12"),
+            CURRENT * TIME / VOLTAGE / LENGTH,
+            "F/m",
+            "electric constant",
+        ),
+        "mu_0": Constant(
+            Fraction("1.25663706127e-6"),
+            VOLTAGE * TIME / CURRENT / LENGTH,
+            "H/m",
+            "magnetic constant",
+        ),
     }.items()
 }

@@ -8,7 +8,12 @@ from calcdoc.text.document import Document
 from calcdoc.text.given import Given
 from calcdoc.text.nodes import Node
 from calcdoc.text.statements import (
-    Definition, GivenStatement, HazardStatement, Inequality, ReferenceStatement, SentenceStatement,
+    Definition,
+    GivenStatement,
+    HazardStatement,
+    Inequality,
+    ReferenceStatement,
+    SentenceStatement,
     Uncalculated,
 )
 from calcdoc.units import Dimension, Unit

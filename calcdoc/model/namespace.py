@@ -10,7 +10,13 @@ from calcdoc.text.names import fold, nearest, taken_as
 from calcdoc.text.nodes import Node, Quantity, UnitText, names, walk
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
-    Definition, GivenStatement, HazardStatement, Inequality, Label, SentenceStatement, Statement,
+    Definition,
+    GivenStatement,
+    HazardStatement,
+    Inequality,
+    Label,
+    SentenceStatement,
+    Statement,
     Uncalculated,
 )
 
@@ -39,12 +45,24 @@ def collect(document: Document) -> tuple[Namespace, list[Finding]]:
         taken = taken_as(label.name)
         first = labels.get(label.key)
         if taken:
-            findings.append(error("reserved-word", f"{shown(label.name)} is {taken}", label.span,
-                                  help="give it a subscript or another name"))
+            findings.append(
+                error(
+                    "reserved-word",
+                    f"{shown(label.name)} is {taken}",
+                    label.span,
+                    help="give it a subscript or another name",
+                )
+            )
         elif first:
-            findings.append(error(
-                "defined-twice", f"{shown(label.name)} is defined twice", label.span,
-                related=(Place(first.span, "first here"),), help=_advice(what)))
+            findings.append(
+                error(
+                    "defined-twice",
+                    f"{shown(label.name)} is defined twice",
+                    label.span,
+                    related=(Place(first.span, "first here"),),
+                    help=_advice(what),
+                )
+            )
         else:
             labels[label.key] = label
             if what == "symbol" and isinstance(statement, GivenStatement | Definition):
@@ -67,7 +85,9 @@ def _labels(statements: Iterable[Statement]) -> Iterator[tuple[Statement, Label,
 def _advice(what: str) -> str:
     if what == "symbol":
         return "give one of them another subscript, or remove it"
-    return "symbols and the ids of criteria and assumptions share one set of names; choose another id"
+    return (
+        "symbols and the ids of criteria and assumptions share one set of names; choose another id"
+    )
 
 
 def unknown_names(document: Document, space: Namespace) -> list[Finding]:
@@ -82,11 +102,17 @@ def unknown_names(document: Document, space: Namespace) -> list[Finding]:
 
 def _unknown(label: Label, space: Namespace) -> Finding:
     if label.key in space.labels:
-        return error("unknown-symbol", f"{shown(label.name)} is an id, not a quantity", label.span,
-                     help="use the symbol it speaks of")
+        return error(
+            "unknown-symbol",
+            f"{shown(label.name)} is an id, not a quantity",
+            label.span,
+            help="use the symbol it speaks of",
+        )
     near = nearest(label.name, [*space.spelled(), *CONSTANTS])
     advice = f"did you mean {near}?" if near else "define it in inputs, conditions or derive"
-    return error("unknown-symbol", f"there is no symbol {shown(label.name)}", label.span, help=advice)
+    return error(
+        "unknown-symbol", f"there is no symbol {shown(label.name)}", label.span, help=advice
+    )
 
 
 def _used(statements: Iterable[Statement]) -> Iterator[Label]:
@@ -117,11 +143,16 @@ def two_readings(document: Document, space: Namespace) -> list[Finding]:
                 label = space.labels.get(fold(word.word))
                 if label is None or fold(word.word) not in space.quantities:
                     continue
-                findings.append(error(
-                    "two-readings", f"{shown(word.word)} is a unit here and a symbol of this design",
-                    word.span, related=(Place(label.span, "the symbol"),),
-                    help=f"for the symbol write ({_before(unit, word.word)}){word.joint}{word.word};"
-                    " for the unit give the symbol another name"))
+                findings.append(
+                    error(
+                        "two-readings",
+                        f"{shown(word.word)} is a unit here and a symbol of this design",
+                        word.span,
+                        related=(Place(label.span, "the symbol"),),
+                        help=f"for the symbol write ({_before(unit, word.word)}){word.joint}"
+                        f"{word.word}; for the unit give the symbol another name",
+                    )
+                )
     return findings
 
 

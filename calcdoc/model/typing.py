@@ -16,8 +16,21 @@ from calcdoc.source import Span
 from calcdoc.text import literal
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import (
-    Binary, Call, Comparison, Element, Group, Logic, Name, Negate, Node, Not, Number, Quantity,
-    Text, children, walk,
+    Binary,
+    Call,
+    Comparison,
+    Element,
+    Group,
+    Logic,
+    Name,
+    Negate,
+    Node,
+    Not,
+    Number,
+    Quantity,
+    Text,
+    children,
+    walk,
 )
 from calcdoc.text.scan import shown
 from calcdoc.text.unparse import unparse
@@ -29,7 +42,7 @@ _SAME: Final = frozenset({"min", "max", "sum", "rss", "abs"})
 _LARGEST_POWER: Final = 1000
 
 
-class Unknown(Exception):  # noqa: N818
+class Unknown(Exception):
     """A name has no type because its own line is wrong; that was reported there."""
 
 
@@ -69,13 +82,24 @@ class Checker:
         for side in rest:
             other = self.quantity(side)
             if other.dimension != typed.dimension:
-                self._mismatch(f"cannot compare {typed.dimension.in_words()} with"
-                               f" {other.dimension.in_words()}", first, side, typed, other, "and")
+                self._mismatch(
+                    f"cannot compare {typed.dimension.in_words()} with"
+                    f" {other.dimension.in_words()}",
+                    first,
+                    side,
+                    typed,
+                    other,
+                    "and",
+                )
             if other.weight != typed.weight:
-                raise Mistake(error(
-                    "temperature", "cannot compare a temperature with a difference of temperatures",
-                    first.span.to(side.span),
-                    help="a temperature is in °C, a difference in K"))
+                raise Mistake(
+                    error(
+                        "temperature",
+                        "cannot compare a temperature with a difference of temperatures",
+                        first.span.to(side.span),
+                        help="a temperature is in °C, a difference in K",
+                    )
+                )
         return typed
 
     def of(self, node: Node) -> Typed:
@@ -85,7 +109,7 @@ class Checker:
             known = self._known[id(node)] = self._find(node)
         return known
 
-    def _find(self, node: Node) -> Typed:  # noqa: PLR0911  (one return for each kind of node)
+    def _find(self, node: Node) -> Typed:
         match node:
             case Number():
                 return PLAIN
@@ -104,13 +128,25 @@ class Checker:
             case Call():
                 return self._call(node)
             case Comparison() | Logic() | Not():
-                raise Mistake(error("condition-as-value", "a condition is no value", node.span,
-                                    help="use it as the first argument of if(condition, a, b)"))
+                raise Mistake(
+                    error(
+                        "condition-as-value",
+                        "a condition is no value",
+                        node.span,
+                        help="use it as the first argument of if(condition, a, b)",
+                    )
+                )
             case Text():
                 raise Mistake(error("syntax", "a text in quotes is for look-ups only", node.span))
             case Element():
-                raise Mistake(error("not-available-yet", "an element of a series is not available yet",
-                                    node.span, help="it is reserved for a coming version"))
+                raise Mistake(
+                    error(
+                        "not-available-yet",
+                        "an element of a series is not available yet",
+                        node.span,
+                        help="it is reserved for a coming version",
+                    )
+                )
 
     def _name(self, node: Name) -> Typed:
         key = fold(node.name)
@@ -150,33 +186,53 @@ class Checker:
         """The value of a plain factor of a temperature, which must be a number in the text."""
         value = constant_value(factor)
         if not value:
-            raise Mistake(error(
-                "temperature", "a share of a temperature on the Celsius scale means nothing",
-                product.span, help="take shares of differences: T_1 + k*(T_2 - T_1)"))
+            raise Mistake(
+                error(
+                    "temperature",
+                    "a share of a temperature on the Celsius scale means nothing",
+                    product.span,
+                    help="take shares of differences: T_1 + k*(T_2 - T_1)",
+                )
+            )
         return value
 
     def _power(self, node: Binary, base: Typed) -> Typed:
         exponent = self.of(node.right)
         if exponent.dimension != ONE:
-            raise Mistake(error(
-                "unit-mismatch", f"an exponent is a plain number, this is"
-                f" {exponent.dimension.in_words()}", node.right.span,
-                related=self._related(node.right), help="divide it by a quantity of its kind"))
+            raise Mistake(
+                error(
+                    "unit-mismatch",
+                    f"an exponent is a plain number, this is {exponent.dimension.in_words()}",
+                    node.right.span,
+                    related=self._related(node.right),
+                    help="divide it by a quantity of its kind",
+                )
+            )
         if base.dimension == ONE:
             return PLAIN
         value = constant_value(node.right)
         if value is None or abs(value) > _LARGEST_POWER:
-            raise Mistake(error(
-                "unit-mismatch", f"the exponent of {base.dimension.in_words()} is a rational number"
-                " in the text", node.right.span,
-                help="write it as a number, or divide the base by a quantity of its kind first"))
+            raise Mistake(
+                error(
+                    "unit-mismatch",
+                    f"the exponent of {base.dimension.in_words()} is a rational number in the text",
+                    node.right.span,
+                    help="write it as a number, or divide the base by a quantity of its kind first",
+                )
+            )
         return Typed(base.dimension**value, base.weight if value == 1 else Fraction(0))
 
     def _call(self, node: Call) -> Typed:
         name, arguments = node.function, node.arguments
         if name == "lookup":
-            raise Mistake(error("not-available-yet", "`lookup` is not available yet", node.name_span,
-                                help="it is reserved for a coming version"))
+            raise Mistake(
+                error(
+                    "not-available-yet",
+                    "`lookup` is not available yet",
+                    node.name_span,
+                    help="it is reserved for a coming version",
+                )
+            )
         if name == "if":
             self.condition(arguments[0])
             return self._alike(node, arguments[1:])
@@ -185,8 +241,14 @@ class Checker:
             if name == "sum":
                 return Typed(typed.dimension, typed.weight * len(arguments))
             if name == "rss" and typed.weight:
-                raise Mistake(error("temperature", "rss of temperatures on the Celsius scale means"
-                                    " nothing", node.span, help="take it of differences in K"))
+                raise Mistake(
+                    error(
+                        "temperature",
+                        "rss of temperatures on the Celsius scale means nothing",
+                        node.span,
+                        help="take it of differences in K",
+                    )
+                )
             return typed
         if name == "sqrt":
             typed = self.of(arguments[0])
@@ -199,22 +261,39 @@ class Checker:
         for argument in arguments[1:]:
             other = self.of(argument)
             if other.dimension != first.dimension:
-                self._mismatch(f"{node.function} needs values of one kind, not"
-                               f" {first.dimension.in_words()} and {other.dimension.in_words()}",
-                               arguments[0], argument, first, other, "and", at=argument.span)
+                self._mismatch(
+                    f"{node.function} needs values of one kind, not"
+                    f" {first.dimension.in_words()} and {other.dimension.in_words()}",
+                    arguments[0],
+                    argument,
+                    first,
+                    other,
+                    "and",
+                    at=argument.span,
+                )
             if other.weight != first.weight:
-                raise Mistake(error("temperature", f"{node.function} needs temperatures or differences,"
-                                    " not both", argument.span,
-                                    help="a temperature is in °C, a difference in K"))
+                raise Mistake(
+                    error(
+                        "temperature",
+                        f"{node.function} needs temperatures or differences, not both",
+                        argument.span,
+                        help="a temperature is in °C, a difference in K",
+                    )
+                )
         return first
 
     def _plain_argument(self, node: Call, argument: Node) -> None:
         typed = self.of(argument)
         if typed.dimension != ONE:
-            raise Mistake(error(
-                "unit-mismatch", f"{node.function} needs a plain number, this is"
-                f" {typed.dimension.in_words()}", argument.span, related=self._related(argument),
-                help="divide it by a quantity of its kind, as in ln(V/(1 V))"))
+            raise Mistake(
+                error(
+                    "unit-mismatch",
+                    f"{node.function} needs a plain number, this is {typed.dimension.in_words()}",
+                    argument.span,
+                    related=self._related(argument),
+                    help="divide it by a quantity of its kind, as in ln(V/(1 V))",
+                )
+            )
 
     def condition(self, node: Node) -> None:
         """Check a condition: comparisons joined by ``and``, ``or``, ``not``."""
@@ -225,31 +304,63 @@ class Checker:
                 for each in children(node):
                     self.condition(each)
             case _:
-                raise Mistake(error("condition-as-value", "expected a condition, found a value",
-                                    node.span, help="compare it, as in x > 0 V"))
+                raise Mistake(
+                    error(
+                        "condition-as-value",
+                        "expected a condition, found a value",
+                        node.span,
+                        help="compare it, as in x > 0 V",
+                    )
+                )
 
     # --- what is wrong, and where -------------------------------------------------------------
 
     def _sum_mismatch(self, node: Binary, left: Typed, right: Typed) -> NoReturn:
         one, other = left.dimension.in_words(), right.dimension.in_words()
-        message = (f"cannot add {one} and {other}" if node.op == "+"
-                   else f"cannot subtract {other} from {one}")
+        message = (
+            f"cannot add {one} and {other}"
+            if node.op == "+"
+            else f"cannot subtract {other} from {one}"
+        )
         chained = isinstance(node.left, Binary) and node.left.op in "+-"
-        self._mismatch(message, node.left, node.right, left, right, node.op,
-                       at=node.right.span if chained else None)
+        self._mismatch(
+            message,
+            node.left,
+            node.right,
+            left,
+            right,
+            node.op,
+            at=node.right.span if chained else None,
+        )
 
     def _mismatch(  # noqa: PLR0913  (both sides, and how to say it)
-        self, message: str, left: Node, right: Node, one: Typed, other: Typed, joint: str,
+        self,
+        message: str,
+        left: Node,
+        right: Node,
+        one: Typed,
+        other: Typed,
+        joint: str,
         at: Span | None = None,
     ) -> NoReturn:
         label = f"{_bare(one)} {joint} {_bare(other)}"
         advice = ""
         needed = one.dimension / other.dimension
         if not needed.in_words().startswith("a quantity in") and needed != ONE:
-            advice = (f"multiply {shown(unparse(right))} by {needed.in_words()} to get"
-                      f" {one.dimension.in_words()}")
-        raise Mistake(error("unit-mismatch", message, at or left.span.to(right.span), label=label,
-                            related=self._related(left) + self._related(right), help=advice))
+            advice = (
+                f"multiply {shown(unparse(right))} by {needed.in_words()} to get"
+                f" {one.dimension.in_words()}"
+            )
+        raise Mistake(
+            error(
+                "unit-mismatch",
+                message,
+                at or left.span.to(right.span),
+                label=label,
+                related=self._related(left) + self._related(right),
+                help=advice,
+            )
+        )
 
     def _related(self, node: Node) -> tuple[Place, ...]:
         """Where the name that is the whole of an operand was defined."""
@@ -271,22 +382,36 @@ class Checker:
             culprit = culprit.inner
         if isinstance(culprit, Binary) and culprit.op == "+":
             right = culprit.right
-            advice = (f"write {right.digits} K for a difference" if isinstance(right, Quantity)
-                      else "subtract 0 °C from one of them to make it a difference")
-            raise Mistake(error("temperature", "this adds two temperatures on the Celsius scale; a"
-                                " difference is in kelvin", right.span, help=advice))
-        raise Mistake(error(
-            "temperature", "a share of a temperature on the Celsius scale means nothing"
-            if isinstance(culprit, Binary) and culprit.op in "*/" else
-            "this is neither a temperature nor a difference of temperatures", culprit.span,
-            help="take shares of differences: T_1 + 0.9*(T_2 - T_1)"))
+            advice = (
+                f"write {right.digits} K for a difference"
+                if isinstance(right, Quantity)
+                else "subtract 0 °C from one of them to make it a difference"
+            )
+            raise Mistake(
+                error(
+                    "temperature",
+                    "this adds two temperatures on the Celsius scale; a difference is in kelvin",
+                    right.span,
+                    help=advice,
+                )
+            )
+        raise Mistake(
+            error(
+                "temperature",
+                "a share of a temperature on the Celsius scale means nothing"
+                if isinstance(culprit, Binary) and culprit.op in "*/"
+                else "this is neither a temperature nor a difference of temperatures",
+                culprit.span,
+                help="take shares of differences: T_1 + 0.9*(T_2 - T_1)",
+            )
+        )
 
 
 def _bare(typed: Typed) -> str:
     return typed.dimension.in_words().removeprefix("a ").removeprefix("an ")
 
 
-def constant_value(node: Node) -> Fraction | None:  # noqa: PLR0911
+def constant_value(node: Node) -> Fraction | None:
     """The exact value of an expression of plain numbers, or None; bounded in time."""
     match node:
         case Number(digits):

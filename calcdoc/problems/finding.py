@@ -59,7 +59,7 @@ def warning(
     return Finding(code, Severity.WARNING, message, Place(span, label), (), help)
 
 
-class Mistake(Exception):  # noqa: N818  (it never leaves the package; a mistake is not an error)
+class Mistake(Exception):
     """Carries a finding out of a rule; caught where the rule's statement was begun."""
 
     def __init__(self, finding: Finding) -> None:

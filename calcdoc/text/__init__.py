@@ -1,0 +1,1 @@
+"""The design text: blocks, statements and formulas, read to trees and written back."""

@@ -15,7 +15,7 @@ _STATE: Final = re.compile(r"(open|closed):\s*")
 
 
 def plain(cell: Passage) -> str:
-    """The text of a cell on one line, with ``\\|`` as a bar."""
+    r"""The text of a cell on one line, with ``\|`` as a bar."""
     return " ".join(cell.text.replace("\\|", "|").split())
 
 
@@ -32,9 +32,14 @@ def state(cell: Passage) -> tuple[str, Passage]:
     """``open: note`` or ``closed: note`` of an assumption."""
     found = _STATE.match(cell.text)
     if found is None:
-        raise Mistake(error(
-            "assumption-state", "the last column of an assumption begins with `open:` or `closed:`",
-            cell.whole, help="write open: and what will settle it, or closed: and the proof"))
+        raise Mistake(
+            error(
+                "assumption-state",
+                "the last column of an assumption begins with `open:` or `closed:`",
+                cell.whole,
+                help="write open: and what will settle it, or closed: and the proof",
+            )
+        )
     return found[1], cell.part(found.end(), len(cell.text))
 
 
@@ -43,10 +48,14 @@ def columns(statement: Passage, names: tuple[str, ...]) -> list[Passage]:
     cells = statement.columns()
     if len(cells) > len(names):
         extra = cells[len(names)]
-        raise Mistake(error(
-            "columns", f"a statement here has at most {len(names)} columns, this one has {len(cells)}",
-            extra.whole if extra.text else statement.whole,
-            help=f"the columns are: {' | '.join(names)}; write \\| for the character itself"))
+        raise Mistake(
+            error(
+                "columns",
+                f"a statement here has at most {len(names)} columns, this one has {len(cells)}",
+                extra.whole if extra.text else statement.whole,
+                help=f"the columns are: {' | '.join(names)}; write \\| for the character itself",
+            )
+        )
     end = len(statement.text)
     return cells + [statement.part(end, end)] * (len(names) - len(cells))
 

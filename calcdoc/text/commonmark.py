@@ -163,7 +163,9 @@ class _Builder:
         opening = self.source.line(first)
         start = self.source.line_start(first)
         column = opening.rfind(word) if word else 0
-        span = self.source.span(start + column, start + column + len(word) if word else start + len(opening))
+        span = self.source.span(
+            start + column, start + column + len(word) if word else start + len(opening)
+        )
         closed = len(lines) == end - begin - 2
         return self.read_fence(Fence(word, token.info, lines, tuple(places), span, closed))
 
@@ -252,9 +254,14 @@ class _InlineBuilder:
         span = self.places.find(address)
         if address.lower().startswith(_SAFE):
             return (prose.Link(address, inline),)
-        self.builder.findings.append(warning(
-            "link-refused", "this link is shown as plain text", span,
-            help="links begin with https://, http://, mailto: or #"))
+        self.builder.findings.append(
+            warning(
+                "link-refused",
+                "this link is shown as plain text",
+                span,
+                help="links begin with https://, http://, mailto: or #",
+            )
+        )
         return inline
 
     def mention(self, text: str) -> prose.Mention:
@@ -264,9 +271,14 @@ class _InlineBuilder:
         span = self.places.find(text)
         form = found[2] or ""
         if form not in ("", "value", "least", "greatest"):
-            self.builder.findings.append(error(
-                "unknown-name", f"`:{form}` is not a form of a value", span,
-                help="write {name}, {name:value}, {name:least} or {name:greatest}"))
+            self.builder.findings.append(
+                error(
+                    "unknown-name",
+                    f"`:{form}` is not a form of a value",
+                    span,
+                    help="write {name}, {name:value}, {name:least} or {name:greatest}",
+                )
+            )
         return prose.Mention(found[1], form, span)
 
 

@@ -29,7 +29,7 @@ CRITERION_COLUMNS: Final = ("criterion", "description", "basis")
 
 
 def criterion(statement: Passage) -> Inequality | Uncalculated:
-    """``ID ":" (inequality clause* | verdict ":" text) | description | basis``"""  # noqa: D400, D415
+    """``ID ":" (inequality clause* | verdict ":" text) | description | basis``"""
     first, description, source = columns(statement, CRITERION_COLUMNS)
     if found := _ACCEPT.match(first.text):
         _later(Scanner(first), found.start(), found.end() - 1, "an accepted failure")
@@ -43,8 +43,9 @@ def criterion(statement: Passage) -> Inequality | Uncalculated:
         _later(scanner, *found.span(), "`any of`")
     operands, operators = _inequality(scanner)
     clauses = _clauses(scanner)
-    return Inequality(name, operands, operators, clauses, plain(description), basis(source),
-                      first.whole)
+    return Inequality(
+        name, operands, operators, clauses, plain(description), basis(source), first.whole
+    )
 
 
 def _inequality(scanner: Scanner) -> tuple[tuple[Node, ...], tuple[str, ...]]:
@@ -58,11 +59,23 @@ def _inequality(scanner: Scanner) -> tuple[tuple[Node, ...], tuple[str, ...]]:
         scanner.refuse("<=, >=, < or >")
     span = scanner.span(start, scanner.at)
     if len(operators) > 2:  # noqa: PLR2004  (one or two sides)
-        raise Mistake(error("criterion-form", "a criterion has one or two limits", span,
-                            help="write the further limits as criteria of their own"))
+        raise Mistake(
+            error(
+                "criterion-form",
+                "a criterion has one or two limits",
+                span,
+                help="write the further limits as criteria of their own",
+            )
+        )
     if len({sign[0] for sign in operators}) > 1:
-        raise Mistake(error("criterion-form", "both signs of a two-sided criterion point the same way",
-                            span, help="write the least first: a <= x <= b"))
+        raise Mistake(
+            error(
+                "criterion-form",
+                "both signs of a two-sided criterion point the same way",
+                span,
+                help="write the least first: a <= x <= b",
+            )
+        )
     return tuple(operands), tuple(operators)
 
 
@@ -74,11 +87,19 @@ def _clauses(scanner: Scanner) -> Clauses:
     while not scanner.ended:
         found = scanner.take(_CLAUSE)
         if found is None:
-            scanner.refuse("an operator, a clause (by, at, with margin) or the end of the criterion")
+            scanner.refuse(
+                "an operator, a clause (by, at, with margin) or the end of the criterion"
+            )
         word = found[1]
         if word in seen:
-            raise Mistake(error("criterion-form", f"the clause `{word}` stands here twice",
-                                scanner.span(*found.span()), help="keep one of them"))
+            raise Mistake(
+                error(
+                    "criterion-form",
+                    f"the clause `{word}` stands here twice",
+                    scanner.span(*found.span()),
+                    help="keep one of them",
+                )
+            )
         seen.add(word)
         clauses = _clause(scanner, clauses, word, found.start())
     text = " ".join(scanner.passage.text[begin:].split())
@@ -108,13 +129,19 @@ def _margin(scanner: Scanner) -> Margin:
     unit = value.units[0] if value.units else None
     is_share = unit is not None and [each.word for each in unit.words] == ["%"]
     if value.varies or value.nominal < 0 or (unit and resolve(unit).celsius):
-        raise Mistake(error("criterion-form", "a margin is one value that is not negative", value.span,
-                            help="write a share of the limit (10 %) or a difference (5 K)"))
+        raise Mistake(
+            error(
+                "criterion-form",
+                "a margin is one value that is not negative",
+                value.span,
+                help="write a share of the limit (10 %) or a difference (5 K)",
+            )
+        )
     return Margin(value, is_share, value.span)
 
 
 def _point(scanner: Scanner) -> tuple[PointValue, ...]:
-    """``point = SYMBOL "=" given ("," SYMBOL "=" given)*``"""  # noqa: D400, D415
+    """``point = SYMBOL "=" given ("," SYMBOL "=" given)*``"""
     values: list[PointValue] = []
     while True:
         symbol: Label = label(scanner, "`nominal`, or a symbol with its value")
@@ -125,5 +152,11 @@ def _point(scanner: Scanner) -> tuple[PointValue, ...]:
 
 
 def _later(scanner: Scanner, start: int, end: int, what: str) -> NoReturn:
-    raise Mistake(error("not-available-yet", f"{what} is not available yet",
-                        scanner.span(start, end), help="it is reserved for a coming version"))
+    raise Mistake(
+        error(
+            "not-available-yet",
+            f"{what} is not available yet",
+            scanner.span(start, end),
+            help="it is reserved for a coming version",
+        )
+    )

@@ -25,7 +25,9 @@ _OTHER_BLOCKS: Final = ("document", "caution")
 _COMING: Final = ("crosschecks", "cases", "use", "figure", "takes", "gives")
 BLOCK_WORDS: Final = (*_OTHER_BLOCKS, *_STATEMENT_RULES, *_COMING)
 SIGNALS: Final = ("danger", "warning", "caution", "notice")
-_FENCE_LINE: Final = re.compile(r"[\s>]*(?:(?:[-*+]|[0-9]{1,9}[.)])\s+)*(?:`{3,}|~{3,})\s*([A-Za-z]+)")
+_FENCE_LINE: Final = re.compile(
+    r"[\s>]*(?:(?:[-*+]|[0-9]{1,9}[.)])\s+)*(?:`{3,}|~{3,})\s*([A-Za-z]+)"
+)
 _SIGNAL: Final = re.compile(r"\s*(danger|warning|caution|notice)\b[ \t]*[:.]?[ \t]*", re.IGNORECASE)
 
 
@@ -40,8 +42,12 @@ class Document:
     @property
     def statements(self) -> tuple[Statement, ...]:
         """Every statement, in the author's order."""
-        return tuple(each for block in walk(self.body) if isinstance(block, prose.Statements)
-                     for each in block.statements)
+        return tuple(
+            each
+            for block in walk(self.body)
+            if isinstance(block, prose.Statements)
+            for each in block.statements
+        )
 
 
 def walk(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Block]:
@@ -63,16 +69,27 @@ def read_document(source: SourceFile) -> tuple[Document | None, tuple[Finding, .
     size = len(source.text)
     if size > LARGEST:
         start = source.span(0, 1)
-        return None, (error("text-size", f"the text has {size} characters, at most {LARGEST} are read",
-                            start, help="split the design into several texts"),)
+        return None, (
+            error(
+                "text-size",
+                f"the text has {size} characters, at most {LARGEST} are read",
+                start,
+                help="split the design into several texts",
+            ),
+        )
     reader = _Reader(source)
     body, findings = read_prose(source, source.text, 1, reader.fence)
     reader.findings += findings
     reader.find_deep_blocks()
     if reader.title is None and not reader.saw_document:
-        reader.findings.append(error(
-            "missing-document", "the text has no `document` block", source.span(0, min(1, size)),
-            help="begin with ```document, then number, title and revision, then ```"))
+        reader.findings.append(
+            error(
+                "missing-document",
+                "the text has no `document` block",
+                source.span(0, min(1, size)),
+                help="begin with ```document, then number, title and revision, then ```",
+            )
+        )
     title = reader.title
     document = Document(source, title, body) if title else None
     return document, tuple(reader.findings)
@@ -93,9 +110,14 @@ class _Reader:
         """One fenced block."""
         self._note_lines(fence)
         if not fence.closed:
-            self.findings.append(error(
-                "unclosed-block", "this block is not closed", fence.opening,
-                help="end it with ``` on a line of its own, as far in as its first line"))
+            self.findings.append(
+                error(
+                    "unclosed-block",
+                    "this block is not closed",
+                    fence.opening,
+                    help="end it with ``` on a line of its own, as far in as its first line",
+                )
+            )
         if fence.word == "document":
             self._document(fence)
             return None
@@ -104,9 +126,14 @@ class _Reader:
         if fence.word in _STATEMENT_RULES:
             return self._statements(fence, _STATEMENT_RULES[fence.word])
         if fence.word in _COMING:
-            self.findings.append(error(
-                "not-available-yet", f"`{fence.word}` blocks are not available yet", fence.opening,
-                help="the word is reserved for a coming version"))
+            self.findings.append(
+                error(
+                    "not-available-yet",
+                    f"`{fence.word}` blocks are not available yet",
+                    fence.opening,
+                    help="the word is reserved for a coming version",
+                )
+            )
             return None
         self._check_word(fence)
         return prose.Listing("\n".join(fence.lines))
@@ -118,16 +145,27 @@ class _Reader:
     def _check_word(self, fence: Fence) -> None:
         for word in BLOCK_WORDS:
             if _one_edit(fence.word.lower(), word):
-                self.findings.append(warning(
-                    "unknown-block", f"`{fence.word}` is no block word, so this is shown as code",
-                    fence.opening, help=f"did you mean `{word}`?"))
+                self.findings.append(
+                    warning(
+                        "unknown-block",
+                        f"`{fence.word}` is no block word, so this is shown as code",
+                        fence.opening,
+                        help=f"did you mean `{word}`?",
+                    )
+                )
                 return
 
     def _document(self, fence: Fence) -> None:
         if self.saw_document:
-            self.findings.append(error(
-                "second-document", "a text has one `document` block", fence.opening,
-                related=(Place(self.saw_document.span, "the first one"),), help="remove one of them"))
+            self.findings.append(
+                error(
+                    "second-document",
+                    "a text has one `document` block",
+                    fence.opening,
+                    related=(Place(self.saw_document.span, "the first one"),),
+                    help="remove one of them",
+                )
+            )
             return
         self.saw_document = Place(fence.opening)
         text = "".join(f"{line}\n" for line in fence.lines)
@@ -141,8 +179,11 @@ class _Reader:
         passage = Passage(self.source.path, text, tuple(starts), tuple(places))
         self.title, findings = title_block(passage)
         for each in findings:
-            self.findings.append(each if fence.lines else error(
-                each.code, each.message, fence.opening, help=each.help))
+            self.findings.append(
+                each
+                if fence.lines
+                else error(each.code, each.message, fence.opening, help=each.help)
+            )
 
     def _statements(self, fence: Fence, rule: Callable[[Passage], Statement]) -> prose.Statements:
         found = []
@@ -160,19 +201,27 @@ class _Reader:
             if line.startswith("#"):
                 continue
             if line.startswith("\t"):
-                self.findings.append(error(
-                    "tab-at-start", "a line of a block begins with a tab",
-                    self.source.span(place, place + 1),
-                    help="begin a statement at the margin; continue one after a blank"))
+                self.findings.append(
+                    error(
+                        "tab-at-start",
+                        "a line of a block begins with a tab",
+                        self.source.span(place, place + 1),
+                        help="begin a statement at the margin; continue one after a blank",
+                    )
+                )
             elif line.startswith(" ") and line.strip():
                 if pieces:
                     pieces.append((line, place))
                     continue
                 indent = len(line) - len(line.lstrip(" "))
-                self.findings.append(error(
-                    "syntax", "this line continues nothing",
-                    self.source.span(place + indent, place + len(line.rstrip())),
-                    help="a statement begins at the margin; a blank line ends it"))
+                self.findings.append(
+                    error(
+                        "syntax",
+                        "this line continues nothing",
+                        self.source.span(place + indent, place + len(line.rstrip())),
+                        help="a statement begins at the margin; a blank line ends it",
+                    )
+                )
             else:
                 yield from self._joined(pieces)
                 pieces = [(line, place)] if line.strip() else []
@@ -192,10 +241,16 @@ class _Reader:
     def _caution(self, fence: Fence) -> prose.Block | None:
         text = "\n".join(fence.lines)
         found = _SIGNAL.match(text)
-        rest = text[found.end():] if found else text
+        rest = text[found.end() :] if found else text
         if not rest.strip():
-            self.findings.append(error("empty-caution", "this caution says nothing", fence.opening,
-                                       help="write what can happen and how to avoid it"))
+            self.findings.append(
+                error(
+                    "empty-caution",
+                    "this caution says nothing",
+                    fence.opening,
+                    help="write what can happen and how to avoid it",
+                )
+            )
             return None
         signal = found[1].lower() if found else "caution"
         first = self.source.position(fence.opening.start)[0] + 1
@@ -213,10 +268,14 @@ class _Reader:
         for number, line in enumerate(self.source.text.split("\n"), 1):
             found = _FENCE_LINE.match(line)
             if found and number not in self.seen and found[1] in BLOCK_WORDS:
-                self.findings.append(error(
-                    "block-too-deep", f"this `{found[1]}` block stands too far in and is read as plain"
-                    " code", self.source.span(start + found.start(1), start + found.end(1)),
-                    help="begin its ``` at the margin, or at the text of its list item"))
+                self.findings.append(
+                    error(
+                        "block-too-deep",
+                        f"this `{found[1]}` block stands too far in and is read as plain code",
+                        self.source.span(start + found.start(1), start + found.end(1)),
+                        help="begin its ``` at the margin, or at the text of its list item",
+                    )
+                )
             start += len(line) + 1
 
 
@@ -226,8 +285,13 @@ def _one_edit(word: str, other: str) -> bool:
         return False
     if word == other:
         return True
-    at = next((i for i, (a, b) in enumerate(zip(word, other, strict=False)) if a != b),
-              min(len(word), len(other)))
-    return word[at + 1:] == other[at:] or word[at:] == other[at + 1:] or (
-        word[at + 1:] == other[at + 1:]) or (
-        word[at:at + 2] == other[at:at + 2][::-1] and word[at + 2:] == other[at + 2:])
+    at = next(
+        (i for i, (a, b) in enumerate(zip(word, other, strict=False)) if a != b),
+        min(len(word), len(other)),
+    )
+    return (
+        word[at + 1 :] == other[at:]
+        or word[at:] == other[at + 1 :]
+        or (word[at + 1 :] == other[at + 1 :])
+        or (word[at : at + 2] == other[at : at + 2][::-1] and word[at + 2 :] == other[at + 2 :])
+    )

@@ -7,7 +7,18 @@ from calcdoc.problems import Mistake, error
 from calcdoc.text import literal
 from calcdoc.text.names import FUNCTIONS, SYMBOL, nearest
 from calcdoc.text.nodes import (
-    Binary, Call, Comparison, Element, Group, Logic, Name, Negate, Node, Not, Text, children,
+    Binary,
+    Call,
+    Comparison,
+    Element,
+    Group,
+    Logic,
+    Name,
+    Negate,
+    Node,
+    Not,
+    Text,
+    children,
 )
 from calcdoc.text.passage import Passage, passage_of
 from calcdoc.text.scan import Scanner, shown
@@ -46,7 +57,7 @@ class _Parser:
         self.depth = 0
 
     def condition(self) -> Node:
-        """``condition = conjunction ("or" conjunction)*``"""  # noqa: D400, D415
+        """``condition = conjunction ("or" conjunction)*``"""
         left = self.conjunction()
         while self.scanner.take(_OR):
             right = self.conjunction()
@@ -54,7 +65,7 @@ class _Parser:
         return left
 
     def conjunction(self) -> Node:
-        """``conjunction = negation ("and" negation)*``"""  # noqa: D400, D415
+        """``conjunction = negation ("and" negation)*``"""
         left = self.negation()
         while self.scanner.take(_AND):
             right = self.negation()
@@ -62,7 +73,7 @@ class _Parser:
         return left
 
     def negation(self) -> Node:
-        """``negation = "not" negation | comparison``"""  # noqa: D400, D415
+        """``negation = "not" negation | comparison``"""
         word = self.scanner.take(_NOT)
         if word is None:
             return self.comparison()
@@ -72,33 +83,31 @@ class _Parser:
         return Not(operand, self.scanner.span(*word.span()).to(operand.span))
 
     def comparison(self) -> Node:
-        """``comparison = sum (("<=" | ">=" | "<" | ">") sum)*``"""  # noqa: D400, D415
+        """``comparison = sum (("<=" | ">=" | "<" | ">") sum)*``"""
         operands, operators = [self.sum()], []
         while found := self.scanner.take(_COMPARE):
             operators.append(found.group())
             operands.append(self.sum())
         if not operators:
             return operands[0]
-        return Comparison(
-            tuple(operands), tuple(operators), operands[0].span.to(operands[-1].span)
-        )
+        return Comparison(tuple(operands), tuple(operators), operands[0].span.to(operands[-1].span))
 
     def sum(self) -> Node:
-        """``sum = product (("+" | "-") product)*``"""  # noqa: D400, D415
+        """``sum = product (("+" | "-") product)*``"""
         left = self.product()
         while found := self.scanner.take(_ADD):
             left = self._binary(found, left, self.product())
         return left
 
     def product(self) -> Node:
-        """``product = sign (("*" | "·" | "×" | "/") sign)*``"""  # noqa: D400, D415
+        """``product = sign (("*" | "·" | "×" | "/") sign)*``"""
         left = self.sign()
         while found := self.scanner.take(_MULTIPLY):
             left = self._binary(found, left, self.sign())
         return left
 
     def sign(self) -> Node:
-        """``sign = "-" sign | power``"""  # noqa: D400, D415
+        """``sign = "-" sign | power``"""
         found = self.scanner.take(_MINUS)
         if found is None:
             return self.power()
@@ -119,7 +128,7 @@ class _Parser:
         return self._binary(found, base, exponent)
 
     def atom(self) -> Node:
-        """``atom = quantity | text | "(" condition ")" | call | element | name``"""  # noqa: D400, D415
+        """``atom = quantity | text | "(" condition ")" | call | element | name``"""
         if self.scanner.look(_DIGIT):
             return literal.quantity(self.scanner, comma_separates=self.depth > 0)
         if found := self.scanner.take(_TEXT):
@@ -139,7 +148,7 @@ class _Parser:
         return Group(inner, start.to(end))
 
     def _named(self, found: re.Match[str]) -> Node:
-        """``call = function "(" condition ("," condition)* ")"``; ``element = name "[" sum "]"``."""
+        """``call = function "(" condition ("," condition)* ")"``; ``element = name "[" sum "]"``"""
         name, text = found.group(), self.scanner.passage.text
         span = self.scanner.span(*found.span())
         follows = text[found.end() : found.end() + 1]
@@ -159,10 +168,15 @@ class _Parser:
         name, name_span = found.group(), self.scanner.span(*found.span())
         if name not in FUNCTIONS:
             near = nearest(name, FUNCTIONS)
-            raise Mistake(error(
-                "unknown-function", f"there is no function {shown(name)}", name_span,
-                help=f"did you mean {near}(...)? " * bool(near)
-                + f"To multiply, write {name}*(...)"))
+            raise Mistake(
+                error(
+                    "unknown-function",
+                    f"there is no function {shown(name)}",
+                    name_span,
+                    help=f"did you mean {near}(...)? " * bool(near)
+                    + f"To multiply, write {name}*(...)",
+                )
+            )
         self.scanner.at = found.end()
         opened = self.scanner.expect(_OPEN, "`(`")
         self._enter(found.start())
@@ -174,9 +188,13 @@ class _Parser:
         least, most = FUNCTIONS[name]
         span = name_span.to(end)
         if not least <= len(arguments) <= most:
-            raise Mistake(error(
-                "argument-count", f"{name} takes {_count(least, most)}, here it has {len(arguments)}",
-                span))
+            raise Mistake(
+                error(
+                    "argument-count",
+                    f"{name} takes {_count(least, most)}, here it has {len(arguments)}",
+                    span,
+                )
+            )
         return Call(name, tuple(arguments), span, name_span)
 
     def _element(self, name: str, found: re.Match[str]) -> Node:
@@ -194,9 +212,14 @@ class _Parser:
     def _enter(self, at: int) -> None:
         self.depth += 1
         if self.depth > DEEPEST:
-            raise Mistake(error(
-                "formula-size", f"the formula is nested more than {DEEPEST} deep",
-                self.scanner.span(at, at + 1), help="define a part of it on a line of its own"))
+            raise Mistake(
+                error(
+                    "formula-size",
+                    f"the formula is nested more than {DEEPEST} deep",
+                    self.scanner.span(at, at + 1),
+                    help="define a part of it on a line of its own",
+                )
+            )
 
 
 def formula(scanner: Scanner, *, conditions: bool = False) -> Node:
@@ -207,14 +230,25 @@ def formula(scanner: Scanner, *, conditions: bool = False) -> Node:
     """
     start = scanner.at
     if len(scanner.passage.text) - start > LONGEST:
-        raise Mistake(error("formula-size", "the statement is too long",
-                            scanner.span(start, start + 1),
-                            help=f"keep a statement under {LONGEST} characters"))
+        raise Mistake(
+            error(
+                "formula-size",
+                "the statement is too long",
+                scanner.span(start, start + 1),
+                help=f"keep a statement under {LONGEST} characters",
+            )
+        )
     parser = _Parser(scanner)
     node = parser.condition() if conditions else parser.sum()
     if _height(node) > TALLEST:
-        raise Mistake(error("formula-size", f"the formula has more than {TALLEST} operations in a row",
-                            node.span, help="define a part of it on a line of its own"))
+        raise Mistake(
+            error(
+                "formula-size",
+                f"the formula has more than {TALLEST} operations in a row",
+                node.span,
+                help="define a part of it on a line of its own",
+            )
+        )
     return node
 
 
@@ -241,9 +275,21 @@ def parse_text(text: str) -> Node:
 
 def grammar() -> tuple[str, ...]:
     """The rules as shown to users, collected from the docstrings."""
-    rules = [getattr(_Parser, name).__doc__ or "" for name in (
-        "condition", "conjunction", "negation", "comparison", "sum", "product", "sign", "power",
-        "atom", "_named")]
+    rules = [
+        getattr(_Parser, name).__doc__ or ""
+        for name in (
+            "condition",
+            "conjunction",
+            "negation",
+            "comparison",
+            "sum",
+            "product",
+            "sign",
+            "power",
+            "atom",
+            "_named",
+        )
+    ]
     return tuple(part for rule in rules for part in re.findall(r"``(\w+ = .*?)``", rule))
 
 

@@ -13,7 +13,7 @@ from typing import Final, NoReturn
 from calcdoc.problems import Mistake, error
 from calcdoc.source import Span
 from calcdoc.text import literal
-from calcdoc.text.nodes import Number, Quantity, UnitText
+from calcdoc.text.nodes import Quantity, UnitText
 from calcdoc.text.scan import Scanner
 from calcdoc.text.unparse import unit_text
 from calcdoc.units import ONE, PLAIN, Unit
@@ -77,7 +77,7 @@ class _Part:
 
 
 def given(scanner: Scanner) -> Given:
-    """``given = part [".." part [".." part]] | part tolerance``"""  # noqa: D400, D415
+    """``given = part [".." part [".." part]] | part tolerance``"""
     first = _signed(scanner)
     if scanner.take(_RANGE):
         parts = [first, _signed(scanner)]
@@ -87,9 +87,14 @@ def given(scanner: Scanner) -> Given:
     else:
         value = _with_tolerance(scanner, first)
     if later := scanner.look(_LATER):
-        raise Mistake(error("not-available-yet", f"`{later.group()}` is not available yet",
-                            scanner.span(*later.span()),
-                            help="state the band alone: ± 10 %, -20 % +50 %, or limits a .. b"))
+        raise Mistake(
+            error(
+                "not-available-yet",
+                f"`{later.group()}` is not available yet",
+                scanner.span(*later.span()),
+                help="state the band alone: ± 10 %, -20 % +50 %, or limits a .. b",
+            )
+        )
     return value
 
 
@@ -112,15 +117,22 @@ def _unit(part: _Part) -> Unit:
 
 
 def _with_tolerance(scanner: Scanner, first: _Part) -> Given:
-    """``tolerance = ("±" | "+/-") part | sign part sign part``"""  # noqa: D400, D415
+    """``tolerance = ("±" | "+/-") part | sign part sign part``"""
     if found := scanner.take(_PLUS_MINUS):
         part = _signed(scanner)
-        if part.value <= 0 or scanner.passage.text[found.end():].lstrip()[:1] in ("+", "-"):
-            _refuse("a tolerance after ± is more than zero and has no sign", part.span,
-                    "write ± 10 %, or -20 % +50 % for unequal parts")
+        if part.value <= 0 or scanner.passage.text[found.end() :].lstrip()[:1] in ("+", "-"):
+            _refuse(
+                "a tolerance after ± is more than zero and has no sign",
+                part.span,
+                "write ± 10 %, or -20 % +50 % for unequal parts",
+            )
         change = _change(first, part)
-        return _value(first, (first.value - change, first.value + change),
-                      Style.RELATIVE if _is_share(part) else Style.ABSOLUTE, (part,))
+        return _value(
+            first,
+            (first.value - change, first.value + change),
+            Style.RELATIVE if _is_share(part) else Style.ABSOLUTE,
+            (part,),
+        )
     if scanner.look(_SIGN):
         parts = [_signed(scanner)]
         if scanner.look(_SIGN) is None:
@@ -128,8 +140,9 @@ def _with_tolerance(scanner: Scanner, first: _Part) -> Given:
         parts.append(_signed(scanner))
         changes = sorted(_change(first, part) for part in parts)
         spread = tuple(sorted(parts, key=lambda part: part.value))
-        return _value(first, (first.value + changes[0], first.value + changes[1]),
-                      Style.UNEQUAL, spread)
+        return _value(
+            first, (first.value + changes[0], first.value + changes[1]), Style.UNEQUAL, spread
+        )
     return _value(first, (first.value, first.value), Style.FIXED, ())
 
 
@@ -144,42 +157,64 @@ def _change(first: _Part, part: _Part) -> Fraction:
     span = first.span.to(part.span)
     if _is_share(part):
         if _is_share(first):
-            _refuse(f"{_shown(first)} with a tolerance in per cent can be read in two ways", span,
-                    "write the limits, as in 85 .. 90 .. 95 %")
+            _refuse(
+                f"{_shown(first)} with a tolerance in per cent can be read in two ways",
+                span,
+                "write the limits, as in 85 .. 90 .. 95 %",
+            )
         if unit.celsius:
-            _refuse("a share of a temperature on the Celsius scale means nothing", span,
-                    "write the tolerance as a difference in kelvin, as in ± 5 K")
+            _refuse(
+                "a share of a temperature on the Celsius scale means nothing",
+                span,
+                "write the tolerance as a difference in kelvin, as in ± 5 K",
+            )
         if first.value == 0:
-            _refuse("a share of zero is zero", span, "write the tolerance with a unit, or as limits")
+            _refuse(
+                "a share of zero is zero", span, "write the tolerance with a unit, or as limits"
+            )
         return abs(first.value) * part.value * _unit(part).factor
     other = _unit(part)
     if unit.celsius and other.celsius:
         _refuse("a difference of temperatures is in kelvin", part.span, f"write {part.digits} K")
     if other.dimension != unit.dimension:
-        _refuse(f"the tolerance is {other.dimension.in_words()}, the value {unit.dimension.in_words()}",
-                part.span, "give the tolerance in per cent or in the unit of the value")
+        _refuse(
+            f"the tolerance is {other.dimension.in_words()}, the value {unit.dimension.in_words()}",
+            part.span,
+            "give the tolerance in per cent or in the unit of the value",
+        )
     if unit.dimension == ONE and (_is_share(first) or part.unit):
-        _refuse("a plain number with a tolerance in another unit can be read in two ways", span,
-                "write the limits, as in 0.8 .. 0.9 .. 1.0")
+        _refuse(
+            "a plain number with a tolerance in another unit can be read in two ways",
+            span,
+            "write the limits, as in 0.8 .. 0.9 .. 1.0",
+        )
     return part.value * other.factor / unit.factor
 
 
-def _value(first: _Part, limits: tuple[Fraction, Fraction], style: Style,
-           parts: tuple[_Part, ...]) -> Given:
+def _value(
+    first: _Part, limits: tuple[Fraction, Fraction], style: Style, parts: tuple[_Part, ...]
+) -> Given:
     least, greatest = limits
     span = first.span.to(parts[-1].span) if parts else first.span
     for part in parts:
         if part.span.end > span.end:
             span = first.span.to(part.span)
     if not least <= first.value <= greatest:
-        _refuse("the tolerance leaves out the value itself", span,
-                "one part is below (-20 %), the other above (+50 %)")
-    signed = tuple(p.digits if style is not Style.UNEQUAL or p.value < 0 else f"+{p.digits}"
-                   for p in parts)
-    spread = tuple(f"{d} {unit_text(p.unit)}" if p.unit else d
-                   for d, p in zip(signed, parts, strict=True))
+        _refuse(
+            "the tolerance leaves out the value itself",
+            span,
+            "one part is below (-20 %), the other above (+50 %)",
+        )
+    signed = tuple(
+        p.digits if style is not Style.UNEQUAL or p.value < 0 else f"+{p.digits}" for p in parts
+    )
+    spread = tuple(
+        f"{d} {unit_text(p.unit)}" if p.unit else d for d, p in zip(signed, parts, strict=True)
+    )
     units = tuple(part.unit for part in (first, *parts) if part.unit)
-    return Given(_unit(first), first.value, least, greatest, style, first.digits, spread, units, span)
+    return Given(
+        _unit(first), first.value, least, greatest, style, first.digits, spread, units, span
+    )
 
 
 def _limits(parts: list[_Part]) -> Given:
@@ -189,20 +224,35 @@ def _limits(parts: list[_Part]) -> Given:
     unit = _unit(unit_part)
     for part in parts[:-1]:
         if part.unit and _unit(part) != unit:
-            _refuse(f"the limits are in different units, {unit_text(part.unit)} and"
-                    f" {unit_text(unit_part.unit) if unit_part.unit else 'none'}", span,
-                    "write one unit, after the last value or after each")
+            _refuse(
+                f"the limits are in different units, {unit_text(part.unit)} and"
+                f" {unit_text(unit_part.unit) if unit_part.unit else 'none'}",
+                span,
+                "write one unit, after the last value or after each",
+            )
     values = [part.value for part in parts]
     if sorted(values) != values:
         wanted = " .. ".join(p.digits for p in sorted(parts, key=lambda part: part.value))
-        _refuse("the limits are not in rising order", span,
-                f"write the least first: {wanted}{' ' + unit.text if unit.text else ''}")
+        _refuse(
+            "the limits are not in rising order",
+            span,
+            f"write the least first: {wanted}{' ' + unit.text if unit.text else ''}",
+        )
     three = len(parts) == 3  # noqa: PLR2004  (least, nominal, greatest)
     nominal = values[1] if three else (values[0] + values[1]) / 2
     digits = parts[1].digits if three else _decimal(nominal)
     units = tuple(part.unit for part in parts if part.unit)
-    return Given(unit, nominal, values[0], values[-1], Style.LIMITS if three else Style.RANGE, digits,
-                 (parts[0].digits, parts[-1].digits), units, span)
+    return Given(
+        unit,
+        nominal,
+        values[0],
+        values[-1],
+        Style.LIMITS if three else Style.RANGE,
+        digits,
+        (parts[0].digits, parts[-1].digits),
+        units,
+        span,
+    )
 
 
 def _decimal(value: Fraction) -> str:

@@ -29,7 +29,7 @@ _EXPONENT_MOST: Final = 99
 
 
 def quantity(scanner: Scanner, *, comma_separates: bool = False) -> Number | Quantity:
-    """``quantity = number [" " unit]``"""  # noqa: D400, D415
+    """``quantity = number [" " unit]``"""
     digits, start = _number(scanner, comma_separates=comma_separates)
     unit = unit_after_number(scanner)
     span = scanner.span(start, scanner.at)
@@ -37,7 +37,7 @@ def quantity(scanner: Scanner, *, comma_separates: bool = False) -> Number | Qua
 
 
 def _number(scanner: Scanner, *, comma_separates: bool) -> tuple[str, int]:
-    """``number = digits ["." digits] ["e" ["+" | "-"] digits]``"""  # noqa: D400, D415
+    """``number = digits ["." digits] ["e" ["+" | "-"] digits]``"""
     found = scanner.take(NUMBER)
     if found is None:
         scanner.refuse("a number")
@@ -47,34 +47,61 @@ def _number(scanner: Scanner, *, comma_separates: bool) -> tuple[str, int]:
         _refuse_glued(scanner, start, glued.end())
     if not comma_separates and _DECIMAL_COMMA.match(text, scanner.at):
         end = _GLUED.match(text, scanner.at + 1)
-        _number_mistake(scanner, start, end.end() if end else scanner.at + 2,
-                        "the decimal marker is a point, not a comma",
-                        f"write {found.group()}.{text[scanner.at + 1:(end or found).end()]}")
+        _number_mistake(
+            scanner,
+            start,
+            end.end() if end else scanner.at + 2,
+            "the decimal marker is a point, not a comma",
+            f"write {found.group()}.{text[scanner.at + 1 : (end or found).end()]}",
+        )
     if _NUMBER_AGAIN.match(text, scanner.at):
         again = NUMBER.search(text, scanner.at)
         assert again is not None
-        _number_mistake(scanner, start, again.end(), "a number is written without blanks",
-                        f"write {found.group()}{again.group()} if it is one number")
+        _number_mistake(
+            scanner,
+            start,
+            again.end(),
+            "a number is written without blanks",
+            f"write {found.group()}{again.group()} if it is one number",
+        )
     if len(found.group()) > _DIGITS_MOST or abs(int(found[1] or 0)) > _EXPONENT_MOST:
-        _number_mistake(scanner, start, found.end(), "this number is too long or too large",
-                        f"write at most {_DIGITS_MOST} characters and powers of ten up to"
-                        f" {_EXPONENT_MOST}")
+        _number_mistake(
+            scanner,
+            start,
+            found.end(),
+            "this number is too long or too large",
+            f"write at most {_DIGITS_MOST} characters and powers of ten up to {_EXPONENT_MOST}",
+        )
     return found.group(), start
 
 
 def _refuse_glued(scanner: Scanner, start: int, end: int) -> None:
     """Say what is wrong with what follows a number without a blank."""
     text = scanner.passage.text
-    digits, rest = text[start:scanner.at], text[scanner.at:end]
+    digits, rest = text[start : scanner.at], text[scanner.at : end]
     if rest.startswith("."):
-        _number_mistake(scanner, start, end, f"{shown(digits + rest)} is not a number",
-                        "a decimal point has digits on both sides, as in 0.5")
+        _number_mistake(
+            scanner,
+            start,
+            end,
+            f"{shown(digits + rest)} is not a number",
+            "a decimal point has digits on both sides, as in 0.5",
+        )
     if known_word(rest):
-        _number_mistake(scanner, start, end, "a blank is missing between number and unit",
-                        f"write {digits} {rest}")
-    _number_mistake(scanner, start, end, f"{shown(digits + rest)} is neither a number nor a symbol",
-                    "write a number, one blank, and its unit, as in 4.7 kΩ; a symbol begins with"
-                    " a letter")
+        _number_mistake(
+            scanner,
+            start,
+            end,
+            "a blank is missing between number and unit",
+            f"write {digits} {rest}",
+        )
+    _number_mistake(
+        scanner,
+        start,
+        end,
+        f"{shown(digits + rest)} is neither a number nor a symbol",
+        "write a number, one blank, and its unit, as in 4.7 kΩ; a symbol begins with a letter",
+    )
 
 
 def _number_mistake(scanner: Scanner, start: int, end: int, message: str, advice: str) -> None:
@@ -96,14 +123,20 @@ def unit_after_number(scanner: Scanner) -> UnitText | None:
     if word.group() in CLAUSE_WORDS:
         return None
     if spaced.group() != " ":
-        raise Mistake(error("number-form", "one blank stands between a number and its unit",
-                            scanner.span(at, word.end()), help=f"write one blank before {word.group()}"))
+        raise Mistake(
+            error(
+                "number-form",
+                "one blank stands between a number and its unit",
+                scanner.span(at, word.end()),
+                help=f"write one blank before {word.group()}",
+            )
+        )
     scanner.at = word.start()
     return _unit(scanner, scanner.at, first_joint="")
 
 
 def _unit(scanner: Scanner, start: int, *, first_joint: str) -> UnitText:
-    """``unit = ["1/"] word [exponent] (("·" | "/") word [exponent])*``"""  # noqa: D400, D415
+    """``unit = ["1/"] word [exponent] (("·" | "/") word [exponent])*``"""
     words = [_unit_word(scanner, first_joint)]
     text = scanner.passage.text
     while text[scanner.at : scanner.at + 1] in ("·", "/"):
@@ -122,16 +155,21 @@ def _joins(text: str, word: re.Match[str]) -> bool:
 
 
 def _unit_word(scanner: Scanner, joint: str) -> UnitWord:
-    """``exponent = "^" ["-"] digits | superscript digits``"""  # noqa: D400, D415
+    """``exponent = "^" ["-"] digits | superscript digits``"""
     text, start = scanner.passage.text, scanner.at
     word = _IDENTIFIER.match(text, start)
     assert word is not None
     if not known_word(word.group()):
         _refuse_word(scanner, word)
     if word.group() in FUNCTIONS and text[word.end() : word.end() + 1] == "(":
-        raise Mistake(error(
-            "unknown-unit", f"after a number {shown(word.group())} is the unit, not the function",
-            scanner.span(*word.span()), help=f"write * between the number and {word.group()}(...)"))
+        raise Mistake(
+            error(
+                "unknown-unit",
+                f"after a number {shown(word.group())} is the unit, not the function",
+                scanner.span(*word.span()),
+                help=f"write * between the number and {word.group()}(...)",
+            )
+        )
     exponent = _EXPONENT.match(text, word.end())
     scanner.at = exponent.end() if exponent else word.end()
     power = int((exponent[1] or exponent[2]).translate(_LOWERED)) if exponent else 1
@@ -141,10 +179,14 @@ def _unit_word(scanner: Scanner, joint: str) -> UnitWord:
 def _refuse_word(scanner: Scanner, word: re.Match[str]) -> None:
     nearest = nearest_word(word.group())
     advice = f"the nearest unit is {nearest}; " if nearest else ""
-    raise Mistake(error(
-        "unknown-unit", f"after a number a word is a unit, and {shown(word.group())} is not one",
-        scanner.span(*word.span()),
-        help=f"{advice}to multiply by a symbol write * before {word.group()}"))
+    raise Mistake(
+        error(
+            "unknown-unit",
+            f"after a number a word is a unit, and {shown(word.group())} is not one",
+            scanner.span(*word.span()),
+            help=f"{advice}to multiply by a symbol write * before {word.group()}",
+        )
+    )
 
 
 _OPEN: Final = re.compile(r"\[")
@@ -153,7 +195,7 @@ _PER_BARE: Final = re.compile(r"1/")
 
 
 def bracketed_unit(scanner: Scanner) -> UnitText:
-    """``display unit = "[" unit "]"``"""  # noqa: D400, D415
+    """``display unit = "[" unit "]"``"""
     opened = scanner.expect(_OPEN, "`[`")
     scanner.blanks()
     start = scanner.at
@@ -164,9 +206,14 @@ def bracketed_unit(scanner: Scanner) -> UnitText:
     assert word is not None
     if not known_word(word.group()):
         nearest = nearest_word(word.group())
-        raise Mistake(error("unknown-unit", f"{shown(word.group())} is not a unit",
-                            scanner.span(*word.span()),
-                            help=f"the nearest unit is {nearest}" if nearest else ""))
+        raise Mistake(
+            error(
+                "unknown-unit",
+                f"{shown(word.group())} is not a unit",
+                scanner.span(*word.span()),
+                help=f"the nearest unit is {nearest}" if nearest else "",
+            )
+        )
     unit = _unit(scanner, start, first_joint=joint)
     scanner.expect(_CLOSE, "`]` after the unit", opened=opened)
     return unit
@@ -174,5 +221,6 @@ def bracketed_unit(scanner: Scanner) -> UnitText:
 
 def resolve(unit: UnitText) -> Unit:
     """The unit that a written unit stands for."""
-    return unit_of((each.word, -each.exponent if each.joint == "/" else each.exponent)
-                   for each in unit.words)
+    return unit_of(
+        (each.word, -each.exponent if each.joint == "/" else each.exponent) for each in unit.words
+    )

@@ -7,7 +7,10 @@ from collections.abc import Iterable
 from functools import lru_cache
 from typing import Final
 
-LETTER: Final = r"A-Za-z\u00aa\u00b5\u00ba\u00c0-\u00d6\u00d8-\u00f6\u00f8-\u024f\u0370-\u03ff\u1f00-\u1fff\u2126\u2206"
+LETTER: Final = (
+    r"A-Za-z\u00aa\u00b5\u00ba\u00c0-\u00d6\u00d8-\u00f6\u00f8-\u024f"
+    r"\u0370-\u03ff\u1f00-\u1fff\u2126\u2206"
+)
 SYMBOL: Final = re.compile(rf"[{LETTER}][{LETTER}0-9]*(?:_[{LETTER}0-9]+)*")
 """A letter, then letters and digits, then ``_`` and a subscript (which may hold ``_`` again)."""
 
@@ -32,10 +35,10 @@ FUNCTIONS: Final = {
 """Functions with the least and greatest number of arguments."""
 
 CONSTANTS: Final = ("pi", "k_B", "q_e", "h_P", "c_0", "epsilon_0", "mu_0")
-CLAUSE_WORDS: Final = frozenset(
-    "by in at with for when and or not as from to of within where over against each bias odd even"
-    .split()
-)
+CLAUSE_WORDS: Final = frozenset({
+    "by", "in", "at", "with", "for", "when", "and", "or", "not", "as", "from", "to", "of",
+    "within", "where", "over", "against", "each", "bias", "odd", "even",
+})  # fmt: skip
 
 
 @lru_cache(maxsize=4096)
@@ -45,7 +48,8 @@ def fold(name: str) -> str:
     >>> fold("theta_JA") == fold("θ_JA"), fold("\u2206V") == fold("ΔV")
     (True, True)
     """
-    base, joint, subscript = unicodedata.normalize("NFC", name).translate(_LOOK_ALIKES).partition("_")
+    composed = unicodedata.normalize("NFC", name).translate(_LOOK_ALIKES)
+    base, joint, subscript = composed.partition("_")
     return GREEK.get(base, base).translate(_LOOK_ALIKES) + joint + subscript
 
 

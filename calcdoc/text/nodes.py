@@ -10,6 +10,7 @@ from calcdoc.source import Span
 
 
 def _place() -> Span:
+    """A field for a place; it takes no part in comparing."""
     return field(compare=False, repr=False)  # type: ignore[no-any-return]
 
 
@@ -139,7 +140,18 @@ class Not:
 
 
 Node = (
-    Number | Quantity | Name | Element | Text | Negate | Binary | Group | Call | Comparison | Logic | Not
+    Number
+    | Quantity
+    | Name
+    | Element
+    | Text
+    | Negate
+    | Binary
+    | Group
+    | Call
+    | Comparison
+    | Logic
+    | Not
 )
 
 

@@ -42,11 +42,14 @@ class Passage:
         while end > start and self.text[end - 1] in " \n":
             end -= 1
         piece = bisect_right(self.starts, start) - 1
-        kept = [(max(s, start) - start, p + max(s, start) - s)
-                for s, p in zip(self.starts[piece:], self.places[piece:], strict=True)
-                if s < end or s == self.starts[piece]]
-        return Passage(self.path, self.text[start:end],
-                       tuple(s for s, _ in kept), tuple(p for _, p in kept))
+        kept = [
+            (max(s, start) - start, p + max(s, start) - s)
+            for s, p in zip(self.starts[piece:], self.places[piece:], strict=True)
+            if s < end or s == self.starts[piece]
+        ]
+        return Passage(
+            self.path, self.text[start:end], tuple(s for s, _ in kept), tuple(p for _, p in kept)
+        )
 
     @property
     def whole(self) -> Span:
@@ -54,7 +57,7 @@ class Passage:
         return self.span(0, len(self.text))
 
     def columns(self) -> "list[Passage]":
-        """The cells between bars; ``\\|`` and bars in double quotes do not separate."""
+        r"""The cells between bars; ``\|`` and bars in double quotes do not separate."""
         cells, start = [], 0
         for found in _SEPARATOR.finditer(self.text):
             if found.group() == "|":

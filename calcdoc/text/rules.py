@@ -13,8 +13,15 @@ from calcdoc.text.names import SYMBOL
 from calcdoc.text.passage import Passage
 from calcdoc.text.scan import Scanner
 from calcdoc.text.statements import (
-    Basis, Definition, GivenStatement, HazardStatement, Kind, Label, ReferenceStatement,
-    SentenceStatement, Statement,
+    Basis,
+    Definition,
+    GivenStatement,
+    HazardStatement,
+    Kind,
+    Label,
+    ReferenceStatement,
+    SentenceStatement,
+    Statement,
 )
 
 _EQUALS: Final = re.compile(r"=(?!=)")
@@ -31,12 +38,12 @@ GIVEN_COLUMNS: Final = ("statement", "description", "basis")
 
 
 def condition(statement: Passage) -> Statement:
-    """``SYMBOL = given | description | basis``"""  # noqa: D400, D415
+    """``SYMBOL = given | description | basis``"""
     return _given_statement(Kind.CONDITION, statement)
 
 
 def input_(statement: Passage) -> Statement:
-    """``SYMBOL = given | description | basis``"""  # noqa: D400, D415
+    """``SYMBOL = given | description | basis``"""
     return _given_statement(Kind.INPUT, statement)
 
 
@@ -60,12 +67,13 @@ def _given(  # noqa: PLR0913  (the parts of a statement)
     if not scanner.ended:
         scanner.refuse("a tolerance or the end of the statement (a given value is no formula)")
     text = " ".join(scanner.passage.text[begin:].split())
-    return GivenStatement(kind, symbol, value, plain(description), source, name, mark, text,
-                          scanner.passage.whole)
+    return GivenStatement(
+        kind, symbol, value, plain(description), source, name, mark, text, scanner.passage.whole
+    )
 
 
 def assumption(statement: Passage) -> Statement:
-    """``[ID ":"] SYMBOL = given | description | state basis`` or ``ID ":" sentence | ...``"""  # noqa: D400, D415
+    """``[ID ":"] SYMBOL = given | description | state basis`` or ``ID ":" sentence | ...``"""
     first, description, last = columns(statement, GIVEN_COLUMNS)
     scanner, name = Scanner(first), None
     if _ID.match(first.text):
@@ -84,7 +92,7 @@ def assumption(statement: Passage) -> Statement:
 
 
 def derivation(statement: Passage) -> Statement:
-    """``SYMBOL ["[" unit "]"] = sum | description | basis``"""  # noqa: D400, D415
+    """``SYMBOL ["[" unit "]"] = sum | description | basis``"""
     first, description, source = columns(statement, GIVEN_COLUMNS)
     scanner = Scanner(first)
     if found := _LATER_DERIVE.match(first.text):
@@ -102,12 +110,19 @@ def derivation(statement: Passage) -> Statement:
         _later(scanner, found.start(), "a series with `for`", found.end())
     if not scanner.ended:
         scanner.refuse("an operator or the end of the formula")
-    return Definition(symbol, literal.resolve(unit) if unit else None, unit, tree,
-                      plain(description), basis(source), first.whole)
+    return Definition(
+        symbol,
+        literal.resolve(unit) if unit else None,
+        unit,
+        tree,
+        plain(description),
+        basis(source),
+        first.whole,
+    )
 
 
 def hazard(statement: Passage) -> Statement:
-    """``"supply" SYMBOL | "stored" SYMBOL "at" SYMBOL ["through" SYMBOL] | "not isolated"``"""  # noqa: D400, D415
+    """``"supply" SYMBOL | "stored" SYMBOL "at" SYMBOL ["through" SYMBOL] | "not isolated"``"""
     first, _ = columns(statement, ("statement", "description"))
     scanner = Scanner(first)
     found = scanner.take(_HAZARD)
@@ -127,21 +142,38 @@ def hazard(statement: Passage) -> Statement:
 
 
 def reference(statement: Passage) -> Statement:
-    """``KEY | title | edition or issue, date | where held``"""  # noqa: D400, D415
+    """``KEY | title | edition or issue, date | where held``"""
     key, title, edition, held = columns(statement, ("key", "title", "edition", "where held"))
     if not key.text or not title.text:
-        raise Mistake(error("columns", "a reference has a key and a title", statement.whole,
-                            help="write KEY | title | edition or issue, date | where held"))
+        raise Mistake(
+            error(
+                "columns",
+                "a reference has a key and a title",
+                statement.whole,
+                help="write KEY | title | edition or issue, date | where held",
+            )
+        )
     if found := re.search(r"[\[\],]", key.text):
-        raise Mistake(error("columns", "the key of a reference holds no bracket and no comma",
-                            key.span(*found.span()), help="they separate it where it is cited"))
+        raise Mistake(
+            error(
+                "columns",
+                "the key of a reference holds no bracket and no comma",
+                key.span(*found.span()),
+                help="they separate it where it is cited",
+            )
+        )
     return ReferenceStatement(plain(key), plain(title), plain(edition), plain(held), key.whole)
 
 
 def _later(scanner: Scanner, start: int, what: str, end: int | None = None) -> NoReturn:
-    raise Mistake(error("not-available-yet", f"{what} is not available yet",
-                        scanner.span(start, end if end is not None else start + 1),
-                        help="it is reserved for a coming version"))
+    raise Mistake(
+        error(
+            "not-available-yet",
+            f"{what} is not available yet",
+            scanner.span(start, end if end is not None else start + 1),
+            help="it is reserved for a coming version",
+        )
+    )
 
 
 RULES: Final[Mapping[str, Callable[[Passage], Statement]]] = {
@@ -153,4 +185,3 @@ RULES: Final[Mapping[str, Callable[[Passage], Statement]]] = {
     "references": reference,
 }
 """The rule of a block's lines; ``criteria`` has a file of its own."""
-

@@ -89,18 +89,30 @@ class Scanner:
         if piece is None:
             end = len(text)
             raise Mistake(
-                error("syntax", f"expected {wanted}, found the end of the statement",
-                      self.span(max(0, end - 1), end), related=related)
+                error(
+                    "syntax",
+                    f"expected {wanted}, found the end of the statement",
+                    self.span(max(0, end - 1), end),
+                    related=related,
+                )
             )
         found = "**" if text.startswith("**", self.at) else piece.group()
         raise Mistake(
-            error("syntax", f"expected {wanted}, found {shown(found)}",
-                  self.span(self.at, self.at + len(found)), related=related,
-                  help=TYPICAL.get(found, ""))
+            error(
+                "syntax",
+                f"expected {wanted}, found {shown(found)}",
+                self.span(self.at, self.at + len(found)),
+                related=related,
+                help=TYPICAL.get(found, ""),
+            )
         )
+
+
+SHOWN_MOST: Final = 40
+"""Characters of the author's text that a message shows."""
 
 
 def shown(text: str) -> str:
     """A piece of the author's text inside a message, short and on one line."""
     flat = " ".join(text.split()) or repr(text)[1:-1]
-    return f"`{flat if len(flat) <= 40 else flat[:39] + '…'}`"
+    return f"`{flat if len(flat) <= SHOWN_MOST else flat[: SHOWN_MOST - 1] + '…'}`"

@@ -156,7 +156,8 @@ def _block(reader: _Reader, table: Table) -> TitleBlock:
     reader.known(people, _PEOPLE, "people.")
     reader.known(sampling, ("draws", "seed"), "sampling.")
     return TitleBlock(
-        **texts, **choices,
+        **texts,
+        **choices,
         date=reader.day(table, "date"),
         digits=digits or 4,
         **{role: reader.text(people, role, "people.") for role in _PEOPLE},
@@ -170,13 +171,18 @@ def _block(reader: _Reader, table: Table) -> TitleBlock:
 def _history(reader: _Reader, table: Table) -> tuple[Revision, ...]:
     rows = table.get("history", [])
     if not isinstance(rows, list) or not all(isinstance(row, dict) for row in rows):
-        reader.wrong("history", "`history` is a list of tables", "write [[history]] before each row")
+        reader.wrong(
+            "history", "`history` is a list of tables", "write [[history]] before each row"
+        )
         return ()
     for row in rows:
         reader.known(row, _ROW, "history.")
     return tuple(
-        Revision(reader.text(row, "revision", "history."), reader.day(row, "date", "history."),
-                 reader.text(row, "reason", "history."))
+        Revision(
+            reader.text(row, "revision", "history."),
+            reader.day(row, "date", "history."),
+            reader.text(row, "reason", "history."),
+        )
         for row in rows
     )
 
@@ -189,6 +195,9 @@ def _not_toml(passage: Passage, message: str) -> Finding:
         lines = passage.text.split("\n")
         start = sum(len(line) + 1 for line in lines[: int(found[1]) - 1]) + int(found[2]) - 1
     start = max(0, min(start, len(passage.text) - 1))
-    return error("document-toml", f"the title block is not TOML: {said[:1].lower()}{said[1:]}",
-                 passage.span(start, min(start + 1, len(passage.text))),
-                 help='write one key = "value" per line')
+    return error(
+        "document-toml",
+        f"the title block is not TOML: {said[:1].lower()}{said[1:]}",
+        passage.span(start, min(start + 1, len(passage.text))),
+        help='write one key = "value" per line',
+    )

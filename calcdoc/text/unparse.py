@@ -3,8 +3,20 @@
 from collections.abc import Callable
 
 from calcdoc.text.nodes import (
-    Binary, Call, Comparison, Element, Group, Logic, Name, Negate, Node, Not, Number, Quantity,
-    Text, UnitText,
+    Binary,
+    Call,
+    Comparison,
+    Element,
+    Group,
+    Logic,
+    Name,
+    Negate,
+    Node,
+    Not,
+    Number,
+    Quantity,
+    Text,
+    UnitText,
 )
 
 Leaf = Callable[[Node], str | None]

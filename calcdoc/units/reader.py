@@ -5,7 +5,7 @@ from collections.abc import Iterable
 from fractions import Fraction
 from functools import cache
 from importlib import resources
-from typing import TYPE_CHECKING, Final
+from typing import TYPE_CHECKING, Final, cast
 
 from calcdoc.units.dimension import BASE_NAMES, Dimension
 from calcdoc.units.unit import Unit
@@ -59,9 +59,10 @@ def _atom(word: str) -> tuple[str, Fraction, Dimension]:
     prefix, base, name = parts
     factor, _ = _registry().get_base_units(name)
     found = _registry().get_dimensionality(name)
-    exponents = tuple(Fraction(found.get(each, 0)) for each in BASE_NAMES)
+    exponents = tuple(Fraction(str(found.get(each, 0))) for each in BASE_NAMES)
     # Pint's root of mass is the gram; the coherent unit is the kilogram.
-    return prefix + base, Fraction(factor) / 1000 ** exponents[1], Dimension(exponents)
+    in_kilograms = cast("Fraction", factor) / Fraction(1000) ** int(exponents[1])
+    return prefix + base, in_kilograms, Dimension(exponents)
 
 
 def unit_of(words: Iterable[tuple[str, int]]) -> Unit:
