@@ -94,6 +94,7 @@ class _Builder:
         shown_in = statement.unit
         try:
             typed = self.checker.quantity(statement.formula)
+            _check_whole(statement, typed)
             self._check_unit(statement, typed)
         except Mistake as mistake:
             self.findings.append(mistake.finding)
@@ -262,6 +263,20 @@ class _Builder:
 
 def _weight(celsius: bool) -> Fraction:
     return Fraction(int(celsius))
+
+
+def _check_whole(statement: Definition, typed: Typed) -> None:
+    """A quantity has a unit of whole powers; a broken one stays inside a formula."""
+    if any(Fraction(each).denominator != 1 for each in typed.dimension.exponents):
+        raise Mistake(
+            error(
+                "unit-mismatch",
+                f"{shown(statement.symbol.name)} would be {typed.dimension.in_words()}",
+                statement.formula.span,
+                help="a quantity with a name has whole powers of units; square it, or go on in the"
+                " same formula",
+            )
+        )
 
 
 def _undefined(document: Document, space: Namespace) -> Iterator[str]:

@@ -34,6 +34,13 @@ class Unit:
         under = below[0] if len(below) == 1 else f"({'·'.join(below)})"
         return f"{'·'.join(above) or '1'}/{under}"
 
+    @property
+    def written(self) -> str:
+        """In the language of the text, where it can be read again: ``W/m/K``, ``m^2``."""
+        above = [_written(word, power) for word, power in self.words if power > 0]
+        below = [_written(word, -power) for word, power in self.words if power < 0]
+        return "/".join(["·".join(above) or "1", *below]) if self.words else ""
+
     def to_si(self, number: Fraction) -> Fraction:
         """The value in the coherent SI unit (kelvin for Celsius), exactly."""
         return number + ZERO_CELSIUS if self.celsius else number * self.factor
@@ -49,6 +56,10 @@ class Unit:
 
 def _word(word: str, power: int) -> str:
     return word if power == 1 else word + str(power).translate(_RAISED)
+
+
+def _written(word: str, power: int) -> str:
+    return word if power == 1 else f"{word}^{power}"
 
 
 PLAIN: Final = Unit((), Fraction(1), ONE)

@@ -1,0 +1,96 @@
+"""What was computed: bands of quantities and judgements of criteria, in coherent SI."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from enum import Enum
+
+from calcdoc.analysis.compile import Side
+from calcdoc.analysis.extremes import Proof
+from calcdoc.model.model import Judged, Model
+
+
+@dataclass(frozen=True, slots=True)
+class Stand:
+    """Where an input stands in a combination."""
+
+    value: float
+    """In coherent SI."""
+    inside: bool
+    """Strictly inside its band."""
+
+
+Combination = Mapping[str, Stand]
+"""By key: the inputs that matter, and where they stand."""
+
+
+@dataclass(frozen=True, slots=True)
+class Band:
+    """A quantity at nominal and at its extremes."""
+
+    nominal: float
+    least: float
+    greatest: float
+    at_least: Combination
+    at_greatest: Combination
+    proof: Proof
+    bounds: tuple[float, float]
+    """Proven: nothing in the band is beyond these. Equal to the extremes when exact."""
+
+    @property
+    def varies(self) -> bool:
+        """Whether it has a band at all."""
+        return self.least < self.greatest
+
+
+class Outcome(Enum):
+    """How a calculated criterion came out."""
+
+    PASS = "pass"  # noqa: S105  (a verdict, not a password)
+    FAIL = "fail"
+    NOT_DECIDED = "not decided"
+
+
+@dataclass(frozen=True, slots=True)
+class Judgement:
+    """A criterion at its governing point: where limit less value is least."""
+
+    judged: Judged
+    side: Side
+    """The limit that governs; the nearer one when there are two."""
+    value: float
+    limit: float
+    slack: float
+    """Limit less value, positive on the good side; zero when the two count as equal."""
+    requirement: float
+    """Slack less the margin asked for; the verdict rests on it."""
+    equal: bool
+    """Whether the requirement is met with equality, within 1e-12 of the largest term."""
+    outcome: Outcome
+    governing: Combination
+    values: Mapping[str, float]
+    """Every quantity the criterion names, at the governing point."""
+    proof: Proof
+    bound: float
+    """Proven: the requirement is nowhere below this."""
+
+
+@dataclass(frozen=True, slots=True)
+class Discharged:
+    """A stored charge: its greatest voltage, and the greatest time to a safe voltage."""
+
+    greatest_voltage: float
+    seconds: float | None
+    """None without a bleed resistor: the charge stays."""
+    combination: Combination
+
+
+@dataclass(frozen=True, slots=True)
+class Evaluation:
+    """A model with its numbers."""
+
+    model: Model
+    bands: Mapping[str, Band]
+    """By key."""
+    judgements: tuple[Judgement, ...]
+    """One for each calculated criterion, in order."""
+    discharged: tuple[Discharged, ...]
