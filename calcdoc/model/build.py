@@ -10,8 +10,7 @@ from calcdoc.model.namespace import Namespace
 from calcdoc.model.typing import Checker, Unknown
 from calcdoc.problems import Finding, Mistake, Place, error
 from calcdoc.problems.views import has_errors
-from calcdoc.text import prose
-from calcdoc.text.document import Document, walk
+from calcdoc.text.document import Document, mentions
 from calcdoc.text.names import fold, nearest
 from calcdoc.text.nodes import names
 from calcdoc.text.scan import shown
@@ -359,35 +358,10 @@ def check_mentions(document: Document, space: Namespace) -> list[Finding]:
                 "unknown-name",
                 f"there is no symbol or criterion {shown(mention.name)}",
                 mention.span,
-                help=(f"did you mean {{{near}}}? " if near else "") + "For a plain brace write \\{",
+                help=f"did you mean {{{near}}}?" if near else "for a plain brace write \\{",
             )
         )
     return findings
-
-
-def mentions(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Mention]:
-    """Every mention in prose, in order."""
-    for block in walk(blocks):
-        match block:
-            case prose.Heading(_, inline) | prose.Paragraph(inline):
-                yield from _in_line(inline)
-            case prose.Grid(_, head, rows):
-                for row in (head, *rows):
-                    for cell in row:
-                        yield from _in_line(cell)
-            case _:
-                pass
-
-
-def _in_line(inline: tuple[prose.Inline, ...]) -> Iterator[prose.Mention]:
-    for each in inline:
-        match each:
-            case prose.Mention():
-                yield each
-            case prose.Emphasis(_, inner) | prose.Link(_, inner):
-                yield from _in_line(inner)
-            case _:
-                pass
 
 
 Check = Callable[[Document, Namespace], list[Finding]]

@@ -6,8 +6,9 @@ from dataclasses import dataclass
 from calcdoc.model.constants import CONSTANTS
 from calcdoc.problems import Finding, Place, error
 from calcdoc.text.document import Document
+from calcdoc.text.given import Given
 from calcdoc.text.names import fold, nearest, taken_as
-from calcdoc.text.nodes import Node, Quantity, UnitText, names, walk
+from calcdoc.text.nodes import Name, Node, Quantity, UnitText, names, walk
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
     Definition,
@@ -19,6 +20,8 @@ from calcdoc.text.statements import (
     Statement,
     Uncalculated,
 )
+from calcdoc.text.unparse import unit_text
+from calcdoc.units import known_word
 
 Valued = GivenStatement | Definition
 
@@ -93,14 +96,17 @@ def _advice(what: str) -> str:
 def unknown_names(document: Document, space: Namespace) -> list[Finding]:
     """Names that are used but nowhere defined, with the nearest one that is."""
     findings = []
-    for label in _used(document.statements):
-        if label.key in space.quantities or label.key in CONSTANTS:
-            continue
-        findings.append(_unknown(label, space))
+    for statement in document.statements:
+        own = {statement.symbol.key} if isinstance(statement, Definition) else set()
+        for label in _used(statement):
+            if label.key in space.quantities or label.key in CONSTANTS:
+                continue
+            findings.append(_unknown(label, space, own))
     return findings
 
 
-def _unknown(label: Label, space: Namespace) -> Finding:
+def _unknown(label: Label, space: Namespace, own: set[str]) -> Finding:
+    """What to say of an unknown name; ``own`` is what its line defines, which is no advice."""
     if label.key in space.labels:
         return error(
             "unknown-symbol",
@@ -108,23 +114,26 @@ def _unknown(label: Label, space: Namespace) -> Finding:
             label.span,
             help="use the symbol it speaks of",
         )
-    near = nearest(label.name, [*space.spelled(), *CONSTANTS])
+    known = [each for each in (*space.spelled(), *CONSTANTS) if fold(each) not in own]
+    near = nearest(label.name, known)
     advice = f"did you mean {near}?" if near else "define it in inputs, conditions or derive"
+    if known_word(label.name) and not near:
+        advice = "a unit is joined to its number or unit without blanks, as in 1 V/A; " + advice
     return error(
         "unknown-symbol", f"there is no symbol {shown(label.name)}", label.span, help=advice
     )
 
 
-def _used(statements: Iterable[Statement]) -> Iterator[Label]:
+def _used(statement: Statement) -> Iterator[Label]:
     """Every name a statement uses, where it stands."""
-    for each in statements:
-        for tree in trees(each):
-            for name in names(tree):
+    for tree in trees(statement):
+        for name in names(tree):
+            if isinstance(name, Name):  # an element of a series is not available yet
                 yield Label(name.name, name.span)
-        if isinstance(each, HazardStatement):
-            yield from each.symbols
-        if isinstance(each, Inequality):
-            yield from (point.symbol for point in each.clauses.at)
+    if isinstance(statement, HazardStatement):
+        yield from statement.symbols
+    if isinstance(statement, Inequality):
+        yield from (point.symbol for point in statement.clauses.at)
 
 
 def trees(statement: Statement) -> tuple[Node, ...]:
@@ -138,8 +147,8 @@ def two_readings(document: Document, space: Namespace) -> list[Finding]:
     """Units whose joined word is also a symbol: ``1 s/m`` with a symbol m."""
     findings = []
     for statement in document.statements:
-        for unit in _units(statement):
-            for word in unit.words[1:]:
+        for digits, unit in _units(statement):
+            for at, word in enumerate(unit.words[1:], 1):
                 label = space.labels.get(fold(word.word))
                 if label is None or fold(word.word) not in space.quantities:
                     continue
@@ -149,30 +158,40 @@ def two_readings(document: Document, space: Namespace) -> list[Finding]:
                         f"{shown(word.word)} is a unit here and a symbol of this design",
                         word.span,
                         related=(Place(label.span, "the symbol"),),
-                        help=f"for the symbol write ({_before(unit, word.word)}){word.joint}"
-                        f"{word.word}; for the unit give the symbol another name",
+                        help=_one_reading(digits, unit, at),
                     )
                 )
     return findings
 
 
-def _before(unit: UnitText, word: str) -> str:
-    kept = [each.word for each in unit.words if each.word != word]
-    return "1 " + "·".join(kept)
+def _one_reading(digits: str, unit: UnitText, at: int) -> str:
+    """How to say which reading of a joined word is meant."""
+    word, before = unit.words[at], unit_text(UnitText(unit.words[:at], unit.span))
+    if not digits:
+        return "a given value is no formula, so give the symbol another name"
+    symbol = word.word if word.exponent == 1 else f"{word.word}^{word.exponent}"
+    return (
+        f"for the symbol write ({digits} {before}){'/' if word.joint == '/' else '*'}{symbol};"
+        " for the unit give the symbol another name"
+    )
 
 
-def _units(statement: Statement) -> Iterator[UnitText]:
+def _units(statement: Statement) -> Iterator[tuple[str, UnitText]]:
+    """Units of a statement with the number before them, empty where no formula can stand."""
     for tree in trees(statement):
         for node in walk(tree):
             if isinstance(node, Quantity):
-                yield node.unit
+                yield node.digits, node.unit
+    given: list[Given] = []
     if isinstance(statement, GivenStatement):
-        yield from statement.given.units
+        given.append(statement.given)
     if isinstance(statement, Inequality):
-        for point in statement.clauses.at:
-            yield from point.given.units
+        given += [point.given for point in statement.clauses.at]
         if statement.clauses.margin:
-            yield from statement.clauses.margin.value.units
+            given.append(statement.clauses.margin.value)
+    for each in given:
+        for unit in each.units:
+            yield "", unit
 
 
 def direct_uses(tree: Node, space: Namespace) -> tuple[str, ...]:

@@ -5,6 +5,7 @@ each of their lines.
 """
 
 import re
+from bisect import bisect_right
 from collections.abc import Callable
 from dataclasses import dataclass, field
 from functools import cache
@@ -21,6 +22,7 @@ if TYPE_CHECKING:
 
 MENTION: Final = re.compile(r"\{([^{}\s:]+)(?::([a-z]+))?\}")
 _SAFE: Final = ("http://", "https://", "mailto:", "#")
+_CELL_ENDS: Final = ("th_close", "td_close")
 _DEEPEST: Final = 20
 
 
@@ -36,6 +38,8 @@ class Fence:
     opening: Span
     """The info word, or the whole opening line when it has none."""
     closed: bool
+    marks: str = "```"
+    """The backticks or tildes that begin it."""
 
 
 FenceReader = Callable[[Fence], prose.Block | None]
@@ -76,7 +80,7 @@ class _Builder:
     tokens: "list[Token]" = field(default_factory=list)
     at: int = 0
     cursor: int = 0
-    """Where in the file the search for the next inline text begins."""
+    """Where in the file the search for the next cell of a table begins."""
 
     def blocks(self, until: str) -> tuple[prose.Block, ...]:
         """Blocks up to a closing token, which is taken."""
@@ -147,7 +151,7 @@ class _Builder:
         while (token := self.tokens[self.at]).type != until:
             self.at += 1
             if token.type == "inline":
-                places = _InlinePlaces(self, token)
+                places = _InlinePlaces(self, token, is_cell=until in _CELL_ENDS)
                 found += _InlineBuilder(self, token.children or [], places).nodes(None)
         self.at += 1
         return found
@@ -167,7 +171,9 @@ class _Builder:
             start + column, start + column + len(word) if word else start + len(opening)
         )
         closed = len(lines) == end - begin - 2
-        return self.read_fence(Fence(word, token.info, lines, tuple(places), span, closed))
+        return self.read_fence(
+            Fence(word, token.info, lines, tuple(places), span, closed, token.markup)
+        )
 
     def place(self, number: int, content: str) -> int:
         """Offset of a content line in the file: it is the end of its source line."""
@@ -180,23 +186,56 @@ class _Builder:
 
 
 class _InlinePlaces:
-    """Where characters of an inline text stand in the file, found line by line."""
+    """Where characters of an inline text stand in the file."""
 
-    def __init__(self, builder: _Builder, token: "Token") -> None:
-        self.source = builder.source
+    def __init__(self, builder: _Builder, token: "Token", *, is_cell: bool) -> None:
         first, last = token.map or (0, 0)
-        low = self.source.line_start(builder.first_line + first)
-        high = self.source.line_start(builder.first_line + last)
-        self.cursor = max(low, builder.cursor) if builder.cursor < high else low
-        self.high = high
-        self.builder = builder
+        self.source = builder.source
+        self.low = self.source.line_start(builder.first_line + first)
+        self.high = self.source.line_start(builder.first_line + last)
+        self.content = token.content
+        self.is_cell = is_cell
+        self.starts: list[int] = []
+        self.places: list[int] = []
+        if is_cell:
+            self._cell(builder)
+        else:
+            self._lines(builder.first_line + first)
+        self.cursor = self.places[0]
+
+    def _cell(self, builder: _Builder) -> None:
+        """A cell is written as it stands, but for its bars."""
+        begin = max(self.low, builder.cursor) if builder.cursor < self.high else self.low
+        written = self.content.replace("|", "\\|")
+        at = max(begin, self.source.text.find(written, begin, self.high))
+        self.starts, self.places = [0], [at]
+        builder.cursor = at + len(written)
+
+    def _lines(self, number: int) -> None:
+        """A line of the content is the end of its source line, but for marks and blanks there."""
+        at = 0
+        for line in self.content.split("\n"):
+            self.starts.append(at)
+            column = max(0, self.source.line(number).rfind(line))
+            self.places.append(self.source.line_start(number) + column)
+            at += len(line) + 1
+            number += 1
+
+    def span(self, at: int, text: str) -> Span:
+        """The place of a text that stands at an offset of the content."""
+        piece = bisect_right(self.starts, at) - 1
+        place = self.places[piece] + at - self.starts[piece]
+        if self.is_cell:
+            place += self.content.count("|", 0, at)
+        self.cursor = place + len(text)
+        return self.source.span(place, self.cursor)
 
     def find(self, text: str) -> Span:
-        """The next place of a text; the block's first character when it is written otherwise."""
+        """The next place of a text; where the search begins when it is written otherwise."""
         at = self.source.text.find(text, self.cursor, self.high)
         if at < 0:
             return self.source.span(self.cursor, self.cursor + 1)
-        self.cursor = self.builder.cursor = at + len(text)
+        self.cursor = at + len(text)
         return self.source.span(at, at + len(text))
 
 
@@ -244,7 +283,7 @@ class _InlineBuilder:
                 path = str(token.attrs.get("src", ""))
                 return (prose.Picture(path, token.content, self.places.find(path)),)
             case "mention":
-                return (self.mention(token.content),)
+                return (self.mention(token.content, token.meta["at"]),)
             case _:
                 return ()
 
@@ -264,11 +303,11 @@ class _InlineBuilder:
         )
         return inline
 
-    def mention(self, text: str) -> prose.Mention:
-        """A name in braces."""
+    def mention(self, text: str, at: int) -> prose.Mention:
+        """A name in braces at an offset of the inline content."""
         found = MENTION.fullmatch(text)
         assert found is not None
-        span = self.places.find(text)
+        span = self.places.span(at, text)
         form = found[2] or ""
         if form not in ("", "value", "least", "greatest"):
             self.builder.findings.append(

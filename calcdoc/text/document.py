@@ -2,11 +2,12 @@
 
 import re
 from collections.abc import Callable, Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+from itertools import pairwise
 from typing import Final
 
 from calcdoc.problems import Finding, Mistake, Place, error, warning
-from calcdoc.source import SourceFile
+from calcdoc.source import SourceFile, Span
 from calcdoc.text import prose
 from calcdoc.text.commonmark import Fence, read_prose
 from calcdoc.text.criteria import criterion
@@ -25,7 +26,8 @@ _OTHER_BLOCKS: Final = ("document", "caution")
 _COMING: Final = ("crosschecks", "cases", "use", "figure", "takes", "gives")
 BLOCK_WORDS: Final = (*_OTHER_BLOCKS, *_STATEMENT_RULES, *_COMING)
 SIGNALS: Final = ("danger", "warning", "caution", "notice")
-_FENCE_LINE: Final = re.compile(
+_FENCE_LINE: Final = re.compile(r" {0,3}(?P<marks>`{3,}|~{3,}) *(?P<word>[a-z]+)(?: .*)?")
+_DEEP_FENCE: Final = re.compile(
     r"[\s>]*(?:(?:[-*+]|[0-9]{1,9}[.)])\s+)*(?:`{3,}|~{3,})\s*([A-Za-z]+)"
 )
 _SIGNAL: Final = re.compile(r"\s*(danger|warning|caution|notice)\b[ \t]*[:.]?[ \t]*", re.IGNORECASE)
@@ -61,10 +63,42 @@ def walk(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Block]:
             yield from walk(block.blocks)
 
 
-def read_document(source: SourceFile) -> tuple[Document | None, tuple[Finding, ...]]:
-    """Read a design text; None when no title block could be read.
+def inlines(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Inline]:
+    """Every inline node of the prose, in order, those within others included."""
+    for block in walk(blocks):
+        match block:
+            case prose.Heading(_, inline) | prose.Paragraph(inline):
+                yield from _within(inline)
+            case prose.Grid(_, head, rows):
+                for row in (head, *rows):
+                    for cell in row:
+                        yield from _within(cell)
+            case _:
+                pass
 
-    Every mistake of the file is reported; a wrong statement is left out and reading goes on.
+
+def _within(inline: tuple[prose.Inline, ...]) -> Iterator[prose.Inline]:
+    for each in inline:
+        yield each
+        if isinstance(each, prose.Emphasis | prose.Link):
+            yield from _within(each.inline)
+
+
+def mentions(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Mention]:
+    """Every ``{name}`` in prose."""
+    return (each for each in inlines(blocks) if isinstance(each, prose.Mention))
+
+
+def pictures(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Picture]:
+    """Every picture in prose."""
+    return (each for each in inlines(blocks) if isinstance(each, prose.Picture))
+
+
+def read_document(source: SourceFile) -> tuple[Document | None, tuple[Finding, ...]]:
+    """Read a design text; None when it is too large to be read.
+
+    Every mistake of the file is reported; a wrong statement is left out and reading goes on, so
+    a document with errors among its findings is good for further checks only.
     """
     size = len(source.text)
     if size > LARGEST:
@@ -90,9 +124,8 @@ def read_document(source: SourceFile) -> tuple[Document | None, tuple[Finding, .
                 help="begin with ```document, then number, title and revision, then ```",
             )
         )
-    title = reader.title
-    document = Document(source, title, body) if title else None
-    return document, tuple(reader.findings)
+    title = reader.title or TitleBlock("", "", "")
+    return Document(source, title, body), tuple(reader.findings)
 
 
 class _Reader:
@@ -109,15 +142,61 @@ class _Reader:
     def fence(self, fence: Fence) -> prose.Block | None:
         """One fenced block."""
         self._note_lines(fence)
-        if not fence.closed:
-            self.findings.append(
-                error(
-                    "unclosed-block",
-                    "this block is not closed",
-                    fence.opening,
-                    help="end it with ``` on a line of its own, as far in as its first line",
-                )
+        *cut, last = self._pieces(fence)
+        blocks = [self._read(each) for each in cut]
+        if not last.closed:
+            self._unclosed(last)
+        blocks.append(self._read(last))
+        if not cut:
+            return blocks[0]
+        kept = [each for each in blocks if isinstance(each, prose.Statements)]
+        return prose.Statements(fence.word, tuple(s for each in kept for s in each.statements))
+
+    def _pieces(self, fence: Fence) -> list[Fence]:
+        """A block, cut where others begin within it: then it was meant to be closed before."""
+        begins = [
+            at
+            for at, line in enumerate(fence.lines)
+            if (found := _FENCE_LINE.fullmatch(line))
+            and found["word"] in BLOCK_WORDS
+            and found["marks"].startswith(fence.marks)
+        ]
+        if fence.word not in BLOCK_WORDS or not begins:
+            return [fence]
+        edges = list(pairwise([-1, *begins, len(fence.lines)]))
+        pieces = [
+            replace(
+                fence, lines=fence.lines[a + 1 : b], places=fence.places[a + 1 : b], closed=False
             )
+            for a, b in edges
+        ]
+        for at, (begin, _) in enumerate(edges[1:], 1):
+            opening = self._opening(fence, begin)
+            word = self.source.text[opening.start : opening.end]
+            pieces[at] = replace(pieces[at], word=word, opening=opening)
+            self._unclosed(pieces[at - 1], Place(opening, "the next block begins here"))
+        return [*pieces[:-1], replace(pieces[-1], closed=fence.closed)]
+
+    def _opening(self, fence: Fence, at: int) -> Span:
+        """The word of a block that begins within another."""
+        found = _FENCE_LINE.fullmatch(fence.lines[at])
+        assert found is not None
+        start = fence.places[at] + found.start("word")
+        return self.source.span(start, start + len(found["word"]))
+
+    def _unclosed(self, fence: Fence, *where: Place) -> None:
+        self.findings.append(
+            error(
+                "unclosed-block",
+                "this block is not closed",
+                fence.opening,
+                related=where,
+                help=f"end it with {fence.marks} on a line of its own, as far in as its first line",
+            )
+        )
+
+    def _read(self, fence: Fence) -> prose.Block | None:
+        """What a block of its kind says."""
         if fence.word == "document":
             self._document(fence)
             return None
@@ -177,22 +256,28 @@ class _Reader:
         if not fence.lines:
             text = " "
         passage = Passage(self.source.path, text, tuple(starts), tuple(places))
-        self.title, findings = title_block(passage)
-        for each in findings:
-            self.findings.append(
-                each
-                if fence.lines
-                else error(each.code, each.message, fence.opening, help=each.help)
-            )
+        self.title, findings = title_block(passage, fence.opening)
+        self.findings += findings
 
     def _statements(self, fence: Fence, rule: Callable[[Passage], Statement]) -> prose.Statements:
         found = []
+        sure = self._surely_within(fence)
         for passage in self._passages(fence):
             try:
                 found.append(rule(passage))
             except Mistake as mistake:
+                if passage.offset(0) >= sure:
+                    break
                 self.findings.append(mistake.finding)
         return prose.Statements(fence.word, tuple(found))
+
+    def _surely_within(self, fence: Fence) -> int:
+        """Where prose may begin in a block that is not closed: its first blank line."""
+        if not fence.closed:
+            for line, place in zip(fence.lines, fence.places, strict=True):
+                if not line.strip():
+                    return place
+        return len(self.source.text) + 1
 
     def _passages(self, fence: Fence) -> Iterator[Passage]:
         """One passage for each statement: its line and the lines that continue it."""
@@ -266,7 +351,7 @@ class _Reader:
         """A block word where CommonMark sees plain code or text would be lost silently."""
         start = 0
         for number, line in enumerate(self.source.text.split("\n"), 1):
-            found = _FENCE_LINE.match(line)
+            found = _DEEP_FENCE.match(line)
             if found and number not in self.seen and found[1] in BLOCK_WORDS:
                 self.findings.append(
                     error(

@@ -46,6 +46,7 @@ _TEXT: Final = re.compile(r'"([^"\n]*)"')
 _OR: Final = re.compile(r"or\b")
 _AND: Final = re.compile(r"and\b")
 _NOT: Final = re.compile(r"not\b")
+_OF_METHOD: Final = re.compile(rf"\.{SYMBOL.pattern}")
 SIGN_ALIKE: Final = {"·": "*", "×": "*"}
 
 
@@ -162,6 +163,15 @@ class _Parser:
         self.scanner.at = found.end()
         if follows == "[":
             return self._element(name, found)
+        if of_method := _OF_METHOD.match(text, found.end()):
+            raise Mistake(
+                error(
+                    "not-available-yet",
+                    "a symbol of a method is not available yet",
+                    self.scanner.span(found.start(), of_method.end()),
+                    help="it is reserved for a coming version",
+                )
+            )
         return Name(name, span)
 
     def _call(self, found: re.Match[str]) -> Node:
@@ -173,8 +183,8 @@ class _Parser:
                     "unknown-function",
                     f"there is no function {shown(name)}",
                     name_span,
-                    help=f"did you mean {near}(...)? " * bool(near)
-                    + f"To multiply, write {name}*(...)",
+                    help=(f"did you mean {near}(...)? or, " if near else "")
+                    + f"to multiply, write {name}*(...)",
                 )
             )
         self.scanner.at = found.end()

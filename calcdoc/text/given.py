@@ -21,6 +21,7 @@ from calcdoc.units import ONE, PLAIN, Unit
 _SIGN: Final = re.compile(r"[+-]")
 _PLUS_MINUS: Final = re.compile(r"±|\+/-")
 _RANGE: Final = re.compile(r"\.\.")
+_LARGEST: Final = 10**300
 _LATER: Final = re.compile(r"(as|bias|each)\b")
 
 
@@ -86,6 +87,15 @@ def given(scanner: Scanner) -> Given:
         value = _limits(parts)
     else:
         value = _with_tolerance(scanner, first)
+    if any(abs(value.unit.to_si(each)) >= _LARGEST for each in (value.least, value.greatest)):
+        raise Mistake(
+            error(
+                "number-form",
+                "this value is too large to compute with",
+                value.span,
+                help="values stay under a one with 300 zeros in SI units",
+            )
+        )
     if later := scanner.look(_LATER):
         raise Mistake(
             error(

@@ -5,10 +5,11 @@ A unit is the longest run of known unit words joined by ``·`` or ``/`` without 
 """
 
 import re
+from fractions import Fraction
 from typing import Final
 
 from calcdoc.problems import Mistake, error
-from calcdoc.text.names import CLAUSE_WORDS, FUNCTIONS, LETTER
+from calcdoc.text.names import CLAUSE_WORDS, FUNCTIONS, LETTER, MARK
 from calcdoc.text.nodes import Number, Quantity, UnitText, UnitWord
 from calcdoc.text.scan import Scanner, shown
 from calcdoc.units import Unit, known_word, nearest_word, unit_of
@@ -20,12 +21,17 @@ _RANGE: Final = re.compile(r"\.\.")
 _NUMBER_AGAIN: Final = re.compile(r" [0-9](?!/)|  +1/|  +[0-9]")
 _PER: Final = re.compile(rf" 1/(?=[{LETTER}°%])")
 _WORD: Final = re.compile(rf"%|°C?|[{LETTER}]+")
-_IDENTIFIER: Final = re.compile(rf"%|°C?|[{LETTER}][{LETTER}0-9_]*")
+_IDENTIFIER: Final = re.compile(rf"%|°[A-Za-z]*|[{LETTER}][{LETTER}{MARK}0-9_]*")
 _SPACED: Final = re.compile(rf"[ \n]+(?=[{LETTER}°%])")
 _EXPONENT: Final = re.compile(r"\^(-?[0-9]{1,2})(?![0-9])|([⁻]?[⁰¹²³⁴⁵⁶⁷⁸⁹]{1,2})")
+_POWER: Final = re.compile(rf"\^-?[{LETTER}{MARK}0-9_.]*|[⁻⁰¹²³⁴⁵⁶⁷⁸⁹]+")
+_ODD_POWER: Final = re.compile(r"\.[0-9]+|\^|[⁻⁰¹²³⁴⁵⁶⁷⁸⁹]+")
 _LOWERED: Final = str.maketrans("⁰¹²³⁴⁵⁶⁷⁸⁹⁻", "0123456789-")
 _DIGITS_MOST: Final = 60
 _EXPONENT_MOST: Final = 99
+_POWER_MOST: Final = 9
+_WORDS_MOST: Final = 12
+_FACTOR_MOST: Final = 10**120
 
 
 def quantity(scanner: Scanner, *, comma_separates: bool = False) -> Number | Quantity:
@@ -146,7 +152,26 @@ def _unit(scanner: Scanner, start: int, *, first_joint: str) -> UnitText:
         joint = text[scanner.at]
         scanner.at = following.start()
         words.append(_unit_word(scanner, joint))
-    return UnitText(tuple(words), scanner.span(start, scanner.at))
+        if len(words) > _WORDS_MOST:
+            raise Mistake(
+                error(
+                    "number-form",
+                    f"a unit has at most {_WORDS_MOST} words",
+                    scanner.span(following.start(), scanner.at),
+                    help="define a part of it on a line of its own",
+                )
+            )
+    unit = UnitText(tuple(words), scanner.span(start, scanner.at))
+    if not Fraction(1, _FACTOR_MOST) < resolve(unit).factor < _FACTOR_MOST:
+        raise Mistake(
+            error(
+                "number-form",
+                "this unit is too large or too small to compute with",
+                unit.span,
+                help="use other prefixes or smaller powers",
+            )
+        )
+    return unit
 
 
 def _joins(text: str, word: re.Match[str]) -> bool:
@@ -173,6 +198,16 @@ def _unit_word(scanner: Scanner, joint: str) -> UnitWord:
     exponent = _EXPONENT.match(text, word.end())
     scanner.at = exponent.end() if exponent else word.end()
     power = int((exponent[1] or exponent[2]).translate(_LOWERED)) if exponent else 1
+    odd = _ODD_POWER.match(text, scanner.at) if exponent else _POWER.match(text, scanner.at)
+    if odd or not 0 < abs(power) <= _POWER_MOST:
+        raise Mistake(
+            error(
+                "number-form",
+                f"the power of a unit is a whole number from -{_POWER_MOST} to {_POWER_MOST}",
+                scanner.span(word.end(), max(scanner.at, odd.end() if odd else 0)),
+                help=f"for a power of the whole quantity write brackets: (2 {word.group()})^2.5",
+            )
+        )
     return UnitWord(word.group(), power, joint, scanner.span(start, scanner.at))
 
 

@@ -5,13 +5,18 @@ import re
 import unicodedata
 from collections.abc import Iterable
 from functools import lru_cache
+from itertools import islice
 from typing import Final
 
 LETTER: Final = (
     r"A-Za-z\u00aa\u00b5\u00ba\u00c0-\u00d6\u00d8-\u00f6\u00f8-\u024f"
     r"\u0370-\u03ff\u1f00-\u1fff\u2126\u2206"
 )
-SYMBOL: Final = re.compile(rf"[{LETTER}][{LETTER}0-9]*(?:_[{LETTER}0-9]+)*")
+MARK: Final = r"\u0300-\u036f"
+"""Combining marks: an accent that a keyboard or file system wrote apart from its letter."""
+SYMBOL: Final = re.compile(
+    rf"[{LETTER}][{LETTER}{MARK}0-9]*(?:_[{LETTER}0-9][{LETTER}{MARK}0-9]*)*"
+)
 """A letter, then letters and digits, then ``_`` and a subscript (which may hold ``_`` again)."""
 
 GREEK: Final = {
@@ -65,11 +70,18 @@ def taken_as(name: str) -> str | None:
     return _TAKEN.get(fold(name))
 
 
+_COMPARED_MOST: Final = 200
+
+
 def nearest(name: str, known: Iterable[str]) -> str | None:
     """The known name most like an unknown one, or None when nothing is like it."""
     candidates = list(known)
+    folded = fold(name).lower()
     for candidate in candidates:
-        if fold(candidate).lower() == fold(name).lower():
+        if fold(candidate).lower() == folded:
             return candidate
+    if len(candidates) > _COMPARED_MOST:
+        alike = (each for each in candidates if each[:1] == name[:1] and len(each) == len(name))
+        candidates = list(islice(alike, _COMPARED_MOST))
     close = difflib.get_close_matches(name, candidates, n=1, cutoff=0.6)
     return close[0] if close else None

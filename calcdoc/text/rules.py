@@ -101,7 +101,12 @@ def derivation(statement: Passage) -> Statement:
     symbol = label(scanner, "a symbol, as in V_pk [V] = sqrt(2)*V_line")
     unit = None
     if first.text[scanner.at : scanner.at + 1] == "[":
-        _later(scanner, scanner.at, "a series (`X[n]`; a unit stands after a blank: `X [V]`)")
+        _later(
+            scanner,
+            scanner.at,
+            "a series",
+            advice="`X[n]` is reserved for a coming version; a unit stands after a blank: X [V]",
+        )
     if scanner.look(_BRACKET):
         unit = literal.bracketed_unit(scanner)
     scanner.expect(_EQUALS, "`=`" if unit else "`=` or a unit in brackets")
@@ -165,15 +170,15 @@ def reference(statement: Passage) -> Statement:
     return ReferenceStatement(plain(key), plain(title), plain(edition), plain(held), key.whole)
 
 
-def _later(scanner: Scanner, start: int, what: str, end: int | None = None) -> NoReturn:
-    raise Mistake(
-        error(
-            "not-available-yet",
-            f"{what} is not available yet",
-            scanner.span(start, end if end is not None else start + 1),
-            help="it is reserved for a coming version",
-        )
-    )
+def _later(
+    scanner: Scanner,
+    start: int,
+    what: str,
+    end: int | None = None,
+    advice: str = "it is reserved for a coming version",
+) -> NoReturn:
+    span = scanner.span(start, end if end is not None else start + 1)
+    raise Mistake(error("not-available-yet", f"{what} is not available yet", span, help=advice))
 
 
 RULES: Final[Mapping[str, Callable[[Passage], Statement]]] = {

@@ -5,16 +5,17 @@ number and a function elsewhere. It knows ASCII digits only and never evaluates 
 """
 
 import re
+import unicodedata
 from dataclasses import dataclass
 from typing import Final, NoReturn
 
 from calcdoc.problems import Mistake, Place, error
 from calcdoc.source import Span
-from calcdoc.text.names import LETTER
+from calcdoc.text.names import LETTER, MARK
 from calcdoc.text.passage import Passage
 
 _BLANKS: Final = re.compile(r"[ \n]*")
-_PIECE: Final = re.compile(rf"[{LETTER}][{LETTER}0-9_]*|[0-9][0-9.]*|.", re.DOTALL)
+_PIECE: Final = re.compile(rf"[{LETTER}][{LETTER}{MARK}0-9_]*|[0-9][0-9.]*|.", re.DOTALL)
 
 TYPICAL: Final = {
     "≤": "write <= for ≤",
@@ -22,14 +23,17 @@ TYPICAL: Final = {
     "−": "write the minus sign as -",
     "–": "write the minus sign as -",
     "÷": "write / to divide",
-    "=": "a comparison is written <=, >=, < or >",
     "**": "write ^ for a power",
+    "==": "write one = to define; a comparison is <=, >=, < or >",
+    "!=": "write not, and <= or > in place of !=",
     "²": "write ^2 for a square",
     "³": "write ^3 for a cube",
     ",": "write the decimal marker as a point: 1.5",
     "\t": "use a space in place of the tab",
-    "!": "write not, and <= or > in place of !=",
+    "\u00a0": "use a plain space in its place",
+    "\u202f": "use a plain space in its place",
     "&": "write and",
+    '"': "a text ends with a second double quote on the same line",
 }
 """What people write in place of the sign this language knows."""
 
@@ -96,16 +100,27 @@ class Scanner:
                     related=related,
                 )
             )
-        found = "**" if text.startswith("**", self.at) else piece.group()
+        pair = text[self.at : self.at + 2]
+        found = pair if pair in ("**", "==", "!=") else piece.group()
         raise Mistake(
             error(
                 "syntax",
                 f"expected {wanted}, found {shown(found)}",
                 self.span(self.at, self.at + len(found)),
                 related=related,
-                help=TYPICAL.get(found, ""),
+                help=_advice(wanted, found),
             )
         )
+
+
+def _advice(wanted: str, found: str) -> str:
+    """What to write in place of what stands there."""
+    if found == "=" and wanted.startswith("<="):
+        return "a comparison is written <=, >=, < or >"
+    implied = found == "(" or found[0].isalnum()
+    if implied and found not in TYPICAL and wanted.startswith("an operator or the end"):
+        return "write * to multiply"
+    return TYPICAL.get(found, "")
 
 
 SHOWN_MOST: Final = 40
@@ -114,5 +129,8 @@ SHOWN_MOST: Final = 40
 
 def shown(text: str) -> str:
     """A piece of the author's text inside a message, short and on one line."""
+    if len(text) == 1 and not text.isprintable():
+        name = "a tab" if text == "\t" else unicodedata.name(text, "a character").lower()
+        return name if text == "\t" else f"a {name.removeprefix('a ')} (U+{ord(text):04X})"
     flat = " ".join(text.split()) or repr(text)[1:-1]
     return f"`{flat if len(flat) <= SHOWN_MOST else flat[: SHOWN_MOST - 1] + '…'}`"

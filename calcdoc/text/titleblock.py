@@ -80,7 +80,7 @@ class _Reader:
         if isinstance(value, date):
             return value.isoformat()
         if not isinstance(value, str):
-            self.wrong(key, f"`{where}{key}` is a text", f'write {key} = "..."')
+            self.wrong(key, f"`{where}{key}` must be a text", f'write {key} = "..."')
             return ""
         return " ".join(value.split())
 
@@ -88,7 +88,7 @@ class _Reader:
         """A date as YYYY-MM-DD."""
         value = self.text(table, key, where)
         if value and not _is_day(value):
-            self.wrong(key, f"`{where}{key}` is a date", "write it as 2026-12-01")
+            self.wrong(key, f"`{where}{key}` must be a date", "write it as 2026-12-01")
         return value
 
     def known(self, table: Table, keys: tuple[str, ...], where: str = "") -> None:
@@ -104,7 +104,7 @@ class _Reader:
         value = table.get(key, {})
         if isinstance(value, dict):
             return value
-        self.wrong(key, f"`{key}` is a table", f"write [{key}] on a line of its own")
+        self.wrong(key, f"`{key}` must be a table", f"write [{key}] on a line of its own")
         return {}
 
     def whole_number(self, table: Table, key: str, least: int, where: str = "") -> int | None:
@@ -113,7 +113,7 @@ class _Reader:
         if value is None:
             return None
         if isinstance(value, bool) or not isinstance(value, int) or value < least:
-            self.wrong(key, f"`{where}{key}` is a whole number of at least {least}", "")
+            self.wrong(key, f"`{where}{key}` must be a whole number of at least {least}", "")
             return None
         return value
 
@@ -125,7 +125,7 @@ def _is_day(text: str) -> bool:
         return False
 
 
-def title_block(passage: Passage) -> tuple[TitleBlock | None, list[Finding]]:
+def title_block(passage: Passage, opening: Span) -> tuple[TitleBlock | None, list[Finding]]:
     """Read the title block; None when it is no TOML or lacks a required key."""
     try:
         table = tomllib.loads(passage.text)
@@ -137,7 +137,14 @@ def title_block(passage: Passage) -> tuple[TitleBlock | None, list[Finding]]:
     reader.known(table, _KEYS)
     for key in ("number", "title", "revision"):
         if not table.get(key):
-            reader.wrong("", f"the title block has no `{key}`", f'write {key} = "..."')
+            reader.findings.append(
+                error(
+                    "document-key",
+                    f"the title block has no `{key}`",
+                    opening,
+                    help=f'write {key} = "..."',
+                )
+            )
     block = _block(reader, table)
     return (None if reader.findings else block), reader.findings
 
@@ -148,10 +155,10 @@ def _block(reader: _Reader, table: Table) -> TitleBlock:
     choices = {key: reader.text(table, key) or options[0] for key, options in _CHOICES.items()}
     for key, options in _CHOICES.items():
         if choices[key] not in options:
-            reader.wrong(key, f"`{key}` is one of: {', '.join(options)}", "")
+            reader.wrong(key, f"`{key}` must be one of: {', '.join(options)}", "")
     digits = reader.whole_number(table, "digits", _DIGITS.start)
     if digits is not None and digits not in _DIGITS:
-        reader.wrong("digits", f"`digits` is at most {_DIGITS.stop - 1}", "")
+        reader.wrong("digits", f"`digits` must be at most {_DIGITS.stop - 1}", "")
     people, sampling = reader.table(table, "people"), reader.table(table, "sampling")
     reader.known(people, _PEOPLE, "people.")
     reader.known(sampling, ("draws", "seed"), "sampling.")
@@ -172,7 +179,7 @@ def _history(reader: _Reader, table: Table) -> tuple[Revision, ...]:
     rows = table.get("history", [])
     if not isinstance(rows, list) or not all(isinstance(row, dict) for row in rows):
         reader.wrong(
-            "history", "`history` is a list of tables", "write [[history]] before each row"
+            "history", "`history` must be a list of tables", "write [[history]] before each row"
         )
         return ()
     for row in rows:

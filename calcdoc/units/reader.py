@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Final, cast
 
 from calcdoc.units.dimension import BASE_NAMES, Dimension
 from calcdoc.units.unit import Unit
-from calcdoc.units.words import ALONE, PREFIXED, PREFIXES, SPELLED
+from calcdoc.units.words import ALONE, NICKNAMES, PREFIXED, PREFIXES, SPELLED
 
 if TYPE_CHECKING:
     import pint
@@ -94,10 +94,25 @@ def _all_words() -> tuple[str, ...]:
     return (*PREFIXED, *ALONE, *common)
 
 
+@cache
+def _written_out() -> dict[str, str]:
+    """Unit words by what people write in their place, in small letters and without plural."""
+    found = dict(NICKNAMES)
+    for prefix, prefix_name in (("", ""), *PREFIXES.items()):
+        for base, name in PREFIXED.items():
+            found.setdefault(prefix_name + name, prefix + base)
+        for spelled, base in SPELLED.items():
+            if base in PREFIXED:
+                found.setdefault(prefix.lower() + spelled, prefix + base)
+    return found | {name: base for base, name in ALONE.items() if base not in ("°", "°C")}
+
+
 def nearest_word(word: str) -> str | None:
     """The listed unit word most like an unknown one, or None when nothing is like it."""
     for candidate in _all_words():
         if candidate.lower() == word.lower():
             return candidate
+    if written_out := _written_out().get(word.lower().removesuffix("s")):
+        return written_out
     close = difflib.get_close_matches(word, _all_words(), n=1, cutoff=0.5)
     return close[0] if close else None

@@ -32,3 +32,10 @@ ALONE: Final = {
 
 SPELLED: Final = {"ohm": "Ω", "degC": "°C"}
 """ASCII spellings and what they print as; a prefix ``u`` prints as ``µ``."""
+
+NICKNAMES: Final = {
+    "amp": "A", "hr": "h", "sec": "s", "ohm": "Ω", "meter": "m", "liter": "L",
+    "vac": "V", "vdc": "V", "vrm": "V", "vpk": "V", "vpp": "V", "arm": "A", "apk": "A",
+    "celsiu": "°C", "°f": "°C", "degree": "deg", "pct": "%",
+}  # fmt: skip
+"""What people write in place of a unit word, without a plural s."""
