@@ -1,0 +1,247 @@
+"""Back matter: clauses, registers, symbols, references, method, digests, history, end mark."""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from html import escape
+from typing import Final
+
+from calcdoc.page import typeset
+from calcdoc.page.lines import GIVEN, assumed, given_value
+from calcdoc.page.markup import Column, table, verdict
+from calcdoc.page.view import View, reference_anchor
+from calcdoc.record.record import Criterion, Quantity
+
+
+@dataclass(frozen=True, slots=True)
+class Part:
+    """A part of the back matter; it is left out when its content is empty."""
+
+    anchor: str
+    title: str
+    content: Callable[[View], str]
+
+
+def clauses(view: View) -> str:
+    """Each clause a criterion answers to."""
+    columns = (
+        Column("clause", 22),
+        Column("requirement", 34),
+        Column("result and remark", 32),
+        Column("verdict", 12),
+    )
+    rows = [
+        (escape(cited), _requirement(view, each), _result(view, each), _verdict(each))
+        for each in view.record.criteria
+        for cited in view.citations(each.basis)
+    ]
+    return table("clauses", "Clauses and their verdicts", columns, rows) if rows else ""
+
+
+def _requirement(view: View, criterion: Criterion) -> str:
+    return f"{view.place(criterion.id)}: {escape(criterion.description or criterion.text)}"
+
+
+def _result(view: View, criterion: Criterion) -> str:
+    parts = []
+    if criterion.value_text:
+        against = (
+            f", limit {typeset.quantity(criterion.limit_text)}" if criterion.limit_text else ""
+        )
+        parts.append(typeset.quantity(criterion.value_text) + against)
+    case = criterion.case if criterion.case not in ("", "normal") else ""
+    parts += [escape(f"case {case}") if case else "", view.sentence(criterion.remark)]
+    parts.append(view.sentence(criterion.reason))
+    return "; ".join(filter(None, parts))
+
+
+def _verdict(criterion: Criterion) -> str:
+    return verdict(criterion.verdict, criterion.accepted)
+
+
+def inputs(view: View) -> str:
+    """Register of what was given."""
+    columns = (
+        Column("line", 7),
+        Column("symbol", 11),
+        Column("value", 24),
+        Column("limits", 20),
+        Column("meaning", 20),
+        Column("basis", 18),
+    )
+    given = [each for each in view.record.quantities if each.kind in GIVEN]
+    rows = [_given_row(view, each) for each in given]
+    return table("register", "Conditions, inputs and assumed values", columns, rows) if rows else ""
+
+
+def _given_row(view: View, quantity: Quantity) -> tuple[str, ...]:
+    limits = ""
+    if quantity.varies:
+        least = typeset.quantity(quantity.least_text)
+        limits = f"{least} to {typeset.quantity(quantity.greatest_text)}"
+    return (
+        view.place(quantity.symbol),
+        view.symbol(quantity.symbol),
+        given_value(quantity),
+        limits,
+        escape(quantity.description),
+        view.basis(quantity.basis) or "no source given",
+    )
+
+
+def assumptions(view: View) -> str:
+    """Register of assumptions with what rests on each."""
+    columns = (
+        Column("id", 7),
+        Column("assumption", 28),
+        Column("why it is reasonable", 25),
+        Column("state", 20),
+        Column("rests on it", 20),
+    )
+    rows = [
+        (
+            view.place(each.id),
+            assumed(view, each),
+            escape(each.reason),
+            escape(": ".join(filter(None, (each.state, each.note)))),
+            view.places(each.rests_on_it),
+        )
+        for each in view.record.assumptions
+    ]
+    return table("register", "Assumptions", columns, rows) if rows else ""
+
+
+def symbols(view: View) -> str:
+    """Every symbol, its meaning, its line, and where it is used."""
+    columns = (
+        Column("symbol", 13),
+        Column("meaning", 39),
+        Column("unit", 8),
+        Column("line", 10),
+        Column("used in", 30),
+    )
+    ordered = sorted(view.record.quantities, key=lambda each: (each.symbol.lower(), each.symbol))
+    rows = [
+        (
+            view.symbol(each.symbol),
+            escape(each.description),
+            typeset.units(each.unit) if each.unit else "1",
+            view.place(each.symbol),
+            view.places(each.used_by),
+        )
+        for each in ordered
+    ]
+    return table("symbols", "Symbols", columns, rows) if rows else ""
+
+
+def crosschecks(view: View) -> str:
+    """Two ways to one quantity."""
+    columns = (
+        Column("id", 8),
+        Column("first way", 26),
+        Column("second way", 26),
+        Column("difference", 14, "num"),
+        Column("allowed", 14, "num"),
+        Column("verdict", 12),
+    )
+    digits = view.record.document.digits
+    rows = [
+        (
+            f'<span id="k-{escape(each.id)}">{escape(each.id)}</span>',
+            view.math(each.first, room=15),
+            view.math(each.second, room=15),
+            typeset.in_unit(each.difference, each.unit, digits),
+            typeset.in_unit(each.allowed, each.unit, digits),
+            verdict("agrees" if each.agrees else "fail"),
+        )
+        for each in view.record.crosschecks
+    ]
+    return table("crosschecks", "Cross-checks", columns, rows) if rows else ""
+
+
+def references(view: View) -> str:
+    """Documents cited."""
+    columns = (
+        Column("key", 15),
+        Column("title", 35),
+        Column("edition", 18),
+        Column("held", 14),
+        Column("cited in", 18),
+    )
+    rows = [
+        (
+            f'<span id="{reference_anchor(each.key)}">{escape(each.key)}</span>',
+            escape(each.title),
+            escape(each.edition),
+            escape(each.held),
+            view.places(each.cited_by),
+        )
+        for each in view.record.references
+    ]
+    return table("references", "References", columns, rows) if rows else ""
+
+
+def method(view: View) -> str:
+    """How the numbers came about."""
+    tool = view.record.tool
+    libraries = ", ".join(f"{name} {version}" for name, version in sorted(tool.libraries.items()))
+    sentences = [view.sentence(each) for each in view.record.methods]
+    if view.record.sampling:
+        drawn = ", ".join(f"{name} {value}" for name, value in sorted(view.record.sampling.items()))
+        sentences.append(f"Sampling: {escape(drawn)}.")
+    sentences.append(escape(f"Computed by calcdoc {tool.version} with {libraries}."))
+    return "".join(f"<p>{each}</p>\n" for each in sentences)
+
+
+def problems(view: View) -> str:
+    """Notices, and warnings that the text gave rise to."""
+    rows = [f"<li>{view.sentence(each)}</li>" for each in view.record.notices]
+    for each in view.record.problems:
+        place = f"line {each.line}: " if each.line else ""
+        hint = f" ({escape(each.help)})" if each.help else ""
+        rows.append(f"<li>{place}{escape(each.message)} [{escape(each.code)}]{hint}</li>")
+    return f"<ul>{''.join(rows)}</ul>\n" if rows else ""
+
+
+def digests(view: View) -> str:
+    """SHA-256 of the text, of every file it used, and of the record."""
+    columns = (Column("what", 34), Column("SHA-256", 66, "dig"))
+    source = view.record.source
+    rows = [(escape(f"design text {source.name}"), _grouped(source.sha256))]
+    rows += [(escape(f"file {each.name}"), _grouped(each.sha256)) for each in source.files]
+    rows.append(("record, JSON", _grouped(view.record_digest)))
+    return table("digests", "Digests", columns, rows)
+
+
+def _grouped(sha256: str) -> str:
+    return escape(typeset.digest(sha256, 16).strip())
+
+
+def history(view: View) -> str:
+    """Revisions with their reasons."""
+    columns = (Column("revision", 12), Column("date", 16), Column("reason", 72))
+    rows = [
+        (escape(each.revision), escape(each.date), escape(each.reason))
+        for each in view.record.document.history
+    ]
+    return table("history", "Revisions", columns, rows) if rows else ""
+
+
+PARTS: Final = (
+    Part("clauses", "Clause table", clauses),
+    Part("inputs", "Register of inputs", inputs),
+    Part("assumptions", "Register of assumptions", assumptions),
+    Part("symbols", "Symbols", symbols),
+    Part("crosschecks", "Cross-checks", crosschecks),
+    Part("references", "References", references),
+    Part("method", "How the numbers were computed", method),
+    Part("problems", "Notices and warnings", problems),
+    Part("digests", "Digests", digests),
+    Part("history", "Revision history", history),
+)
+
+
+def end_mark(view: View) -> str:
+    """The last line: nothing of the record comes after it."""
+    document = view.record.document
+    name = escape(f"{document.number} revision {document.revision}")
+    return f'<p class="end">end of record {name}</p>\n'

@@ -1,0 +1,265 @@
+"""Working lines: inputs, derived quantities, criteria, and assumptions that are sentences."""
+
+from html import escape
+
+from calcdoc.page import typeset
+from calcdoc.page.markup import band_bar, margin_bar, verdict
+from calcdoc.page.measure import measure
+from calcdoc.page.pieces import ROOM, is_formula, read
+from calcdoc.page.view import View
+from calcdoc.record.pictures import RELATIONS, equation, symbol
+from calcdoc.record.record import Assumption, Criterion, Quantity
+from calcdoc.record.shapes import Glyphs, Picture, Row
+
+GIVEN = frozenset({"condition", "input", "assumption"})
+LEAD = 0.35
+"""Space before the equals sign, in em."""
+WIDEST_LEFT = 9.0
+"""A left side wider than this, in em, does not set the indent of the equals signs."""
+
+
+def quantity_line(view: View, quantity: Quantity) -> str:
+    """The line of a quantity: compact for what is given, in full for what is worked out."""
+    if quantity.kind in GIVEN:
+        return _given(view, quantity)
+    work = _work(view, quantity)
+    label = escape(quantity.line)
+    return (
+        f'<div class="wl" id="q-{escape(quantity.symbol)}"><span class="no">{label}</span>'
+        f"{_side(view, quantity)}{_what(quantity.description)}{_steps(view, quantity)}{work}"
+        f"{_residual(view, quantity)}{_band(view, quantity)}{_cases(view, quantity)}"
+        f"{_notes(view, quantity.notes)}</div>\n"
+    )
+
+
+def criterion_line(view: View, criterion: Criterion) -> str:
+    """A criterion: inequality, numbers, bar against the limit, verdict in words."""
+    sentence = not is_formula(criterion.text)
+    what = criterion.description or ""
+    if sentence:
+        what = criterion.text + (f": {what}" if what else "")
+    clauses = f'<span class="cl">{escape(criterion.clauses)}</span>' if criterion.clauses else ""
+    work = "" if sentence else f'<div class="eq">{view.math(criterion.text)} {clauses}</div>'
+    return (
+        f'<div class="wl cr" id="c-{escape(criterion.id)}">'
+        f'<span class="no">{escape(criterion.id)}</span>{_criterion_side(view, criterion)}'
+        f"{_what(what)}{work}{_compared(view, criterion)}{_decided(view, criterion)}</div>\n"
+    )
+
+
+def sentence_line(view: View, assumption: Assumption) -> str:
+    """An assumption that is a sentence."""
+    reason = f' <span class="soft">{escape(assumption.reason)}</span>' if assumption.reason else ""
+    rests = view.places(assumption.rests_on_it)
+    side = [escape(_state(assumption.state, assumption.note)), f"used in {rests}" if rests else ""]
+    return (
+        f'<div class="in" id="a-{escape(assumption.id)}"><span class="no">{escape(assumption.id)}'
+        f'</span>{_aside(side)}<p class="what">{escape(assumption.text)}{reason}</p></div>\n'
+    )
+
+
+# --- given quantities -------------------------------------------------------------------------
+
+
+def _given(view: View, quantity: Quantity) -> str:
+    """One compact line: symbol, value with tolerance, limits, description."""
+    value = given_value(quantity)
+    left = view.math(equation_left(quantity.symbol))
+    limits = ""
+    if quantity.varies and " to " not in quantity.tolerance:
+        limits = f' <span class="soft nb">{_limits(quantity)}</span>'
+    notes = _notes(view, quantity.notes)
+    label = escape(quantity.id or quantity.line)
+    return (
+        f'<div class="in" id="q-{escape(quantity.symbol)}"><span class="no">{label}</span>'
+        f'{_side(view, quantity)}<p class="giv">{left} <span class="nb">{value}</span>{limits} '
+        f'<span class="what">{escape(quantity.description)}</span></p>{notes}</div>\n'
+    )
+
+
+def given_value(quantity: Quantity) -> str:
+    """The value of a given quantity with its tolerance, which is typeset already."""
+    return escape(quantity.tolerance) or typeset.quantity(quantity.result)
+
+
+def assumed(view: View, assumption: Assumption) -> str:
+    """What is assumed: a sentence, or a quantity with its value."""
+    quantity = view.quantities.get(assumption.symbol)
+    if quantity is None:
+        return escape(assumption.text)
+    return f'{view.symbol(quantity.symbol)} = <span class="nb">{given_value(quantity)}</span>'
+
+
+def equation_left(name: str) -> Picture:
+    """A symbol with the equals sign after it."""
+    return Row((symbol(name), Glyphs("=", "relation")))
+
+
+def _limits(quantity: Quantity) -> str:
+    least, greatest = (
+        typeset.quantity(quantity.least_text),
+        typeset.quantity(quantity.greatest_text),
+    )
+    return f"{least} to {greatest}"
+
+
+# --- worked quantities ------------------------------------------------------------------------
+
+
+def _work(view: View, quantity: Quantity) -> str:
+    """Formula, substitution and result, their equals signs under each other."""
+    left = symbol(quantity.symbol)
+    width = measure(left).width + LEAD
+    indent = width if width <= WIDEST_LEFT else 1.5
+    room = ROOM - indent
+    rows = [quantity.formula, quantity.substitution]
+    if rows[0] == rows[1]:  # nothing to fill in
+        rows.pop()
+    rights = [view.math(_led(row), room=room) for row in rows if row]
+    carried = quantity.units_carried
+    if carried and rights:
+        rights[-1] += f' <span class="units">{typeset.units(carried)}</span>'
+    if quantity.result and quantity.result != quantity.formula:
+        rights.append(view.math(_led(quantity.result), bold=True, room=room))
+    if quantity.index is not None:
+        rights.append(_series(view, quantity))
+    lead = (
+        f'<span class="lhs" style="margin-left:{-indent:.2f}em;min-width:{indent:.2f}em">'
+        f"{view.math(left)}</span>"
+    )
+    rows = [
+        f'<div class="eq">{lead if at == 0 else ""}{row}</div>' for at, row in enumerate(rights)
+    ]
+    return f'<div class="work" style="padding-left:{indent:.2f}em">{"".join(rows)}</div>'
+
+
+def _led(text: str) -> Picture:
+    """A right side with the equals sign before it."""
+    shown = equation(Row(()), read(text))
+    return Row(shown.parts)
+
+
+def _series(view: View, quantity: Quantity) -> str:
+    """The values of a series, each behind its index."""
+    values = quantity.nominal if isinstance(quantity.nominal, list) else [quantity.nominal]
+    digits = view.record.document.digits
+    pairs = zip(quantity.index or (), values, strict=False)
+    items = (
+        f'<span class="nb">{index}: {typeset.in_unit(value, quantity.unit, digits)}</span>'
+        for index, value in pairs
+    )
+    return f'<span class="ser">{"; ".join(items)}</span>'
+
+
+def _what(text: str) -> str:
+    return f'<p class="what">{escape(text)}</p>' if text else ""
+
+
+def _steps(view: View, quantity: Quantity) -> str:
+    return "".join(f'<p class="step">{view.sentence(step)}</p>' for step in quantity.steps)
+
+
+def _residual(view: View, quantity: Quantity) -> str:
+    return f'<p class="step">{view.sentence(quantity.residual)}</p>' if quantity.residual else ""
+
+
+def _notes(view: View, notes: tuple[str, ...]) -> str:
+    return "".join(f'<p class="step">{view.sentence(note)}</p>' for note in notes)
+
+
+def _band(_view: View, quantity: Quantity) -> str:
+    """Least, bar, greatest; nothing when the quantity does not vary."""
+    ends = (quantity.least, quantity.nominal, quantity.greatest)
+    if not quantity.varies or any(isinstance(end, list) for end in ends):
+        return ""
+    least, nominal, greatest = (float(end) for end in ends if not isinstance(end, list))
+    return (
+        f'<p class="band">least {typeset.quantity(quantity.least_text)} '
+        f"{band_bar(least, nominal, greatest)} "
+        f"greatest {typeset.quantity(quantity.greatest_text)}</p>"
+    )
+
+
+def _cases(view: View, quantity: Quantity) -> str:
+    """The values in the cases that change it."""
+    digits, unit = view.record.document.digits, quantity.unit
+    shown = []
+    for name, values in quantity.by_case.items():
+        text = f"{escape(name)}: {typeset.in_unit(values.nominal, unit, digits)}"
+        if values.least != values.greatest:
+            least, greatest = (
+                typeset.in_unit(end, unit, digits) for end in (values.least, values.greatest)
+            )
+            text += f", {least} to {greatest}"
+        shown.append(text)
+    return f'<p class="band">in {"; in ".join(shown)}</p>' if shown else ""
+
+
+# --- the right margin -------------------------------------------------------------------------
+
+
+def _side(view: View, quantity: Quantity) -> str:
+    """Basis, what it rests on, where it is used."""
+    basis = view.basis(quantity.basis)
+    if quantity.kind == "assumption" and quantity.state and quantity.state not in quantity.basis:
+        basis = f"{escape(quantity.state)}: {basis}"
+    if not basis and quantity.kind in GIVEN:
+        basis = "no source given"
+    rests = view.places(quantity.depends_on)
+    used = view.places(quantity.used_by)
+    return _aside([basis, f"from {rests}" if rests else "", f"used in {used}" if used else ""])
+
+
+def _criterion_side(view: View, criterion: Criterion) -> str:
+    governing = view.setting(criterion.governing)
+    case = "" if criterion.case in ("", "normal") else f"case {escape(criterion.case)}"
+    by = "; ".join(part for part in (case, governing) if part)
+    unverified = ", ".join(escape(each) for each in criterion.unverified)
+    return _aside(
+        [
+            view.basis(criterion.basis),
+            f"governed by {by}" if by else "",
+            f"rests on values not verified: {unverified}" if unverified else "",
+        ]
+    )
+
+
+def _aside(parts: list[str]) -> str:
+    shown = "<br>".join(part for part in parts if part)
+    return f'<div class="side">{shown}</div>' if shown else ""
+
+
+def _state(state: str, note: str) -> str:
+    return f"{state}: {note}" if note else state
+
+
+# --- criteria ---------------------------------------------------------------------------------
+
+
+def _compared(view: View, criterion: Criterion) -> str:
+    """Value side with numbers, the value, and what is required."""
+    if not criterion.value_text:
+        return ""
+    shown = view.math(criterion.substitution) if criterion.substitution else ""
+    value = _led(criterion.value_text) if shown else read(criterion.value_text)
+    shown += " " + view.math(value, bold=True)
+    if criterion.limit_text:
+        relation = RELATIONS.get(criterion.relation, criterion.relation)
+        limit = Row((Glyphs(relation, "relation"), *_parts(read(criterion.limit_text))))
+        shown += f' <span class="req">required</span> {view.math(limit)}'
+    return f'<div class="eq">{shown.strip()}</div>'
+
+
+def _parts(shown: Picture) -> tuple[Picture, ...]:
+    return shown.parts if isinstance(shown, Row) else (shown,)
+
+
+def _decided(view: View, criterion: Criterion) -> str:
+    """The bar, the verdict in words, the margin, the remark."""
+    words = verdict(criterion.verdict, criterion.accepted)
+    margin = f"margin {typeset.quantity(criterion.margin_text)}" if criterion.margin_text else ""
+    if criterion.verdict == "fail" and criterion.remark:
+        margin = ""
+    details = [margin, view.sentence(criterion.remark), view.sentence(criterion.reason)]
+    text = ", ".join([words, *(each for each in details if each)])
+    return f'<p class="band">{margin_bar(criterion.margin, criterion.verdict)} {text}</p>'

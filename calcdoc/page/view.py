@@ -1,0 +1,141 @@
+"""What the section builders share: the record, who draws the formulas, and where things stand."""
+
+import re
+from dataclasses import dataclass
+from functools import cached_property
+from html import escape
+
+from calcdoc.page import boxes, typeset
+from calcdoc.page.pieces import ROOM, Draw, no_links, pieces, read
+from calcdoc.record.pictures import symbol
+from calcdoc.record.record import Assumption, Criterion, Quantity, Record
+from calcdoc.record.shapes import Picture
+from calcdoc.text.names import fold
+
+NAME = re.compile(r"[^\W\d_][^\W_]*(?:\.[^\W\d_][^\W_]*)?(?:_\w+)|[\u0370-\u03ff][^\W_]*")
+"""What can only be a symbol in a sentence: with a subscript, or beginning with a Greek letter."""
+KEY = re.compile(r"\[([^\[\]]+)\]")
+
+
+@dataclass(frozen=True)
+class View:
+    """A record on its way to a page; ``paper`` for the sheets of the PDF."""
+
+    record: Record
+    draw: Draw
+    paper: bool
+    record_digest: str
+    """SHA-256 of the record's JSON."""
+
+    @cached_property
+    def quantities(self) -> dict[str, Quantity]:
+        """Quantities by symbol."""
+        return {each.symbol: each for each in self.record.quantities}
+
+    @cached_property
+    def criteria(self) -> dict[str, Criterion]:
+        """Criteria by id."""
+        return {each.id: each for each in self.record.criteria}
+
+    @cached_property
+    def assumptions(self) -> dict[str, Assumption]:
+        """Assumptions by id."""
+        return {each.id: each for each in self.record.assumptions}
+
+    @cached_property
+    def _places(self) -> dict[str, tuple[str, str]]:
+        """Name, id or line number -> what to call it, and its anchor."""
+        places = {each.id: (each.id, f"a-{each.id}") for each in self.record.assumptions}
+        places |= {each.line: places[each.id] for each in self.record.assumptions if each.line}
+        for each in self.record.quantities:
+            here = (each.id or each.line, f"q-{each.symbol}")
+            places |= dict.fromkeys(filter(None, (each.symbol, each.line, each.id)), here)
+        for one in self.record.criteria:
+            places |= dict.fromkeys(filter(None, (one.line, one.id)), (one.id, f"c-{one.id}"))
+        return {fold(name): place for name, place in places.items()}
+
+    @cached_property
+    def _links(self) -> dict[str, str]:
+        return {
+            fold(each.symbol): f' href="#q-{escape(each.symbol)}" data-card="{escape(card(each))}"'
+            for each in self.record.quantities
+        }
+
+    def links(self, name: str) -> str:
+        """Attributes of the link to the line that defines a symbol; empty where there is none."""
+        return self._links.get(fold(name), "")
+
+    def math(self, shown: Picture | str, *, bold: bool = False, room: float = ROOM) -> str:
+        """A formula, as pieces between which a line may break."""
+        shown = read(shown) if isinstance(shown, str) else shown
+        links = no_links if self.paper else self.links
+        return " ".join(self.draw(piece, links) for piece in pieces(shown, room, bold=bold))
+
+    def symbol(self, name: str) -> str:
+        """A symbol in running text, linked to its line."""
+        text = boxes.inline(symbol(name))
+        link = "" if self.paper else self.links(name)
+        return f'<a class="sym"{link}>{text}</a>' if link else f'<span class="sym">{text}</span>'
+
+    def sentence(self, text: str) -> str:
+        """A sentence of the record: its numbers typeset, its symbols set as symbols."""
+        return NAME.sub(self._named, escape(typeset.signs(text), quote=False))
+
+    def _named(self, found: re.Match[str]) -> str:
+        return self.symbol(found[0]) if fold(found[0]) in self._links else found[0]
+
+    def place(self, name: str) -> str:
+        """A line, criterion or assumption by its number, linked."""
+        label, anchor = self._places.get(fold(name), (name, ""))
+        if not anchor:
+            return escape(label)
+        return f'<a href="#{escape(anchor)}">{escape(label)}</a>'
+
+    def places(self, names: tuple[str, ...]) -> str:
+        """Several of them, each once, in order."""
+        return ", ".join(dict.fromkeys(self.place(name) for name in names))
+
+    @cached_property
+    def _keys(self) -> frozenset[str]:
+        return frozenset(each.key for each in self.record.references)
+
+    def basis(self, text: str) -> str:
+        """A basis with its citations set off and linked to the list of references."""
+        parts = KEY.split(text)  # what stands between the brackets has the odd places
+        return "".join(
+            self._citation(part) if at % 2 else escape(part) for at, part in enumerate(parts)
+        )
+
+    def _citation(self, inner: str) -> str:
+        key = inner.partition(",")[0].strip()
+        shown = f"[{escape(inner)}]"
+        if key in self._keys:
+            shown = f'<a href="#{reference_anchor(key)}">{shown}</a>'
+        return f"<b>{shown}</b>"
+
+    def citations(self, text: str) -> tuple[str, ...]:
+        """What a basis cites, as in ``EN 50160, clause 4.2``."""
+        found = KEY.findall(text)
+        return tuple(each for each in found if each.partition(",")[0].strip() in self._keys)
+
+    def setting(self, values: dict[str, str]) -> str:
+        """A combination of values, as in *V*line 253 V, *C*res 8.0 µF."""
+        pairs = (
+            f'<span class="nb">{self.symbol(name)} {typeset.quantity(value)}</span>'
+            for name, value in values.items()
+        )
+        return ", ".join(pairs)
+
+
+def reference_anchor(key: str) -> str:
+    """Anchor of a row in the list of references."""
+    return "ref-" + re.sub(r"[^\w.-]+", "-", key)
+
+
+def card(quantity: Quantity) -> str:
+    """Meaning, value and band of a quantity in one line of plain text."""
+    lines = [quantity.description or "no description", typeset.plain_quantity(quantity.result)]
+    if quantity.varies:
+        least = typeset.plain_quantity(quantity.least_text)
+        lines.append(f"{least} to {typeset.plain_quantity(quantity.greatest_text)}")
+    return " · ".join(line for line in lines if line)
