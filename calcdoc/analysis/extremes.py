@@ -14,18 +14,22 @@ from typing import Final
 import numpy as np
 
 from calcdoc.analysis.hunt import Hunt
-from calcdoc.analysis.points import BoolArray, FloatArray, IntArray, evaluate_points, needed
+from calcdoc.analysis.points import BoolArray, FloatArray, IntArray
+from calcdoc.analysis.program import Program, needed, program
 from calcdoc.analysis.search import search
-from calcdoc.analysis.sweep import Boxes, Dependence, sweep
+from calcdoc.analysis.sweep import Boxes, sweep
 from calcdoc.analysis.tape import Tape
-from calcdoc.analysis.vanish import dependence
 
 CHUNK: Final = 128
 """Questions evaluated in one pass; more would compute much that each one does not need."""
 CELLS: Final = 8192
 """Boxes times slots in the first sweep."""
-GAP: Final = 1e-9
-"""Largest relative gap between bound and attained value of a bounded result."""
+WORK: Final = 1_500_000
+"""Instructions times slots times boxes that one hard question may cost: some hundred ms."""
+WORK_OF_ALL: Final = 12_000_000
+"""The same for all hard questions together."""
+LEAST_BOXES: Final = 96
+MOST_BOXES: Final = 8192
 
 
 class Proof(Enum):
@@ -53,7 +57,8 @@ class Extreme:
     """The answer to one question."""
 
     value: float
-    """Attained at ``point``; NaN where nothing in the box could be computed."""
+    """Attained at ``point``. When the range runs to infinity it is the value at nominal, or some
+    finite value; NaN where nothing was found that can be computed."""
     bound: float
     """Proven: nothing in the box is beyond it. Equal to ``value`` when exact."""
     point: FloatArray
@@ -76,33 +81,47 @@ class _Start:
     """Inputs whose slope may have either sign."""
 
 
-def extremes(tape: Tape, questions: Sequence[Question]) -> tuple[Extreme, ...]:
+def extremes(
+    tape: Tape, questions: Sequence[Question], goals: Sequence[float] | None = None
+) -> tuple[Extreme, ...]:
     """Answer all questions, in their order.
 
-    The same question gets the same answer whatever else is asked, except that the work is shared.
+    Args:
+        tape: The formulas, in coherent SI.
+        questions: What to find; the work that a hard one may cost is shared by all.
+        goals: For each question a value at which a search may stop early: it was attained, or it
+            is proven to be out of reach. None to search to the end.
     """
     if not questions:
         return ()
-    order = needed(tape, {question.target for question in questions})
-    depends = Dependence.of(tape, order, dependence(tape, order))
-    starts = _first_sweep(tape, order, depends, questions)
-    hunts = {
-        at: _hunt(tape, questions[at], start) for at, start in enumerate(starts) if start.open.size
-    }
-    search(tape, depends, list(hunts.values()))
+    whole = program(tape, {question.target for question in questions})
+    starts = _first_sweep(whole, questions)
+    hard = [at for at, start in enumerate(starts) if start.open.size]
+    hunts = {at: _hunt(whole, questions[at], starts[at], len(hard)) for at in hard}
+    for at, hunt in hunts.items():
+        if goals is not None:
+            hunt.goal = hunt.sign * goals[at]
+    search(whole, list(hunts.values()))
     points = [
         start.point if at not in hunts else _found(hunts[at]) for at, start in enumerate(starts)
     ]
-    values = _attained(tape, questions, points)
+    values = _attained(whole, questions, points)
+    lost = [at for at, value in enumerate(values) if not np.isfinite(value)]
+    for at in lost:
+        points[at] = questions[at].nominal
+    for at, value in zip(
+        lost,
+        _attained(whole, [questions[at] for at in lost], [points[at] for at in lost]),
+        strict=True,
+    ):
+        values[at] = value
     return tuple(
-        _answer(*row, hunts.get(at))
+        _unbounded(*row) if at in lost else _answer(*row, hunts.get(at))
         for at, row in enumerate(zip(questions, starts, points, values, strict=True))
     )
 
 
-def _first_sweep(
-    tape: Tape, order: Sequence[int], depends: Dependence, questions: Sequence[Question]
-) -> list[_Start]:
+def _first_sweep(whole: Program, questions: Sequence[Question]) -> list[_Start]:
     """Sweep every distinct box once and read off the slopes of all targets."""
     columns: dict[tuple[bytes, bytes], list[int]] = {}
     for at, question in enumerate(questions):
@@ -121,10 +140,10 @@ def _first_sweep(
             slots[: len(inputs), column] = inputs
         low = np.stack([questions[group[0]].low for group in part], axis=1)
         high = np.stack([questions[group[0]].high for group in part], axis=1)
-        swept = sweep(tape, order, Boxes(low, high, slots), depends)
+        swept = sweep(whole, Boxes(low, high, slots))
         for column, group in enumerate(part):
             for at in group:
-                move = swept.moves[questions[at].target]
+                move = swept.moves[whole.row[questions[at].target]]
                 inputs = moving[first + column]
                 slopes = None if move is None else move[:, : len(inputs), column]
                 starts[at] = _start(questions[at], inputs, slopes)
@@ -147,9 +166,10 @@ def _start(question: Question, inputs: IntArray, slopes: FloatArray | None) -> _
     return _Start(point, matters, inputs[~rises & ~falls])
 
 
-def _hunt(tape: Tape, question: Question, start: _Start) -> Hunt:
-    """Set out to search the open inputs of a question."""
-    weight = len(needed(tape, (question.target,))) * (len(start.open) + 8)
+def _hunt(whole: Program, question: Question, start: _Start, n_hard: int) -> Hunt:
+    """Set out to search the open inputs of a question that is one of ``n_hard``."""
+    weight = len(needed(whole.tape, (whole.row[question.target],))) * (len(start.open) + 8)
+    work = min(WORK, WORK_OF_ALL // n_hard)
     return Hunt(
         target=question.target,
         sign=1.0 if question.greatest else -1.0,
@@ -158,12 +178,8 @@ def _hunt(tape: Tape, question: Question, start: _Start) -> Hunt:
         low=question.low[start.open][:, None],
         high=question.high[start.open][:, None],
         bound=np.array([np.inf]),
-        limit=int(np.clip(WORK // weight, 256, 8192)),
+        limit=int(np.clip(work // weight, LEAST_BOXES, MOST_BOXES)),
     )
-
-
-WORK: Final = 1_500_000
-"""Instructions times slots times boxes that one question may cost: some hundred ms."""
 
 
 def _found(hunt: Hunt) -> FloatArray:
@@ -174,18 +190,26 @@ def _found(hunt: Hunt) -> FloatArray:
 
 
 def _attained(
-    tape: Tape, questions: Sequence[Question], points: Sequence[FloatArray]
+    whole: Program, questions: Sequence[Question], points: Sequence[FloatArray]
 ) -> list[float]:
     """Value of each question's target at its point, in chunks that need like parts of the tape."""
     by_target = sorted(range(len(questions)), key=lambda at: questions[at].target)
     values = [np.nan] * len(questions)
     for first in range(0, len(by_target), CHUNK):
-        part = by_target[first : first + CHUNK]
-        order = needed(tape, {questions[at].target for at in part})
-        computed = evaluate_points(tape, np.stack([points[at] for at in part], axis=1), order)
-        for column, at in enumerate(part):
-            values[at] = float(computed[questions[at].target, column])
+        some = by_target[first : first + CHUNK]
+        part = whole.part({questions[at].target for at in some})
+        computed = part.evaluate(np.stack([points[at] for at in some], axis=1))
+        for column, at in enumerate(some):
+            values[at] = float(computed[part.row[questions[at].target], column])
     return values
+
+
+def _unbounded(question: Question, start: _Start, point: FloatArray, value: float) -> Extreme:
+    """Nothing finite was found at the extreme: fall back to nominal."""
+    bound = np.inf if question.greatest else -np.inf
+    inside = start.matters & (point > question.low) & (point < question.high)
+    known = value if np.isfinite(value) else np.nan
+    return Extreme(known, bound, point, start.matters, inside, Proof.SEARCHED)
 
 
 def _answer(
@@ -194,9 +218,6 @@ def _answer(
     """Say what was found and how sure it is."""
     matters = start.matters
     inside = matters & (point > question.low) & (point < question.high)
-    sign = 1.0 if question.greatest else -1.0
-    if not np.isfinite(value):
-        return Extreme(np.nan, sign * np.inf, point, matters, inside, Proof.SEARCHED)
     if hunt is None or hunt.top <= hunt.best:
         return Extreme(value, value, point, matters, inside, Proof.EXACT)
     bound = hunt.sign * hunt.top

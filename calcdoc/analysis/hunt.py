@@ -6,15 +6,22 @@ inputs that are not free stand still at ``base``.
 """
 
 from dataclasses import dataclass, field
+from typing import Final
 
 import numpy as np
 
 from calcdoc.analysis.intervals import neg
 from calcdoc.analysis.points import BoolArray, FloatArray, IntArray
 
-TOLERANCE = 1e-9
+TOLERANCE: Final = 1e-9
 """Gap between bound and attained value, relative to the largest value seen, that counts as none."""
-TINY = 1e-300
+KEEN: Final = 48
+"""Boxes looked at before a gap that counts as none is accepted."""
+KEEN_INPUTS: Final = 3
+MOST_ROUNDS: Final = 120
+PATIENCE: Final = 40
+"""Rounds after which an infinite bound is accepted."""
+TINY: Final = 1e-300
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,6 +64,8 @@ class Hunt:
     closed: float = -np.inf
     """Greatest bound of a box that was given up because the gap was too small to matter."""
     used: int = 0
+    """Boxes looked at."""
+    rounds: int = 0
 
     def __post_init__(self) -> None:
         self.box = self.low[:, 0], self.high[:, 0]
@@ -71,6 +80,12 @@ class Hunt:
         return TOLERANCE * max(abs(self.best), self.best - self.worst)
 
     @property
+    def _slack(self) -> float:
+        """Gap at which a box is given up: none at first, so that what can be exact becomes so."""
+        keen = self.used < KEEN and len(self.free) <= KEEN_INPUTS
+        return 0.0 if keen else 0.9 * self.tolerance
+
+    @property
     def top(self) -> float:
         """Proven bound: nothing in the whole box is beyond it."""
         return max(self.best, self.closed, float(self.bound.max(initial=-np.inf)))
@@ -78,11 +93,11 @@ class Hunt:
     @property
     def done(self) -> bool:
         """Whether nothing is open, the budget is used, or the goal is decided."""
-        if self.bound.size == 0 or self.used >= self.limit:
+        if self.bound.size == 0 or self.used >= self.limit or self.rounds >= MOST_ROUNDS:
             return True
         if self.best >= self.goal or self.top < self.goal < np.inf:
             return True
-        return 8 * self.used >= self.limit and self.top == np.inf
+        return self.rounds >= PATIENCE and self.top == np.inf
 
     def take(self, count: int) -> tuple[FloatArray, FloatArray]:
         """Remove the ``count`` boxes with the greatest bounds from the pool."""
@@ -121,9 +136,9 @@ class Hunt:
             candidates=np.concatenate(points, axis=1),
         )
 
-    def settle(self, trial: Trial, values: FloatArray) -> None:
-        """Take note of the candidates' values, drop what cannot be better, halve the rest."""
-        signed = np.where(np.isfinite(values), self.sign * values, -np.inf)
+    def settle(self, trial: Trial, signed: FloatArray) -> None:
+        """Use the signed values of the candidates: drop what cannot be better, halve the rest."""
+        self.rounds += 1
         self.offer(trial.candidates, signed)
         if (seen := signed[np.isfinite(signed)]).size:
             self.worst = min(self.worst, float(seen.min()))
@@ -131,7 +146,7 @@ class Hunt:
         monotone = ~trial.open.any(axis=0)
         known = monotone & np.isfinite(signed[: len(bound)])  # its end was evaluated: exact
         alive = ~known & (bound > self.best)
-        near = alive & ((bound <= self.best + self.tolerance) | monotone)
+        near = alive & ((bound <= self.best + self._slack) | monotone)
         self._close(bound[near])
         alive &= ~near
         if self.used == 1 and not trial.open.all() and alive.any():
@@ -139,7 +154,7 @@ class Hunt:
             self.used += 1
         else:
             self._halve(trial, np.flatnonzero(alive))
-        kept = self.bound > self.best + self.tolerance
+        kept = self.bound > self.best + self._slack
         self._close(self.bound[~kept & (self.bound > self.best)])
         self.low, self.high, self.bound = self.low[:, kept], self.high[:, kept], self.bound[kept]
 

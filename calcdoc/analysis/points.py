@@ -1,6 +1,6 @@
 """Evaluate a tape at points: every column of the inputs is one point, all columns in one pass."""
 
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from fractions import Fraction
 from typing import Final
 
@@ -44,69 +44,74 @@ _TWO: Final[Mapping[Op, Callable[..., FloatArray]]] = {
 }
 
 
-def needed(tape: Tape, targets: Iterable[int]) -> tuple[int, ...]:
-    """Indices of the instructions that the targets use, themselves included, ascending."""
-    seen: set[int] = set()
-    stack = list(targets)
-    while stack:
-        at = stack.pop()
-        if at not in seen:
-            seen.add(at)
-            stack.extend(tape.instructions[at].args)
-    return tuple(sorted(seen))
+Step = Callable[[FloatArray, FloatArray, FloatArray], object]
+"""Computes one row from the rows before it and the inputs: (values, inputs, out)."""
 
 
-def evaluate_points(
-    tape: Tape, inputs: FloatArray, order: Iterable[int] | None = None
-) -> FloatArray:
+def evaluate_points(tape: Tape, inputs: FloatArray) -> FloatArray:
     """Evaluate the tape on all columns at once.
 
     Args:
         tape: The formulas, in coherent SI.
         inputs: Shape (n_inputs, n_columns), each column one point.
-        order: Instructions to compute, ascending and closed under arguments; None for all.
 
     Returns:
         Shape (n_instructions, n_columns); a condition is 0.0 or 1.0; what cannot be computed is
-        not finite, and a row outside ``order`` is NaN. An ``if`` takes its branch alone, so what
-        the other branch yields never matters.
+        not finite. An ``if`` takes its branch alone, so what the other branch yields never
+        matters.
     """
-    values = np.full((len(tape.instructions), inputs.shape[1]), np.nan)
+    return run(compile_steps(tape), inputs)
+
+
+def run(steps: Sequence[Step], inputs: FloatArray) -> FloatArray:
+    """Evaluate compiled steps; shapes as in :func:`evaluate_points`."""
+    values = np.empty((len(steps), inputs.shape[1]))
     with np.errstate(all="ignore"):
-        for at in range(len(tape.instructions)) if order is None else order:
-            _compute(tape.instructions[at], inputs, values, values[at])
+        for step, out in zip(steps, values, strict=True):
+            step(values, inputs, out)
     return values
 
 
-def _compute(step: Instruction, inputs: FloatArray, values: FloatArray, out: FloatArray) -> None:
-    """Compute one instruction on all columns into ``out``."""
-    if (two := _TWO.get(step.op)) is not None:
-        two(values[step.args[0]], values[step.args[1]], out=out)
-    elif (one := _ONE.get(step.op)) is not None:
-        one(values[step.args[0]], out=out)
-    elif step.op is Op.CONST:
-        assert step.value is not None
-        out[:] = float(step.value)
-    elif step.op is Op.INPUT:
-        assert isinstance(step.value, int)
-        out[:] = inputs[step.value]
-    elif step.op is Op.POWER:
-        assert isinstance(step.value, Fraction | int)
-        _power(values[step.args[0]], step.value, out)
-    elif step.op is Op.NOT:
-        np.subtract(1.0, values[step.args[0]], out=out)
-    else:
-        condition, if_true, if_false = step.args
-        out[:] = np.where(values[condition] != 0.0, values[if_true], values[if_false])
+def compile_steps(tape: Tape) -> tuple[Step, ...]:
+    """One function for each instruction, so that a pass looks nothing up."""
+    return tuple(_step(instruction) for instruction in tape.instructions)
 
 
-def _power(base: FloatArray, exponent: Fraction | int, out: FloatArray) -> None:
+def _step(instruction: Instruction) -> Step:
+    op, args, value = instruction.op, instruction.args, instruction.value
+    if (two := _TWO.get(op)) is not None:
+        a, b = args
+        return lambda values, _inputs, out: two(values[a], values[b], out=out)
+    if (one := _ONE.get(op)) is not None:
+        (a,) = args
+        return lambda values, _inputs, out: one(values[a], out=out)
+    if op is Op.IF:
+        return lambda values, _inputs, out: _choose(values, args, out)
+    if op is Op.NOT:
+        return lambda values, _inputs, out: np.subtract(1.0, values[args[0]], out=out)
+    assert value is not None
+    if op is Op.INPUT:
+        row = int(value)
+        return lambda _values, inputs, out: np.copyto(out, inputs[row])
+    if op is Op.CONST:
+        number = float(value)
+        return lambda _values, _inputs, out: out.fill(number)
+    assert op is Op.POWER
+    return _power(args[0], Fraction(value))
+
+
+def _choose(values: FloatArray, args: tuple[int, ...], out: FloatArray) -> None:
+    condition, if_true, if_false = args
+    np.copyto(out, np.where(values[condition] != 0.0, values[if_true], values[if_false]))
+
+
+def _power(a: int, exponent: Fraction) -> Step:
     """Raise to a rational exponent; the common ones as products and roots, which round better."""
     if exponent == 2:  # noqa: PLR2004
-        np.multiply(base, base, out=out)
-    elif exponent == -1:
-        np.divide(1.0, base, out=out)
-    elif exponent == Fraction(1, 2):
-        np.sqrt(base, out=out)
-    else:
-        np.power(base, float(exponent), out=out)
+        return lambda values, _inputs, out: np.multiply(values[a], values[a], out=out)
+    if exponent == -1:
+        return lambda values, _inputs, out: np.divide(1.0, values[a], out=out)
+    if exponent == Fraction(1, 2):
+        return lambda values, _inputs, out: np.sqrt(values[a], out=out)
+    power = float(exponent)
+    return lambda values, _inputs, out: np.power(values[a], power, out=out)

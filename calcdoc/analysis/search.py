@@ -5,60 +5,71 @@ from typing import Final
 
 import numpy as np
 
-from calcdoc.analysis.hunt import Hunt, Trial
-from calcdoc.analysis.points import FloatArray, evaluate_points, needed
-from calcdoc.analysis.sweep import Boxes, Dependence, sweep
-from calcdoc.analysis.tape import Tape
+from calcdoc.analysis.hunt import Hunt
+from calcdoc.analysis.pattern import SMALLEST_REACH, Pattern
+from calcdoc.analysis.points import FloatArray
+from calcdoc.analysis.program import Program
+from calcdoc.analysis.sweep import Boxes, sweep
 
 COLUMNS: Final = 128
 """Boxes in one sweep: enough to hide the cost of a call, few enough to stay best first."""
+CROWD: Final = 32
+"""Hunts that run together; more would sweep much that each one does not need."""
 POLISH_STEPS: Final = 48
 
 
-def search(tape: Tape, depends: Dependence, hunts: Sequence[Hunt]) -> None:
+def search(program: Program, hunts: Sequence[Hunt]) -> None:
     """Run all hunts to their end; they are changed in place."""
+    for first in range(0, len(hunts), CROWD):
+        _run(program, hunts[first : first + CROWD])
+    open_ends = [hunt for hunt in hunts if hunt.top > hunt.best and hunt.goal == np.inf]
+    for first in range(0, len(open_ends), CROWD):
+        polish(program, open_ends[first : first + CROWD], POLISH_STEPS)
+
+
+def _run(program: Program, hunts: Sequence[Hunt]) -> None:
+    """Run some hunts to their end, together."""
+    part, targets = program, frozenset[int]()
     rounds = 0
     while active := [hunt for hunt in hunts if not hunt.done]:
-        crowd = active[:COLUMNS]
-        order = needed(tape, {hunt.target for hunt in crowd})
-        _advance(tape, order, depends, crowd)
         rounds += 1
+        if targets != (now := frozenset(hunt.target for hunt in active)):
+            part, targets = program.part(now), now
+        _advance(part, active)
         if rounds == 3:  # noqa: PLR2004 - easy questions are over by now
-            for hunt in crowd:
-                polish(tape, hunt)
-    for hunt in hunts:
-        if hunt.top > hunt.best and hunt.goal == np.inf:
-            polish(tape, hunt)
+            polish(part, active, POLISH_STEPS // 4)
 
 
-def _advance(
-    tape: Tape, order: Sequence[int], depends: Dependence, hunts: Sequence[Hunt]
-) -> None:
+def _advance(program: Program, hunts: Sequence[Hunt]) -> None:
     """One round: sweep the most promising boxes of every hunt, evaluate points, settle."""
     share = max(1, COLUMNS // len(hunts))
     taken = [hunt.take(share) for hunt in hunts]
-    swept = sweep(tape, order, _columns(hunts, taken), depends)
+    swept = sweep(program, _columns(hunts, taken))
     trials, first = [], 0
     for hunt, (low, high) in zip(hunts, taken, strict=True):
         here = slice(first, first + low.shape[1])
-        move = swept.moves[hunt.target]
+        row = program.row[hunt.target]
+        move = swept.moves[row]
         slopes = np.zeros((2, *low.shape)) if move is None else move[:, : len(low), here]
-        trials.append(hunt.learn(low, high, swept.values[hunt.target][:, here], slopes))
+        trials.append(hunt.learn(low, high, swept.values[row][:, here], slopes))
         first = here.stop
-    _settle(tape, order, hunts, trials)
+    values = _evaluate(program, hunts, [trial.candidates for trial in trials])
+    for hunt, trial, signed in zip(hunts, trials, values, strict=True):
+        hunt.settle(trial, signed)
 
 
-def _settle(
-    tape: Tape, order: Sequence[int], hunts: Sequence[Hunt], trials: Sequence[Trial]
-) -> None:
-    """Evaluate the candidates of all trials in one pass and hand out the values."""
-    points = [_full(hunt, trial.candidates) for hunt, trial in zip(hunts, trials, strict=True)]
-    values = evaluate_points(tape, np.concatenate(points, axis=1), order)
-    first = 0
-    for hunt, trial in zip(hunts, trials, strict=True):
-        end = first + trial.candidates.shape[1]
-        hunt.settle(trial, values[hunt.target, first:end])
-        first = end
+def _evaluate(
+    program: Program, hunts: Sequence[Hunt], points: Sequence[FloatArray]
+) -> list[FloatArray]:
+    """Signed values of each hunt at its points (n_free, c); -inf where not computable."""
+    columns = [_full(hunt, point) for hunt, point in zip(hunts, points, strict=True)]
+    values = program.evaluate(np.concatenate(columns, axis=1))
+    signed, first = [], 0
+    for hunt, point in zip(hunts, points, strict=True):
+        own = values[program.row[hunt.target], first : first + point.shape[1]]
+        signed.append(np.where(np.isfinite(own), hunt.sign * own, -np.inf))
+        first += point.shape[1]
+    return signed
 
 
 def _full(hunt: Hunt, free: FloatArray) -> FloatArray:
@@ -82,32 +93,21 @@ def _columns(hunts: Sequence[Hunt], taken: Sequence[tuple[FloatArray, FloatArray
     return Boxes(np.concatenate(lows, axis=1), np.concatenate(highs, axis=1), slots)
 
 
-def polish(tape: Tape, hunt: Hunt) -> None:
-    """Improve the best point by steps along each input and along all their best steps together.
+def polish(program: Program, hunts: Sequence[Hunt], n_steps: int) -> None:
+    """Improve the best points by steps along each input and along all best steps together.
 
-    Afterwards an attained value is right to about 1e-12 of its size even where the boxes are not
-    small yet. The steps are a pattern that shrinks when nothing is better.
+    With enough steps an attained value is right to about 1e-12 of its size even where the boxes
+    are not small yet. The pattern of steps shrinks when nothing is better.
     """
-    order = needed(tape, (hunt.target,))
-    low, high = hunt.box
-    pattern = np.array([-1.0, -0.5, -0.25, 0.25, 0.5, 1.0])
-    n_free, reach = len(hunt.free), 0.25
-    combined = hunt.at
-    for _ in range(POLISH_STEPS):
-        steps = np.repeat(hunt.at[:, None], n_free * len(pattern) + 1, axis=1)
-        for row in range(n_free):
-            mine = slice(row * len(pattern), (row + 1) * len(pattern))
-            steps[row, mine] += pattern * (reach * hunt.width[row])
-        steps[:, -1] = combined
-        steps = np.clip(steps, low[:, None], high[:, None])
-        values = evaluate_points(tape, _full(hunt, steps), order)[hunt.target]
-        signed = np.where(np.isfinite(values), hunt.sign * values, -np.inf)
-        here = signed[:-1].reshape(n_free, len(pattern))
-        choice = here.argmax(axis=1)
-        better = here.max(axis=1) > hunt.best
-        step = np.where(better, pattern[choice] * (reach * hunt.width), 0.0)
-        combined = np.clip(hunt.at + step, low, high)
-        if not hunt.offer(steps, signed):
-            reach *= 0.25
-            if reach < 1e-15:  # noqa: PLR2004 - no float is left between
-                break
+    if not hunts:
+        return
+    part = program.part({hunt.target for hunt in hunts})
+    active = [Pattern(hunt) for hunt in hunts if np.isfinite(hunt.best)]
+    for _ in range(n_steps):
+        active = [pattern for pattern in active if pattern.reach > SMALLEST_REACH]
+        if not active:
+            break
+        points = [pattern.points() for pattern in active]
+        values = _evaluate(part, [pattern.hunt for pattern in active], points)
+        for pattern, own, signed in zip(active, points, values, strict=True):
+            pattern.move(own, signed)

@@ -6,7 +6,6 @@ respect to the inputs named by the column's slots. Where an operation meets the 
 sides, the interval is cut by the mean-value form: the centre plus slopes times half widths.
 """
 
-from collections.abc import Sequence
 from dataclasses import dataclass, field
 from fractions import Fraction
 
@@ -14,38 +13,9 @@ import numpy as np
 
 from calcdoc.analysis import intervals as iv
 from calcdoc.analysis.points import BoolArray, FloatArray, IntArray
+from calcdoc.analysis.program import Program
 from calcdoc.analysis.slopes import Tangent, tangent
-from calcdoc.analysis.tape import Instruction, Op, Tape
-
-
-@dataclass(frozen=True, slots=True)
-class Dependence:
-    """What each instruction depends on, for all passes over one tape."""
-
-    order: tuple[int, ...]
-    """Instructions looked at, ascending and closed under arguments."""
-    inputs: BoolArray
-    """Shape (n_instructions, n_inputs): False where the input certainly has no effect."""
-    meets: frozenset[int]
-    """Instructions whose arguments depend on a common input."""
-    lost: frozenset[int]
-    """Instructions that do not depend on some input that an argument depends on."""
-
-    @classmethod
-    def of(cls, tape: Tape, order: tuple[int, ...], inputs: BoolArray) -> "Dependence":
-        """Derive the sets from the table of :func:`calcdoc.analysis.vanish.dependence`."""
-        meets, lost = set(), set()
-        for at in order:
-            args = tape.instructions[at].args
-            if len(args) > 1:
-                counts = inputs[list(args)].sum(axis=0)
-                if (counts > 1).any():
-                    meets.add(at)
-                    if ((counts > 0) & ~inputs[at]).any():
-                        lost.add(at)
-            elif args and (inputs[args[0]] & ~inputs[at]).any():
-                lost.add(at)
-        return cls(order, inputs, frozenset(meets), frozenset(lost))
+from calcdoc.analysis.tape import Instruction, Op
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,46 +36,47 @@ class Boxes:
 
 @dataclass(frozen=True, slots=True)
 class Swept:
-    """Ranges and slopes found by one pass, by instruction."""
+    """Ranges and slopes found by one pass, by row of the program."""
 
-    values: dict[int, FloatArray] = field(default_factory=dict)
+    values: list[FloatArray] = field(default_factory=list)
     """Intervals of shape (2, n_columns)."""
-    moves: dict[int, Tangent] = field(default_factory=dict)
+    moves: list[Tangent] = field(default_factory=list)
     """Tangents of shape (2, n_slots, n_columns); None where nothing moves."""
 
 
-def sweep(tape: Tape, order: Sequence[int], boxes: Boxes, depends: Dependence) -> Swept:
-    """Carry all boxes through the instructions ``order`` (ascending, closed under arguments)."""
+def sweep(program: Program, boxes: Boxes) -> Swept:
+    """Carry all boxes through a program.
+
+    Every input that has width in a column must be named by a slot of that column, unless the
+    target of interest does not depend on it.
+    """
     n_columns = boxes.low.shape[1]
     centre = boxes.centre()
     half = _half_widths(boxes, centre)
+    low = np.concatenate((boxes.low, centre), axis=1)
+    high = np.concatenate((boxes.high, centre), axis=1)
     swept = Swept()
-    both: dict[int, FloatArray] = {}  # boxes, then their centres, as columns of one array
+    both: list[FloatArray] = []  # boxes, then their centres, as columns of one array
     with np.errstate(all="ignore"):
-        for at in order:
-            step = tape.instructions[at]
+        for at, step in enumerate(program.tape.instructions):
+            move: Tangent = None
             if step.op is Op.INPUT:
                 assert isinstance(step.value, int)
                 row = step.value
-                both[at] = np.array(
-                    (
-                        np.concatenate((boxes.low[row], centre[row])),
-                        np.concatenate((boxes.high[row], centre[row])),
-                    )
-                )
-                swept.values[at] = both[at][:, :n_columns]
-                swept.moves[at] = _seed(boxes.slots, row)
-                continue
-            both[at] = _value(step, [both[arg] for arg in step.args], 2 * n_columns)
-            value = swept.values[at] = both[at][:, :n_columns]
-            args = tuple(swept.values[arg] for arg in step.args)
-            moves = tuple(swept.moves[arg] for arg in step.args)
-            move = tangent(step, args, moves, value) if step.args else None
-            if move is not None and at in depends.lost:
-                move = _forget(move, boxes.slots, depends.inputs[at])
-            swept.moves[at] = move
-            if at in depends.meets:
+                both.append(np.array((low[row], high[row])))
+                move = _seed(boxes.slots, row)
+            else:
+                both.append(_value(step, [both[arg] for arg in step.args], 2 * n_columns))
+            value = both[at][:, :n_columns]
+            if step.args:
+                args = tuple(swept.values[arg] for arg in step.args)
+                move = tangent(step, args, tuple(swept.moves[arg] for arg in step.args), value)
+            if move is not None and at in program.lost:
+                move = _forget(move, boxes.slots, program.depends[at])
+            if at in program.meets:
                 _cut(value, both[at][:, n_columns:], move, half)
+            swept.values.append(value)
+            swept.moves.append(move)
     return swept
 
 

@@ -69,6 +69,12 @@ class TapeBuilder:
     _instructions: list[Instruction] = field(default_factory=list)
     _index: dict[Instruction, int] = field(default_factory=dict)
 
+    @classmethod
+    def on(cls, tape: Tape) -> "TapeBuilder":
+        """A builder that goes on from ``tape``, whose indices stay."""
+        index = {instruction: at for at, instruction in enumerate(tape.instructions)}
+        return cls(tape.n_inputs, list(tape.instructions), index)
+
     def add(self, op: Op, *args: int, value: Fraction | float | int | None = None) -> int:
         """Index of the instruction, new or already there."""
         if op is Op.MUL and args[0] == args[1]:

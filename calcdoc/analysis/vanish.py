@@ -8,7 +8,7 @@ argument: equal for equal arguments, independent otherwise. So nothing is claime
 true for *any* function in its place, which makes jumps and kinks safe.
 """
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Mapping
 from fractions import Fraction
 from hashlib import blake2b
 from typing import Final
@@ -27,25 +27,20 @@ Residues = tuple[Residue, ...]
 Rule = Callable[..., tuple[Residue, tuple[Residue, ...]]]
 
 
-def dependence(tape: Tape, order: Sequence[int]) -> BoolArray:
+def dependence(tape: Tape) -> BoolArray:
     """Whether each instruction depends on each input.
-
-    Args:
-        tape: The formulas.
-        order: Instructions to look at, ascending and closed under arguments.
 
     Returns:
         Shape (n_instructions, n_inputs). False is certain: the value is the same whatever the
-        input is, wherever it can be computed. Rows outside ``order`` are False.
+        input is, wherever it can be computed.
     """
     depends = np.zeros((len(tape.instructions), tape.n_inputs), dtype=bool)
-    values: dict[int, Residues] = {}
+    values: list[Residues] = []
     moves: dict[int, NDArray[np.int64]] = {}
-    for at in order:
-        step = tape.instructions[at]
+    for at, step in enumerate(tape.instructions):
         args = [values[arg] for arg in step.args]
         rows = [_rule(step, at_point, *p) for at_point, p in enumerate(_points(args))]
-        values[at] = tuple(value for value, _ in rows)
+        values.append(tuple(value for value, _ in rows))
         if step.op is Op.INPUT:
             assert isinstance(step.value, int)
             moves[at] = np.zeros((N_POINTS, tape.n_inputs), dtype=np.int64)
