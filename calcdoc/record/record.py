@@ -190,6 +190,8 @@ class Document(Plain):
 
     number: str
     title: str
+    subtitle: str
+    """The text of the one level-1 heading that opens the text; may be empty."""
     revision: str
     date: str
     status: str

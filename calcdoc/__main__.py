@@ -1,0 +1,5 @@
+"""``python -m calcdoc``."""
+
+from calcdoc.commands import main
+
+main()

@@ -1,0 +1,60 @@
+"""The verdict table for the terminal."""
+
+from calcdoc.record.record import Criterion, Record
+from calcdoc.record.wording import counted, typeset
+
+_SIGNS = {"<=": "≤", ">=": "≥", "<": "<", ">": ">"}
+Row = tuple[str, ...]
+_RIGHT = frozenset({2, 4, 5})
+"""Columns of numbers."""
+
+
+def verdict_table(record: Record) -> str:
+    """Title, one row for each criterion, and the bottom line."""
+    document = record.document
+    head = f"{document.number} revision {document.revision}: {document.title}"
+    rows = [_row(each) for each in record.criteria]
+    lines = [head, "", *_aligned(rows), ""] if rows else [head, ""]
+    return "\n".join((*lines, *_bottom(record)))
+
+
+def _row(criterion: Criterion) -> Row:
+    what = criterion.description or criterion.text
+    if criterion.value is None:
+        return (criterion.id, criterion.verdict, "", "", "", "", criterion.text)
+    at = ", ".join(f"{symbol} {typeset(text)}" for symbol, text in criterion.governing.items())
+    return (
+        criterion.id,
+        criterion.verdict,
+        typeset(criterion.value_text),
+        _SIGNS[criterion.relation],
+        typeset(criterion.limit_text),
+        f"margin {typeset(criterion.margin_text)}",
+        f"{what}{f' (at {at})' if at else ''}",
+    )
+
+
+def _aligned(rows: list[Row]) -> list[str]:
+    widths = [max(len(row[column]) for row in rows) for column in range(len(rows[0]))]
+    return [
+        "  "
+        + "  ".join(
+            cell.rjust(width) if column in _RIGHT else cell.ljust(width)
+            for column, (cell, width) in enumerate(zip(row, widths, strict=True))
+        ).rstrip()
+        for row in rows
+    ]
+
+
+def _bottom(record: Record) -> list[str]:
+    """The bottom line, then what is open."""
+    said = [record.verdict.bottom_line]
+    said += [f"{each.id}: {each.reason}" for each in record.criteria if each.reason]
+    open_ones = [each.id or each.symbol for each in record.assumptions if each.state == "open"]
+    if open_ones:
+        said.append(f"{counted(len(open_ones), 'open assumption')}: {', '.join(open_ones)}")
+    tests = [each.id for each in record.criteria if each.verdict in ("by test", "by inspection")]
+    if tests:
+        said.append(f"{counted(len(tests), 'criterion', 'criteria')} not calculated:"
+                    f" {', '.join(tests)}")  # fmt: skip
+    return [*said, *record.notices]

@@ -1,0 +1,241 @@
+"""The stages in order: read, evaluate, record, write.
+
+    path -> Design -> Evaluated -> Record -> files
+
+Each stage returns what it made and what it found; only a text without errors goes on.
+"""
+
+import base64
+import os
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, field
+from datetime import UTC, datetime
+from importlib.metadata import version
+from pathlib import Path
+from typing import Final
+
+from calcdoc import __version__
+from calcdoc.errors import CalcdocError, FileTrouble
+from calcdoc.folder import Folder, read_bytes, write_whole
+from calcdoc.analysis.evaluate import evaluate_model
+from calcdoc.analysis.evaluation import Evaluation
+from calcdoc.model.build import build
+from calcdoc.model.model import Model
+from calcdoc.problems import Finding, error
+from calcdoc.problems.views import full, has_errors, in_order
+from calcdoc.record.build import Circumstances, Embedded, build_record
+from calcdoc.record.cautions import hazard_warning
+from calcdoc.record.record import Record, Tool
+from calcdoc.record.store import to_json
+from calcdoc.source import SourceFile, digest
+from calcdoc.text.document import pictures, read_document
+from calcdoc.text.prose import Block
+
+FORMS: Final = ("html", "pdf", "json")
+LIBRARIES: Final = ("markdown-it-py", "msgspec", "numpy", "pint")
+"""Libraries the numbers and the stored record depend on."""
+_MEDIA: Final = {b"\x89PNG\r\n\x1a\n": "image/png", b"\xff\xd8\xff": "image/jpeg"}
+
+
+class TextHasErrors(CalcdocError):
+    """The design text has errors, so there is no record of it."""
+
+
+@dataclass(frozen=True, slots=True)
+class Design:
+    """A design text that was read and checked; ``model`` is None when it has errors."""
+
+    source: SourceFile
+    data: bytes
+    """The file as it is on disk."""
+    model: Model | None
+    findings: tuple[Finding, ...]
+    pictures: Mapping[str, Embedded] = field(default_factory=dict)
+
+    @property
+    def ok(self) -> bool:
+        """Whether the text has no errors so far."""
+        return not has_errors(self.findings)
+
+    def problems(self) -> str:
+        """Every finding with its line and caret."""
+        sources = {self.source.path: self.source}
+        return "\n".join(full(each, sources) for each in in_order(self.findings))
+
+
+@dataclass(frozen=True, slots=True)
+class Evaluated:
+    """A design with its numbers; ``evaluation`` is None when the text has errors."""
+
+    design: Design
+    evaluation: Evaluation | None
+    findings: tuple[Finding, ...]
+    """All findings, those of reading included."""
+
+    @property
+    def ok(self) -> bool:
+        """Whether the design could be computed."""
+        return self.evaluation is not None
+
+
+def read(path: str | os.PathLike[str]) -> Design:
+    """Read a design text and check names, units and circles.
+
+    Args:
+        path: A CommonMark file in UTF-8.
+
+    Returns:
+        The design; every mistake of the text is in its ``findings``.
+
+    Raises:
+        FileTrouble: when the file cannot be read.
+    """
+    name = os.fspath(path)
+    data = read_bytes(Path(name), name)
+    source, findings = _decoded(name, data)
+    if findings:
+        return Design(source, data, None, findings)
+    document, findings = read_document(source)
+    if document is None:
+        return Design(source, data, None, in_order(findings))
+    model, more = build(document)
+    embedded, trouble = _pictures(Folder(Path(name).parent), document.body)
+    return Design(source, data, model, in_order((*findings, *more, *trouble)), embedded)
+
+
+def evaluate(design: Design) -> Evaluated:
+    """Compute a design at nominal and over its bands.
+
+    Returns:
+        The numbers, or None with the findings when the text has errors or a value cannot be
+        computed.
+    """
+    if design.model is None or not design.ok:
+        return Evaluated(design, None, design.findings)
+    evaluation, findings = evaluate_model(design.model)
+    if evaluation is not None:
+        findings += hazard_warning(evaluation)
+    return Evaluated(design, evaluation, in_order((*design.findings, *findings)))
+
+
+def record(evaluated: Evaluated) -> Record:
+    """The calculation record of an evaluated design.
+
+    Raises:
+        TextHasErrors: when there is nothing to record.
+    """
+    if evaluated.evaluation is None:
+        raise TextHasErrors(f"{evaluated.design.source.path} has errors, so there is no record of it")
+    tool = Tool(version=__version__, libraries={name: version(name) for name in LIBRARIES})
+    made = Circumstances(tool, evaluated.findings, evaluated.design.pictures)
+    return build_record(evaluated.evaluation, made)
+
+
+def write(
+    evaluated: Evaluated, to: str | os.PathLike[str] = "output", forms: Iterable[str] = FORMS
+) -> tuple[Path, ...]:
+    """Write the record of an evaluated design, each file whole or not at all.
+
+    Args:
+        evaluated: An evaluated design without errors.
+        to: The folder, made when it is not there.
+        forms: Any of ``html``, ``pdf``, ``json``.
+
+    Returns:
+        The paths written, in the order of ``forms``.
+
+    Raises:
+        TextHasErrors: when there is nothing to record.
+        FileTrouble: when the folder cannot be written to.
+        MissingLibrary: when a library of the PDF is not installed; the other forms are written
+            before.
+    """
+    made = record(evaluated)
+    data = to_json(made)
+    stem = file_stem(made)
+    wanted = sorted(dict.fromkeys(forms), key=lambda form: form == "pdf")
+    written = {}
+    for form in wanted:
+        path = Path(os.fspath(to)) / f"{stem}.{form}"
+        write_whole(path, _rendered(form, made, data, evaluated.design))
+        written[form] = path
+    return tuple(written[form] for form in forms)
+
+
+def file_stem(made: Record) -> str:
+    """``NUMBER-REVISION`` with only letters, digits, point, dash and underscore."""
+    text = f"{made.document.number}-{made.document.revision}"
+    safe = "".join(c if c.isalnum() or c in "._-" else "-" for c in text)
+    return safe.lstrip(".") or "record"
+
+
+def _rendered(form: str, made: Record, data: bytes, design: Design) -> bytes:
+    if form == "json":
+        return data
+    if form == "html":
+        from calcdoc.page.html import html  # noqa: PLC0415  (check needs no page)
+
+        return html(made, data).encode()
+    if form == "pdf":
+        from calcdoc.page.pdf import pdf  # noqa: PLC0415  (slow to load)
+
+        files = {each.name: base64.b64decode(each.base64) for each in design.pictures.values()}
+        return pdf(made, design.data, data, issued=_issued(made), files=files)
+    raise CalcdocError(f"there is no form {form}; the forms are {', '.join(FORMS)}")
+
+
+def _issued(made: Record) -> datetime:
+    """The date of every stamp in a file: SOURCE_DATE_EPOCH, else the document's, else 1980."""
+    epoch = os.environ.get("SOURCE_DATE_EPOCH", "")
+    if epoch:
+        try:
+            return datetime.fromtimestamp(int(epoch), UTC)
+        except (ValueError, OverflowError, OSError) as trouble:
+            raise CalcdocError("SOURCE_DATE_EPOCH is no number of seconds since 1970") from trouble
+    if made.document.date:
+        return datetime.fromisoformat(made.document.date).replace(tzinfo=UTC)
+    return datetime(1980, 1, 1, tzinfo=UTC)
+
+
+def _decoded(name: str, data: bytes) -> tuple[SourceFile, tuple[Finding, ...]]:
+    """The normalised text: no byte-order mark, line ends as ``\\n``."""
+    body = data.removeprefix(b"\xef\xbb\xbf")
+    text = body.decode("utf-8", errors="replace").replace("\r\n", "\n").replace("\r", "\n")
+    source = SourceFile(name, text, digest(data))
+    try:
+        body.decode("utf-8")
+    except UnicodeDecodeError as trouble:
+        before = body[: trouble.start].decode("utf-8").replace("\r\n", "\n").replace("\r", "\n")
+        span = source.span(len(before), len(before) + 1)
+        return source, (error("not-utf8", "the text is not UTF-8 from here on", span,
+                              help="save the file as UTF-8"),)  # fmt: skip
+    at = text.find("\0")
+    if at >= 0:
+        return source, (error("nul-character", "the text holds a NUL character",
+                              source.span(at, at + 1), help="remove it"),)  # fmt: skip
+    return source, ()
+
+
+def _pictures(
+    folder: Folder, body: tuple[Block, ...]
+) -> tuple[dict[str, Embedded], tuple[Finding, ...]]:
+    """Every picture of the prose, read from the design's folder."""
+    embedded: dict[str, Embedded] = {}
+    findings = []
+    for node in pictures(body):
+        if node.path in embedded:
+            continue
+        try:
+            content = folder.read(node.path)
+        except FileTrouble as trouble:
+            findings.append(error("picture", f"this picture is not shown: {trouble}", node.span,
+                                  help="put the file beside the design and name it from there"))  # fmt: skip
+            continue
+        kind = next((kind for magic, kind in _MEDIA.items() if content.startswith(magic)), None)
+        if kind is None:
+            findings.append(error("picture", "a picture is a PNG or a JPEG file", node.span,
+                                  help="convert it"))  # fmt: skip
+            continue
+        embedded[node.path] = Embedded(node.path, digest(content), kind,
+                                       base64.b64encode(content).decode())  # fmt: skip
+    return embedded, tuple(findings)

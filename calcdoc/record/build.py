@@ -1,0 +1,181 @@
+"""From evaluation to record: everything a page shows, in order."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+from calcdoc.analysis.evaluation import Evaluation
+from calcdoc.problems import Finding
+from calcdoc.problems.views import as_data, in_order
+from calcdoc.record import body as prose_body
+from calcdoc.record import record as r
+from calcdoc.record.cautions import cautions, hazards
+from calcdoc.record.criteria import criteria
+from calcdoc.record.naming import name_lines
+from calcdoc.record.quantities import Numbers, quantities
+from calcdoc.record.registers import assumptions, references, tally, unsourced
+from calcdoc.record.wording import typeset
+from calcdoc.text import prose
+from calcdoc.text.names import fold
+from calcdoc.text.titleblock import TitleBlock
+
+
+@dataclass(frozen=True, slots=True)
+class Embedded:
+    """A picture of the design's folder, read and checked."""
+
+    name: str
+    sha256: str
+    media_type: str
+    base64: str
+
+
+@dataclass(frozen=True, slots=True)
+class Circumstances:
+    """What a record says of its making, besides the design."""
+
+    tool: r.Tool
+    findings: tuple[Finding, ...] = ()
+    pictures: Mapping[str, Embedded] = field(default_factory=dict)
+    """By path as written in the text."""
+
+
+def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
+    """The record of an evaluated design."""
+    model = evaluation.model
+    document, title = model.document, model.document.title
+    numbers = Numbers(evaluation, title.digits)
+    # Which blocks go to the cover does not depend on numbers; lines are numbered in what is left.
+    parts = prose_body.divide(document.body, _no_values(made))
+    naming = name_lines(model, parts.blocks)
+    lines = quantities(numbers, naming)
+    judged = criteria(numbers, naming)
+    fill = _fill(lines, judged, made)
+    parts = prose_body.divide(document.body, fill)
+    body = prose_body.blocks(parts.blocks, naming, fill)
+    register = assumptions(model, naming)
+    return r.Record(
+        schema=r.SCHEMA,
+        document=_document(title, parts.subtitle),
+        purpose=parts.purpose,
+        verdict=tally(judged, register),
+        source=_source(evaluation, made),
+        tool=made.tool,
+        sampling=None,
+        cases=("normal",),
+        quantities=lines,
+        relations=(),
+        criteria=judged,
+        crosschecks=(),
+        assumptions=register,
+        hazards=hazards(evaluation),
+        cautions=cautions(evaluation, register, body),
+        references=references(model, naming),
+        methods=_methods(lines, title.digits),
+        figures=(),
+        notices=unsourced(model),
+        problems=tuple(_problem(evaluation, each) for each in in_order(made.findings)),
+        body=body,
+    )
+
+
+def _document(title: TitleBlock, subtitle: str) -> r.Document:
+    return r.Document(
+        number=title.number,
+        title=title.title,
+        subtitle=subtitle,
+        revision=title.revision,
+        date=title.date,
+        status=title.status,
+        product=title.product,
+        owner=title.owner,
+        language=title.language,
+        paper=title.paper,
+        digits=title.digits,
+        replaces=title.replaces,
+        people=r.People(prepared=title.prepared, checked=title.checked, approved=title.approved),
+        history=tuple(
+            r.Issue(revision=each.revision, date=each.date, reason=each.reason)
+            for each in title.history
+        ),
+    )
+
+
+def _source(evaluation: Evaluation, made: Circumstances) -> r.Source:
+    source = evaluation.model.document.source
+    return r.Source(
+        name=source.path.replace("\\", "/").rpartition("/")[2],
+        sha256=source.sha256,
+        files=tuple(
+            r.File(name=each.name, sha256=each.sha256)
+            for each in sorted(made.pictures.values(), key=lambda each: each.name)
+        ),
+    )
+
+
+def _problem(evaluation: Evaluation, finding: Finding) -> r.Problem:
+    source = evaluation.model.document.source
+    data = as_data(finding, {source.path: source})
+    return r.Problem(
+        code=finding.code,
+        severity=finding.severity.value,
+        message=finding.message,
+        line=int(str(data["line"])),
+        column=int(str(data["column"])),
+        help=finding.help,
+    )
+
+
+def _no_values(made: Circumstances) -> prose_body.Fill:
+    return _fill((), (), made)
+
+
+def _fill(
+    lines: tuple[r.Quantity, ...], judged: tuple[r.Criterion, ...], made: Circumstances
+) -> prose_body.Fill:
+    by_symbol = {fold(each.symbol): each for each in lines}
+    by_id = {fold(each.id): each for each in judged}
+
+    def mention(node: prose.Mention) -> r.Inline:
+        key = fold(node.name)
+        if key in by_symbol:
+            quantity = by_symbol[key]
+            texts = {"least": quantity.least_text, "greatest": quantity.greatest_text}
+            text = texts.get(node.form, quantity.result)
+            return r.Value(symbol=quantity.symbol, form=node.form or "equation", text=text)
+        if key in by_id:
+            return r.Verdict(id=by_id[key].id, text=by_id[key].verdict)
+        return r.Words(text=node.name)
+
+    def picture(node: prose.Picture) -> r.Inline:
+        found = made.pictures.get(node.path)
+        if found is None:
+            return r.Words(text=node.alternative)
+        return r.Picture(name=found.name, alternative=node.alternative,
+                         media_type=found.media_type, data=found.base64)  # fmt: skip
+
+    return prose_body.Fill(mention, picture)
+
+
+def _methods(lines: tuple[r.Quantity, ...], digits: int) -> tuple[str, ...]:
+    """How the numbers came about, one sentence each."""
+    varying = [each for each in lines if each.varies and each.formula]
+    counts = {proof: sum(each.proof == proof for each in varying) for proof in
+              ("exact", "bounded", "searched")}  # fmt: skip
+    statement = [
+        "Units and dimensions of every formula were checked before any number was computed; the"
+        " computation runs in coherent SI units and nothing is rounded on the way.",
+        "Extremes: every quantity is taken at its least and greatest value while all conditions,"
+        " inputs and assumptions it depends on move through their whole bands at once; a quantity"
+        " used twice moves once. Bands are not combined statistically.",
+        f"Of the bands of {len(varying)} derived quantities {counts['exact']} are exact (attained,"
+        f" and nothing in the band lies beyond), {counts['bounded']} are attained and proven to"
+        f" within a share of {typeset('1e-9')}, {counts['searched']} were searched and are not"
+        " proven.",
+        "A criterion is judged at the combination where limit less value is least, both sides"
+        " moving together, on unrounded values; equality within a share of"
+        f" {typeset('1e-12')} counts as equal.",
+        f"Values are shown with {digits} significant digits, ties to even; margins are rounded"
+        " towards less margin, waiting times towards more. Limits and values get the digits it"
+        " takes to tell them apart.",
+    ]
+    return tuple(statement)

@@ -1,0 +1,192 @@
+"""Criteria with value, limit, margin and verdict at their governing point."""
+
+from calcdoc.analysis.evaluation import Judgement, Outcome
+from calcdoc.model.model import Judged, Typed
+from calcdoc.record import record as r
+from calcdoc.record.display import choose_unit
+from calcdoc.record.naming import Naming
+from calcdoc.record.quantities import Numbers
+from calcdoc.record.rounding import apart, downward, stored
+from calcdoc.record.substitute import substituted
+from calcdoc.record.values import difference, with_unit
+from calcdoc.text import literal
+from calcdoc.text.names import fold
+from calcdoc.text.nodes import Group, Name, Node, Quantity
+from calcdoc.text.statements import Inequality, Uncalculated
+from calcdoc.text.unparse import unparse
+from calcdoc.units import Unit
+
+_PER_CENT = 100
+
+
+def criteria(numbers: Numbers, naming: Naming) -> tuple[r.Criterion, ...]:
+    """Every criterion of the record, in the author's order."""
+    judgements = {each.judged.statement.id.key: each for each in numbers.evaluation.judgements}
+    return tuple(
+        _calculated(numbers, naming, judgements[each.statement.id.key])
+        if isinstance(each, Judged)
+        else _uncalculated(naming, each)
+        for each in numbers.model.criteria
+    )
+
+
+def _uncalculated(naming: Naming, statement: Uncalculated) -> r.Criterion:
+    method = {"by test": "test", "by inspection": "inspection"}.get(statement.verdict, "none")
+    return r.Criterion(
+        id=statement.id.name,
+        line=naming.lines[statement.id.key],
+        text=statement.text,
+        method=method,
+        value=None,
+        limit=None,
+        unit="",
+        relation="",
+        margin=None,
+        margin_abs=None,
+        verdict=statement.verdict,
+        accepted=None,
+        case="",
+        governing={},
+        by_case={},
+        rows=(),
+        interval=None,
+        standard_error=None,
+        unverified=(),
+        description=statement.description,
+        basis=statement.basis.text,
+        reason=statement.text if method == "none" else "",
+        clauses="",
+        substitution="",
+        value_text="",
+        limit_text="",
+        margin_text="",
+        remark="",
+        proof="",
+    )
+
+
+def _calculated(numbers: Numbers, naming: Naming, judgement: Judgement) -> r.Criterion:
+    statement = judgement.judged.statement
+    unit = _unit(numbers, judgement)
+    value, limit = unit.from_si(judgement.value), unit.from_si(judgement.limit)
+    shown, bound = apart(stored(value), stored(limit), numbers.digits)
+    share = _share(judgement)
+    return r.Criterion(
+        id=statement.id.name,
+        line=naming.lines[statement.id.key],
+        text=_inequality(statement),
+        method=_method(statement),
+        value=stored(value),
+        limit=stored(limit),
+        unit=unit.text,
+        relation=judgement.side.relation,
+        margin=None if share is None else stored(share),
+        margin_abs=stored(unit.difference_from_si(judgement.slack)),
+        verdict=judgement.outcome.value,
+        accepted=None,
+        case="normal",
+        governing=numbers.combination(judgement.governing),
+        by_case={},
+        rows=(),
+        interval=None,
+        standard_error=None,
+        unverified=(),
+        description=statement.description,
+        basis=statement.basis.text,
+        reason=_reason(judgement, unit, numbers.digits),
+        clauses=statement.clauses.text,
+        substitution=_substitution(numbers, judgement),
+        value_text=with_unit(shown, unit),
+        limit_text=with_unit(bound, unit),
+        margin_text=_margin_text(judgement, unit, share),
+        remark=_remark(judgement, unit, share),
+        proof=judgement.proof.value,
+    )
+
+
+def _inequality(statement: Inequality) -> str:
+    first, *rest = (unparse(each) for each in statement.operands)
+    return first + "".join(
+        f" {sign} {side}" for sign, side in zip(statement.operators, rest, strict=True)
+    )
+
+
+def _method(statement: Inequality) -> str:
+    if statement.clauses.at_nominal:
+        return "nominal"
+    return "point" if statement.clauses.at else "extremes"
+
+
+def _unit(numbers: Numbers, judgement: Judgement) -> Unit:
+    """The unit of the value's symbol, else of a number in the limit, else a chosen one."""
+    for tree in (judgement.side.value_tree, judgement.side.limit_tree):
+        bare = _bare(tree)
+        if isinstance(bare, Name) and fold(bare.name) in numbers.units:
+            return numbers.units[fold(bare.name)]
+        if isinstance(bare, Quantity):
+            return literal.resolve(bare.unit)
+    typed: Typed = judgement.judged.typed
+    return choose_unit(typed, judgement.value or judgement.limit)
+
+
+def _bare(tree: Node) -> Node:
+    while isinstance(tree, Group):
+        tree = tree.inner
+    return tree
+
+
+def _share(judgement: Judgement) -> float | None:
+    """Margin as a share of the limit; None where the limit is zero or a temperature."""
+    if judgement.limit == 0 or judgement.judged.typed.weight:
+        return None
+    return judgement.slack / abs(judgement.limit)
+
+
+def _substitution(numbers: Numbers, judgement: Judgement) -> str:
+    """The value side with numbers at the governing point, when it is more than one symbol."""
+    tree = judgement.side.value_tree
+    if isinstance(_bare(tree), Name | Quantity):
+        return ""
+
+    def value_of(name: str) -> str | None:
+        key = fold(name)
+        return numbers.at(key, judgement.values[key]) if key in judgement.values else None
+
+    return substituted(tree, value_of)
+
+
+def _margin_text(judgement: Judgement, unit: Unit, share: float | None) -> str:
+    """Two digits, rounded towards less margin."""
+    if share is not None:
+        return f"{downward(share * _PER_CENT)} %"
+    return _difference(judgement.slack, unit)
+
+
+def _difference(si: float, unit: Unit) -> str:
+    number = downward(unit.difference_from_si(si))
+    return f"{number} K" if unit.celsius else with_unit(number, unit)
+
+
+def _remark(judgement: Judgement, unit: Unit, share: float | None) -> str:
+    margin = judgement.judged.statement.clauses.margin
+    if judgement.outcome is Outcome.FAIL:
+        short = _difference(judgement.slack, unit).removeprefix("-")
+        if judgement.slack > 0:
+            return f"inside the limit by {short}, but not with the margin asked for"
+        if judgement.slack == 0:
+            return "equal to the limit"
+        of_limit = "" if share is None else f" ({_margin_text(judgement, unit, share)} of the limit)"
+        return f"short by {short}{of_limit}"
+    if judgement.equal:
+        return "equal to the limit with its margin" if margin else "equal to the limit"
+    return ""
+
+
+def _reason(judgement: Judgement, unit: Unit, digits: int) -> str:
+    if judgement.outcome is not Outcome.NOT_DECIDED:
+        return ""
+    attained = difference(judgement.requirement, unit, digits)
+    if judgement.bound == float("-inf"):
+        return f"the least margin found by search is {attained}; no bound on it could be proven"
+    proven = difference(judgement.bound, unit, digits)
+    return f"the least margin found by search is {attained}; proven is only {proven}"

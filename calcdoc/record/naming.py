@@ -1,0 +1,109 @@
+"""Line numbers and who uses whom: what the lines of a record call each other."""
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+
+from calcdoc.model.model import Judged, Model
+from calcdoc.text import prose
+from calcdoc.text.statements import (
+    Definition,
+    GivenStatement,
+    Inequality,
+    SentenceStatement,
+    Statement,
+    Uncalculated,
+)
+
+Numbered = GivenStatement | Definition | SentenceStatement | Inequality | Uncalculated
+
+
+@dataclass(frozen=True, slots=True)
+class Naming:
+    """Numbers of lines and sections, and the uses of every quantity."""
+
+    lines: Mapping[str, str]
+    """Key of a symbol or id to its line number, as in ``3.4``."""
+    sections: Mapping[int, str]
+    """Identity of a heading to its number; unnumbered headings are not in it."""
+    section_level: int
+    """The level of heading that opens a section."""
+    used_by: Mapping[str, tuple[str, ...]]
+    """Key of a quantity to the symbols and ids that use it, in the author's order."""
+
+
+def name_lines(model: Model, body: tuple[prose.Block, ...]) -> Naming:
+    """Number sections and lines in the author's order, and collect uses."""
+    level = section_level(body)
+    lines: dict[str, str] = {}
+    sections: dict[int, str] = {}
+    section, line = 0, 0
+    for each in _in_order(body):
+        if isinstance(each, prose.Heading):
+            if each.level == level:
+                section, line = section + 1, 0
+                sections[id(each)] = str(section)
+            continue
+        line += 1
+        lines[_key(each)] = f"{section}.{line}" if level else str(line)
+    return Naming(lines, sections, level, _uses(model))
+
+
+def section_level(body: tuple[prose.Block, ...]) -> int:
+    """The highest level of heading in the body; 0 when there is none."""
+    return min((each.level for each in body if isinstance(each, prose.Heading)), default=0)
+
+
+def _in_order(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Heading | Numbered]:
+    for block in blocks:
+        match block:
+            case prose.Heading():
+                yield block
+            case prose.Statements(_, statements):
+                yield from (each for each in statements if is_numbered(each))
+            case prose.Items(_, items):
+                for item in items:
+                    yield from _in_order(item)
+            case prose.Quote(inner):
+                yield from _in_order(inner)
+            case _:
+                pass
+
+
+def is_numbered(statement: Statement) -> bool:
+    """Whether a statement has a line of its own in the record."""
+    return isinstance(statement, Numbered)
+
+
+def _key(statement: Numbered) -> str:
+    if isinstance(statement, GivenStatement | Definition):
+        return statement.symbol.key
+    return statement.id.key
+
+
+def _uses(model: Model) -> dict[str, tuple[str, ...]]:
+    uses: dict[str, list[str]] = {key: [] for key in model.variables}
+    for variable in model.variables.values():
+        for key in variable.depends_on:
+            uses[key].append(variable.symbol)
+    for criterion in model.criteria:
+        if isinstance(criterion, Judged):
+            for key in criterion.depends_on:
+                uses[key].append(criterion.statement.id.name)
+    return {key: tuple(names) for key, names in uses.items()}
+
+
+def rests_on(model: Model, naming: Naming, key: str) -> tuple[str, ...]:
+    """Line numbers of quantities and ids of criteria that depend on one, through all steps."""
+    reached = {key}
+    for other in model.order:
+        if any(used in reached for used in model.variables[other].depends_on):
+            reached.add(other)
+    reached.discard(key)
+    lines = [naming.lines[each] for each in model.variables if each in reached]
+    reached.add(key)
+    ids = [
+        each.statement.id.name
+        for each in model.criteria
+        if isinstance(each, Judged) and reached.intersection(each.depends_on)
+    ]
+    return (*lines, *ids)
