@@ -7,6 +7,7 @@ each side of a comparison, must have weight 0 or 1: ``T_a + P*R_th`` has, ``T_a 
 
 from collections.abc import Callable, Mapping
 from fractions import Fraction
+from itertools import pairwise
 from typing import Final, NoReturn
 
 from calcdoc.model.constants import CONSTANTS
@@ -77,15 +78,14 @@ class Checker:
 
     def comparison(self, operands: tuple[Node, ...]) -> Typed:
         """The common type of the sides of a comparison."""
-        first, *rest = operands
-        typed = self.quantity(first)
-        for side in rest:
+        typed = self.quantity(operands[0])
+        for before, side in pairwise(operands):
             other = self.quantity(side)
             if other.dimension != typed.dimension:
                 self._mismatch(
                     f"cannot compare {typed.dimension.in_words()} with"
                     f" {other.dimension.in_words()}",
-                    first,
+                    before,
                     side,
                     typed,
                     other,
@@ -96,7 +96,7 @@ class Checker:
                     error(
                         "temperature",
                         "cannot compare a temperature with a difference of temperatures",
-                        first.span.to(side.span),
+                        before.span.to(side.span),
                         help="a temperature is in °C, a difference in K",
                     )
                 )
@@ -291,7 +291,7 @@ class Checker:
                     f"{node.function} needs a plain number, this is {typed.dimension.in_words()}",
                     argument.span,
                     related=self._related(argument),
-                    help="divide it by a quantity of its kind, as in ln(V/(1 V))",
+                    help=f"divide it by a quantity of its kind, as in {node.function}(V/(1 V))",
                 )
             )
 

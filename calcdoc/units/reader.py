@@ -114,5 +114,5 @@ def nearest_word(word: str) -> str | None:
             return candidate
     if written_out := _written_out().get(word.lower().removesuffix("s")):
         return written_out
-    close = difflib.get_close_matches(word, _all_words(), n=1, cutoff=0.5)
+    close = difflib.get_close_matches(word, _all_words(), n=1, cutoff=0.6)
     return close[0] if close else None

@@ -1,0 +1,29 @@
+"""From a design text to its findings as people read them."""
+
+from calcdoc.model.build import build
+from calcdoc.problems import Finding
+from calcdoc.problems.views import full, in_order
+from calcdoc.source import SourceFile
+from calcdoc.text.document import read_document
+
+TITLE = '```document\nnumber = "T-1"\ntitle = "Trial"\nrevision = "A"\n```\n'
+"""A title block of five lines, for texts that are about something else."""
+
+
+def findings_of(text: str, path: str = "lamp.md") -> tuple[Finding, ...]:
+    """Everything that reading and checking find, in the order shown."""
+    document, findings = read_document(SourceFile(path, text))
+    if document is not None:
+        findings += build(document)[1]
+    return in_order(findings)
+
+
+def rendered(text: str, path: str = "lamp.md") -> str:
+    """The findings in full, as printed; empty when there are none."""
+    sources = {path: SourceFile(path, text)}
+    return "\n".join(full(each, sources) for each in findings_of(text, path))
+
+
+def codes(text: str) -> tuple[str, ...]:
+    """The code of every finding, in the order shown."""
+    return tuple(each.code for each in findings_of(text))
