@@ -82,6 +82,8 @@ class Hunt:
     @property
     def _slack(self) -> float:
         """Gap at which a box is given up: none at first, so that what can be exact becomes so."""
+        if self.goal < np.inf:
+            return 0.0
         keen = self.used < KEEN and len(self.free) <= KEEN_INPUTS
         return 0.0 if keen else 0.9 * self.tolerance
 

@@ -91,3 +91,17 @@ def program(tape: Tape, targets: Iterable[int]) -> Program:
         meets=frozenset(meets),
         lost=frozenset(lost),
     )
+
+
+def plain(tape: Tape, targets: Iterable[int]) -> Program:
+    """What ``targets`` need, for natural intervals and points: dependence is left open."""
+    order = needed(tape, targets)
+    own = renumber(tape, order)
+    return Program(
+        tape=own,
+        row={at: row for row, at in enumerate(order)},
+        steps=compile_steps(own),
+        depends=np.ones((len(order), tape.n_inputs), dtype=bool),
+        meets=frozenset(),
+        lost=frozenset(),
+    )

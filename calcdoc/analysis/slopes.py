@@ -52,18 +52,18 @@ def _bell(a: FloatArray) -> FloatArray:
 # Slope of each function of one argument, from the argument and the value.
 _SLOPES: Final[Mapping[Op, Callable[[FloatArray, FloatArray], FloatArray]]] = {
     Op.SQRT: lambda a, value: iv.div(np.full_like(a, 0.5), value),
-    Op.EXP: lambda a, value: value,
-    Op.LN: lambda a, value: iv.div(_one(a), np.maximum(a, 0.0)),
-    Op.LOG10: lambda a, value: iv.div(_one(a), iv.mul(np.maximum(a, 0.0), _LN10)),
-    Op.SIN: lambda a, value: iv.cos(a),
-    Op.COS: lambda a, value: iv.neg(iv.sin(a)),
+    Op.EXP: lambda _a, value: value,
+    Op.LN: lambda a, _value: iv.div(_one(a), np.maximum(a, 0.0)),
+    Op.LOG10: lambda a, _value: iv.div(_one(a), iv.mul(np.maximum(a, 0.0), _LN10)),
+    Op.SIN: lambda a, _value: iv.cos(a),
+    Op.COS: lambda a, _value: iv.neg(iv.sin(a)),
     Op.TAN: lambda a, value: iv.add(_one(a), iv.power(value, Fraction(2))),
-    Op.ASIN: lambda a, value: _arc(a),
-    Op.ACOS: lambda a, value: iv.neg(_arc(a)),
-    Op.ATAN: lambda a, value: _bell(a),
-    Op.ABS: lambda a, value: _kink(a),
-    Op.FLOOR: lambda a, value: _step(value),
-    Op.CEIL: lambda a, value: _step(value),
+    Op.ASIN: lambda a, _value: _arc(a),
+    Op.ACOS: lambda a, _value: iv.neg(_arc(a)),
+    Op.ATAN: lambda a, _value: _bell(a),
+    Op.ABS: lambda a, _value: _kink(a),
+    Op.FLOOR: lambda _a, value: _step(value),
+    Op.CEIL: lambda _a, value: _step(value),
 }
 
 
@@ -172,12 +172,12 @@ def _blend(a: Tangent, b: Tangent, only_a: BoolArray, only_b: BoolArray) -> Tang
 
 def _least(args: Args, moves: Moves, _value: FloatArray) -> Tangent:
     a, b = args
-    return _blend(*moves, a[1] <= b[0], b[1] <= a[0])
+    return _blend(moves[0], moves[1], a[1] <= b[0], b[1] <= a[0])
 
 
 def _greatest(args: Args, moves: Moves, _value: FloatArray) -> Tangent:
     a, b = args
-    return _blend(*moves, a[0] >= b[1], b[0] >= a[1])
+    return _blend(moves[0], moves[1], a[0] >= b[1], b[0] >= a[1])
 
 
 def _condition(_args: Args, moves: Moves, value: FloatArray) -> Tangent:
@@ -198,10 +198,10 @@ def _branch(args: Args, moves: Moves, _value: FloatArray) -> Tangent:
 
 
 _RULES: Final[Mapping[Op, Callable[[Args, Moves, FloatArray], Tangent]]] = {
-    Op.ADD: lambda args, moves, value: _sum(*moves),
-    Op.SUB: lambda args, moves, value: _sum(moves[0], _negated(moves[1])),
-    Op.MUL: lambda args, moves, value: _sum(_times(args[1], moves[0]), _times(args[0], moves[1])),
-    Op.NEG: lambda args, moves, value: _negated(moves[0]),
+    Op.ADD: lambda _args, moves, _value: _sum(*moves),
+    Op.SUB: lambda _args, moves, _value: _sum(moves[0], _negated(moves[1])),
+    Op.MUL: lambda args, moves, _value: _sum(_times(args[1], moves[0]), _times(args[0], moves[1])),
+    Op.NEG: lambda _args, moves, _value: _negated(moves[0]),
     Op.DIV: _quotient,
     Op.POW: _general_power,
     Op.MIN: _least,
