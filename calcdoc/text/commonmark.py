@@ -216,7 +216,10 @@ class _InlinePlaces:
         at = 0
         for line in self.content.split("\n"):
             self.starts.append(at)
-            column = max(0, self.source.line(number).rfind(line))
+            written = self.source.line(number)
+            column = written.rfind(line)
+            if column < 0:  # the first letter of a caution is made a capital
+                column = max(0, written.rfind(line[1:]) - 1)
             self.places.append(self.source.line_start(number) + column)
             at += len(line) + 1
             number += 1
