@@ -65,10 +65,11 @@ class Judge:
         subject, reached = self._look(points)
         exact = np.flatnonzero(reached & self.case.broken(subject))
         if exact.size:
-            return points[:, exact[0]]
+            first: FloatArray = points[:, exact[0]]
+            return first
         if self.case.need is not Need.NOT_ZERO:
             return None
-        near = list(points[:, reached & (np.abs(subject) <= self.tolerance)].T)
+        near: list[FloatArray] = list(points[:, reached & (np.abs(subject) <= self.tolerance)].T)
         real = np.flatnonzero(reached & np.isfinite(subject))
         signs = np.sign(subject[real])
         if signs.size and signs.min() < 0.0 < signs.max():

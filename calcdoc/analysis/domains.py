@@ -46,8 +46,9 @@ class Case:
     def broken(self, subject: FloatArray) -> BoolArray:
         """Where values of the subject make the instruction fail, to the last digit."""
         if self.need is Need.NOT_ZERO:
-            return subject == 0.0
-        return subject < 0.0 if self.need is Need.NOT_NEGATIVE else subject <= 0.0
+            return np.equal(subject, 0.0)
+        compare = np.less if self.need is Need.NOT_NEGATIVE else np.less_equal
+        return compare(subject, 0.0)
 
 
 def suspected(step: Instruction, args: list[FloatArray]) -> tuple[int, str] | None:

@@ -122,7 +122,8 @@ class Hunt:
         steep = np.maximum(-move[0], move[1])
         share = width / self.width[:, None]
         span = np.minimum(value[1] - value[0], 1.0 / TINY)
-        smear = np.where(np.isfinite(steep), steep * width, span * share)
+        finite = np.isfinite(steep)
+        smear = np.where(finite, np.where(finite, steep, 0.0) * width, span * share)
         inside_low, inside_high = np.where(rises, high, low), np.where(falls & ~rises, low, high)
         middle = np.where(free, np.clip(low + 0.5 * width, low, high), inside_low)
         uphill = np.where(free, np.where(move[1] >= -move[0], high, low), inside_low)

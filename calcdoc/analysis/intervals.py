@@ -2,9 +2,9 @@
 
 An interval array has shape (2, ..., n): row 0 holds the lower ends, row 1 the upper ends.
 Every result contains each value that the operation takes where it is defined; a root, power or
-logarithm that is defined nowhere gives the whole line. No end is NaN, no lower end is +inf, no upper end -inf.
-Exact zeros are not rounded: a product with an exact zero is zero, and a sum that is zero in
-floating point is zero in truth. (A product too small for a float counts as zero.)
+logarithm that is defined nowhere gives the whole line. No end is NaN, no lower end is +inf, no
+upper end -inf. Exact zeros are not rounded: a product with an exact zero is zero, and a sum that
+is zero in floating point is zero in truth. (A product too small for a float counts as zero.)
 """
 
 from collections.abc import Callable, Mapping
@@ -36,7 +36,8 @@ def whole(like: FloatArray) -> FloatArray:
 
 def straddles(a: FloatArray) -> BoolArray:
     """Where zero lies strictly inside."""
-    return (a[0] < 0.0) & (a[1] > 0.0)
+    inside: BoolArray = (a[0] < 0.0) & (a[1] > 0.0)
+    return inside
 
 
 def _hull(corners: FloatArray) -> FloatArray:

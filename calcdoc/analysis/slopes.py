@@ -69,19 +69,20 @@ _SLOPES: Final[Mapping[Op, Callable[[FloatArray, FloatArray], FloatArray]]] = {
 
 def undefined(step: Instruction, a: FloatArray) -> BoolArray:
     """Where a function of one argument is undefined, or has a pole, inside the argument ``a``."""
-    if step.op is Op.SQRT or step.op is Op.LN or step.op is Op.LOG10:
-        return a[0] < 0.0
-    if step.op is Op.ASIN or step.op is Op.ACOS:
-        return (a[0] < -1.0) | (a[1] > 1.0)
-    if step.op is Op.TAN:
-        return iv.contains_turn(a, np.pi / 2, np.pi)
-    if step.op is Op.POWER:
+    gap: BoolArray = np.zeros(a.shape[1:], dtype=bool)
+    if step.op in (Op.SQRT, Op.LN, Op.LOG10):
+        gap = a[0] < 0.0
+    elif step.op in (Op.ASIN, Op.ACOS):
+        gap = (a[0] < -1.0) | (a[1] > 1.0)
+    elif step.op is Op.TAN:
+        gap = iv.contains_turn(a, np.pi / 2, np.pi)
+    elif step.op is Op.POWER:
         assert isinstance(step.value, Fraction | int)
-        exponent = Fraction(step.value)
-        if exponent.denominator != 1:
-            return a[0] < 0.0
-        return iv.straddles(a) if exponent < 0 else np.zeros(a.shape[1:], dtype=bool)
-    return np.zeros(a.shape[1:], dtype=bool)
+        if Fraction(step.value).denominator != 1:
+            gap = a[0] < 0.0
+        elif step.value < 0:
+            gap = iv.straddles(a)
+    return gap
 
 
 def tangent(
