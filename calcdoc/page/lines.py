@@ -174,9 +174,9 @@ def _band(_view: View, quantity: Quantity) -> str:
         return ""
     least, nominal, greatest = (float(end) for end in ends if not isinstance(end, list))
     return (
-        f'<p class="band">least {typeset.quantity(quantity.least_text)} '
+        f'<p class="band"><span class="nb">least {typeset.quantity(quantity.least_text)}</span> '
         f"{band_bar(least, nominal, greatest)} "
-        f"greatest {typeset.quantity(quantity.greatest_text)}</p>"
+        f'<span class="nb">greatest {typeset.quantity(quantity.greatest_text)}</span></p>'
     )
 
 
@@ -207,7 +207,9 @@ def _side(view: View, quantity: Quantity) -> str:
         basis = "no source given"
     rests = view.places(quantity.depends_on)
     used = view.places(quantity.used_by)
-    return _aside([basis, f"from {rests}" if rests else "", f"used in {used}" if used else ""])
+    between = " · " if quantity.kind in GIVEN else "<br>"
+    parts = [basis, f"from {rests}" if rests else "", f"used in {used}" if used else ""]
+    return _aside(parts, between)
 
 
 def _criterion_side(view: View, criterion: Criterion) -> str:
@@ -224,8 +226,8 @@ def _criterion_side(view: View, criterion: Criterion) -> str:
     )
 
 
-def _aside(parts: list[str]) -> str:
-    shown = "<br>".join(part for part in parts if part)
+def _aside(parts: list[str], between: str = "<br>") -> str:
+    shown = between.join(part for part in parts if part)
     return f'<div class="side">{shown}</div>' if shown else ""
 
 

@@ -21,14 +21,18 @@ def table(name: str, label: str, columns: Sequence[Column], rows: Iterable[Seque
     ``label`` is a caption for those who hear the table.
     """
     widths = "".join(f'<col style="width:{column.share:g}%">' for column in columns)
-    heads = "".join(
-        f'<th scope="col"{_class(column.kind)}>{escape(column.head)}</th>' for column in columns
-    )
+    heads = "".join(_head(column) for column in columns)
     lines = "".join(f"<tr>{_cells(columns, row)}</tr>\n" for row in rows)
     return (
         f'<table class="{name}"><caption>{escape(label)}</caption><colgroup>{widths}</colgroup>'
         f"<thead><tr>{heads}</tr></thead>\n<tbody>{lines}</tbody></table>\n"
     )
+
+
+def _head(column: Column) -> str:
+    if not column.head:
+        return "<td></td>"
+    return f'<th scope="col"{_class(column.kind)}>{escape(column.head)}</th>'
 
 
 def _cells(columns: Sequence[Column], row: Sequence[str]) -> str:

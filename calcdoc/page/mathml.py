@@ -29,10 +29,11 @@ def mathml(piece: Piece, links: Links) -> str:
     """One piece of a formula as a ``<math>`` element."""
     shown = piece.shown
     style = f' style="font-size:{piece.scale:g}em"' if piece.scale < 1 else ""
-    bold = ' class="res"' if piece.bold else ""
+    names = " ".join(("res",) * piece.bold + ("wide",) * piece.breaks)
+    kind = f' class="{names}"' if names else ""
     alternative = escape(linear(shown).translate(PLAIN_SPACES).strip())
     inner = "".join(_draw(part, links) for part in _parts(shown))
-    return f'<math{bold}{style} alttext="{alternative}">{inner}</math>'
+    return f'<math{kind}{style} alttext="{alternative}">{inner}</math>'
 
 
 def linear(shown: Picture) -> str:

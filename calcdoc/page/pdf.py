@@ -20,6 +20,8 @@ from calcdoc.page.view import View
 from calcdoc.record.record import Record
 
 PAPERS: Final = {"a4": "A4", "letter": "letter"}
+STRIP: Final = 64
+"""Characters of the title in the strip of a sheet."""
 EPOCH: Final = "SOURCE_DATE_EPOCH"
 KINDS: Final = (
     "data:image/png;base64,",
@@ -122,10 +124,15 @@ def _sheet_rules(view: View) -> str:
     text, own = digest(view.record.source.sha256), digest(view.record_digest)
     return (
         f"@page{{size:{PAPERS.get(document.paper.lower(), 'A4')};{across}"
-        f"@top-left{{content:{_quoted(strip)}}}@top-center{{content:{_quoted(document.title)}}}"
+        f"@top-left{{content:{_quoted(strip)}}}@top-center{{content:{_quoted(_short(document.title))}}}"
         f"@bottom-left{{content:{_quoted(left)}}}"
         f"@bottom-right{{content:{_quoted(f'text {text} · record {own}')}}}}}\n"
     )
+
+
+def _short(text: str) -> str:
+    """What fits between the number and the sheet count."""
+    return text if len(text) <= STRIP else text[: STRIP - 1].rstrip() + "…"
 
 
 def _quoted(text: str) -> str:

@@ -59,16 +59,20 @@ def is_formula(text: str) -> bool:
     return not isinstance(read(text), Glyphs) or text.isalnum()
 
 
-def pieces(shown: Picture, room: float = ROOM, *, bold: bool = False) -> tuple[Piece, ...]:
-    """The picture in pieces no wider than ``room`` em."""
-    if measure(shown).width <= room:
+def pieces(
+    shown: Picture, room: float = ROOM, *, fine: float | None = None, bold: bool = False
+) -> tuple[Piece, ...]:
+    """The picture in pieces no wider than ``room`` em.
+
+    ``fine`` cuts what is wider than that, though there may be room: on a screen nobody knows.
+    """
+    widest = room if fine is None else fine
+    if measure(shown).width <= widest:
         return (Piece(shown, bold=bold),)
     cut: list[Piece] = []
     for part in _cut(shown, ("relation", "operator"), "+−<>≤≥=≠"):
-        if measure(part).width <= room:
-            cut.append(Piece(part, bold=bold))
-        else:
-            cut.extend(_fitted(finer, room, bold=bold) for finer in _cut(part, ("operator",), "×"))
+        finer = [part] if measure(part).width <= widest else _cut(part, ("operator",), "×")
+        cut.extend(_fitted(each, room, bold=bold) for each in finer)
     return tuple(cut)
 
 

@@ -14,6 +14,8 @@ from calcdoc.text.names import fold
 
 NAME = re.compile(r"[^\W\d_][^\W_]*(?:\.[^\W\d_][^\W_]*)?(?:_\w+)|[\u0370-\u03ff][^\W_]*")
 """What can only be a symbol in a sentence: with a subscript, or beginning with a Greek letter."""
+FINE = 13.0
+"""On a screen formulas are cut into pieces of this width, in em, to fit the narrowest."""
 KEY = re.compile(r"\[([^\[\]]+)\]")
 
 
@@ -69,7 +71,9 @@ class View:
         """A formula, as pieces between which a line may break."""
         shown = read(shown) if isinstance(shown, str) else shown
         links = no_links if self.paper else self.links
-        return " ".join(self.draw(piece, links) for piece in pieces(shown, room, bold=bold))
+        fine = None if self.paper else FINE
+        cut = pieces(shown, room, fine=fine, bold=bold)
+        return " ".join(self.draw(piece, links) for piece in cut)
 
     def symbol(self, name: str) -> str:
         """A symbol in running text, linked to its line."""
