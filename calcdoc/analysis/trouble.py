@@ -10,7 +10,7 @@ from calcdoc.analysis.hazards import Hazard, hazards
 from calcdoc.analysis.points import FloatArray
 from calcdoc.model.model import Model, Variable
 from calcdoc.problems import Finding, error
-from calcdoc.text.nodes import Binary, Call, Node
+from calcdoc.text.nodes import Binary, Call, Group, Node
 from calcdoc.text.scan import shown
 from calcdoc.text.unparse import unparse
 from calcdoc.units import Unit
@@ -74,9 +74,11 @@ def _piece(node: Node, kind: str) -> Node:
     if kind == "overflow":
         return node
     if isinstance(node, Binary):
-        return node.right if node.op == "/" else node.left
-    if isinstance(node, Call):
-        return node.arguments[0]
+        node = node.right if node.op == "/" else node.left
+    elif isinstance(node, Call):
+        node = node.arguments[0]
+    while isinstance(node, Group):
+        node = node.inner
     return node
 
 

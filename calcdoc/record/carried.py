@@ -5,6 +5,7 @@ from fractions import Fraction
 
 from calcdoc.model.typing import constant_value
 from calcdoc.record.rounding import trimmed
+from calcdoc.record.wording import NO_BREAK, typeset
 from calcdoc.text import literal
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Binary, Call, Group, Name, Negate, Node, Quantity
@@ -14,6 +15,7 @@ Combined = dict[str, Fraction]
 """Unit word to exponent; empty for a plain number."""
 UnitOf = Callable[[str], Unit]
 """Key of a quantity to the unit its value is written in."""
+_ONE_TIMES = f"1{NO_BREAK}×{NO_BREAK}"
 _PLAIN_ARGUMENT = frozenset({"exp", "ln", "log10", "sin", "cos", "tan", "asin", "acos", "atan"})
 
 
@@ -106,7 +108,7 @@ class _Walker:
         if unit.dimension != result.dimension:
             return
         factor = unit.factor / result.factor
-        number = "" if factor == 1 else trimmed(factor, 6)
+        number = "" if factor == 1 else typeset(trimmed(factor, 6)).removeprefix(_ONE_TIMES)
         right = " ".join(part for part in (number, result.text) if part) or "1"
         self.reductions.append(f"{unit.text or '1'} = {right}")
 

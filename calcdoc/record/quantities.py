@@ -14,7 +14,7 @@ from calcdoc.record.naming import Naming
 from calcdoc.record.rounding import stored
 from calcdoc.record.substitute import substituted
 from calcdoc.record.values import computed, exact_limit, given_nominal, stands_at
-from calcdoc.record.wording import band_in_words
+from calcdoc.record.wording import band_in_words, typeset
 from calcdoc.text.given import Given, Style
 from calcdoc.text.names import fold
 from calcdoc.text.statements import GivenStatement
@@ -155,7 +155,7 @@ def _notes(band: Band, unit: Unit, numbers: Numbers, given: Given | None) -> tup
     notes = []
     if given is not None:
         if given.style is Style.RANGE:
-            notes.append("the nominal value is the middle of the limits")
+            notes.append(f"nominal {typeset(given_nominal(given))}, the middle of the limits")
         return tuple(notes)
     for name, combination in (("least", band.at_least), ("greatest", band.at_greatest)):
         inside = [numbers.model.variables[k].symbol for k, s in combination.items() if s.inside]

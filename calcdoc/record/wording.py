@@ -3,7 +3,7 @@
 import re
 from typing import Final
 
-from calcdoc.record.values import exact_limit, given_nominal
+from calcdoc.record.values import exact_limit, given_nominal, with_unit
 from calcdoc.text.given import Given, Style
 from calcdoc.units import Unit
 
@@ -66,8 +66,10 @@ def band_in_words(given: Given) -> str:
         case Style.UNEQUAL:
             below, above = (typeset(each.lstrip("+")) for each in given.spread)
             return f"{nominal}, +{above}/{below}: {_limits(given)}"
-        case Style.LIMITS | Style.RANGE:
-            return _limits(given)
+        case Style.LIMITS:
+            return f"{nominal}, {_as_written(given)}"
+        case Style.RANGE:
+            return _as_written(given)
 
 
 def _absolute(given: Given, unit: str) -> str:
@@ -80,6 +82,12 @@ def _absolute(given: Given, unit: str) -> str:
 
 def _limits(given: Given) -> str:
     return f"{limit(given, given.unit, low=True)} to {limit(given, given.unit, low=False)}"
+
+
+def _as_written(given: Given) -> str:
+    """Both limits in the author's digits."""
+    low, high = (typeset(with_unit(each, given.unit)) for each in given.spread)
+    return f"{low} to {high}"
 
 
 def limit(given: Given, unit: Unit, *, low: bool) -> str:

@@ -327,6 +327,7 @@ class _Reader:
         text = "\n".join(fence.lines)
         found = _SIGNAL.match(text)
         rest = text[found.end() :] if found else text
+        rest = rest[:1].upper() + rest[1:]
         if not rest.strip():
             self.findings.append(
                 error(
