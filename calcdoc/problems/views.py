@@ -2,6 +2,7 @@
 
 import unicodedata
 from collections.abc import Iterable, Mapping
+from typing import Final
 
 from calcdoc.problems.finding import Finding, Place, Severity
 from calcdoc.source import SourceFile
@@ -9,6 +10,11 @@ from calcdoc.source import SourceFile
 TAB = 4
 WIDEST = 110
 """Characters of a source line that are shown; longer lines are cut around the place."""
+
+_ACTING: Final = ("Cc", "Cs", "Zl", "Zp")
+_TURNING: Final = frozenset("\u202a\u202b\u202c\u202d\u202e\u2066\u2067\u2068\u2069")
+"""Characters that turn the direction of a text, so that it is not what it looks like."""
+_NO_CELL: Final = ("Mn", "Me", "Cf")
 
 Sources = Mapping[str, SourceFile]
 
@@ -34,8 +40,9 @@ def headline(finding: Finding, sources: Sources) -> str:
 def full(finding: Finding, sources: Sources) -> str:
     """The headline, the line with a caret, the related places, and the help."""
     shown = [headline(finding, sources)]
-    number = sources[finding.place.span.path].position(finding.place.span.start)[0]
-    margin = " " * len(str(number))
+    places = (finding.place, *finding.related)
+    numbers = [sources[each.span.path].position(each.span.start)[0] for each in places]
+    margin = " " * len(str(max(numbers)))
     shown.append(f"{margin} |")
     shown += _excerpt(finding.place, sources, "^", margin)
     for place in finding.related:
@@ -95,18 +102,23 @@ def _cut(line: str, column: int, length: int) -> tuple[str, int, int]:
 
 def _flat(line: str) -> str:
     """A line as shown: tabs expanded, characters a terminal would act on replaced."""
-    shown = "".join(" " * TAB if c == "\t" else c for c in line)
-    return "".join("\ufffd" if unicodedata.category(c) == "Cc" else c for c in shown)
+    return "".join(_shown(character) for character in line)
+
+
+def _shown(character: str) -> str:
+    if character == "\t":
+        return " " * TAB
+    if unicodedata.category(character) in _ACTING or character in _TURNING:
+        return "\ufffd"
+    return character
 
 
 def _cells(text: str) -> int:
     """Character cells a text takes on a terminal."""
-    return sum(_width(character) for character in text)
+    return sum(_width(character) for character in _flat(text))
 
 
 def _width(character: str) -> int:
-    if character == "\t":
-        return TAB
-    if unicodedata.combining(character):
+    if unicodedata.category(character) in _NO_CELL:
         return 0
     return 2 if unicodedata.east_asian_width(character) in "WF" else 1

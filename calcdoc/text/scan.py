@@ -133,4 +133,5 @@ def shown(text: str) -> str:
         name = "a tab" if text == "\t" else unicodedata.name(text, "a character").lower()
         return name if text == "\t" else f"a {name.removeprefix('a ')} (U+{ord(text):04X})"
     flat = " ".join(text.split()) or repr(text)[1:-1]
+    flat = "".join(each if each.isprintable() else "\ufffd" for each in flat)
     return f"`{flat if len(flat) <= SHOWN_MOST else flat[: SHOWN_MOST - 1] + '…'}`"

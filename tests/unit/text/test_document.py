@@ -98,7 +98,8 @@ def test_mentions_in_order() -> None:
 def test_mentions_stand_where_they_say() -> None:
     """The text at the place of each mention is the mention."""
     document = read(
-        "{a} \\{b} {b}\u2028{c}\n>  {d}\n\n1. x\n   {e} *{f}\n   y {g}*\n\n## {h} ##\n\n```caution\nDanger: so hot {i}\n```\n"
+        "{a} \\{b} {b}\u2028{c}\n>  {d}\n\n1. x\n   {e} *{f}\n   y {g}*\n\n## {h} ##\n"
+        "\n```caution\nDanger: so hot {i}\n```\n"
     )
     found = [(each.name, each.span) for each in mentions(document.body)]
     source = document.source.text
