@@ -7,7 +7,7 @@ from functools import cache
 from importlib import resources
 from typing import TYPE_CHECKING, Final, cast
 
-from calcdoc.units.dimension import BASE_NAMES, Dimension
+from calcdoc.units.dimension import BASE_NAMES, Dimension, whole
 from calcdoc.units.unit import Unit
 from calcdoc.units.words import ALONE, NICKNAMES, PREFIXED, PREFIXES, SPELLED
 
@@ -59,7 +59,7 @@ def _atom(word: str) -> tuple[str, Fraction, Dimension]:
     prefix, base, name = parts
     factor, _ = _registry().get_base_units(name)
     found = _registry().get_dimensionality(name)
-    exponents = tuple(Fraction(str(found.get(each, 0))) for each in BASE_NAMES)
+    exponents = tuple(whole(Fraction(str(found.get(each, 0)))) for each in BASE_NAMES)
     # Pint's root of mass is the gram; the coherent unit is the kilogram.
     in_kilograms = cast("Fraction", factor) / Fraction(1000) ** int(exponents[1])
     return prefix + base, in_kilograms, Dimension(exponents)
