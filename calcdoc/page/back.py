@@ -6,7 +6,7 @@ from html import escape
 from typing import Final
 
 from calcdoc.page import typeset
-from calcdoc.page.lines import GIVEN, assumed, given_value
+from calcdoc.page.lines import GIVEN, assumed, given_value, subject
 from calcdoc.page.markup import Column, table, verdict
 from calcdoc.page.view import View, reference_anchor
 from calcdoc.record.record import Criterion, Quantity
@@ -38,7 +38,7 @@ def clauses(view: View) -> str:
 
 
 def _requirement(view: View, criterion: Criterion) -> str:
-    return f"{view.place(criterion.id)}: {escape(criterion.description or criterion.text)}"
+    return f"{view.place(criterion.id)}: {subject(criterion) or view.math(criterion.text, room=17)}"
 
 
 def _result(view: View, criterion: Criterion) -> str:
@@ -61,12 +61,12 @@ def _verdict(criterion: Criterion) -> str:
 def inputs(view: View) -> str:
     """Register of what was given."""
     columns = (
-        Column("line", 7),
-        Column("symbol", 11),
-        Column("value", 24),
-        Column("limits", 20),
-        Column("meaning", 20),
-        Column("basis", 18),
+        Column("line", 6),
+        Column("symbol", 9),
+        Column("value", 20),
+        Column("limits", 21),
+        Column("meaning", 27),
+        Column("basis", 17),
     )
     given = [each for each in view.record.quantities if each.kind in GIVEN]
     rows = [_given_row(view, each) for each in given]

@@ -4,23 +4,23 @@ from html import escape
 from typing import Final
 
 from calcdoc.page import typeset
-from calcdoc.page.lines import assumed
+from calcdoc.page.lines import assumed, subject
 from calcdoc.page.markup import Column, margin_bar, table, verdict
-from calcdoc.page.pieces import is_formula
 from calcdoc.page.prose import caution
 from calcdoc.page.view import View
 from calcdoc.record.record import Criterion
 
 VERDICTS: Final = (
-    Column("id", 5),
-    Column("criterion", 26),
-    Column("value", 10.5, "num"),
-    Column("limit", 10, "num"),
-    Column("margin", 9, "num"),
-    Column("", 10.5),
-    Column("verdict", 11.5),
-    Column("governed by", 17.5),
+    Column("id", 4.5),
+    Column("criterion", 22.5),
+    Column("value", 10, "num"),
+    Column("limit", 9.5, "num"),
+    Column("margin", 7.5, "num"),
+    Column("", 8.5),
+    Column("verdict", 9),
+    Column("governed by", 28.5, "gov"),
 )
+KIND: Final = "calculation record"
 ROLES: Final = ("prepared", "checked", "approved")
 SIGNALS: Final = ("danger", "warning", "caution", "notice")
 NOT_COMPUTED: Final = ("by test", "by inspection")
@@ -34,7 +34,9 @@ def cover(view: View) -> str:
 
 def _title(view: View) -> str:
     document = view.record.document
-    kind = f"{document.subtitle}: calculation record" if document.subtitle else "Calculation record"
+    kind = document.subtitle or KIND.capitalize()
+    if KIND not in kind.lower():
+        kind += f": {KIND}"
     revision = ", ".join(filter(None, (document.revision, document.date)))
     fields = [
         ("number", escape(document.number)),
@@ -67,11 +69,7 @@ def _verdicts(view: View) -> str:
 
 
 def _verdict_row(view: View, criterion: Criterion) -> tuple[str, ...]:
-    what = escape(criterion.description)
-    if not is_formula(criterion.text):
-        what = escape(criterion.text)
-    elif not what:
-        what = view.math(criterion.text, room=14)
+    what = subject(criterion) or view.math(criterion.text, room=14)
     case = "" if criterion.case in ("", "normal") else f"case {escape(criterion.case)}"
     by = "; ".join(filter(None, (case, view.setting(criterion.governing))))
     return (
@@ -82,7 +80,7 @@ def _verdict_row(view: View, criterion: Criterion) -> tuple[str, ...]:
         typeset.quantity(criterion.margin_text),
         margin_bar(criterion.margin, criterion.verdict),
         verdict(criterion.verdict) + ("<br>accepted" if criterion.accepted else ""),
-        by or escape(criterion.reason),
+        by or _why(view, criterion),
     )
 
 
@@ -125,10 +123,18 @@ def _assumption(view: View, name: str) -> str:
 
 
 def _test(view: View, criterion: Criterion) -> str:
-    parts = (escape(criterion.text), escape(criterion.reason))
-    return f"{view.place(criterion.id)} ({escape(criterion.verdict)}): " + "; ".join(
-        filter(None, parts)
-    )
+    parts = (subject(criterion), _why(view, criterion))
+    said = "; ".join(part for part in parts if part)
+    return f"{view.place(criterion.id)} ({escape(criterion.verdict)}): {said}"
+
+
+def _why(view: View, criterion: Criterion) -> str:
+    """Why there is no number, or what is still open; else at which values it was judged."""
+    if criterion.reason:
+        return view.sentence(criterion.reason)
+    if criterion.verdict in NOT_COMPUTED:
+        return view.basis(criterion.basis)
+    return "nominal values" if criterion.method == "nominal" else ""
 
 
 def _accepted(view: View, criterion: Criterion) -> str:
@@ -144,7 +150,7 @@ def _cautions(view: View) -> str:
     for signal in SIGNALS:
         texts = [each.text for each in view.record.cautions if each.signal == signal]
         if texts:
-            boxes.append(caution(signal, "".join(f"<p>{escape(text)}</p>" for text in texts)))
+            boxes.append(caution(signal, "".join(f"<p>{view.named(text)}</p>" for text in texts)))
     return f'<h2 id="cautions">Cautions</h2>\n{"".join(boxes)}' if boxes else ""
 
 

@@ -35,16 +35,27 @@ def quantity_line(view: View, quantity: Quantity) -> str:
 def criterion_line(view: View, criterion: Criterion) -> str:
     """A criterion: inequality, numbers, bar against the limit, verdict in words."""
     sentence = not is_formula(criterion.text)
-    what = criterion.description or ""
-    if sentence:
-        what = criterion.text + (f": {what}" if what else "")
-    clauses = f'<span class="cl">{escape(criterion.clauses)}</span>' if criterion.clauses else ""
+    what = subject(criterion)
+    if criterion.description and criterion.description not in what:
+        what += f": {escape(criterion.description)}"
+    clauses = (
+        f'<span class="cl">{view.sentence(criterion.clauses)}</span>' if criterion.clauses else ""
+    )
     work = "" if sentence else f'<div class="eq">{view.math(criterion.text)} {clauses}</div>'
+    shown = f'<p class="what">{what}</p>' if what else ""
     return (
         f'<div class="wl cr" id="c-{escape(criterion.id)}">'
         f'<span class="no">{escape(criterion.id)}</span>{_criterion_side(view, criterion)}'
-        f"{_what(what)}{work}{_compared(view, criterion)}{_decided(view, criterion)}</div>\n"
+        f"{shown}{work}{_compared(view, criterion)}{_decided(view, criterion)}</div>\n"
     )
+
+
+def subject(criterion: Criterion) -> str:
+    """What a criterion is about, in words; empty when only its inequality says it."""
+    if is_formula(criterion.text):
+        return escape(criterion.description)
+    reason_alone = criterion.verdict == "not applicable" and criterion.text == criterion.reason
+    return escape(criterion.description if reason_alone else "") or escape(criterion.text)
 
 
 def sentence_line(view: View, assumption: Assumption) -> str:

@@ -22,6 +22,8 @@ NUMBER: Final = re.compile(
     r"(?<![\w.\u2212-])([-\u2212]?[0-9]+(?:\.[0-9]+)?)(?:e(-?[0-9]+))?(?![\w-]|\.[0-9])"
     r"( (?=[A-Za-zµΩ°%]))?"
 )
+JOINTS: Final = frozenset("/·")
+"""Where a line could break inside a unit."""
 BETWEEN_UNITS: Final = re.compile(r"( [-+\u2212=] )")
 RAISED: Final = str.maketrans("0123456789-\u2212", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻⁻")
 WORD: Final = re.compile(r"[^\s,;:()]+")
@@ -30,7 +32,8 @@ WORD: Final = re.compile(r"[^\s,;:()]+")
 @lru_cache(maxsize=8192)
 def quantity(text: str) -> str:
     """A text that is a quantity, as HTML: the unit's exponents and a power of ten are raised."""
-    return inline(read(text)) if text else ""
+    shown = inline(read(text)) if text else ""
+    return f'<span class="nb">{shown}</span>' if JOINTS.intersection(text) else shown
 
 
 @lru_cache(maxsize=8192)

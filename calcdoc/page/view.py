@@ -83,7 +83,11 @@ class View:
 
     def sentence(self, text: str) -> str:
         """A sentence of the record: its numbers typeset, its symbols set as symbols."""
-        return NAME.sub(self._named, escape(typeset.signs(text), quote=False))
+        return self.named(typeset.signs(text))
+
+    def named(self, text: str) -> str:
+        """A sentence whose numbers are typeset already, its symbols set as symbols."""
+        return NAME.sub(self._named, escape(text, quote=False))
 
     def _named(self, found: re.Match[str]) -> str:
         return self.symbol(found[0]) if fold(found[0]) in self._links else found[0]
