@@ -5,18 +5,17 @@ Nothing outside that folder is read, whatever a text names, also not through a l
 
 import os
 import stat
-from dataclasses import dataclass
 from pathlib import Path
 from typing import Final
 
 from calcdoc.errors import FileTrouble
+from calcdoc.frozen import Frozen
 
 LARGEST: Final = 16_000_000
 """Bytes of one file."""
 
 
-@dataclass(frozen=True, slots=True)
-class Folder:
+class Folder(Frozen, frozen=True):
     """A folder from which files may be read."""
 
     root: Path
@@ -40,7 +39,7 @@ def read_bytes(path: Path, name: str) -> bytes:
         FileTrouble: when there is none, it is too large, or it cannot be read.
     """
     try:
-        if not stat.S_ISREG(os.stat(path).st_mode):
+        if not stat.S_ISREG(path.stat().st_mode):
             kind = "a folder" if path.is_dir() else "no plain file"
             raise FileTrouble(f"{name} is {kind}; give the path of a design text")
         with path.open("rb") as file:
@@ -72,4 +71,6 @@ def write_whole(path: Path, data: bytes) -> None:
         finally:
             beside.unlink(missing_ok=True)
     except OSError as trouble:
-        raise FileTrouble(f"{path} cannot be written: {(trouble.strerror or 'unknown').lower()}") from trouble
+        raise FileTrouble(
+            f"{path} cannot be written: {(trouble.strerror or 'unknown').lower()}"
+        ) from trouble

@@ -8,17 +8,17 @@ Each stage returns what it made and what it found; only a text without errors go
 import base64
 import os
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass, field
 from datetime import UTC, datetime
 from importlib.metadata import version
 from pathlib import Path
 from typing import Final
 
 from calcdoc import __version__
-from calcdoc.errors import CalcdocError, FileTrouble
-from calcdoc.folder import Folder, read_bytes, write_whole
 from calcdoc.analysis.evaluate import evaluate_model
 from calcdoc.analysis.evaluation import Evaluation
+from calcdoc.errors import CalcdocError, FileTrouble
+from calcdoc.folder import Folder, read_bytes, write_whole
+from calcdoc.frozen import Frozen
 from calcdoc.model.build import build
 from calcdoc.model.model import Model
 from calcdoc.problems import Finding, error
@@ -41,8 +41,7 @@ class TextHasErrors(CalcdocError):
     """The design text has errors, so there is no record of it."""
 
 
-@dataclass(frozen=True, slots=True)
-class Design:
+class Design(Frozen, frozen=True):
     """A design text that was read and checked; ``model`` is None when it has errors."""
 
     source: SourceFile
@@ -50,7 +49,7 @@ class Design:
     """The file as it is on disk."""
     model: Model | None
     findings: tuple[Finding, ...]
-    pictures: Mapping[str, Embedded] = field(default_factory=dict)
+    pictures: Mapping[str, Embedded] = {}
 
     @property
     def ok(self) -> bool:
@@ -63,8 +62,7 @@ class Design:
         return "\n".join(full(each, sources) for each in in_order(self.findings))
 
 
-@dataclass(frozen=True, slots=True)
-class Evaluated:
+class Evaluated(Frozen, frozen=True):
     """A design with its numbers; ``evaluation`` is None when the text has errors."""
 
     design: Design
@@ -125,7 +123,9 @@ def record(evaluated: Evaluated) -> Record:
         TextHasErrors: when there is nothing to record.
     """
     if evaluated.evaluation is None:
-        raise TextHasErrors(f"{evaluated.design.source.path} has errors, so there is no record of it")
+        raise TextHasErrors(
+            f"{evaluated.design.source.path} has errors, so there is no record of it"
+        )
     tool = Tool(version=__version__, libraries={name: version(name) for name in LIBRARIES})
     made = Circumstances(tool, evaluated.findings, evaluated.design.pictures)
     return build_record(evaluated.evaluation, made)
@@ -198,7 +198,7 @@ def _issued(made: Record) -> datetime:
 
 
 def _decoded(name: str, data: bytes) -> tuple[SourceFile, tuple[Finding, ...]]:
-    """The normalised text: no byte-order mark, line ends as ``\\n``."""
+    r"""The normalised text: no byte-order mark, line ends as ``\\n``."""
     body = data.removeprefix(b"\xef\xbb\xbf")
     text = body.decode("utf-8", errors="replace").replace("\r\n", "\n").replace("\r", "\n")
     source = SourceFile(name, text, digest(data))
@@ -228,8 +228,9 @@ def _pictures(
         try:
             content = folder.read(node.path)
         except FileTrouble as trouble:
-            findings.append(error("picture", f"this picture is not shown: {trouble}", node.span,
-                                  help="put the file beside the design and name it from there"))  # fmt: skip
+            message = f"this picture is not shown: {trouble}"
+            advice = "put the file beside the design and name it from there"
+            findings.append(error("picture", message, node.span, help=advice))
             continue
         kind = next((kind for magic, kind in _MEDIA.items() if content.startswith(magic)), None)
         if kind is None:

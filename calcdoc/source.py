@@ -9,9 +9,10 @@ import hashlib
 from dataclasses import dataclass, field
 from functools import cached_property
 
+from calcdoc.frozen import Frozen
 
-@dataclass(frozen=True, slots=True)
-class Span:
+
+class Span(Frozen, frozen=True):
     """A place: characters ``start`` to ``end`` (exclusive) of the text called ``path``."""
 
     path: str

@@ -55,7 +55,9 @@ def _boxes(compiled: Compiled, model: Model) -> dict[int, Box]:
         clauses = judged.statement.clauses
         if not clauses.at:
             continue
-        low, nominal, high = (each.copy() for each in (declared.low, declared.nominal, declared.high))
+        low, nominal, high = (
+            each.copy() for each in (declared.low, declared.nominal, declared.high)
+        )
         for point in clauses.at:
             column = compiled.columns[point.symbol.key]
             low[column], nominal[column], high[column] = point.given.si
@@ -123,9 +125,7 @@ class _Evaluator:
         box = self.boxes[-1]
         return self._ask(target, False, box), self._ask(target, True, box)
 
-    def _band(
-        self, nominal: float, answers: tuple[Extreme, ...], asked: tuple[int, int]
-    ) -> Band:
+    def _band(self, nominal: float, answers: tuple[Extreme, ...], asked: tuple[int, int]) -> Band:
         least, greatest = (answers[at] for at in asked)
         # Rounding may put an attained end a hair on the wrong side of the nominal value.
         return Band(
@@ -155,7 +155,7 @@ class _Evaluator:
             judged, side, value, limit,
             0.0 if abs(slack) <= tolerance else slack, 0.0 if equal else requirement, equal,
             _outcome(side, requirement, extreme.bound, tolerance),
-            self._combination(extreme) | self._point(judged.statement, extreme),
+            {**self._combination(extreme), **self._point(judged.statement, extreme)},
             {key: float(computed[self.compiled.variables[key]]) for key in judged.depends_on},
             extreme.proof, extreme.bound,
         )  # fmt: skip

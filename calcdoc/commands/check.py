@@ -1,11 +1,10 @@
 """``calcdoc check``: evaluate and print the verdict table and every problem."""
 
-from dataclasses import dataclass
-
 import click
 
 from calcdoc.commands.table import verdict_table
 from calcdoc.errors import CalcdocError
+from calcdoc.frozen import Frozen
 from calcdoc.pipeline import Evaluated, evaluate, read, record
 from calcdoc.problems.views import as_data, in_order
 from calcdoc.record.record import SCHEMA, Record
@@ -14,8 +13,7 @@ from calcdoc.record.store import to_json
 PASSES, FAILS, TEXT_HAS_ERRORS, WORLD_IS_WRONG = 0, 1, 2, 3
 
 
-@dataclass(frozen=True, slots=True)
-class Checked:
+class Checked(Frozen, frozen=True):
     """One file: what came out of it, and what to say about it."""
 
     status: int

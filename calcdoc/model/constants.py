@@ -4,17 +4,16 @@ The first four are exact by definition of the SI (SI Brochure, 9th edition, 2019
 magnetic constants are CODATA 2022; the tests compare all of them with ``scipy.constants``.
 """
 
-from dataclasses import dataclass
 from fractions import Fraction
 from typing import Final
 
+from calcdoc.frozen import Frozen
 from calcdoc.text.names import fold
 from calcdoc.units import ONE, Dimension
 from calcdoc.units.dimension import CURRENT, LENGTH, POWER, TEMPERATURE, TIME, VOLTAGE
 
 
-@dataclass(frozen=True, slots=True)
-class Constant:
+class Constant(Frozen, frozen=True):
     """A constant's value and what it is."""
 
     value: Fraction | None

@@ -1,9 +1,9 @@
 """The model: every name resolved, every formula with its dimension, in order of computation."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from fractions import Fraction
 
+from calcdoc.frozen import Frozen
 from calcdoc.text.document import Document
 from calcdoc.text.given import Given
 from calcdoc.text.nodes import Node
@@ -19,8 +19,7 @@ from calcdoc.text.statements import (
 from calcdoc.units import Dimension, Unit
 
 
-@dataclass(frozen=True, slots=True)
-class Typed:
+class Typed(Frozen, frozen=True):
     """What is known of an expression before any number is computed."""
 
     dimension: Dimension
@@ -29,8 +28,7 @@ class Typed:
     difference and for everything else."""
 
 
-@dataclass(frozen=True, slots=True)
-class Variable:
+class Variable(Frozen, frozen=True):
     """A quantity with a name: given, or defined by a formula."""
 
     key: str
@@ -55,8 +53,7 @@ class Variable:
         return self.statement.formula if isinstance(self.statement, Definition) else None
 
 
-@dataclass(frozen=True, slots=True)
-class Judged:
+class Judged(Frozen, frozen=True):
     """A criterion that is calculated, with the kind of quantity it compares."""
 
     statement: Inequality
@@ -64,8 +61,7 @@ class Judged:
     depends_on: tuple[str, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Discharge:
+class Discharge(Frozen, frozen=True):
     """``stored C at V through R``: keys of capacitor, voltage and bleed resistor (None: none)."""
 
     capacitance: str
@@ -74,8 +70,7 @@ class Discharge:
     statement: HazardStatement
 
 
-@dataclass(frozen=True, slots=True)
-class Model:
+class Model(Frozen, frozen=True):
     """A design that can be computed."""
 
     document: Document

@@ -1,8 +1,8 @@
 """One namespace for a whole document: symbols and ids, each defined once, all known."""
 
 from collections.abc import Iterable, Iterator, Mapping
-from dataclasses import dataclass
 
+from calcdoc.frozen import Frozen
 from calcdoc.model.constants import CONSTANTS
 from calcdoc.problems import Finding, Place, error
 from calcdoc.text.document import Document
@@ -26,8 +26,7 @@ from calcdoc.units import known_word
 Valued = GivenStatement | Definition
 
 
-@dataclass(frozen=True, slots=True)
-class Namespace:
+class Namespace(Frozen, frozen=True):
     """Every name of a document with the statement that defines it, by key."""
 
     quantities: Mapping[str, Valued]

@@ -1,8 +1,8 @@
 """A finding: one mistake of the author, at the smallest wrong place."""
 
-from dataclasses import dataclass
 from enum import Enum
 
+from calcdoc.frozen import Frozen
 from calcdoc.source import Span
 
 
@@ -13,16 +13,14 @@ class Severity(Enum):
     WARNING = "warning"
 
 
-@dataclass(frozen=True, slots=True)
-class Place:
+class Place(Frozen, frozen=True):
     """A place in a text with a few words about it."""
 
     span: Span
     label: str = ""
 
 
-@dataclass(frozen=True, slots=True)
-class Finding:
+class Finding(Frozen, frozen=True):
     """One mistake: a stable code, a headline, where it is, and what to do about it."""
 
     code: str

@@ -1,0 +1,1 @@
+"""From evaluation to record: plain data with everything a page shows."""

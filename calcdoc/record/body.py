@@ -3,8 +3,8 @@
 import re
 import unicodedata
 from collections.abc import Callable
-from dataclasses import dataclass
 
+from calcdoc.frozen import Frozen
 from calcdoc.record import record as r
 from calcdoc.record.naming import Naming, is_numbered
 from calcdoc.text import prose
@@ -20,16 +20,14 @@ from calcdoc.text.statements import (
 _SLUG = re.compile(r"[^a-z0-9]+")
 
 
-@dataclass(frozen=True, slots=True)
-class Fill:
+class Fill(Frozen, frozen=True):
     """What prose may name: filled in by whoever knows the numbers."""
 
     mention: Callable[[prose.Mention], r.Inline]
     picture: Callable[[prose.Picture], r.Inline]
 
 
-@dataclass(frozen=True, slots=True)
-class Parts:
+class Parts(Frozen, frozen=True):
     """The body, and what was taken out of it for the cover."""
 
     subtitle: str
@@ -49,7 +47,9 @@ def divide(body: tuple[prose.Block, ...], fill: Fill) -> Parts:
     if len(tops) == 1 and shown is tops[0]:
         subtitle = plain(inline(tops[0].inline, fill))
         blocks.remove(tops[0])
-    first = next((each for each in blocks if isinstance(each, prose.Heading | prose.Paragraph)), None)
+    first = next(
+        (each for each in blocks if isinstance(each, prose.Heading | prose.Paragraph)), None
+    )
     purpose = ""
     if isinstance(first, prose.Paragraph):
         purpose = plain(inline(first.inline, fill))
@@ -114,7 +114,7 @@ class _Body:
         self.naming, self.fill = naming, fill
         self.anchors: set[str] = set()
 
-    def block(self, block: prose.Block) -> tuple[r.Block, ...]:  # noqa: PLR0911
+    def block(self, block: prose.Block) -> tuple[r.Block, ...]:
         """The record's blocks for one of the text."""
         match block:
             case prose.Heading():
@@ -147,7 +147,9 @@ class _Body:
         nodes = inline(heading.inline, self.fill)
         number = self.naming.sections.get(id(heading), "")
         level = heading.level - self.naming.section_level + 2
-        return r.Heading(level=level, number=number, anchor=self._anchor(plain(nodes)), inline=nodes)
+        return r.Heading(
+            level=level, number=number, anchor=self._anchor(plain(nodes)), inline=nodes
+        )
 
     def _anchor(self, text: str) -> str:
         ascii_text = unicodedata.normalize("NFKD", text).encode("ascii", "ignore").decode()

@@ -1,9 +1,9 @@
 """From evaluation to record: everything a page shows, in order."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
 
 from calcdoc.analysis.evaluation import Evaluation
+from calcdoc.frozen import Frozen
 from calcdoc.problems import Finding
 from calcdoc.problems.views import as_data, in_order
 from calcdoc.record import body as prose_body
@@ -13,14 +13,13 @@ from calcdoc.record.criteria import criteria
 from calcdoc.record.naming import name_lines
 from calcdoc.record.quantities import Numbers, quantities
 from calcdoc.record.registers import assumptions, references, tally, unsourced
-from calcdoc.record.wording import typeset
+from calcdoc.record.wording import counted, typeset
 from calcdoc.text import prose
 from calcdoc.text.names import fold
 from calcdoc.text.titleblock import TitleBlock
 
 
-@dataclass(frozen=True, slots=True)
-class Embedded:
+class Embedded(Frozen, frozen=True):
     """A picture of the design's folder, read and checked."""
 
     name: str
@@ -29,13 +28,12 @@ class Embedded:
     base64: str
 
 
-@dataclass(frozen=True, slots=True)
-class Circumstances:
+class Circumstances(Frozen, frozen=True):
     """What a record says of its making, besides the design."""
 
     tool: r.Tool
     findings: tuple[Finding, ...] = ()
-    pictures: Mapping[str, Embedded] = field(default_factory=dict)
+    pictures: Mapping[str, Embedded] = {}
     """By path as written in the text."""
 
 
@@ -157,25 +155,33 @@ def _fill(
 
 
 def _methods(lines: tuple[r.Quantity, ...], digits: int) -> tuple[str, ...]:
-    """How the numbers came about, one sentence each."""
-    varying = [each for each in lines if each.varies and each.formula]
-    counts = {proof: sum(each.proof == proof for each in varying) for proof in
-              ("exact", "bounded", "searched")}  # fmt: skip
-    statement = [
-        "Units and dimensions of every formula were checked before any number was computed; the"
-        " computation runs in coherent SI units and nothing is rounded on the way.",
-        "Extremes: every quantity is taken at its least and greatest value while all conditions,"
-        " inputs and assumptions it depends on move through their whole bands at once; a quantity"
-        " used twice moves once. Bands are not combined statistically.",
-        f"Of the bands of {len(varying)} derived quantities {counts['exact']} are exact (attained,"
-        f" and nothing in the band lies beyond), {counts['bounded']} are attained and proven to"
-        f" within a share of {typeset('1e-9')}, {counts['searched']} were searched and are not"
-        " proven.",
-        "A criterion is judged at the combination where limit less value is least, both sides"
-        " moving together, on unrounded values; equality within a share of"
-        f" {typeset('1e-12')} counts as equal.",
-        f"Values are shown with {digits} significant digits, ties to even; margins are rounded"
-        " towards less margin, waiting times towards more. Limits and values get the digits it"
-        " takes to tell them apart.",
-    ]
-    return tuple(statement)
+    """How the numbers came about, one paragraph each."""
+    proofs = [each.proof for each in lines if each.varies and each.formula]
+    exact, bounded, searched = (proofs.count(p) for p in ("exact", "bounded", "searched"))
+    return (
+        (
+            "Units and dimensions of every formula were checked before any number was computed;"
+            " the computation runs in coherent SI units and nothing is rounded on the way."
+        ),
+        (
+            "Extremes: every quantity is taken at its least and greatest value while all"
+            " conditions, inputs and assumptions it depends on move through their whole bands at"
+            " once; a quantity used twice moves once. Bands are not combined statistically."
+        ),
+        (
+            f"Of the bands of {counted(len(proofs), 'derived quantity', 'derived quantities')}"
+            f" {exact} are exact (attained, and nothing in the band lies beyond), {bounded} are"
+            f" attained and proven to within a share of {typeset('1e-9')}, {searched} were"
+            " searched and are not proven."
+        ),
+        (
+            "A criterion is judged at the combination where limit less value is least, both sides"
+            " moving together, on unrounded values; equality within a share of"
+            f" {typeset('1e-12')} counts as equal."
+        ),
+        (
+            f"Values are shown with {digits} significant digits, ties to even; margins are rounded"
+            " towards less margin, waiting times towards more. Limits and values get the digits"
+            " it takes to tell them apart."
+        ),
+    )

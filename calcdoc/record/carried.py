@@ -9,7 +9,8 @@ from calcdoc.record.wording import NO_BREAK, typeset
 from calcdoc.text import literal
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Binary, Call, Group, Name, Negate, Node, Quantity
-from calcdoc.units import PLAIN, Unit, unit_of as units_of
+from calcdoc.units import PLAIN, Unit
+from calcdoc.units import unit_of as units_of
 
 Combined = dict[str, Fraction]
 """Unit word to exponent; empty for a plain number."""
@@ -111,4 +112,3 @@ class _Walker:
         number = "" if factor == 1 else typeset(trimmed(factor, 6)).removeprefix(_ONE_TIMES)
         right = " ".join(part for part in (number, result.text) if part) or "1"
         self.reductions.append(f"{unit.text or '1'} = {right}")
-

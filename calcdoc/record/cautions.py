@@ -1,5 +1,7 @@
-"""Cautions: the general ones on every record, those of the hazards, of open assumptions, and the
-author's own. No setting removes one."""
+"""Cautions: the general ones, those of hazards and of open assumptions, and the author's own.
+
+No setting removes one.
+"""
 
 from collections.abc import Iterator
 from typing import Final
@@ -135,8 +137,8 @@ def _of_assumptions(assumptions: tuple[r.Assumption, ...]) -> Iterator[r.Caution
         what = counted(len(open_ones), "open assumption")
         yield r.Caution(
             signal="warning",
-            text=f"This record rests on {what} ({', '.join(open_ones)}): do not energise on it until"
-            f" {'it is' if len(open_ones) == 1 else 'they are'} closed.",
+            text=f"This record rests on {what} ({', '.join(open_ones)}): do not energise on it"
+            f" until {'it is' if len(open_ones) == 1 else 'they are'} closed.",
             origin="assumptions",
         )
 
@@ -145,7 +147,9 @@ def _of_author(body: tuple[r.Block, ...]) -> Iterator[r.Caution]:
     for block in body:
         match block:
             case r.CautionBox():
-                yield r.Caution(signal=block.signal, text=caution_text(block.blocks), origin="author")
+                yield r.Caution(
+                    signal=block.signal, text=caution_text(block.blocks), origin="author"
+                )
             case r.Items():
                 for item in block.items:
                     yield from _of_author(item)

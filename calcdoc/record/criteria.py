@@ -175,7 +175,9 @@ def _remark(judgement: Judgement, unit: Unit, share: float | None) -> str:
             return f"inside the limit by {short}, but not with the margin asked for"
         if judgement.slack == 0:
             return "equal to the limit"
-        of_limit = "" if share is None else f" ({_margin_text(judgement, unit, share)} of the limit)"
+        of_limit = (
+            "" if share is None else f" ({_margin_text(judgement, unit, share)} of the limit)"
+        )
         return f"short by {short}{of_limit}"
     if judgement.equal:
         return "equal to the limit with its margin" if margin else "equal to the limit"

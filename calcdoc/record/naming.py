@@ -1,8 +1,9 @@
 """Line numbers and who uses whom: what the lines of a record call each other."""
 
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
+from typing import TypeGuard
 
+from calcdoc.frozen import Frozen
 from calcdoc.model.model import Judged, Model
 from calcdoc.text import prose
 from calcdoc.text.statements import (
@@ -17,8 +18,7 @@ from calcdoc.text.statements import (
 Numbered = GivenStatement | Definition | SentenceStatement | Inequality | Uncalculated
 
 
-@dataclass(frozen=True, slots=True)
-class Naming:
+class Naming(Frozen, frozen=True):
     """Numbers of lines and sections, and the uses of every quantity."""
 
     lines: Mapping[str, str]
@@ -69,7 +69,7 @@ def _in_order(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Heading | Numbe
                 pass
 
 
-def is_numbered(statement: Statement) -> bool:
+def is_numbered(statement: Statement) -> TypeGuard[Numbered]:
     """Whether a statement has a line of its own in the record."""
     return isinstance(statement, Numbered)
 

@@ -75,21 +75,20 @@ def quantities(numbers: Numbers, naming: Naming) -> tuple[r.Quantity, ...]:
 
 def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantity:
     band, unit = numbers.evaluation.bands[variable.key], numbers.units[variable.key]
-    statement = variable.statement
-    given = variable.given
+    statement, given = variable.statement, variable.given
     least, nominal, greatest = _in_unit(band, unit, given)
-    is_given = isinstance(statement, GivenStatement)
+    stated = statement if isinstance(statement, GivenStatement) else None
     return r.Quantity(
         symbol=variable.symbol,
         line=naming.lines[variable.key],
-        kind=statement.kind.value if is_given else "derived",
+        kind=stated.kind.value if stated else "derived",
         unit=unit.text,
         nominal=nominal,
         least=least,
         greatest=greatest,
         index=None,
-        at_least=numbers.combination(band.at_least) if not is_given else {},
-        at_greatest=numbers.combination(band.at_greatest) if not is_given else {},
+        at_least={} if stated else numbers.combination(band.at_least),
+        at_greatest={} if stated else numbers.combination(band.at_greatest),
         proof=band.proof.value,
         formula="" if variable.formula is None else unparse(variable.formula),
         substitution=_substitution(numbers, variable),
@@ -101,8 +100,8 @@ def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantit
         description=statement.description,
         basis=statement.basis.text,
         by_case={},
-        id=statement.id.name if is_given and statement.id else "",
-        state=statement.state if is_given else "",
+        id=stated.id.name if stated and stated.id else "",
+        state=stated.state if stated else "",
         units_carried=_carried(numbers, variable),
         tolerance=band_in_words(given) if given else "",
         least_text=_end(numbers, variable, band.least, low=True),

@@ -17,33 +17,33 @@ class Plain(Struct, frozen=True, kw_only=True):
 # --- prose -----------------------------------------------------------------------------------
 
 
-class Words(Plain, tag_field="kind", tag="text"):
+class Words(Plain, frozen=True, kw_only=True, tag_field="kind", tag="text"):
     """Plain text inside a paragraph."""
 
     text: str
 
 
-class Emphasis(Plain, tag_field="kind", tag="emphasis"):
+class Emphasis(Plain, frozen=True, kw_only=True, tag_field="kind", tag="emphasis"):
     """Emphasised text; ``strong`` for the heavier kind."""
 
     strong: bool
     inline: tuple["Inline", ...]
 
 
-class Code(Plain, tag_field="kind", tag="code"):
+class Code(Plain, frozen=True, kw_only=True, tag_field="kind", tag="code"):
     """A code span."""
 
     text: str
 
 
-class Link(Plain, tag_field="kind", tag="link"):
+class Link(Plain, frozen=True, kw_only=True, tag_field="kind", tag="link"):
     """A link whose address was found harmless (http, https, mailto, #)."""
 
     address: str
     inline: tuple["Inline", ...]
 
 
-class Picture(Plain, tag_field="kind", tag="picture"):
+class Picture(Plain, frozen=True, kw_only=True, tag_field="kind", tag="picture"):
     """A picture of the design's folder, embedded."""
 
     name: str
@@ -53,11 +53,11 @@ class Picture(Plain, tag_field="kind", tag="picture"):
     """Base64 of the file."""
 
 
-class Break(Plain, tag_field="kind", tag="break"):
+class Break(Plain, frozen=True, kw_only=True, tag_field="kind", tag="break"):
     """A forced line break."""
 
 
-class Value(Plain, tag_field="kind", tag="value"):
+class Value(Plain, frozen=True, kw_only=True, tag_field="kind", tag="value"):
     """``{V_pk}`` in prose: a quantity's value, linked to its line."""
 
     symbol: str
@@ -67,7 +67,7 @@ class Value(Plain, tag_field="kind", tag="value"):
     """The number with unit, as in ``325.3 V``."""
 
 
-class Verdict(Plain, tag_field="kind", tag="verdict"):
+class Verdict(Plain, frozen=True, kw_only=True, tag_field="kind", tag="verdict"):
     """``{C4}`` in prose: a criterion's name with its verdict."""
 
     id: str
@@ -78,7 +78,7 @@ class Verdict(Plain, tag_field="kind", tag="verdict"):
 Inline = Words | Emphasis | Code | Link | Picture | Break | Value | Verdict
 
 
-class Heading(Plain, tag_field="kind", tag="heading"):
+class Heading(Plain, frozen=True, kw_only=True, tag_field="kind", tag="heading"):
     """A heading; numbered when it opens a section."""
 
     level: int
@@ -89,32 +89,32 @@ class Heading(Plain, tag_field="kind", tag="heading"):
     inline: tuple[Inline, ...]
 
 
-class Paragraph(Plain, tag_field="kind", tag="paragraph"):
+class Paragraph(Plain, frozen=True, kw_only=True, tag_field="kind", tag="paragraph"):
     """A paragraph of prose."""
 
     inline: tuple[Inline, ...]
 
 
-class Items(Plain, tag_field="kind", tag="items"):
+class Items(Plain, frozen=True, kw_only=True, tag_field="kind", tag="items"):
     """A list; ``start`` is None when it is not numbered."""
 
     start: int | None
     items: tuple[tuple["Block", ...], ...]
 
 
-class Quote(Plain, tag_field="kind", tag="quote"):
+class Quote(Plain, frozen=True, kw_only=True, tag_field="kind", tag="quote"):
     """A quotation."""
 
     blocks: tuple["Block", ...]
 
 
-class Listing(Plain, tag_field="kind", tag="listing"):
+class Listing(Plain, frozen=True, kw_only=True, tag_field="kind", tag="listing"):
     """A fenced block that is no part of the calculation, shown as code."""
 
     text: str
 
 
-class Grid(Plain, tag_field="kind", tag="grid"):
+class Grid(Plain, frozen=True, kw_only=True, tag_field="kind", tag="grid"):
     """A pipe table of the prose."""
 
     align: tuple[str, ...]
@@ -123,29 +123,29 @@ class Grid(Plain, tag_field="kind", tag="grid"):
     rows: tuple[tuple[tuple[Inline, ...], ...], ...]
 
 
-class Rule(Plain, tag_field="kind", tag="rule"):
+class Rule(Plain, frozen=True, kw_only=True, tag_field="kind", tag="rule"):
     """A thematic break."""
 
 
-class QuantityLine(Plain, tag_field="kind", tag="quantity"):
+class QuantityLine(Plain, frozen=True, kw_only=True, tag_field="kind", tag="quantity"):
     """Here stands the working line of a quantity."""
 
     symbol: str
 
 
-class CriterionLine(Plain, tag_field="kind", tag="criterion"):
+class CriterionLine(Plain, frozen=True, kw_only=True, tag_field="kind", tag="criterion"):
     """Here stands a criterion."""
 
     id: str
 
 
-class SentenceLine(Plain, tag_field="kind", tag="sentence"):
+class SentenceLine(Plain, frozen=True, kw_only=True, tag_field="kind", tag="sentence"):
     """Here stands an assumption that is a sentence."""
 
     id: str
 
 
-class CautionBox(Plain, tag_field="kind", tag="caution"):
+class CautionBox(Plain, frozen=True, kw_only=True, tag_field="kind", tag="caution"):
     """Here stands a caution of the author."""
 
     signal: str
@@ -169,7 +169,7 @@ Block = (
 # --- title block ------------------------------------------------------------------------------
 
 
-class People(Plain):
+class People(Plain, frozen=True, kw_only=True):
     """Who prepared, checked and approved; empty where not named."""
 
     prepared: str
@@ -177,7 +177,7 @@ class People(Plain):
     approved: str
 
 
-class Issue(Plain):
+class Issue(Plain, frozen=True, kw_only=True):
     """One row of the revision history."""
 
     revision: str
@@ -185,7 +185,7 @@ class Issue(Plain):
     reason: str
 
 
-class Document(Plain):
+class Document(Plain, frozen=True, kw_only=True):
     """The title block."""
 
     number: str
@@ -210,7 +210,7 @@ class Document(Plain):
 # --- the calculation --------------------------------------------------------------------------
 
 
-class CaseValues(Plain):
+class CaseValues(Plain, frozen=True, kw_only=True):
     """A quantity in one case."""
 
     nominal: float | None
@@ -218,13 +218,13 @@ class CaseValues(Plain):
     greatest: float | None
 
 
-class Quantity(Plain):
+class Quantity(Plain, frozen=True, kw_only=True):
     """One quantity: an input with its band or a working line. Numbers are in ``unit``."""
 
     symbol: str
     line: str
     kind: str
-    """``condition``, ``input``, ``assumption``, ``derived`` (later also solved, settled, method)."""
+    """``condition``, ``input``, ``assumption``, ``derived`` (later: solved, settled, method)."""
     unit: str
     """Empty for a plain number."""
     nominal: float | list[float]
@@ -258,7 +258,7 @@ class Quantity(Plain):
     units_carried: str
     """As in ``mA·ms/µF = V``; empty where nothing is reduced."""
     tolerance: str
-    """The band as a reader writes it: ``230 V × (1 ± 10 %)``, ``(230 ± 23) V``, ``28.5 V to 31.8 V``,
+    """The band as a reader writes it: ``230 V × (1 ± 10 %)``, ``(230 ± 23) V``,
     typeset already (no-break spaces, true minus); empty when the quantity does not vary."""
     least_text: str
     greatest_text: str
@@ -267,7 +267,7 @@ class Quantity(Plain):
     """Sentences for the reader: the extreme lies inside the band, the nominal is the middle, ..."""
 
 
-class CriterionCase(Plain):
+class CriterionCase(Plain, frozen=True, kw_only=True):
     """A criterion in one case."""
 
     value: float | None
@@ -276,7 +276,7 @@ class CriterionCase(Plain):
     verdict: str
 
 
-class Criterion(Plain):
+class Criterion(Plain, frozen=True, kw_only=True):
     """One acceptance criterion with its verdict. Numbers are in ``unit`` at the governing point."""
 
     id: str
@@ -284,7 +284,7 @@ class Criterion(Plain):
     text: str
     """The inequality as written, or the text of a test, without the clauses."""
     method: str
-    """``extremes``, ``nominal``, ``point`` (an operating point), ``test``, ``inspection``, ``none``."""
+    """``extremes``, ``nominal``, ``point`` (operating point), ``test``, ``inspection``, ``none``."""
     value: float | None
     limit: float | None
     unit: str
@@ -321,7 +321,7 @@ class Criterion(Plain):
     proof: str
 
 
-class Crosscheck(Plain):
+class Crosscheck(Plain, frozen=True, kw_only=True):
     """Two ways to one quantity (comes with a later capability; the list is empty until then)."""
 
     id: str
@@ -333,7 +333,7 @@ class Crosscheck(Plain):
     agrees: bool
 
 
-class Assumption(Plain):
+class Assumption(Plain, frozen=True, kw_only=True):
     """One row of the assumptions register."""
 
     id: str
@@ -351,7 +351,7 @@ class Assumption(Plain):
     line: str
 
 
-class Hazard(Plain):
+class Hazard(Plain, frozen=True, kw_only=True):
     """A declared hazard with what was computed for it."""
 
     kind: str
@@ -362,7 +362,7 @@ class Hazard(Plain):
     """Computed value, e.g. ``14.2 s`` to 60 V; empty where none."""
 
 
-class Caution(Plain):
+class Caution(Plain, frozen=True, kw_only=True):
     """A caution: on the cover, and where the author placed it in the body."""
 
     signal: str
@@ -373,7 +373,7 @@ class Caution(Plain):
     """``general``, ``hazards``, ``assumptions`` or ``author``."""
 
 
-class Reference(Plain):
+class Reference(Plain, frozen=True, kw_only=True):
     """A cited document."""
 
     key: str
@@ -384,14 +384,14 @@ class Reference(Plain):
     """Line numbers and criterion ids."""
 
 
-class File(Plain):
+class File(Plain, frozen=True, kw_only=True):
     """A file the text used."""
 
     name: str
     sha256: str
 
 
-class Source(Plain):
+class Source(Plain, frozen=True, kw_only=True):
     """Where the record came from."""
 
     name: str
@@ -399,14 +399,14 @@ class Source(Plain):
     files: tuple[File, ...]
 
 
-class Tool(Plain):
+class Tool(Plain, frozen=True, kw_only=True):
     """What computed the record."""
 
     version: str
     libraries: dict[str, str]
 
 
-class Problem(Plain):
+class Problem(Plain, frozen=True, kw_only=True):
     """A warning the text gave rise to."""
 
     code: str
@@ -417,7 +417,7 @@ class Problem(Plain):
     help: str
 
 
-class Tally(Plain):
+class Tally(Plain, frozen=True, kw_only=True):
     """How many criteria have which verdict, and what is open."""
 
     passed: int
@@ -433,7 +433,7 @@ class Tally(Plain):
     """One sentence: ``5 pass, 1 fail, 1 by test``; never "all pass" while tests are open."""
 
 
-class Record(Plain):
+class Record(Plain, frozen=True, kw_only=True):
     """A calculation record."""
 
     schema: str

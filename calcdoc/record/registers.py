@@ -135,11 +135,7 @@ def _bottom_line(numbers: dict[str, int]) -> str:
 
 def unsourced(model: Model) -> tuple[str, ...]:
     """Notices: inputs and conditions without a basis."""
-    missing = [
-        variable.symbol
-        for variable in model.variables.values()
-        if _lacks_source(variable)
-    ]
+    missing = [variable.symbol for variable in model.variables.values() if _lacks_source(variable)]
     if not missing:
         return ()
     return (f"{counted(len(missing), 'input')} without a source: {', '.join(missing)}",)

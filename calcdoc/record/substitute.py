@@ -29,7 +29,7 @@ def substituted(node: Node, value_of: ValueOf) -> str:
     return unparse(_with_values(node, value_of))
 
 
-def _with_values(node: Node, value_of: ValueOf) -> Node:  # noqa: PLR0911
+def _with_values(node: Node, value_of: ValueOf) -> Node:
     match node:
         case Name(name):
             return _value(node, value_of(name))
@@ -50,7 +50,9 @@ def _with_values(node: Node, value_of: ValueOf) -> Node:  # noqa: PLR0911
             sides = tuple(_without_group(_with_values(each, value_of)) for each in operands)
             return Comparison(sides, operators, node.span)
         case Logic(word, left, right):
-            return Logic(word, _with_values(left, value_of), _with_values(right, value_of), node.span)
+            return Logic(
+                word, _with_values(left, value_of), _with_values(right, value_of), node.span
+            )
         case Not(operand):
             return Not(_with_values(operand, value_of), node.span)
         case Number() | Quantity() | Text() | Element():

@@ -40,7 +40,7 @@ def exact_limit(value: Fraction, unit: Unit) -> str:
 
 
 def stands_at(given: Given, si: float) -> str:
-    """Where an input stands in a combination: its limit exactly, or a value inside to six digits."""
+    """Where an input stands in a combination: its limit exactly, or a value inside ."""
     least, nominal, greatest = given.si
     for end, exact in ((least, given.least), (nominal, given.nominal), (greatest, given.greatest)):
         if si == end:

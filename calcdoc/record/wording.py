@@ -30,7 +30,9 @@ def _number(found: re.Match[str]) -> str:
     sign, whole, part, minus, power = found.groups()
     if len(whole) > _UNGROUPED:
         head = len(whole) % 3
-        groups = [whole[:head]] * bool(head) + [whole[i : i + 3] for i in range(head, len(whole), 3)]
+        groups = [whole[:head]] * bool(head) + [
+            whole[i : i + 3] for i in range(head, len(whole), 3)
+        ]
         whole = THIN.join(groups)
     if part and len(part) > _UNGROUPED:
         part = THIN.join(part[i : i + 3] for i in range(0, len(part), 3))
@@ -60,7 +62,9 @@ def band_in_words(given: Given) -> str:
         case Style.FIXED:
             return ""
         case Style.RELATIVE:
-            return f"{nominal}{NO_BREAK}×{NO_BREAK}(1{NO_BREAK}±{NO_BREAK}{typeset(given.spread[0])})"
+            return (
+                f"{nominal}{NO_BREAK}×{NO_BREAK}(1{NO_BREAK}±{NO_BREAK}{typeset(given.spread[0])})"
+            )
         case Style.ABSOLUTE:
             return _absolute(given, unit)
         case Style.UNEQUAL:

@@ -11,6 +11,7 @@ from dataclasses import dataclass, field
 from functools import cache
 from typing import TYPE_CHECKING, Final
 
+from calcdoc.frozen import Frozen
 from calcdoc.problems import Finding, error, warning
 from calcdoc.source import SourceFile, Span
 from calcdoc.text import prose
@@ -26,8 +27,7 @@ _CELL_ENDS: Final = ("th_close", "td_close")
 _DEEPEST: Final = 20
 
 
-@dataclass(frozen=True, slots=True)
-class Fence:
+class Fence(Frozen, frozen=True):
     """A fenced block: its info words and its lines with their places in the file."""
 
     word: str

@@ -1,9 +1,9 @@
 """Acceptance criteria: an inequality with clauses, or a verdict that is not calculated."""
 
 import re
-from dataclasses import replace
 from typing import Final, NoReturn
 
+from calcdoc.frozen import replace
 from calcdoc.problems import Mistake, error
 from calcdoc.text.cells import basis, columns, label, labelled, plain
 from calcdoc.text.formula import formula

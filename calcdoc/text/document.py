@@ -2,10 +2,10 @@
 
 import re
 from collections.abc import Callable, Iterator
-from dataclasses import dataclass, replace
 from itertools import pairwise
 from typing import Final
 
+from calcdoc.frozen import Frozen, replace
 from calcdoc.problems import Finding, Mistake, Place, error, warning
 from calcdoc.source import SourceFile, Span
 from calcdoc.text import prose
@@ -33,8 +33,7 @@ _DEEP_FENCE: Final = re.compile(
 _SIGNAL: Final = re.compile(r"\s*(danger|warning|caution|notice)\b[ \t]*[:.]?[ \t]*", re.IGNORECASE)
 
 
-@dataclass(frozen=True, slots=True)
-class Document:
+class Document(Frozen, frozen=True):
     """A design text, read. Prose and statements stand in the author's order."""
 
     source: SourceFile

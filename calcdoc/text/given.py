@@ -5,11 +5,11 @@
 """
 
 import re
-from dataclasses import dataclass
 from enum import Enum
 from fractions import Fraction
 from typing import Final, NoReturn
 
+from calcdoc.frozen import Frozen
 from calcdoc.problems import Mistake, error
 from calcdoc.source import Span
 from calcdoc.text import literal
@@ -36,8 +36,7 @@ class Style(Enum):
     RANGE = "range"  # two values; the nominal is the middle
 
 
-@dataclass(frozen=True, slots=True)
-class Given:
+class Given(Frozen, frozen=True):
     """A value with its band, as numbers in ``unit``; always least <= nominal <= greatest."""
 
     unit: Unit
@@ -67,8 +66,7 @@ class Given:
         return self.least < self.greatest
 
 
-@dataclass(frozen=True, slots=True)
-class _Part:
+class _Part(Frozen, frozen=True):
     """A signed number, with a unit or without."""
 
     value: Fraction

@@ -4,139 +4,120 @@ Two trees are equal when they say the same; places do not take part in the compa
 """
 
 from collections.abc import Iterator
-from dataclasses import dataclass, field
 
+from calcdoc.frozen import Piece
 from calcdoc.source import Span
 
 
-def _place() -> Span:
-    """A field for a place; it takes no part in comparing."""
-    return field(compare=False, repr=False)  # type: ignore[no-any-return]
-
-
-@dataclass(frozen=True, slots=True)
-class UnitWord:
+class UnitWord(Piece, frozen=True, eq=False):
     """One word of a unit with its exponent, as in ``m^2``; ``joint`` is how it is joined on."""
 
     word: str
     exponent: int
     joint: str
     """``""`` for the first word, else ``"·"`` or ``"/"``."""
-    span: Span = _place()
+    span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class UnitText:
+class UnitText(Piece, frozen=True, eq=False):
     """A unit as written: words joined by ``·`` or ``/``, read from left to right."""
 
     words: tuple[UnitWord, ...]
-    span: Span = _place()
+    span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Number:
+class Number(Piece, frozen=True, eq=False):
     """A number without unit, in the author's digits."""
 
     digits: str
-    span: Span = _place()
+    span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Quantity:
+class Quantity(Piece, frozen=True, eq=False):
     """A number with its unit, as in ``6.8 µF``."""
 
     digits: str
     unit: UnitText
-    span: Span = _place()
+    span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Name:
+class Name(Piece, frozen=True, eq=False):
     """A symbol or a constant."""
 
     name: str
-    span: Span = _place()
+    span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Element:
+class Element(Piece, frozen=True, eq=False):
     """An element of a series, as in ``I_h[3]``."""
 
     name: str
     index: "Node"
-    span: Span = _place()
+    span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Text:
+class Text(Piece, frozen=True, eq=False):
     """A text value in double quotes."""
 
     value: str
-    span: Span = _place()
+    span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Negate:
+class Negate(Piece, frozen=True, eq=False):
     """A minus sign before an operand."""
 
     operand: "Node"
-    span: Span = _place()
+    span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Binary:
+class Binary(Piece, frozen=True, eq=False):
     """``left op right`` with op one of ``+ - * / ^``."""
 
     op: str
     left: "Node"
     right: "Node"
-    span: Span = _place()
-    op_span: Span = _place()
+    span: Span
+    op_span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Group:
+class Group(Piece, frozen=True, eq=False):
     """An expression in the author's parentheses."""
 
     inner: "Node"
-    span: Span = _place()
+    span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Call:
+class Call(Piece, frozen=True, eq=False):
     """A function applied to arguments; the first of ``if`` is a condition."""
 
     function: str
     arguments: tuple["Node", ...]
-    span: Span = _place()
-    name_span: Span = _place()
+    span: Span
+    name_span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Comparison:
+class Comparison(Piece, frozen=True, eq=False):
     """``a <= b`` or ``a <= b <= c``: one more operand than operators."""
 
     operands: tuple["Node", ...]
     operators: tuple[str, ...]
-    span: Span = _place()
+    span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Logic:
+class Logic(Piece, frozen=True, eq=False):
     """``left and right`` or ``left or right``."""
 
     word: str
     left: "Node"
     right: "Node"
-    span: Span = _place()
+    span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Not:
+class Not(Piece, frozen=True, eq=False):
     """``not condition``."""
 
     operand: "Node"
-    span: Span = _place()
+    span: Span
 
 
 Node = (

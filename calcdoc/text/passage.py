@@ -6,17 +6,16 @@ so its characters are not always neighbours in the file. A passage holds them as
 
 import re
 from bisect import bisect_right
-from dataclasses import dataclass
 from typing import Final
 
+from calcdoc.frozen import Frozen
 from calcdoc.source import Span
 
 _SEPARATOR: Final = re.compile(r'\\.|"[^"]*"|\|', re.DOTALL)
 """A bar, or what may hide one: an escaped character, a text in double quotes."""
 
 
-@dataclass(frozen=True, slots=True)
-class Passage:
+class Passage(Frozen, frozen=True):
     """Text put together from pieces of a file; ``starts[i]`` in the text is ``places[i]`` there."""
 
     path: str

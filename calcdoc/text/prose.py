@@ -1,43 +1,37 @@
 """Prose as a tree of our own: what CommonMark read, with ``{symbol}`` as mentions."""
 
-from dataclasses import dataclass
-
+from calcdoc.frozen import Frozen
 from calcdoc.source import Span
 from calcdoc.text.statements import Statement
 
 
-@dataclass(frozen=True, slots=True)
-class Words:
+class Words(Frozen, frozen=True):
     """Plain text."""
 
     text: str
 
 
-@dataclass(frozen=True, slots=True)
-class Emphasis:
+class Emphasis(Frozen, frozen=True):
     """Emphasised text."""
 
     strong: bool
     inline: tuple["Inline", ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Code:
+class Code(Frozen, frozen=True):
     """A code span."""
 
     text: str
 
 
-@dataclass(frozen=True, slots=True)
-class Link:
+class Link(Frozen, frozen=True):
     """A link with a harmless address."""
 
     address: str
     inline: tuple["Inline", ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Picture:
+class Picture(Frozen, frozen=True):
     """A picture beside the text."""
 
     path: str
@@ -45,13 +39,11 @@ class Picture:
     span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Break:
+class Break(Frozen, frozen=True):
     """A forced line break."""
 
 
-@dataclass(frozen=True, slots=True)
-class Mention:
+class Mention(Frozen, frozen=True):
     """``{V_pk}``, ``{V_pk:least}``, ``{C4}``: a name whose value the record fills in."""
 
     name: str
@@ -63,45 +55,39 @@ class Mention:
 Inline = Words | Emphasis | Code | Link | Picture | Break | Mention
 
 
-@dataclass(frozen=True, slots=True)
-class Heading:
+class Heading(Frozen, frozen=True):
     """A heading of level 1 to 6."""
 
     level: int
     inline: tuple[Inline, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Paragraph:
+class Paragraph(Frozen, frozen=True):
     """A paragraph."""
 
     inline: tuple[Inline, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Items:
+class Items(Frozen, frozen=True):
     """A list; ``start`` is None when it is not numbered."""
 
     start: int | None
     items: tuple[tuple["Block", ...], ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Quote:
+class Quote(Frozen, frozen=True):
     """A quotation."""
 
     blocks: tuple["Block", ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Listing:
+class Listing(Frozen, frozen=True):
     """Code shown as it is."""
 
     text: str
 
 
-@dataclass(frozen=True, slots=True)
-class Grid:
+class Grid(Frozen, frozen=True):
     """A pipe table."""
 
     align: tuple[str, ...]
@@ -109,13 +95,11 @@ class Grid:
     rows: tuple[tuple[tuple[Inline, ...], ...], ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Rule:
+class Rule(Frozen, frozen=True):
     """A thematic break."""
 
 
-@dataclass(frozen=True, slots=True)
-class CautionBlock:
+class CautionBlock(Frozen, frozen=True):
     """A caution of the author; ``signal`` is danger, warning, caution or notice."""
 
     signal: str
@@ -123,8 +107,7 @@ class CautionBlock:
     span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Statements:
+class Statements(Frozen, frozen=True):
     """The statements of one block of the calculation, in the author's order."""
 
     word: str

@@ -1,8 +1,8 @@
 """Statements as written: one frozen type for each kind of line of a block."""
 
-from dataclasses import dataclass
 from enum import Enum
 
+from calcdoc.frozen import Frozen
 from calcdoc.source import Span
 from calcdoc.text.given import Given
 from calcdoc.text.names import fold
@@ -10,8 +10,7 @@ from calcdoc.text.nodes import Node, UnitText
 from calcdoc.units import Unit
 
 
-@dataclass(frozen=True, slots=True)
-class Label:
+class Label(Frozen, frozen=True):
     """A symbol or id where it is defined."""
 
     name: str
@@ -23,8 +22,7 @@ class Label:
         return fold(self.name)
 
 
-@dataclass(frozen=True, slots=True)
-class Citation:
+class Citation(Frozen, frozen=True):
     """``[KEY]`` or ``[KEY, table 4]`` in a basis."""
 
     key: str
@@ -32,8 +30,7 @@ class Citation:
     span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Basis:
+class Basis(Frozen, frozen=True):
     """Where something comes from: free text with citations."""
 
     text: str
@@ -48,8 +45,7 @@ class Kind(Enum):
     ASSUMPTION = "assumption"
 
 
-@dataclass(frozen=True, slots=True)
-class GivenStatement:
+class GivenStatement(Frozen, frozen=True):
     """``V_line = 230 V ± 10 % | description | basis`` in conditions, inputs or assumptions."""
 
     kind: Kind
@@ -65,8 +61,7 @@ class GivenStatement:
     span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class SentenceStatement:
+class SentenceStatement(Frozen, frozen=True):
     """``A3: text | why it is reasonable | open: note``: an assumption that is a sentence."""
 
     id: Label
@@ -77,8 +72,7 @@ class SentenceStatement:
     span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Definition:
+class Definition(Frozen, frozen=True):
     """``V_pk [V] = sqrt(2)*V_line | description | basis``."""
 
     symbol: Label
@@ -91,16 +85,14 @@ class Definition:
     span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class PointValue:
+class PointValue(Frozen, frozen=True):
     """``V_line = 230 V ± 2 %`` in an ``at`` clause."""
 
     symbol: Label
     given: Given
 
 
-@dataclass(frozen=True, slots=True)
-class Margin:
+class Margin(Frozen, frozen=True):
     """``with margin 10 %`` (a share of the limit) or ``with margin 5 K`` (a difference)."""
 
     value: Given
@@ -108,8 +100,7 @@ class Margin:
     span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Clauses:
+class Clauses(Frozen, frozen=True):
     """How an inequality is judged."""
 
     by: str = "extremes"
@@ -120,8 +111,7 @@ class Clauses:
     """As written, for the record."""
 
 
-@dataclass(frozen=True, slots=True)
-class Inequality:
+class Inequality(Frozen, frozen=True):
     """``R1: V_max <= 0.8*V_rated with margin 10 % | description | basis``."""
 
     id: Label
@@ -133,8 +123,7 @@ class Inequality:
     span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class Uncalculated:
+class Uncalculated(Frozen, frozen=True):
     """A criterion that is not calculated: ``by test``, ``by inspection``, ``not applicable``."""
 
     id: Label
@@ -146,8 +135,7 @@ class Uncalculated:
     span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class HazardStatement:
+class HazardStatement(Frozen, frozen=True):
     """``supply V``, ``stored C at V through R``, ``not isolated``."""
 
     kind: str
@@ -156,8 +144,7 @@ class HazardStatement:
     span: Span
 
 
-@dataclass(frozen=True, slots=True)
-class ReferenceStatement:
+class ReferenceStatement(Frozen, frozen=True):
     """``KEY | title | edition | where held``."""
 
     key: str

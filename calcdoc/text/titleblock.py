@@ -3,18 +3,18 @@
 import re
 import tomllib
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from datetime import date
 from typing import Final
 
+from calcdoc.frozen import Frozen
 from calcdoc.problems import Finding, error
 from calcdoc.source import Span
 from calcdoc.text.names import nearest
 from calcdoc.text.passage import Passage
 
 
-@dataclass(frozen=True, slots=True)
-class Revision:
+class Revision(Frozen, frozen=True):
     """One row of the revision history."""
 
     revision: str
@@ -22,8 +22,7 @@ class Revision:
     reason: str
 
 
-@dataclass(frozen=True, slots=True)
-class TitleBlock:
+class TitleBlock(Frozen, frozen=True):
     """What identifies a record. Empty text where the author gave none."""
 
     number: str
@@ -43,7 +42,7 @@ class TitleBlock:
     history: tuple[Revision, ...] = ()
     draws: int | None = None
     seed: int | None = None
-    span: Span = field(default=Span("", 0, 0), compare=False)
+    span: Span = Span("", 0, 0)
 
 
 _TEXTS: Final = ("number", "title", "revision", "product", "owner", "language", "replaces")

@@ -1,8 +1,9 @@
 """Dimensions: exponents of the seven base quantities of the SI, with their names in words."""
 
-from dataclasses import dataclass
 from fractions import Fraction
 from typing import Final
+
+from calcdoc.frozen import Frozen
 
 BASE_NAMES: Final = (
     "[length]",
@@ -21,8 +22,7 @@ def whole(power: Fraction | int) -> Fraction | int:
     return power.numerator if power.denominator == 1 else power
 
 
-@dataclass(frozen=True, slots=True)
-class Dimension:
+class Dimension(Frozen, frozen=True):
     """A product of powers of the base quantities; a group under ``*``.
 
     >>> (VOLTAGE / CURRENT).in_words()

@@ -1,17 +1,16 @@
 """A unit as text, exact factor to the coherent SI unit, and dimension."""
 
-from dataclasses import dataclass
 from fractions import Fraction
 from typing import Final
 
+from calcdoc.frozen import Frozen
 from calcdoc.units.dimension import ONE, Dimension
 
 _RAISED: Final = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
 ZERO_CELSIUS: Final = Fraction(27315, 100)
 
 
-@dataclass(frozen=True, slots=True)
-class Unit:
+class Unit(Frozen, frozen=True):
     """A product of unit words with exponents, such as ``mA·ms/µF``.
 
     ``celsius`` marks a temperature read on the Celsius scale: then a value needs the offset too.
