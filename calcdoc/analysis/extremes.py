@@ -1,84 +1,34 @@
 """Least and greatest values of quantities over boxes of inputs, with the points that give them.
 
 Most questions are settled by one pass: where the slope to an input keeps its sign over the whole
-box, that input stands at an end. The rest goes to branch and bound (:mod:`..search`), bounded in
-work, so that a hard question ends with a value that was attained and a bound that is proven.
-Both are values of the tape as computed in floating point: right to rounding, about 1e-15.
+box, that input stands at an end. The rest goes to branch and bound, bounded in work, so that a
+hard question ends with a value that was attained and a bound that is proven. Both are values of
+the tape as computed in floating point: right to rounding, about 1e-15.
 """
 
-from collections.abc import Sequence
-from dataclasses import dataclass
-from enum import Enum
+from collections.abc import Mapping, Sequence
 from typing import Final
 
 import numpy as np
 
 from calcdoc.analysis.hunt import Hunt
-from calcdoc.analysis.points import BoolArray, FloatArray, IntArray
-from calcdoc.analysis.program import Program, needed, program
+from calcdoc.analysis.points import FloatArray
+from calcdoc.analysis.program import Program, by_derivatives, by_structure, needed
+from calcdoc.analysis.questions import Extreme, Proof, Question
 from calcdoc.analysis.search import search
-from calcdoc.analysis.sweep import Boxes, sweep
+from calcdoc.analysis.starts import Start, first_sweep
 from calcdoc.analysis.tape import Tape
+
+__all__ = ["Extreme", "Proof", "Question", "extremes"]
 
 CHUNK: Final = 128
 """Questions evaluated in one pass; more would compute much that each one does not need."""
-CELLS: Final = 8192
-"""Boxes times slots in the first sweep."""
 WORK: Final = 1_500_000
 """Instructions times slots times boxes that one hard question may cost: some hundred ms."""
 WORK_OF_ALL: Final = 12_000_000
 """The same for all hard questions together."""
 LEAST_BOXES: Final = 96
 MOST_BOXES: Final = 8192
-
-
-class Proof(Enum):
-    """How sure an extreme is."""
-
-    EXACT = "exact"  # attained, and nothing in the box is beyond it
-    BOUNDED = "bounded"  # attained, and nothing is beyond it by more than 1e-9 of its size
-    SEARCHED = "searched"  # attained; a bound is proven, but the two are apart
-
-
-@dataclass(frozen=True, slots=True)
-class Question:
-    """What is asked: one end of one instruction's range over one box."""
-
-    target: int
-    greatest: bool
-    low: FloatArray
-    """Shape (n_inputs,), in coherent SI; low <= nominal <= high."""
-    nominal: FloatArray
-    high: FloatArray
-
-
-@dataclass(frozen=True, slots=True)
-class Extreme:
-    """The answer to one question."""
-
-    value: float
-    """Attained at ``point``. When the range runs to infinity it is the value at nominal, or some
-    finite value; NaN where nothing was found that can be computed."""
-    bound: float
-    """Proven: nothing in the box is beyond it. Equal to ``value`` when exact."""
-    point: FloatArray
-    """Shape (n_inputs,); inputs without effect stand at nominal."""
-    matters: BoolArray
-    """Shape (n_inputs,): inputs that have width and effect."""
-    interior: BoolArray
-    """Shape (n_inputs,): inputs that matter and stand strictly inside their range."""
-    proof: Proof
-
-
-@dataclass(frozen=True, slots=True)
-class _Start:
-    """What the first sweep found about a question."""
-
-    point: FloatArray
-    """Settled inputs at their end, all others at nominal."""
-    matters: BoolArray
-    open: IntArray
-    """Inputs whose slope may have either sign."""
 
 
 def extremes(
@@ -94,81 +44,46 @@ def extremes(
     """
     if not questions:
         return ()
-    whole = program(tape, {question.target for question in questions})
-    starts = _first_sweep(whole, questions)
-    hard = [at for at, start in enumerate(starts) if start.open.size]
-    hunts = {at: _hunt(whole, questions[at], starts[at], len(hard)) for at in hard}
-    for at, hunt in hunts.items():
+    whole = by_structure(tape, {question.target for question in questions})
+    starts = dict(enumerate(first_sweep(whole, questions)))
+    hunts: dict[int, Hunt] = {}
+    if doubtful := [at for at, start in starts.items() if start.open.size]:
+        part = by_derivatives(tape, {questions[at].target for at in doubtful})
+        again = first_sweep(part, [questions[at] for at in doubtful])
+        starts |= dict(zip(doubtful, again, strict=True))
+        hard = [at for at in doubtful if starts[at].open.size]
+        hunts = {at: _hunt(part, questions[at], starts[at], len(hard)) for at in hard}
         if goals is not None:
-            hunt.goal = hunt.sign * goals[at]
-    search(whole, list(hunts.values()))
-    points = [
-        start.point if at not in hunts else _found(hunts[at]) for at, start in enumerate(starts)
-    ]
+            for at, hunt in hunts.items():
+                hunt.goal = hunt.sign * goals[at]
+        search(part, list(hunts.values()))
+    return _answers(whole, questions, starts, hunts)
+
+
+def _answers(
+    whole: Program,
+    questions: Sequence[Question],
+    starts: Mapping[int, Start],
+    hunts: Mapping[int, Hunt],
+) -> tuple[Extreme, ...]:
+    """Evaluate the points found; where nothing finite was found fall back to nominal."""
+    points = [_found(hunts[at]) if at in hunts else starts[at].point for at in starts]
     values = _attained(whole, questions, points)
-    lost = [at for at, value in enumerate(values) if not np.isfinite(value)]
-    for at in lost:
-        points[at] = questions[at].nominal
-    for at, value in zip(
-        lost,
-        _attained(whole, [questions[at] for at in lost], [points[at] for at in lost]),
-        strict=True,
-    ):
-        values[at] = value
+    lost = {at for at, value in enumerate(values) if not np.isfinite(value)}
+    if lost:
+        points = [questions[at].nominal if at in lost else points[at] for at in starts]
+        values = _attained(whole, questions, points)
     return tuple(
-        _unbounded(*row) if at in lost else _answer(*row, hunts.get(at))
-        for at, row in enumerate(zip(questions, starts, points, values, strict=True))
+        _unbounded(questions[at], starts[at], points[at], values[at])
+        if at in lost
+        else _answer(questions[at], starts[at], points[at], values[at], hunts.get(at))
+        for at in starts
     )
 
 
-def _first_sweep(whole: Program, questions: Sequence[Question]) -> list[_Start]:
-    """Sweep every distinct box once and read off the slopes of all targets."""
-    columns: dict[tuple[bytes, bytes], list[int]] = {}
-    for at, question in enumerate(questions):
-        columns.setdefault((question.low.tobytes(), question.high.tobytes()), []).append(at)
-    groups = list(columns.values())
-    moving = [
-        np.flatnonzero(questions[group[0]].low < questions[group[0]].high) for group in groups
-    ]
-    n_slots = max(len(inputs) for inputs in moving)
-    size = max(1, CELLS // max(1, n_slots))
-    starts: dict[int, _Start] = {}
-    for first in range(0, len(groups), size):
-        part = groups[first : first + size]
-        slots = np.full((n_slots, len(part)), -1, dtype=np.intp)
-        for column, inputs in enumerate(moving[first : first + size]):
-            slots[: len(inputs), column] = inputs
-        low = np.stack([questions[group[0]].low for group in part], axis=1)
-        high = np.stack([questions[group[0]].high for group in part], axis=1)
-        swept = sweep(whole, Boxes(low, high, slots))
-        for column, group in enumerate(part):
-            for at in group:
-                move = swept.moves[whole.row[questions[at].target]]
-                inputs = moving[first + column]
-                slopes = None if move is None else move[:, : len(inputs), column]
-                starts[at] = _start(questions[at], inputs, slopes)
-    return [starts[at] for at in range(len(questions))]
-
-
-def _start(question: Question, inputs: IntArray, slopes: FloatArray | None) -> _Start:
-    """Put inputs with a known sign to the right end."""
-    point = question.nominal.copy()
-    matters = np.zeros(len(point), dtype=bool)
-    if slopes is None:
-        return _Start(point, matters, inputs[:0])
-    rises, falls = slopes[0] >= 0.0, slopes[1] <= 0.0
-    effect = ~(rises & falls)
-    matters[inputs[effect]] = True
-    up, down = inputs[rises & effect], inputs[falls & effect]
-    if not question.greatest:
-        up, down = down, up
-    point[up], point[down] = question.high[up], question.low[down]
-    return _Start(point, matters, inputs[~rises & ~falls])
-
-
-def _hunt(whole: Program, question: Question, start: _Start, n_hard: int) -> Hunt:
+def _hunt(part: Program, question: Question, start: Start, n_hard: int) -> Hunt:
     """Set out to search the open inputs of a question that is one of ``n_hard``."""
-    weight = len(needed(whole.tape, (whole.row[question.target],))) * (len(start.open) + 8)
+    weight = len(needed(part.tape, (part.row[question.target],))) * (len(start.open) + 8)
     work = min(WORK, WORK_OF_ALL // n_hard)
     return Hunt(
         target=question.target,
@@ -204,7 +119,7 @@ def _attained(
     return values
 
 
-def _unbounded(question: Question, start: _Start, point: FloatArray, value: float) -> Extreme:
+def _unbounded(question: Question, start: Start, point: FloatArray, value: float) -> Extreme:
     """Nothing finite was found at the extreme: fall back to nominal."""
     bound = np.inf if question.greatest else -np.inf
     inside = start.matters & (point > question.low) & (point < question.high)
@@ -213,7 +128,7 @@ def _unbounded(question: Question, start: _Start, point: FloatArray, value: floa
 
 
 def _answer(
-    question: Question, start: _Start, point: FloatArray, value: float, hunt: Hunt | None
+    question: Question, start: Start, point: FloatArray, value: float, hunt: Hunt | None
 ) -> Extreme:
     """Say what was found and how sure it is."""
     matters = start.matters

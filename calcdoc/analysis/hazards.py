@@ -13,10 +13,11 @@ import numpy as np
 
 from calcdoc.analysis.blame import ZERO, Box, Judge, scale
 from calcdoc.analysis.domains import OVERFLOW, Case, Need, cases, suspected
-from calcdoc.analysis.extremes import Question, extremes
+from calcdoc.analysis.extremes import extremes
 from calcdoc.analysis.guards import Guard, guards
 from calcdoc.analysis.points import FloatArray
-from calcdoc.analysis.program import Program, needed, plain, program
+from calcdoc.analysis.program import Program, by_structure, needed, plain
+from calcdoc.analysis.questions import Question
 from calcdoc.analysis.sweep import Boxes, sweep
 from calcdoc.analysis.tape import Op, Tape, TapeBuilder
 
@@ -163,7 +164,7 @@ def _overflows(
         if any(arg in found for arg in needed(tape, step.args)):
             continue
         guard = reached[at]
-        part = program(tape, [at] if guard is None else [at, guard])
+        part = by_structure(tape, [at] if guard is None else [at, guard])
         points = _corners(part, part.row[at], box)
         values = part.evaluate(points)
         bad = ~np.isfinite(values[part.row[at]])

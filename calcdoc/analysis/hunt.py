@@ -15,13 +15,26 @@ from calcdoc.analysis.points import BoolArray, FloatArray, IntArray
 
 TOLERANCE: Final = 1e-9
 """Gap between bound and attained value, relative to the largest value seen, that counts as none."""
-KEEN: Final = 48
+KEEN: Final = 16
 """Boxes looked at before a gap that counts as none is accepted."""
 KEEN_INPUTS: Final = 3
 MOST_ROUNDS: Final = 120
 PATIENCE: Final = 40
 """Rounds after which an infinite bound is accepted."""
+N_SCATTER: Final = 64
+"""Points tried at the start, so that a hunt that proves little has at least looked around."""
 TINY: Final = 1e-300
+
+
+def scatter(n_free: int) -> FloatArray:
+    """Evenly spread points of the unit cube, shape (n_free, 64), always the same."""
+    # Multiples of powers of the root of x^(n + 1) = x + 1 fill the cube without clusters.
+    root = 2.0
+    for _ in range(30):
+        root = (1.0 + root) ** (1.0 / (n_free + 1))
+    steps = root ** -np.arange(1.0, n_free + 1.0)
+    points: FloatArray = (0.5 + steps[:, None] * np.arange(1, N_SCATTER + 1)) % 1.0
+    return points
 
 
 @dataclass(frozen=True, slots=True)
@@ -129,7 +142,8 @@ class Hunt:
         uphill = np.where(free, np.where(move[1] >= -move[0], high, low), inside_low)
         points = [middle, uphill]
         if self.used == 1:
-            points += [self.at[:, None], inside_low, inside_high]
+            spread = low + width * scatter(len(low))
+            points += [self.at[:, None], inside_low, inside_high, spread]
         return Trial(
             low=inside_low,
             high=inside_high,

@@ -6,7 +6,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from calcdoc.analysis.points import BoolArray, FloatArray, Step, compile_steps, run
-from calcdoc.analysis.tape import Tape
+from calcdoc.analysis.tape import Op, Tape
 from calcdoc.analysis.vanish import dependence
 
 
@@ -68,33 +68,8 @@ def renumber(tape: Tape, order: Sequence[int]) -> Tape:
     )
 
 
-def program(tape: Tape, targets: Iterable[int]) -> Program:
-    """What ``targets`` need of a tape."""
-    order = needed(tape, targets)
-    own = renumber(tape, order)
-    depends = dependence(own)
-    meets, lost = set(), set()
-    for row, step in enumerate(own.instructions):
-        if len(step.args) > 1:
-            counts = np.add.reduce(depends[list(step.args)], axis=0, dtype=np.intp)
-            if counts.max(initial=0) > 1:
-                meets.add(row)
-            if ((counts > 0) & ~depends[row]).any():
-                lost.add(row)
-        elif step.args and (depends[step.args[0]] & ~depends[row]).any():
-            lost.add(row)
-    return Program(
-        tape=own,
-        row={at: row for row, at in enumerate(order)},
-        steps=compile_steps(own),
-        depends=depends,
-        meets=frozenset(meets),
-        lost=frozenset(lost),
-    )
-
-
 def plain(tape: Tape, targets: Iterable[int]) -> Program:
-    """What ``targets`` need, for natural intervals and points: dependence is left open."""
+    """What ``targets`` need, for points and for natural intervals without slopes."""
     order = needed(tape, targets)
     own = renumber(tape, order)
     return Program(
@@ -105,3 +80,37 @@ def plain(tape: Tape, targets: Iterable[int]) -> Program:
         meets=frozenset(),
         lost=frozenset(),
     )
+
+
+def by_structure(tape: Tape, targets: Iterable[int]) -> Program:
+    """What ``targets`` need; an instruction is taken to depend on all that it is made from."""
+    own = plain(tape, targets)
+    made_from: list[int] = []  # the inputs as bits of an int
+    meets = set()
+    for row, step in enumerate(own.tape.instructions):
+        bits = 0
+        if step.op is Op.INPUT:
+            assert isinstance(step.value, int)
+            bits = 1 << step.value
+        for arg in step.args:
+            if bits & made_from[arg]:
+                meets.add(row)
+            bits |= made_from[arg]
+        made_from.append(bits)
+    return replace(own, meets=frozenset(meets))
+
+
+def by_derivatives(tape: Tape, targets: Iterable[int]) -> Program:
+    """What ``targets`` need, with what each instruction really depends on; costs more."""
+    own = plain(tape, targets)
+    depends = dependence(own.tape)
+    meets, lost = set(), set()
+    for row, step in enumerate(own.tape.instructions):
+        if step.args:
+            counts = np.add.reduce(depends[list(step.args)], axis=0, dtype=np.intp)
+            if counts.max(initial=0) > 1:
+                meets.add(row)
+            if ((counts > 0) & ~depends[row]).any():
+                lost.add(row)
+    # What lost an input has the value of its centre, which the cut at a meeting puts in.
+    return replace(own, depends=depends, meets=frozenset(meets | lost), lost=frozenset(lost))
