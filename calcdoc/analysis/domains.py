@@ -62,7 +62,7 @@ def suspected(step: Instruction, args: list[FloatArray]) -> tuple[int, str] | No
     if step.op is Op.POW:
         low, _ = _ends(args[0])
         zero = low == 0.0 and _ends(args[1])[0] < 0.0
-        return (0, POWER) if low < 0.0 else (0, POLE) if zero else None
+        return (0, POWER) if low < 0.0 or zero else None
     if len(args) == 1:
         return _function(step.op, args[0])
     return None
@@ -109,4 +109,10 @@ def cases(
         )
     needs = {POLE: Need.NOT_ZERO, LOGARITHM: Need.POSITIVE}
     need = needs.get(kind, Need.NOT_NEGATIVE)
-    return (Case(instruction, argument, kind, argument, need, guard),)
+    first = Case(instruction, argument, kind, argument, need, guard)
+    step = builder.tape().instructions[instruction]
+    if step.op is not Op.POW:
+        return (first,)
+    falls = builder.add(Op.LT, step.args[1], builder.add(Op.CONST, value=Fraction(0)))
+    where = falls if guard is None else builder.add(Op.AND, guard, falls)
+    return first, Case(instruction, argument, POLE, argument, Need.NOT_ZERO, where)

@@ -33,6 +33,7 @@ def found(term: Term, *ranges: Range) -> tuple[Hazard, ...]:
         (lambda x: x.power(Fraction(1, 2)), (-1.0, 0.5, 1.0), "square root of a negative", -1.0),
         (lambda x: x.power(Fraction(1, 3)), (-1.0, 0.5, 1.0), "power of a negative base", -1.0),
         (lambda x: x.then(Op.POW, x), (-1.0, 0.5, 1.0), "power of a negative base", -1.0),
+        (lambda x: (x - x).then(Op.POW, x), (-1.0, 0.5, 1.0), "division by zero", -1.0),
         (lambda x: x.then(Op.LN), (0.0, 0.5, 1.0), "logarithm of zero or less", 0.0),
         (lambda x: x.then(Op.LOG10), (-2.0, 0.5, 1.0), "logarithm of zero or less", -2.0),
         (lambda x: x.then(Op.ASIN), (0.0, 0.5, 1.5), "arcsine outside -1..1", 1.5),
