@@ -1,7 +1,7 @@
 """Every problem code: its title, why it matters, and an example that has it.
 
-They stand in ``codes.toml`` beside this file; what a user reads about a code comes from there, and a
-test runs each example.
+They stand in ``codes.toml`` beside this file; what a user reads about a code comes from there, and
+a test runs each example.
 """
 
 import tomllib

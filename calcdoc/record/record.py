@@ -284,7 +284,7 @@ class Criterion(Plain, frozen=True, kw_only=True):
     text: str
     """The inequality as written, or the text of a test, without the clauses."""
     method: str
-    """``extremes``, ``nominal``, ``point`` (operating point), ``test``, ``inspection``, ``none``."""
+    """``extremes``, ``nominal``, ``point`` (at a point), ``test``, ``inspection``, ``none``."""
     value: float | None
     limit: float | None
     unit: str
