@@ -16,7 +16,7 @@ from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import Program, by_derivatives, by_structure, needed
 from calcdoc.analysis.questions import Extreme, Proof, Question
 from calcdoc.analysis.search import search
-from calcdoc.analysis.starts import Start, first_sweep
+from calcdoc.analysis.starts import Start, first_sweep, settle_more
 from calcdoc.analysis.tape import Tape
 
 __all__ = ["Extreme", "Proof", "Question", "extremes"]
@@ -51,6 +51,7 @@ def extremes(
         part = by_derivatives(tape, {questions[at].target for at in doubtful})
         again = first_sweep(part, [questions[at] for at in doubtful])
         starts |= dict(zip(doubtful, again, strict=True))
+        settle_more(part, {at: questions[at] for at in doubtful}, starts)
         hard = [at for at in doubtful if starts[at].open.size]
         hunts = {at: _hunt(part, questions[at], starts[at], len(hard)) for at in hard}
         if goals is not None:

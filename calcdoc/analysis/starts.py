@@ -1,6 +1,6 @@
 """The first sweep: most questions are settled by the signs of their slopes over the whole box."""
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import Final
 
@@ -14,6 +14,8 @@ from calcdoc.analysis.sweep import Boxes, sweep
 
 CELLS: Final = 8192
 """Boxes times slots in one sweep."""
+CHUNK: Final = 64
+"""Questions with boxes of their own in one sweep."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -46,6 +48,38 @@ def first_sweep(program: Program, questions: Sequence[Question]) -> list[Start]:
                 slopes = None if move is None else move[:, : len(inputs), column]
                 starts[at] = _start(questions[at], inputs, slopes)
     return [starts[at] for at in range(len(questions))]
+
+
+def settle_more(
+    program: Program, questions: Mapping[int, Question], starts: dict[int, Start]
+) -> None:
+    """Sweep again what is still open, with the settled inputs at their ends; changes ``starts``.
+
+    A smaller box has narrower slopes, so that more signs show; ends when none does.
+    """
+    doubtful = sorted(questions, key=lambda at: questions[at].target)
+    for first in range(0, len(doubtful), CHUNK):
+        some = [at for at in doubtful[first : first + CHUNK] if starts[at].open.size]
+        part = program.part({questions[at].target for at in some})
+        while some:
+            narrowed = [_narrowed(questions[at], starts[at]) for at in some]
+            progress = []
+            for at, new in zip(some, first_sweep(part, narrowed), strict=True):
+                old = starts[at]
+                matters = old.matters.copy()
+                matters[old.open] = new.matters[old.open]
+                starts[at] = Start(new.point, matters, new.open)
+                if 0 < len(new.open) < len(old.open):
+                    progress.append(at)
+            some = progress
+
+
+def _narrowed(question: Question, start: Start) -> Question:
+    """The part of the box in which the extreme lies: settled inputs stand still."""
+    low, high = start.point.copy(), start.point.copy()
+    low[start.open] = question.low[start.open]
+    high[start.open] = question.high[start.open]
+    return Question(question.target, question.greatest, low, start.point, high)
 
 
 def _sweep(
