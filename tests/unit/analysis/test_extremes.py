@@ -1,5 +1,6 @@
 """Extremes: known answers, their proof, and what they cost."""
 
+from collections.abc import Callable
 from fractions import Fraction
 
 import numpy as np
@@ -97,12 +98,19 @@ def test_jump_of_a_condition() -> None:
     assert most.bound >= 2.0
 
 
-def test_pole_has_no_bound() -> None:
-    """1/x across zero ends as searched with an infinite bound and a finite value."""
+@pytest.mark.parametrize(
+    "formula",
+    [
+        lambda x: number(x, 1) / x,
+        lambda x: x.power(-1),
+        lambda x: x.power(-3),
+        lambda x: (x * 4.0 + np.pi / 2).then(Op.TAN),
+    ],
+)
+def test_pole_has_no_bound(formula: Callable[[Term], Term]) -> None:
+    """Across a pole no slope has a sign: searched, an infinite bound and a finite value."""
     (x,) = inputs(1)
-    for extreme, bound in zip(
-        ends(number(x, 1) / x, (-1.0, 0.5, 1.0)), (-np.inf, np.inf), strict=True
-    ):
+    for extreme, bound in zip(ends(formula(x), (-1.0, 0.5, 1.0)), (-np.inf, np.inf), strict=True):
         assert extreme.bound == bound
         assert extreme.proof is Proof.SEARCHED
         assert np.isfinite(extreme.value)
