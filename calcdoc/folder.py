@@ -70,7 +70,8 @@ def write_whole(path: Path, data: bytes) -> None:
             beside.replace(path)
         finally:
             beside.unlink(missing_ok=True)
+    except FileExistsError as trouble:
+        raise FileTrouble(f"{path.parent} is a file, not a folder to write to") from trouble
     except OSError as trouble:
-        raise FileTrouble(
-            f"{path} cannot be written: {(trouble.strerror or 'unknown').lower()}"
-        ) from trouble
+        reason = (trouble.strerror or "unknown reason").lower()
+        raise FileTrouble(f"{path} cannot be written: {reason}") from trouble

@@ -10,40 +10,40 @@ from msgspec import Struct
 SCHEMA = "calcdoc-record/1"
 
 
-class Plain(Struct, frozen=True, kw_only=True):
-    """Base of all record types: frozen, keyword only, plain data."""
+class Plain(Struct, frozen=True):
+    """Base of all record types: frozen plain data."""
 
 
 # --- prose -----------------------------------------------------------------------------------
 
 
-class Words(Plain, frozen=True, kw_only=True, tag_field="kind", tag="text"):
+class Words(Plain, frozen=True, tag_field="kind", tag="text"):
     """Plain text inside a paragraph."""
 
     text: str
 
 
-class Emphasis(Plain, frozen=True, kw_only=True, tag_field="kind", tag="emphasis"):
+class Emphasis(Plain, frozen=True, tag_field="kind", tag="emphasis"):
     """Emphasised text; ``strong`` for the heavier kind."""
 
     strong: bool
     inline: tuple["Inline", ...]
 
 
-class Code(Plain, frozen=True, kw_only=True, tag_field="kind", tag="code"):
+class Code(Plain, frozen=True, tag_field="kind", tag="code"):
     """A code span."""
 
     text: str
 
 
-class Link(Plain, frozen=True, kw_only=True, tag_field="kind", tag="link"):
+class Link(Plain, frozen=True, tag_field="kind", tag="link"):
     """A link whose address was found harmless (http, https, mailto, #)."""
 
     address: str
     inline: tuple["Inline", ...]
 
 
-class Picture(Plain, frozen=True, kw_only=True, tag_field="kind", tag="picture"):
+class Picture(Plain, frozen=True, tag_field="kind", tag="picture"):
     """A picture of the design's folder, embedded."""
 
     name: str
@@ -53,11 +53,11 @@ class Picture(Plain, frozen=True, kw_only=True, tag_field="kind", tag="picture")
     """Base64 of the file."""
 
 
-class Break(Plain, frozen=True, kw_only=True, tag_field="kind", tag="break"):
+class Break(Plain, frozen=True, tag_field="kind", tag="break"):
     """A forced line break."""
 
 
-class Value(Plain, frozen=True, kw_only=True, tag_field="kind", tag="value"):
+class Value(Plain, frozen=True, tag_field="kind", tag="value"):
     """``{V_pk}`` in prose: a quantity's value, linked to its line."""
 
     symbol: str
@@ -67,7 +67,7 @@ class Value(Plain, frozen=True, kw_only=True, tag_field="kind", tag="value"):
     """The number with unit, as in ``325.3 V``."""
 
 
-class Verdict(Plain, frozen=True, kw_only=True, tag_field="kind", tag="verdict"):
+class Verdict(Plain, frozen=True, tag_field="kind", tag="verdict"):
     """``{C4}`` in prose: a criterion's name with its verdict."""
 
     id: str
@@ -78,7 +78,7 @@ class Verdict(Plain, frozen=True, kw_only=True, tag_field="kind", tag="verdict")
 Inline = Words | Emphasis | Code | Link | Picture | Break | Value | Verdict
 
 
-class Heading(Plain, frozen=True, kw_only=True, tag_field="kind", tag="heading"):
+class Heading(Plain, frozen=True, tag_field="kind", tag="heading"):
     """A heading; numbered when it opens a section."""
 
     level: int
@@ -89,32 +89,32 @@ class Heading(Plain, frozen=True, kw_only=True, tag_field="kind", tag="heading")
     inline: tuple[Inline, ...]
 
 
-class Paragraph(Plain, frozen=True, kw_only=True, tag_field="kind", tag="paragraph"):
+class Paragraph(Plain, frozen=True, tag_field="kind", tag="paragraph"):
     """A paragraph of prose."""
 
     inline: tuple[Inline, ...]
 
 
-class Items(Plain, frozen=True, kw_only=True, tag_field="kind", tag="items"):
+class Items(Plain, frozen=True, tag_field="kind", tag="items"):
     """A list; ``start`` is None when it is not numbered."""
 
     start: int | None
     items: tuple[tuple["Block", ...], ...]
 
 
-class Quote(Plain, frozen=True, kw_only=True, tag_field="kind", tag="quote"):
+class Quote(Plain, frozen=True, tag_field="kind", tag="quote"):
     """A quotation."""
 
     blocks: tuple["Block", ...]
 
 
-class Listing(Plain, frozen=True, kw_only=True, tag_field="kind", tag="listing"):
+class Listing(Plain, frozen=True, tag_field="kind", tag="listing"):
     """A fenced block that is no part of the calculation, shown as code."""
 
     text: str
 
 
-class Grid(Plain, frozen=True, kw_only=True, tag_field="kind", tag="grid"):
+class Grid(Plain, frozen=True, tag_field="kind", tag="grid"):
     """A pipe table of the prose."""
 
     align: tuple[str, ...]
@@ -123,29 +123,29 @@ class Grid(Plain, frozen=True, kw_only=True, tag_field="kind", tag="grid"):
     rows: tuple[tuple[tuple[Inline, ...], ...], ...]
 
 
-class Rule(Plain, frozen=True, kw_only=True, tag_field="kind", tag="rule"):
+class Rule(Plain, frozen=True, tag_field="kind", tag="rule"):
     """A thematic break."""
 
 
-class QuantityLine(Plain, frozen=True, kw_only=True, tag_field="kind", tag="quantity"):
+class QuantityLine(Plain, frozen=True, tag_field="kind", tag="quantity"):
     """Here stands the working line of a quantity."""
 
     symbol: str
 
 
-class CriterionLine(Plain, frozen=True, kw_only=True, tag_field="kind", tag="criterion"):
+class CriterionLine(Plain, frozen=True, tag_field="kind", tag="criterion"):
     """Here stands a criterion."""
 
     id: str
 
 
-class SentenceLine(Plain, frozen=True, kw_only=True, tag_field="kind", tag="sentence"):
+class SentenceLine(Plain, frozen=True, tag_field="kind", tag="sentence"):
     """Here stands an assumption that is a sentence."""
 
     id: str
 
 
-class CautionBox(Plain, frozen=True, kw_only=True, tag_field="kind", tag="caution"):
+class CautionBox(Plain, frozen=True, tag_field="kind", tag="caution"):
     """Here stands a caution of the author."""
 
     signal: str
@@ -169,7 +169,7 @@ Block = (
 # --- title block ------------------------------------------------------------------------------
 
 
-class People(Plain, frozen=True, kw_only=True):
+class People(Plain, frozen=True):
     """Who prepared, checked and approved; empty where not named."""
 
     prepared: str
@@ -177,7 +177,7 @@ class People(Plain, frozen=True, kw_only=True):
     approved: str
 
 
-class Issue(Plain, frozen=True, kw_only=True):
+class Issue(Plain, frozen=True):
     """One row of the revision history."""
 
     revision: str
@@ -185,7 +185,7 @@ class Issue(Plain, frozen=True, kw_only=True):
     reason: str
 
 
-class Document(Plain, frozen=True, kw_only=True):
+class Document(Plain, frozen=True):
     """The title block."""
 
     number: str
@@ -210,7 +210,7 @@ class Document(Plain, frozen=True, kw_only=True):
 # --- the calculation --------------------------------------------------------------------------
 
 
-class CaseValues(Plain, frozen=True, kw_only=True):
+class CaseValues(Plain, frozen=True):
     """A quantity in one case."""
 
     nominal: float | None
@@ -218,7 +218,7 @@ class CaseValues(Plain, frozen=True, kw_only=True):
     greatest: float | None
 
 
-class Quantity(Plain, frozen=True, kw_only=True):
+class Quantity(Plain, frozen=True):
     """One quantity: an input with its band or a working line. Numbers are in ``unit``."""
 
     symbol: str
@@ -267,7 +267,7 @@ class Quantity(Plain, frozen=True, kw_only=True):
     """Sentences for the reader: the extreme lies inside the band, the nominal is the middle, ..."""
 
 
-class CriterionCase(Plain, frozen=True, kw_only=True):
+class CriterionCase(Plain, frozen=True):
     """A criterion in one case."""
 
     value: float | None
@@ -276,7 +276,7 @@ class CriterionCase(Plain, frozen=True, kw_only=True):
     verdict: str
 
 
-class Criterion(Plain, frozen=True, kw_only=True):
+class Criterion(Plain, frozen=True):
     """One acceptance criterion with its verdict. Numbers are in ``unit`` at the governing point."""
 
     id: str
@@ -321,7 +321,7 @@ class Criterion(Plain, frozen=True, kw_only=True):
     proof: str
 
 
-class Crosscheck(Plain, frozen=True, kw_only=True):
+class Crosscheck(Plain, frozen=True):
     """Two ways to one quantity (comes with a later capability; the list is empty until then)."""
 
     id: str
@@ -333,7 +333,7 @@ class Crosscheck(Plain, frozen=True, kw_only=True):
     agrees: bool
 
 
-class Assumption(Plain, frozen=True, kw_only=True):
+class Assumption(Plain, frozen=True):
     """One row of the assumptions register."""
 
     id: str
@@ -351,7 +351,7 @@ class Assumption(Plain, frozen=True, kw_only=True):
     line: str
 
 
-class Hazard(Plain, frozen=True, kw_only=True):
+class Hazard(Plain, frozen=True):
     """A declared hazard with what was computed for it."""
 
     kind: str
@@ -362,7 +362,7 @@ class Hazard(Plain, frozen=True, kw_only=True):
     """Computed value, e.g. ``14.2 s`` to 60 V; empty where none."""
 
 
-class Caution(Plain, frozen=True, kw_only=True):
+class Caution(Plain, frozen=True):
     """A caution: on the cover, and where the author placed it in the body."""
 
     signal: str
@@ -373,7 +373,7 @@ class Caution(Plain, frozen=True, kw_only=True):
     """``general``, ``hazards``, ``assumptions`` or ``author``."""
 
 
-class Reference(Plain, frozen=True, kw_only=True):
+class Reference(Plain, frozen=True):
     """A cited document."""
 
     key: str
@@ -384,14 +384,14 @@ class Reference(Plain, frozen=True, kw_only=True):
     """Line numbers and criterion ids."""
 
 
-class File(Plain, frozen=True, kw_only=True):
+class File(Plain, frozen=True):
     """A file the text used."""
 
     name: str
     sha256: str
 
 
-class Source(Plain, frozen=True, kw_only=True):
+class Source(Plain, frozen=True):
     """Where the record came from."""
 
     name: str
@@ -399,14 +399,14 @@ class Source(Plain, frozen=True, kw_only=True):
     files: tuple[File, ...]
 
 
-class Tool(Plain, frozen=True, kw_only=True):
+class Tool(Plain, frozen=True):
     """What computed the record."""
 
     version: str
     libraries: dict[str, str]
 
 
-class Problem(Plain, frozen=True, kw_only=True):
+class Problem(Plain, frozen=True):
     """A warning the text gave rise to."""
 
     code: str
@@ -417,7 +417,7 @@ class Problem(Plain, frozen=True, kw_only=True):
     help: str
 
 
-class Tally(Plain, frozen=True, kw_only=True):
+class Tally(Plain, frozen=True):
     """How many criteria have which verdict, and what is open."""
 
     passed: int
@@ -433,7 +433,7 @@ class Tally(Plain, frozen=True, kw_only=True):
     """One sentence: ``5 pass, 1 fail, 1 by test``; never "all pass" while tests are open."""
 
 
-class Record(Plain, frozen=True, kw_only=True):
+class Record(Plain, frozen=True):
     """A calculation record."""
 
     schema: str

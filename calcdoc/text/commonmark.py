@@ -160,7 +160,8 @@ class _Builder:
         """A fenced block, handed to its reader."""
         assert token.map is not None
         begin, end = token.map
-        lines = tuple(token.content.split("\n")[:-1])
+        # The last line of a file may lack its line end.
+        lines = tuple(token.content.removesuffix("\n").split("\n")) if token.content else ()
         first = self.first_line + begin
         places = [self.place(first + 1 + k, line) for k, line in enumerate(lines)]
         word = token.info.split()[0] if token.info.split() else ""

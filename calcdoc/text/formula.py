@@ -238,6 +238,7 @@ def formula(scanner: Scanner, *, conditions: bool = False) -> Node:
     Raises:
         Mistake: at the first character that cannot go on, or when the formula is too large.
     """
+    scanner.blanks()
     start = scanner.at
     if len(scanner.passage.text) - start > LONGEST:
         raise Mistake(
