@@ -25,9 +25,9 @@ CHUNK: Final = 128
 """Questions evaluated in one pass; more would compute much that each one does not need."""
 WORK: Final = 1_500_000
 """Instructions times slots times boxes that one hard question may cost: some hundred ms."""
-WORK_OF_ALL: Final = 12_000_000
+WORK_OF_ALL: Final = 8_000_000
 """The same for all hard questions together."""
-LEAST_BOXES: Final = 96
+LEAST_BOXES: Final = 32
 MOST_BOXES: Final = 8192
 
 

@@ -71,7 +71,7 @@ def test_json_of_several_files_is_a_list(shell: Shell) -> None:
             "code": "unknown-symbol",
             "column": 5,
             "file": "wrong.md",
-            "help": "did you mean x?",
+            "help": "define it in inputs, conditions or derive",
             "line": 8,
             "message": "there is no symbol `y`",
             "severity": "error",
