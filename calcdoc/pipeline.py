@@ -56,11 +56,6 @@ class Design(Frozen, frozen=True):
         """Whether the text has no errors so far."""
         return not has_errors(self.findings)
 
-    def problems(self) -> str:
-        """Every finding with its line and caret."""
-        sources = {self.source.path: self.source}
-        return "\n".join(full(each, sources) for each in in_order(self.findings))
-
 
 class Evaluated(Frozen, frozen=True):
     """A design with its numbers; ``evaluation`` is None when the text has errors."""
@@ -74,6 +69,11 @@ class Evaluated(Frozen, frozen=True):
     def ok(self) -> bool:
         """Whether the design could be computed."""
         return self.evaluation is not None
+
+    def problems(self) -> str:
+        """Every finding with its line and caret, in the order of the text."""
+        sources = {self.design.source.path: self.design.source}
+        return "\n\n".join(full(each, sources) for each in in_order(self.findings))
 
 
 def read(path: str | os.PathLike[str]) -> Design:

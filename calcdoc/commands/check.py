@@ -63,15 +63,7 @@ def _say_problems(checked: Checked) -> None:
     if checked.trouble:
         click.echo(f"calcdoc: {checked.trouble}", err=True)
     if checked.evaluated and checked.evaluated.findings:
-        click.echo(problems(checked.evaluated), err=True)
-
-
-def problems(evaluated: Evaluated) -> str:
-    """Every finding with its line and caret."""
-    from calcdoc.problems.views import full  # noqa: PLC0415
-
-    sources = {evaluated.design.source.path: evaluated.design.source}
-    return "\n\n".join(full(each, sources) for each in in_order(evaluated.findings))
+        click.echo(checked.evaluated.problems(), err=True)
 
 
 def _print_text(checked: list[Checked]) -> None:

@@ -2,7 +2,7 @@
 
 import click
 
-from calcdoc.commands.check import TEXT_HAS_ERRORS, WORLD_IS_WRONG, problems
+from calcdoc.commands.check import TEXT_HAS_ERRORS, WORLD_IS_WRONG
 from calcdoc.errors import CalcdocError
 from calcdoc.pipeline import FORMS, Evaluated, evaluate, file_stem, read, record
 from calcdoc.pipeline import write as write_record
@@ -50,7 +50,7 @@ def _evaluated(name: str) -> Evaluated | None:
         click.echo(f"calcdoc: {trouble}", err=True)
         return None
     if evaluated.findings:
-        click.echo(problems(evaluated), err=True)
+        click.echo(evaluated.problems(), err=True)
     return evaluated
 
 

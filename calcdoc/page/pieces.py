@@ -11,7 +11,7 @@ from typing import Final
 
 from calcdoc.page.measure import measure
 from calcdoc.record.pictures import equation, picture
-from calcdoc.record.shapes import Glyphs, Kind, Picture, Row
+from calcdoc.record.shapes import THIN, Glyphs, Kind, Picture, Row
 from calcdoc.text.formula import parse_text
 
 SMALLEST: Final = 0.7
@@ -71,7 +71,11 @@ def pieces(
         return (Piece(shown, bold=bold),)
     cut: list[Piece] = []
     for part in _cut(shown, ("relation", "operator"), "+−<>≤≥=≠"):
-        finer = [part] if measure(part).width <= widest else _cut(part, ("operator",), "×")
+        finer = (
+            [part]
+            if measure(part).width <= widest
+            else _cut(part, ("operator", "space"), "×" + THIN)
+        )
         cut.extend(_fitted(each, room, bold=bold) for each in finer)
     return tuple(cut)
 

@@ -237,9 +237,9 @@ def _times(left: Picture, right: Picture) -> Glyphs:
 
 
 def _call(function: str, arguments: tuple[nodes.Node, ...], *, flat: bool) -> Picture:
-    shown = [picture(each, flat=flat) for each in arguments]
-    if function == "sqrt" and len(shown) == 1:
+    if function == "sqrt" and len(arguments) == 1:
         return Root(picture(_bare(arguments[0]), flat=flat))
+    shown = [picture(each, flat=flat) for each in arguments]
     if function in BARS and len(shown) == 1:
         return Fence(*BARS[function], shown[0])
     if function == "if" and len(shown) == 3:  # noqa: PLR2004  condition, then, else
