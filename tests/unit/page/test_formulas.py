@@ -149,3 +149,22 @@ def test_sentence_is_no_formula() -> None:
     assert not is_formula("temperature rise of the lamp")
     assert is_formula("V_pk <= 400 V")
     assert box("a <b> sentence here") == "a &lt;b&gt; sentence here"
+
+
+@pytest.mark.parametrize(
+    "text",
+    [
+        "+".join(["V_long"] * 140),
+        "*".join(["V_long"] * 140),
+        "/".join(["a"] * 140),
+        "a/(" * 50 + "b" + ")" * 50,
+        "sqrt(" * 50 + "x" + ")" * 50,
+        "abs(" * 50 + "x" + ")" * 50,
+        "if(x > 1, a, " * 25 + "b" + ")" * 25,
+    ],
+)
+def test_deep_and_long_formulas_are_drawn(text: str) -> None:
+    """Whatever the parser accepts is drawn, in time in proportion to its length."""
+    cut = pieces(read(text), room=30.0)
+    assert len("".join(mathml(piece, no_links) for piece in cut)) < 400 * len(text)
+    assert len("".join(boxes(piece, no_links) for piece in cut)) < 400 * len(text)
