@@ -6,7 +6,7 @@ from html import escape
 from typing import Final
 
 from calcdoc.page import typeset
-from calcdoc.page.lines import GIVEN, assumed, given_value, subject
+from calcdoc.page.lines import GIVEN, assumed, given_value, gives_limits, subject
 from calcdoc.page.markup import Column, table, verdict
 from calcdoc.page.view import View, reference_anchor
 from calcdoc.record.record import Criterion, Quantity
@@ -81,7 +81,7 @@ def _given_row(view: View, quantity: Quantity) -> tuple[str, ...]:
     return (
         view.place(quantity.symbol),
         view.symbol(quantity.symbol),
-        given_value(quantity),
+        typeset.quantity(quantity.result) if gives_limits(quantity) else given_value(quantity),
         limits,
         escape(quantity.description),
         view.basis(quantity.basis) or "no source given",

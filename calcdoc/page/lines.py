@@ -77,7 +77,7 @@ def _given(view: View, quantity: Quantity) -> str:
     value = given_value(quantity)
     left = view.math(equation_left(quantity.symbol))
     limits = ""
-    if quantity.varies and " to " not in quantity.tolerance:
+    if quantity.varies and not gives_limits(quantity):
         limits = f' <span class="soft nb">{_limits(quantity)}</span>'
     notes = _notes(view, quantity.notes)
     label = escape(quantity.id or quantity.line)
@@ -90,7 +90,17 @@ def _given(view: View, quantity: Quantity) -> str:
 
 def given_value(quantity: Quantity) -> str:
     """The value of a given quantity with its tolerance, which is typeset already."""
-    return escape(quantity.tolerance) or typeset.quantity(quantity.result)
+    nominal = typeset.quantity(quantity.result)
+    if not quantity.tolerance:
+        return nominal
+    if gives_limits(quantity) and typeset.plain_quantity(quantity.result) not in quantity.tolerance:
+        return f"{nominal}, {escape(quantity.tolerance)}"
+    return escape(quantity.tolerance)
+
+
+def gives_limits(quantity: Quantity) -> bool:
+    """Whether the tolerance is written as its two limits, which need not be said again."""
+    return " to " in quantity.tolerance
 
 
 def assumed(view: View, assumption: Assumption) -> str:

@@ -7,6 +7,8 @@ from html.parser import HTMLParser
 import pytest
 
 from calcdoc.page.html import POLICY, html, inert
+from calcdoc.page.lines import given_value
+from tests.helpers.sample_parts import quantity
 from tests.helpers.sample_record import DATA, sample
 
 VOID = frozenset({"meta", "br", "hr", "img", "col", "link"})
@@ -162,3 +164,13 @@ def test_faces_follow_the_letters() -> None:
     """The extended Latin faces are embedded only for a page that needs them."""
     assert 'calcdoc serif more";font-weight' not in html(sample(), DATA)
     assert 'calcdoc serif more";font-weight' in html(sample(title="Světlo"), DATA)
+
+
+def test_nominal_stands_beside_limits() -> None:
+    """A tolerance written as two limits does not hide the nominal value."""
+    band = "\u221220\u00a0°C to 45\u00a0°C"
+    warm = quantity(symbol="T_a", kind="condition", result="12.5 °C", tolerance=band, varies=True)
+    assert given_value(warm) == f"12.5\u00a0°C, {band}"
+    factor = "230\u00a0V × (1 ± 10\u00a0%)"
+    line = quantity(symbol="V", kind="condition", result="230 V", tolerance=factor, varies=True)
+    assert given_value(line) == factor
