@@ -88,7 +88,11 @@ class _Evaluator:
 
     def run(self) -> Evaluation:
         """All bands, judgements and discharge times."""
-        band_at = {key: self._ask_band(at) for key, at in self.compiled.variables.items()}
+        band_at = {
+            key: self._ask_band(at)
+            for key, at in self.compiled.variables.items()
+            if self.model.variables[key].given is None
+        }
         side_at = [
             [self._ask(side.requirement, False, self._box(criterion)) for side in sides]
             for criterion, sides in enumerate(self.compiled.sides)
@@ -96,16 +100,25 @@ class _Evaluator:
         time_at = [None if at is None else self._ask(at, True, self.boxes[-1])
                    for at in self.compiled.discharges]  # fmt: skip
         answers = extremes(self.compiled.tape, self.questions)
-        nominal = evaluate_points(self.compiled.tape, self.compiled.nominal[:, None])[:, 0]
+        governing = [min(sides, key=lambda at: answers[at].value) for sides in side_at]
+        # One pass: the nominal point, then the governing point of every criterion.
+        points = np.stack([self.compiled.nominal, *(answers[at].point for at in governing)], axis=1)
+        computed = evaluate_points(self.compiled.tape, points)
         bands = {
-            key: self._band(float(nominal[self.compiled.variables[key]]), answers, asked)
-            for key, asked in band_at.items()
+            key: self._band(float(computed[at, 0]), answers, band_at[key])
+            if key in band_at
+            else self._given_band(key)
+            for key, at in self.compiled.variables.items()
         }
         return Evaluation(
             self.model,
             bands,
-            tuple(self._judge(judged, criterion, [answers[at] for at in side_at[criterion]])
-                  for criterion, judged in enumerate(_judged(self.model))),
+            tuple(
+                self._judge(judged, self.compiled.sides[number][side_at[number].index(at)],
+                            answers[at], computed[:, number + 1])
+                for number, (judged, at) in enumerate(
+                    zip(_judged(self.model), governing, strict=True))
+            ),
             tuple(self._discharged(at, answers, bands[each.voltage].greatest)
                   for at, each in zip(time_at, self.model.discharges, strict=True)),
         )  # fmt: skip
@@ -134,18 +147,23 @@ class _Evaluator:
             _weaker(least.proof, greatest.proof), (least.bound, greatest.bound),
         )  # fmt: skip
 
+    def _given_band(self, key: str) -> Band:
+        """A given quantity is at its own limits: nothing to search."""
+        given = self.model.variables[key].given
+        assert given is not None
+        least, nominal, greatest = given.si
+        return Band(nominal, least, greatest, {}, {}, Proof.EXACT, (least, greatest))
+
     def _combination(self, extreme: Extreme) -> Combination:
         return {
             self.keys[column]: Stand(float(extreme.point[column]), bool(extreme.interior[column]))
             for column in np.flatnonzero(extreme.matters)
         }
 
-    def _judge(self, judged: Judged, criterion: int, answers: list[Extreme]) -> Judgement:
-        """The governing side is the one with the least requirement."""
-        sides = self.compiled.sides[criterion]
-        at = min(range(len(sides)), key=lambda each: answers[each].value)
-        side, extreme = sides[at], answers[at]
-        computed = evaluate_points(self.compiled.tape, extreme.point[:, None])[:, 0]
+    def _judge(
+        self, judged: Judged, side: Side, extreme: Extreme, computed: FloatArray
+    ) -> Judgement:
+        """A criterion at its governing point, where everything was computed already."""
         value, limit = float(computed[side.value]), float(computed[side.limit])
         slack = limit - value if side.relation[0] == "<" else value - limit
         tolerance = EQUAL * max(abs(value), abs(limit))

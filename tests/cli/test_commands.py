@@ -162,6 +162,8 @@ def test_every_code_in_use_is_listed() -> None:
     used = set()
     for path in (Path(__file__).parents[2] / "calcdoc").rglob("*.py"):
         text = path.read_text(encoding="utf-8")
-        used |= set(re.findall(r'\b(?:error|warning|Mistake|_refuse|_CODES)\(\s*"([a-z0-9-]+)"', text))
+        used |= set(
+            re.findall(r'\b(?:error|warning|Mistake|_refuse|_CODES)\(\s*"([a-z0-9-]+)"', text)
+        )
         used |= set(re.findall(r'^\s*"((?:division-by|out-of|too)-[a-z]+)",', text, re.MULTILINE))
     assert used == set(codes())
