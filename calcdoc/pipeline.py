@@ -23,10 +23,10 @@ from calcdoc.model.build import build
 from calcdoc.model.model import Model
 from calcdoc.problems import Finding, error
 from calcdoc.problems.views import full, has_errors, in_order
-from calcdoc.record.build import Circumstances, Embedded, build_record
-from calcdoc.record.cautions import hazard_warning
-from calcdoc.record.record import Record, Tool
-from calcdoc.record.store import to_json
+from calcdoc.records.build import Circumstances, Embedded, build_record
+from calcdoc.records.cautions import hazard_warning
+from calcdoc.records.record import Record, Tool
+from calcdoc.records.store import to_json
 from calcdoc.source import SourceFile, digest
 from calcdoc.text.document import pictures, read_document
 from calcdoc.text.prose import Block

@@ -1,6 +1,5 @@
 """Confirm a suspected failure: find a point in the box at which it happens, or clear it."""
 
-from dataclasses import dataclass
 from typing import Final
 
 import numpy as np
@@ -10,6 +9,7 @@ from calcdoc.analysis.points import BoolArray, FloatArray
 from calcdoc.analysis.program import plain
 from calcdoc.analysis.sweep import Boxes, sweep
 from calcdoc.analysis.tape import Op, Tape
+from calcdoc.frozen import Frozen
 
 ZERO: Final = 1e-12
 """A divisor this small against the largest term that makes it up counts as zero."""
@@ -19,8 +19,7 @@ NEAR: Final = 1e-9
 """Share of the box around a point within which a guard must hold for a zero not hit exactly."""
 
 
-@dataclass(frozen=True, slots=True)
-class Box:
+class Box(Frozen, frozen=True):
     """Ranges of the inputs, shape (n_inputs,) each."""
 
     low: FloatArray
@@ -46,8 +45,7 @@ def scale(tape: Tape, at: int, ranges: dict[int, FloatArray]) -> float:
     return float(np.abs(ranges[at]).max())
 
 
-@dataclass(frozen=True, slots=True)
-class Judge:
+class Judge(Frozen, frozen=True):
     """Looks at the points found for one case."""
 
     tape: Tape

@@ -2,7 +2,6 @@
 
 import math
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
 from fractions import Fraction
 from typing import Final
 
@@ -10,6 +9,7 @@ import numpy as np
 
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.tape import Op, Tape, TapeBuilder
+from calcdoc.frozen import Frozen
 from calcdoc.model.constants import CONSTANTS
 from calcdoc.model.model import Discharge, Judged, Model
 from calcdoc.model.typing import constant_value
@@ -41,8 +41,7 @@ _ONE_ARGUMENT: Final = {
 }  # fmt: skip
 
 
-@dataclass(frozen=True, slots=True)
-class Side:
+class Side(Frozen, frozen=True):
     """One limit of a criterion, as instructions of the tape."""
 
     value: int
@@ -55,8 +54,7 @@ class Side:
     limit_tree: Node
 
 
-@dataclass(frozen=True, slots=True)
-class Compiled:
+class Compiled(Frozen, frozen=True):
     """A tape with the way back to the names."""
 
     tape: Tape

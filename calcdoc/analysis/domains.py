@@ -1,6 +1,5 @@
 """Where operations cannot be computed: the condition on a subject that each one needs."""
 
-from dataclasses import dataclass
 from enum import Enum
 from fractions import Fraction
 from typing import Final
@@ -11,6 +10,7 @@ from calcdoc.analysis import intervals as iv
 from calcdoc.analysis.guards import Guard
 from calcdoc.analysis.points import BoolArray, FloatArray
 from calcdoc.analysis.tape import Instruction, Op, TapeBuilder
+from calcdoc.frozen import Frozen
 
 POLE: Final = "division by zero"
 ROOT: Final = "square root of a negative"
@@ -29,8 +29,7 @@ class Need(Enum):
     POSITIVE = "positive"
 
 
-@dataclass(frozen=True, slots=True)
-class Case:
+class Case(Frozen, frozen=True):
     """One way in which one instruction may fail."""
 
     instruction: int

@@ -1,7 +1,6 @@
 """Evaluate a model: nominal, extremes, criteria and discharge times, all on one tape."""
 
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
 from typing import Final
 
 import numpy as np
@@ -19,6 +18,7 @@ from calcdoc.analysis.evaluation import (
 from calcdoc.analysis.extremes import Extreme, Proof, Question, extremes
 from calcdoc.analysis.points import FloatArray, evaluate_points
 from calcdoc.analysis.trouble import troubles
+from calcdoc.frozen import Frozen
 from calcdoc.model.model import Judged, Model
 from calcdoc.problems import Finding
 from calcdoc.text.statements import Inequality
@@ -27,8 +27,7 @@ EQUAL: Final = 1e-12
 """Share of the largest term below which a requirement counts as met with equality."""
 
 
-@dataclass(frozen=True, slots=True)
-class Box:
+class Box(Frozen, frozen=True):
     """Ranges of all input columns, shape (n_columns,) each, in coherent SI."""
 
     low: FloatArray

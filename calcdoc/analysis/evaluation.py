@@ -1,16 +1,15 @@
 """What was computed: bands of quantities and judgements of criteria, in coherent SI."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from enum import Enum
 
 from calcdoc.analysis.compile import Side
 from calcdoc.analysis.extremes import Proof
+from calcdoc.frozen import Frozen
 from calcdoc.model.model import Judged, Model
 
 
-@dataclass(frozen=True, slots=True)
-class Stand:
+class Stand(Frozen, frozen=True):
     """Where an input stands in a combination."""
 
     value: float
@@ -23,8 +22,7 @@ Combination = Mapping[str, Stand]
 """By key: the inputs that matter, and where they stand."""
 
 
-@dataclass(frozen=True, slots=True)
-class Band:
+class Band(Frozen, frozen=True):
     """A quantity at nominal and at its extremes."""
 
     nominal: float
@@ -50,8 +48,7 @@ class Outcome(Enum):
     NOT_DECIDED = "not decided"
 
 
-@dataclass(frozen=True, slots=True)
-class Judgement:
+class Judgement(Frozen, frozen=True):
     """A criterion at its governing point: where limit less value is least."""
 
     judged: Judged
@@ -74,8 +71,7 @@ class Judgement:
     """Proven: the requirement is nowhere below this."""
 
 
-@dataclass(frozen=True, slots=True)
-class Discharged:
+class Discharged(Frozen, frozen=True):
     """A stored charge: its greatest voltage, and the greatest time to a safe voltage."""
 
     greatest_voltage: float
@@ -84,8 +80,7 @@ class Discharged:
     combination: Combination
 
 
-@dataclass(frozen=True, slots=True)
-class Evaluation:
+class Evaluation(Frozen, frozen=True):
     """A model with its numbers."""
 
     model: Model

@@ -6,7 +6,6 @@ with a point at which it happens; where no such point is found nothing is claime
 """
 
 from collections.abc import Container, Iterable, Sequence
-from dataclasses import dataclass
 from typing import Final
 
 import numpy as np
@@ -20,13 +19,13 @@ from calcdoc.analysis.program import Program, by_structure, needed, plain
 from calcdoc.analysis.questions import Question
 from calcdoc.analysis.sweep import Boxes, sweep
 from calcdoc.analysis.tape import Op, Tape, TapeBuilder
+from calcdoc.frozen import Frozen
 
 FAR: Final = 1e300
 """Stands for a range without end."""
 
 
-@dataclass(frozen=True, slots=True)
-class Hazard:
+class Hazard(Frozen, frozen=True):
     """One instruction that cannot be computed somewhere in the box."""
 
     instruction: int

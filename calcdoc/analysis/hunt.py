@@ -12,6 +12,7 @@ import numpy as np
 
 from calcdoc.analysis.intervals import neg
 from calcdoc.analysis.points import BoolArray, FloatArray, IntArray
+from calcdoc.frozen import Frozen
 
 TOLERANCE: Final = 1e-9
 """Gap between bound and attained value, relative to the largest value seen, that counts as none."""
@@ -37,8 +38,7 @@ def scatter(n_free: int) -> FloatArray:
     return points
 
 
-@dataclass(frozen=True, slots=True)
-class Trial:
+class Trial(Frozen, frozen=True):
     """Boxes of one round after the sweep; sides with a known slope are at their right end."""
 
     low: FloatArray

@@ -1,17 +1,16 @@
 """The part of a tape that some targets need, numbered anew, with what each row depends on."""
 
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass, replace
 
 import numpy as np
 
 from calcdoc.analysis.points import BoolArray, FloatArray, Step, compile_steps, run
 from calcdoc.analysis.tape import Op, Tape
 from calcdoc.analysis.vanish import dependence
+from calcdoc.frozen import Frozen, replace
 
 
-@dataclass(frozen=True, slots=True)
-class Program:
+class Program(Frozen, frozen=True):
     """Instructions in order with all their arguments, ready to be evaluated and swept."""
 
     tape: Tape

@@ -1,9 +1,9 @@
 """What can be asked about the range of a quantity, and the answer."""
 
-from dataclasses import dataclass
 from enum import Enum
 
 from calcdoc.analysis.points import BoolArray, FloatArray
+from calcdoc.frozen import Frozen
 
 
 class Proof(Enum):
@@ -14,8 +14,7 @@ class Proof(Enum):
     SEARCHED = "searched"  # attained; a bound is proven, but the two are apart
 
 
-@dataclass(frozen=True, slots=True)
-class Question:
+class Question(Frozen, frozen=True):
     """What is asked: one end of one instruction's range over one box."""
 
     target: int
@@ -26,8 +25,7 @@ class Question:
     high: FloatArray
 
 
-@dataclass(frozen=True, slots=True)
-class Extreme:
+class Extreme(Frozen, frozen=True):
     """The answer to one question."""
 
     value: float

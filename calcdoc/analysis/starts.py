@@ -1,7 +1,6 @@
 """The first sweep: most questions are settled by the signs of their slopes over the whole box."""
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
 from typing import Final
 
 import numpy as np
@@ -11,6 +10,7 @@ from calcdoc.analysis.program import Program
 from calcdoc.analysis.questions import Question
 from calcdoc.analysis.slopes import Tangent
 from calcdoc.analysis.sweep import Boxes, sweep
+from calcdoc.frozen import Frozen
 
 CELLS: Final = 8192
 """Boxes times slots in one sweep."""
@@ -18,8 +18,7 @@ CHUNK: Final = 64
 """Questions with boxes of their own in one sweep."""
 
 
-@dataclass(frozen=True, slots=True)
-class Start:
+class Start(Frozen, frozen=True):
     """What the first sweep found about a question."""
 
     point: FloatArray

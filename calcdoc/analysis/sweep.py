@@ -16,10 +16,10 @@ from calcdoc.analysis.points import BoolArray, FloatArray, IntArray
 from calcdoc.analysis.program import Program
 from calcdoc.analysis.slopes import Tangent, tangent
 from calcdoc.analysis.tape import Instruction, Op
+from calcdoc.frozen import Frozen
 
 
-@dataclass(frozen=True, slots=True)
-class Boxes:
+class Boxes(Frozen, frozen=True):
     """Boxes as columns."""
 
     low: FloatArray

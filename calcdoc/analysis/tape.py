@@ -8,6 +8,8 @@ from dataclasses import dataclass, field
 from enum import Enum
 from fractions import Fraction
 
+from calcdoc.frozen import Frozen
+
 
 class Op(Enum):
     """What an instruction does with its arguments."""
@@ -44,8 +46,7 @@ class Op(Enum):
     NOT = "not"
 
 
-@dataclass(frozen=True, slots=True)
-class Instruction:
+class Instruction(Frozen, frozen=True):
     """One operation; ``args`` are indices of earlier instructions."""
 
     op: Op
@@ -53,8 +54,7 @@ class Instruction:
     value: Fraction | float | int | None = None
 
 
-@dataclass(frozen=True, slots=True)
-class Tape:
+class Tape(Frozen, frozen=True):
     """Instructions in order of computation and the number of input columns they read."""
 
     instructions: tuple[Instruction, ...]

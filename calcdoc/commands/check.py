@@ -7,8 +7,8 @@ from calcdoc.errors import CalcdocError
 from calcdoc.frozen import Frozen
 from calcdoc.pipeline import Evaluated, evaluate, read, record
 from calcdoc.problems.views import as_data, in_order
-from calcdoc.record.record import SCHEMA, Record
-from calcdoc.record.store import to_json
+from calcdoc.records.record import SCHEMA, Record
+from calcdoc.records.store import to_json
 
 PASSES, FAILS, TEXT_HAS_ERRORS, WORLD_IS_WRONG = 0, 1, 2, 3
 

@@ -1,7 +1,7 @@
 """The verdict table for the terminal."""
 
-from calcdoc.record.record import Criterion, Record
-from calcdoc.record.wording import counted, typeset
+from calcdoc.records.record import Criterion, Record
+from calcdoc.records.wording import counted, typeset
 
 _SIGNS = {"<=": "≤", ">=": "≥", "<": "<", ">": ">"}
 Row = tuple[str, ...]

@@ -9,7 +9,7 @@ from calcdoc.page import typeset
 from calcdoc.page.lines import GIVEN, assumed, given_value, gives_limits, subject
 from calcdoc.page.markup import Column, table, verdict
 from calcdoc.page.view import View, reference_anchor
-from calcdoc.record.record import Criterion, Quantity
+from calcdoc.records.record import Criterion, Quantity
 
 
 @dataclass(frozen=True, slots=True)

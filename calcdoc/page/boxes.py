@@ -10,7 +10,17 @@ from html import escape
 from calcdoc.page import measure as m
 from calcdoc.page.measure import Box, measure
 from calcdoc.page.pieces import Links, Piece
-from calcdoc.record.shapes import Cases, Fence, Fraction, Glyphs, Picture, Root, Row, Script, Symbol
+from calcdoc.records.shapes import (
+    Cases,
+    Fence,
+    Fraction,
+    Glyphs,
+    Picture,
+    Root,
+    Row,
+    Script,
+    Symbol,
+)
 
 
 def boxes(piece: Piece, _links: Links) -> str:

@@ -8,7 +8,7 @@ from calcdoc.page.lines import assumed, subject
 from calcdoc.page.markup import Column, margin_bar, table, verdict
 from calcdoc.page.prose import caution
 from calcdoc.page.view import View
-from calcdoc.record.record import Criterion
+from calcdoc.records.record import Criterion
 
 VERDICTS: Final = (
     Column("id", 4.5),

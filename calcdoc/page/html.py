@@ -8,7 +8,7 @@ from calcdoc.page.faces import faces, style
 from calcdoc.page.mathml import mathml
 from calcdoc.page.sections import Entry, contents, sections
 from calcdoc.page.view import View
-from calcdoc.record.record import Record
+from calcdoc.records.record import Record
 
 POLICY: Final = (
     "default-src 'none'; style-src 'unsafe-inline'; img-src data:; font-src data:; "

@@ -7,9 +7,9 @@ from calcdoc.page.markup import band_bar, margin_bar, verdict
 from calcdoc.page.measure import measure
 from calcdoc.page.pieces import ROOM, is_formula, read
 from calcdoc.page.view import View
-from calcdoc.record.pictures import RELATIONS, equation, symbol
-from calcdoc.record.record import Assumption, Criterion, Quantity
-from calcdoc.record.shapes import Glyphs, Picture, Row
+from calcdoc.records.pictures import RELATIONS, equation, symbol
+from calcdoc.records.record import Assumption, Criterion, Quantity
+from calcdoc.records.shapes import Glyphs, Picture, Row
 
 GIVEN = frozenset({"condition", "input", "assumption"})
 LEAD = 0.35

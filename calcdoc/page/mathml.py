@@ -9,7 +9,7 @@ from typing import Final
 
 from calcdoc.page.measure import TALL, measure
 from calcdoc.page.pieces import Links, Piece
-from calcdoc.record.shapes import (
+from calcdoc.records.shapes import (
     NO_BREAK,
     Cases,
     Fence,

@@ -10,7 +10,17 @@ from dataclasses import dataclass
 from functools import lru_cache
 from typing import Final
 
-from calcdoc.record.shapes import Cases, Fence, Fraction, Glyphs, Picture, Root, Row, Script, Symbol
+from calcdoc.records.shapes import (
+    Cases,
+    Fence,
+    Fraction,
+    Glyphs,
+    Picture,
+    Root,
+    Row,
+    Script,
+    Symbol,
+)
 
 UP: Final = 0.762
 DOWN: Final = 0.238

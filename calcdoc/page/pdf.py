@@ -17,7 +17,7 @@ from calcdoc.page.html import title
 from calcdoc.page.sections import sections
 from calcdoc.page.typeset import digest
 from calcdoc.page.view import View
-from calcdoc.record.record import Record
+from calcdoc.records.record import Record
 
 PAPERS: Final = {"a4": "A4", "letter": "letter"}
 STRIP: Final = 64

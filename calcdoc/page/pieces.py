@@ -10,8 +10,8 @@ from functools import lru_cache
 from typing import Final
 
 from calcdoc.page.measure import measure
-from calcdoc.record.pictures import equation, picture
-from calcdoc.record.shapes import THIN, Glyphs, Kind, Picture, Row
+from calcdoc.records.pictures import equation, picture
+from calcdoc.records.shapes import THIN, Glyphs, Kind, Picture, Row
 from calcdoc.text.formula import parse_text
 
 SMALLEST: Final = 0.7

@@ -6,7 +6,7 @@ from html import escape
 from calcdoc.page import lines, typeset
 from calcdoc.page.markup import verdict
 from calcdoc.page.view import View
-from calcdoc.record import record as r
+from calcdoc.records import record as r
 
 
 def body(view: View) -> str:

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 
 from calcdoc.page import back, cover, prose
 from calcdoc.page.view import View
-from calcdoc.record.record import Heading
+from calcdoc.records.record import Heading
 
 
 @dataclass(frozen=True, slots=True)

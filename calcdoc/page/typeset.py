@@ -12,9 +12,9 @@ from typing import Final
 from calcdoc.page.boxes import inline
 from calcdoc.page.mathml import linear
 from calcdoc.page.pieces import read
-from calcdoc.record.pictures import grouped, unit
-from calcdoc.record.rounding import significant
-from calcdoc.record.shapes import MINUS, NO_BREAK
+from calcdoc.records.pictures import grouped, unit
+from calcdoc.records.rounding import significant
+from calcdoc.records.shapes import MINUS, NO_BREAK
 from calcdoc.text.formula import parse_text
 from calcdoc.text.nodes import Quantity
 

@@ -7,9 +7,9 @@ from html import escape
 
 from calcdoc.page import boxes, typeset
 from calcdoc.page.pieces import ROOM, Draw, no_links, pieces, read
-from calcdoc.record.pictures import symbol
-from calcdoc.record.record import Assumption, Criterion, Quantity, Record
-from calcdoc.record.shapes import Picture
+from calcdoc.records.pictures import symbol
+from calcdoc.records.record import Assumption, Criterion, Quantity, Record
+from calcdoc.records.shapes import Picture
 from calcdoc.text.names import fold
 
 NAME = re.compile(r"[^\W\d_][^\W_]*(?:\.[^\W\d_][^\W_]*)?(?:_\w+)|[\u0370-\u03ff][^\W_]*")

@@ -6,7 +6,7 @@ from pathlib import Path
 import pytest
 
 from calcdoc.problems.codes import codes
-from calcdoc.record.store import from_json
+from calcdoc.records.store import from_json
 from tests.helpers.checking import TITLE
 from tests.helpers.command import Shell
 

@@ -3,10 +3,10 @@
 from dataclasses import dataclass
 
 from calcdoc import pipeline
-from calcdoc.record.record import Criterion, Quantity, Record
+from calcdoc.model.build import build
+from calcdoc.records.record import Criterion, Quantity, Record
 from calcdoc.source import SourceFile
 from calcdoc.text.document import read_document
-from calcdoc.model.build import build
 from tests.helpers.checking import TITLE
 
 

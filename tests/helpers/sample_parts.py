@@ -3,7 +3,7 @@
 from dataclasses import dataclass, field
 from typing import Any
 
-from calcdoc.record import record as r
+from calcdoc.records import record as r
 
 NB = "\u00a0"
 

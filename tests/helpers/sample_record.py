@@ -2,7 +2,7 @@
 
 from typing import Any
 
-from calcdoc.record import record as r
+from calcdoc.records import record as r
 from tests.helpers.sample_parts import CRITERIA, GIVEN, NB, REFERENCES, WORKED, given
 
 DATA = b'{"schema":"calcdoc-record/1","note":"</script><b>&"}'

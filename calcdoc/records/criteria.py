@@ -2,13 +2,13 @@
 
 from calcdoc.analysis.evaluation import Judgement, Outcome
 from calcdoc.model.model import Judged, Typed
-from calcdoc.record import record as r
-from calcdoc.record.display import choose_unit
-from calcdoc.record.naming import Naming
-from calcdoc.record.quantities import Numbers
-from calcdoc.record.rounding import apart, downward, stored
-from calcdoc.record.substitute import substituted
-from calcdoc.record.values import difference, with_unit
+from calcdoc.records import record as r
+from calcdoc.records.display import choose_unit
+from calcdoc.records.naming import Naming
+from calcdoc.records.quantities import Numbers
+from calcdoc.records.rounding import apart, downward, stored
+from calcdoc.records.substitute import substituted
+from calcdoc.records.values import difference, with_unit
 from calcdoc.text import literal
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Group, Name, Node, Quantity

@@ -7,7 +7,7 @@ subscripts. Views draw pictures (see ``calcdoc.page.mathml`` and ``calcdoc.page.
 
 from typing import Final
 
-from calcdoc.record.shapes import (
+from calcdoc.records.shapes import (
     MINUS,
     NARROW,
     NO_BREAK,

@@ -9,10 +9,10 @@ from typing import Final
 from calcdoc.analysis.evaluation import Discharged, Evaluation
 from calcdoc.model.model import Discharge
 from calcdoc.problems import Finding, warning
-from calcdoc.record import record as r
-from calcdoc.record.body import caution_text
-from calcdoc.record.rounding import upward
-from calcdoc.record.wording import counted, typeset
+from calcdoc.records import record as r
+from calcdoc.records.body import caution_text
+from calcdoc.records.rounding import upward
+from calcdoc.records.wording import counted, typeset
 from calcdoc.text.names import fold
 from calcdoc.units.dimension import VOLTAGE
 

@@ -3,7 +3,7 @@
 import re
 from typing import Final
 
-from calcdoc.record.values import exact_limit, given_nominal, with_unit
+from calcdoc.records.values import exact_limit, given_nominal, with_unit
 from calcdoc.text.given import Given, Style
 from calcdoc.units import Unit
 

@@ -3,7 +3,7 @@
 import msgspec
 
 from calcdoc.errors import CalcdocError
-from calcdoc.record.record import SCHEMA, Record
+from calcdoc.records.record import SCHEMA, Record
 
 
 class RecordTrouble(CalcdocError):

@@ -2,7 +2,7 @@
 
 from fractions import Fraction
 
-from calcdoc.record.rounding import exactly, significant, trimmed
+from calcdoc.records.rounding import exactly, significant, trimmed
 from calcdoc.text.given import Given
 from calcdoc.units import Unit
 

@@ -5,8 +5,8 @@ import unicodedata
 from collections.abc import Callable
 
 from calcdoc.frozen import Frozen
-from calcdoc.record import record as r
-from calcdoc.record.naming import Naming, is_numbered
+from calcdoc.records import record as r
+from calcdoc.records.naming import Naming, is_numbered
 from calcdoc.text import prose
 from calcdoc.text.statements import (
     Definition,

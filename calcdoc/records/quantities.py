@@ -7,14 +7,14 @@ from functools import cached_property
 from calcdoc.analysis.evaluation import Band, Combination, Evaluation
 from calcdoc.analysis.extremes import Proof
 from calcdoc.model.model import Model, Variable
-from calcdoc.record import record as r
-from calcdoc.record.carried import units_carried
-from calcdoc.record.display import choose_unit
-from calcdoc.record.naming import Naming
-from calcdoc.record.rounding import stored
-from calcdoc.record.substitute import substituted
-from calcdoc.record.values import computed, exact_limit, given_nominal, stands_at
-from calcdoc.record.wording import band_in_words, typeset
+from calcdoc.records import record as r
+from calcdoc.records.carried import units_carried
+from calcdoc.records.display import choose_unit
+from calcdoc.records.naming import Naming
+from calcdoc.records.rounding import stored
+from calcdoc.records.substitute import substituted
+from calcdoc.records.values import computed, exact_limit, given_nominal, stands_at
+from calcdoc.records.wording import band_in_words, typeset
 from calcdoc.text.given import Given, Style
 from calcdoc.text.names import fold
 from calcdoc.text.statements import GivenStatement

@@ -6,14 +6,14 @@ from calcdoc.analysis.evaluation import Evaluation
 from calcdoc.frozen import Frozen
 from calcdoc.problems import Finding
 from calcdoc.problems.views import as_data, in_order
-from calcdoc.record import body as prose_body
-from calcdoc.record import record as r
-from calcdoc.record.cautions import cautions, hazards
-from calcdoc.record.criteria import criteria
-from calcdoc.record.naming import name_lines
-from calcdoc.record.quantities import Numbers, quantities
-from calcdoc.record.registers import assumptions, references, tally, unsourced
-from calcdoc.record.wording import counted, typeset
+from calcdoc.records import body as prose_body
+from calcdoc.records import record as r
+from calcdoc.records.cautions import cautions, hazards
+from calcdoc.records.criteria import criteria
+from calcdoc.records.naming import name_lines
+from calcdoc.records.quantities import Numbers, quantities
+from calcdoc.records.registers import assumptions, references, tally, unsourced
+from calcdoc.records.wording import counted, typeset
 from calcdoc.text import prose
 from calcdoc.text.names import fold
 from calcdoc.text.titleblock import TitleBlock

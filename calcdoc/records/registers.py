@@ -4,9 +4,9 @@ import re
 from collections.abc import Iterator
 
 from calcdoc.model.model import Model, Variable
-from calcdoc.record import record as r
-from calcdoc.record.naming import Naming, rests_on
-from calcdoc.record.wording import counted
+from calcdoc.records import record as r
+from calcdoc.records.naming import Naming, rests_on
+from calcdoc.records.wording import counted
 from calcdoc.text.statements import (
     Basis,
     Definition,

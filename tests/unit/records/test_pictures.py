@@ -3,8 +3,8 @@
 import pytest
 
 from calcdoc.page.mathml import linear
-from calcdoc.record.pictures import grouped, picture, symbol
-from calcdoc.record.shapes import Cases, Fence, Fraction, Glyphs, Root, Row, Script, Symbol
+from calcdoc.records.pictures import grouped, picture, symbol
+from calcdoc.records.shapes import Cases, Fence, Fraction, Glyphs, Root, Row, Script, Symbol
 from calcdoc.source import Span
 from calcdoc.text.formula import parse_text
 from calcdoc.text.nodes import Binary, Group, Name, Negate, Node, Number

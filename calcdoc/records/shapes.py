@@ -1,8 +1,9 @@
 """The picture tree: how a formula looks, without saying in what it is drawn."""
 
 from collections.abc import Iterable
-from dataclasses import dataclass
 from typing import Final, Literal
+
+from calcdoc.frozen import Frozen
 
 Kind = Literal[
     "italic", "upright", "number", "operator", "sign", "relation", "unit", "function", "space"
@@ -14,38 +15,33 @@ NARROW: Final = "\u202f"
 MINUS: Final = "\u2212"
 
 
-@dataclass(frozen=True, slots=True)
-class Glyphs:
+class Glyphs(Frozen, frozen=True):
     """A run of characters of one kind; the kind decides the face and the space around it."""
 
     text: str
     kind: Kind
 
 
-@dataclass(frozen=True, slots=True)
-class Row:
+class Row(Frozen, frozen=True):
     """Pictures side by side on one baseline."""
 
     parts: tuple["Picture", ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Fraction:
+class Fraction(Frozen, frozen=True):
     """One picture over another, with a bar."""
 
     over: "Picture"
     under: "Picture"
 
 
-@dataclass(frozen=True, slots=True)
-class Root:
+class Root(Frozen, frozen=True):
     """A square root."""
 
     inner: "Picture"
 
 
-@dataclass(frozen=True, slots=True)
-class Script:
+class Script(Frozen, frozen=True):
     """A base with a subscript, a superscript, or both."""
 
     base: "Picture"
@@ -53,8 +49,7 @@ class Script:
     sup: "Picture | None" = None
 
 
-@dataclass(frozen=True, slots=True)
-class Fence:
+class Fence(Frozen, frozen=True):
     """Brackets that are as tall as what they hold."""
 
     opening: str
@@ -62,15 +57,13 @@ class Fence:
     inner: "Picture"
 
 
-@dataclass(frozen=True, slots=True)
-class Cases:
+class Cases(Frozen, frozen=True):
     """A brace with one row for each case: a value and the condition for it."""
 
     rows: tuple["Row", ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Symbol:
+class Symbol(Frozen, frozen=True):
     """The picture of a symbol, with the name by which a view can link it."""
 
     name: str

@@ -4,8 +4,8 @@ from collections.abc import Callable
 from fractions import Fraction
 
 from calcdoc.model.typing import constant_value
-from calcdoc.record.rounding import trimmed
-from calcdoc.record.wording import NO_BREAK, typeset
+from calcdoc.records.rounding import trimmed
+from calcdoc.records.wording import NO_BREAK, typeset
 from calcdoc.text import literal
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Binary, Call, Group, Name, Negate, Node, Quantity
