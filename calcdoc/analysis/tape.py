@@ -75,7 +75,7 @@ class TapeBuilder:
         index = {instruction: at for at, instruction in enumerate(tape.instructions)}
         return cls(tape.n_inputs, list(tape.instructions), index)
 
-    def add(self, op: Op, *args: int, value: Fraction | float | int | None = None) -> int:
+    def add(self, op: Op, *args: int, value: Fraction | float | None = None) -> int:
         """Index of the instruction, new or already there."""
         if op is Op.MUL and args[0] == args[1]:
             op, args, value = Op.POWER, args[:1], Fraction(2)

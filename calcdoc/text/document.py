@@ -326,7 +326,7 @@ class _Reader:
         text = "\n".join(fence.lines)
         found = _SIGNAL.match(text)
         rest = text[found.end() :] if found else text
-        rest = rest[:1].upper() + rest[1:]
+        rest = _capital(rest)
         if not rest.strip():
             self.findings.append(
                 error(
@@ -362,6 +362,11 @@ class _Reader:
                     )
                 )
             start += len(line) + 1
+
+
+def _capital(text: str) -> str:
+    """The text with a capital where it begins with a plain letter; µ and ß have none."""
+    return text[:1].upper() + text[1:] if "a" <= text[:1] <= "z" else text
 
 
 def _one_edit(word: str, other: str) -> bool:
