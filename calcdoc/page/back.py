@@ -6,7 +6,15 @@ from html import escape
 from typing import Final
 
 from calcdoc.page import typeset
-from calcdoc.page.lines import GIVEN, assumed, given_value, gives_limits, subject
+from calcdoc.page.lines import (
+    GIVEN,
+    assumed,
+    both_limits,
+    given_value,
+    gives_limits,
+    remark,
+    subject,
+)
 from calcdoc.page.markup import Column, table, verdict
 from calcdoc.page.view import View, reference_anchor
 from calcdoc.records.record import Criterion, Quantity
@@ -22,23 +30,33 @@ class Part:
 
 
 def clauses(view: View) -> str:
-    """Each clause a criterion answers to."""
+    """Each clause a criterion answers to.
+
+    The author's list of references puts standards and specifications first, so its order is the
+    order of the rows; criteria that cite the same document keep the author's order.
+    """
     columns = (
-        Column("clause", 22),
-        Column("requirement", 34),
-        Column("result and remark", 32),
-        Column("verdict", 12),
+        Column("clause", 19),
+        Column("requirement", 35),
+        Column("result and remark", 33),
+        Column("verdict", 13),
     )
+    order = {each.key: at for at, each in enumerate(view.record.references)}
+    cited = [
+        (clause, each) for each in view.record.criteria for clause in view.citations(each.basis)
+    ]
+    cited.sort(key=lambda pair: order[pair[0].partition(",")[0].strip()])
     rows = [
-        (escape(cited), _requirement(view, each), _result(view, each), _verdict(each))
-        for each in view.record.criteria
-        for cited in view.citations(each.basis)
+        (view.words(clause), _requirement(view, each), _result(view, each), _verdict(each))
+        for clause, each in cited
     ]
     return table("clauses", "Clauses and their verdicts", columns, rows) if rows else ""
 
 
 def _requirement(view: View, criterion: Criterion) -> str:
-    return f"{view.place(criterion.id)}: {subject(criterion) or view.math(criterion.text, room=17)}"
+    what = subject(criterion)
+    shown = view.words(what) if what else view.math(criterion.text, room=17)
+    return f"{view.place(criterion.id)}: {shown}"
 
 
 def _result(view: View, criterion: Criterion) -> str:
@@ -50,7 +68,7 @@ def _result(view: View, criterion: Criterion) -> str:
         parts.append(typeset.quantity(criterion.value_text) + against)
     case = criterion.case if criterion.case not in ("", "normal") else ""
     parts += [escape(f"case {case}") if case else "", view.sentence(criterion.remark)]
-    parts.append(view.sentence(criterion.reason))
+    parts.append(view.sentence(remark(criterion)))
     return "; ".join(filter(None, parts))
 
 
@@ -61,12 +79,12 @@ def _verdict(criterion: Criterion) -> str:
 def inputs(view: View) -> str:
     """Register of what was given."""
     columns = (
-        Column("line", 6),
-        Column("symbol", 9),
-        Column("value", 20),
-        Column("limits", 21),
+        Column("line", 5.5),
+        Column("symbol", 8.5),
+        Column("value", 18),
+        Column("limits", 22),
         Column("meaning", 27),
-        Column("basis", 17),
+        Column("basis", 19),
     )
     given = [each for each in view.record.quantities if each.kind in GIVEN]
     rows = [_given_row(view, each) for each in given]
@@ -74,35 +92,35 @@ def inputs(view: View) -> str:
 
 
 def _given_row(view: View, quantity: Quantity) -> tuple[str, ...]:
-    limits = ""
-    if quantity.varies:
-        least = typeset.quantity(quantity.least_text)
-        limits = f"{least} to {typeset.quantity(quantity.greatest_text)}"
+    basis = view.basis(quantity.basis)
+    if quantity.state:
+        basis = ": ".join(filter(None, (escape(quantity.state), basis)))
+    nominal = f'<span class="nb">{typeset.quantity(quantity.result)}</span>'
     return (
         view.place(quantity.symbol),
         view.symbol(quantity.symbol),
-        typeset.quantity(quantity.result) if gives_limits(quantity) else given_value(quantity),
-        limits,
-        escape(quantity.description),
-        view.basis(quantity.basis) or "no source given",
+        nominal if gives_limits(quantity) else given_value(quantity),
+        both_limits(quantity) if quantity.varies else "",
+        view.opening(quantity.description),
+        basis or "no source given",
     )
 
 
 def assumptions(view: View) -> str:
     """Register of assumptions with what rests on each."""
     columns = (
-        Column("id", 7),
-        Column("assumption", 28),
-        Column("why it is reasonable", 25),
-        Column("state", 20),
-        Column("rests on it", 20),
+        Column("id", 5.5),
+        Column("assumption", 23),
+        Column("why it is reasonable", 27),
+        Column("state", 22),
+        Column("rests on it", 22.5),
     )
     rows = [
         (
             view.place(each.id),
             assumed(view, each),
-            escape(each.reason),
-            escape(": ".join(filter(None, (each.state, each.note)))),
+            view.opening(each.reason),
+            view.words(": ".join(filter(None, (each.state, each.note)))),
             view.places(each.rests_on_it),
         )
         for each in view.record.assumptions
@@ -113,17 +131,17 @@ def assumptions(view: View) -> str:
 def symbols(view: View) -> str:
     """Every symbol, its meaning, its line, and where it is used."""
     columns = (
-        Column("symbol", 13),
-        Column("meaning", 39),
-        Column("unit", 8),
-        Column("line", 10),
-        Column("used in", 30),
+        Column("symbol", 9),
+        Column("meaning", 50),
+        Column("unit", 7),
+        Column("line", 7),
+        Column("used in", 27),
     )
     ordered = sorted(view.record.quantities, key=lambda each: (each.symbol.lower(), each.symbol))
     rows = [
         (
             view.symbol(each.symbol),
-            escape(each.description),
+            view.opening(each.description),
             typeset.units(each.unit) if each.unit else "1",
             view.place(each.symbol),
             view.places(each.used_by),
@@ -161,18 +179,18 @@ def crosschecks(view: View) -> str:
 def references(view: View) -> str:
     """Documents cited."""
     columns = (
-        Column("key", 15),
-        Column("title", 35),
-        Column("edition", 18),
-        Column("held", 14),
+        Column("key", 12),
+        Column("title", 32),
+        Column("edition", 26),
+        Column("held", 12),
         Column("cited in", 18),
     )
     rows = [
         (
             f'<span id="{reference_anchor(each.key)}">{escape(each.key)}</span>',
-            escape(each.title),
-            escape(each.edition),
-            escape(each.held),
+            view.words(each.title),
+            view.words(each.edition),
+            view.words(each.held),
             view.places(each.cited_by),
         )
         for each in view.record.references
@@ -197,8 +215,8 @@ def problems(view: View) -> str:
     rows = [f"<li>{view.sentence(each)}</li>" for each in view.record.notices]
     for each in view.record.problems:
         place = f"line {each.line}: " if each.line else ""
-        hint = f" ({escape(each.help)})" if each.help else ""
-        rows.append(f"<li>{place}{escape(each.message)} [{escape(each.code)}]{hint}</li>")
+        hint = f" ({view.sentence(each.help)})" if each.help else ""
+        rows.append(f"<li>{place}{view.sentence(each.message)} [{escape(each.code)}]{hint}</li>")
     return f"<ul>{''.join(rows)}</ul>\n" if rows else ""
 
 
@@ -220,7 +238,7 @@ def history(view: View) -> str:
     """Revisions with their reasons."""
     columns = (Column("revision", 12), Column("date", 16), Column("reason", 72))
     rows = [
-        (escape(each.revision), escape(each.date), escape(each.reason))
+        (escape(each.revision), escape(each.date), view.words(each.reason))
         for each in view.record.document.history
     ]
     return table("history", "Revisions", columns, rows) if rows else ""

@@ -1,26 +1,33 @@
 """The cover: title block, purpose, verdicts, what is open, cautions, signatures."""
 
 from html import escape
+from itertools import accumulate
 from typing import Final
 
 from calcdoc.page import typeset
-from calcdoc.page.lines import assumed, subject
+from calcdoc.page.lines import assumed, remark, subject
 from calcdoc.page.markup import Column, margin_bar, table, verdict
+from calcdoc.page.measure import SCRIPT, text_width
 from calcdoc.page.prose import caution
 from calcdoc.page.view import View
-from calcdoc.records.record import Criterion
+from calcdoc.records.record import Assumption, Criterion
+from calcdoc.records.wording import counted
 
 VERDICTS: Final = (
-    Column("id", 4.5),
-    Column("criterion", 22.5),
-    Column("value", 10, "num"),
+    Column("id", 3.5),
+    Column("criterion", 28.5),
+    Column("value", 10.5, "num"),
     Column("limit", 9.5, "num"),
-    Column("margin", 7.5, "num"),
-    Column("", 8.5),
-    Column("verdict", 9),
-    Column("governed by", 28.5, "gov"),
+    Column("margin", 6.5, "num"),
+    Column("", 6.5),
+    Column("verdict", 8.5),
+    Column("governed by", 26.5, "gov"),
 )
-KIND: Final = "calculation record"
+KIND: Final = "Calculation record"
+LONG: Final = 24
+"""Characters of a field of the title block that ask for the width of two."""
+COMBINATION: Final = 34.0
+"""Width of what the last column holds in two lines, in em of its type."""
 ROLES: Final = ("prepared", "checked", "approved")
 SIGNALS: Final = ("danger", "warning", "caution", "notice")
 NOT_COMPUTED: Final = ("by test", "by inspection")
@@ -34,29 +41,33 @@ def cover(view: View) -> str:
 
 def _title(view: View) -> str:
     document = view.record.document
-    kind = document.subtitle or KIND.capitalize()
-    if KIND not in kind.lower():
-        kind += f": {KIND}"
     revision = ", ".join(filter(None, (document.revision, document.date)))
     fields = [
-        ("number", escape(document.number)),
-        ("revision", escape(revision)),
-        ("status", escape(document.status)),
-        ("replaces", escape(document.replaces) or "nothing"),
+        ("number", document.number),
+        ("revision", revision),
+        ("status", document.status),
+        ("replaces", document.replaces or "nothing"),
     ]
     optional = (("product", document.product), ("owner", document.owner))
-    fields += [(name, escape(value)) for name, value in optional if value]
+    fields += [(name, value) for name, value in optional if value]
+    block = "".join(_field(name, typeset.author(value), len(value)) for name, value in fields)
     if view.paper:
-        fields.append(("sheets", '1 of <span class="sheets"></span>'))
-    block = "".join(f"<div><dt>{name}</dt><dd>{value}</dd></div>" for name, value in fields)
+        block += _field("sheets", '1 of <span class="sheets"></span>', 0)
     return (
-        f'<h1>{escape(document.title)}</h1>\n<p class="sub">{escape(kind)}</p>\n'
+        f"<h1>{typeset.author(document.title)}</h1>\n"
+        f'<p class="sub">{typeset.author(document.subtitle or KIND)}</p>\n'
         f'<dl class="tb">{block}</dl>\n'
     )
 
 
+def _field(name: str, value: str, length: int) -> str:
+    wide = ' class="two"' if length > LONG else ""
+    return f"<div{wide}><dt>{name}</dt><dd>{value}</dd></div>"
+
+
 def _purpose(view: View) -> str:
-    return f'<p class="purpose">{escape(view.record.purpose)}</p>\n' if view.record.purpose else ""
+    purpose = view.record.purpose
+    return f'<p class="purpose">{view.words(purpose)}</p>\n' if purpose else ""
 
 
 def _verdicts(view: View) -> str:
@@ -69,19 +80,44 @@ def _verdicts(view: View) -> str:
 
 
 def _verdict_row(view: View, criterion: Criterion) -> tuple[str, ...]:
-    what = subject(criterion) or view.math(criterion.text, room=14)
+    what = subject(criterion)
     case = "" if criterion.case in ("", "normal") else f"case {escape(criterion.case)}"
-    by = "; ".join(filter(None, (case, view.setting(criterion.governing))))
+    by = "; ".join(filter(None, (case, _governing(view, criterion))))
     return (
         view.place(criterion.id),
-        what,
+        view.opening(what) if what else view.math(criterion.text, room=14),
         typeset.quantity(criterion.value_text),
         typeset.quantity(criterion.limit_text),
         typeset.quantity(criterion.margin_text),
-        margin_bar(criterion.margin, criterion.verdict),
+        margin_bar(criterion),
         verdict(criterion.verdict) + ("<br>accepted" if criterion.accepted else ""),
         by or _why(view, criterion),
     )
+
+
+def _governing(view: View, criterion: Criterion) -> str:
+    """The conditions of the governing combination, and what else fits two lines."""
+    stands = criterion.governing
+    given = {name: each.kind for name, each in view.quantities.items()}
+    first = [name for name in stands if given.get(name) == "condition"]
+    order = first + [name for name in stands if name not in first]
+    ends = list(accumulate(_width(name, stands[name]) for name in order))
+    fits = len(order)
+    if ends and ends[-1] > COMBINATION:
+        more = text_width(f"and {len(order)} more, see {criterion.id}")
+        fits = sum(end + more <= COMBINATION for end in ends)
+        fits = min(max(fits, len(first), 1), len(order))
+    shown = view.setting({name: stands[name] for name in order[:fits]})
+    if fits == len(order):
+        return shown
+    rest = f"and {len(order) - fits} more, see {view.place(criterion.id)}"
+    return f'{shown} <span class="nb">{rest}</span>'
+
+
+def _width(name: str, value: str) -> float:
+    """Width of one value of a combination with what parts it from the next, in em."""
+    base, _, below = name.rpartition(".")[2].partition("_")
+    return text_width(base) + SCRIPT * text_width(below) + text_width(f" {value}, ")
 
 
 # --- what is open -----------------------------------------------------------------------------
@@ -98,15 +134,15 @@ def _open(view: View) -> str:
         ("Open assumptions", [_assumption(view, each.id) for each in waiting]),
         ("Open tests", [_test(view, each) for each in tests]),
         ("Accepted failures", [_accepted(view, each) for each in accepted]),
-        ("Values not verified", [escape(name) for name in unverified]),
+        ("Values not verified", [view.words(name) for name in unverified]),
     )
-    rows = "".join(_answer(name, items) for name, items in answers)
+    rows = "".join(_answer(name, items) for name, items in answers if items)
+    none = " ".join(f"{name}: none." for name, items in answers if not items)
+    rows += f"<p><b>{none}</b></p>\n" if none else ""
     return f'<h2 id="open">What is open</h2>\n<div class="open">{rows}</div>\n'
 
 
 def _answer(name: str, items: list[str]) -> str:
-    if not items:
-        return f"<p><b>{name}: none.</b></p>\n"
     count = "yes (" + str(len(items)) + ")" if name == "Open assumptions" else str(len(items))
     if len(items) == 1:
         return f"<p><b>{name}: {count}.</b> {items[0]}</p>\n"
@@ -116,29 +152,39 @@ def _answer(name: str, items: list[str]) -> str:
 
 def _assumption(view: View, name: str) -> str:
     one = view.assumptions[name]
-    rests = view.places(one.rests_on_it)
-    parts = (assumed(view, one), escape(one.reason), escape(one.note))
+    parts = (assumed(view, one), view.words(one.reason), view.words(one.note))
     shown = ": ".join(filter(None, (view.place(name), "; ".join(filter(None, parts)))))
-    return shown + (f". Rests on it: {rests}." if rests else ".")
+    return f"{shown}{_resting(view, one)}."
+
+
+def _resting(view: View, assumption: Assumption) -> str:
+    """The criteria that rest on an assumption; of the lines only how many, they are in the back."""
+    ids = [each for each in assumption.rests_on_it if each in view.criteria]
+    lines = len(assumption.rests_on_it) - len(ids)
+    parts = [view.places(tuple(ids))] if ids else []
+    parts += [counted(lines, "line")] if lines else []
+    register = '<a href="#back-assumptions">see its register</a>'
+    return f". Rests on it: {' and '.join(parts)}, {register}" if parts else ""
 
 
 def _test(view: View, criterion: Criterion) -> str:
-    parts = (subject(criterion), _why(view, criterion))
+    parts = [view.words(subject(criterion)), view.words(remark(criterion))]
+    parts.append(view.basis(criterion.basis))
     said = "; ".join(part for part in parts if part)
     return f"{view.place(criterion.id)} ({escape(criterion.verdict)}): {said}"
 
 
 def _why(view: View, criterion: Criterion) -> str:
-    """Why there is no number, or what is still open; else at which values it was judged."""
-    if criterion.reason:
-        return view.sentence(criterion.reason)
+    """Why there is no number; else at which values it was judged."""
     if criterion.verdict in NOT_COMPUTED:
-        return view.basis(criterion.basis)
+        return view.words(remark(criterion)) or view.basis(criterion.basis)
+    if remark(criterion):
+        return view.sentence(remark(criterion))
     return "nominal values" if criterion.method == "nominal" else ""
 
 
 def _accepted(view: View, criterion: Criterion) -> str:
-    return f"{view.place(criterion.id)}: {escape(criterion.accepted or '')}"
+    return f"{view.place(criterion.id)}: {view.words(criterion.accepted or '')}"
 
 
 # --- cautions and signatures ------------------------------------------------------------------
@@ -150,7 +196,7 @@ def _cautions(view: View) -> str:
     for signal in SIGNALS:
         texts = [each.text for each in view.record.cautions if each.signal == signal]
         if texts:
-            boxes.append(caution(signal, "".join(f"<p>{view.named(text)}</p>" for text in texts)))
+            boxes.append(caution(signal, "".join(f"<p>{view.words(text)}</p>" for text in texts)))
     return f'<h2 id="cautions">Cautions</h2>\n{"".join(boxes)}' if boxes else ""
 
 
@@ -167,6 +213,6 @@ def _signatures(view: View) -> str:
     )
     state = "draft, not for use" if draft else "issued when all three signatures are present"
     return (
-        f'<section class="signing"><h2 id="signatures">Signatures</h2>'
-        f'<p class="state">State: {state}.</p><div class="sig">{boxes}</div></section>\n'
+        f'<section class="signing"><h2 id="signatures">Signatures: {state}</h2>'
+        f'<div class="sig">{boxes}</div></section>\n'
     )

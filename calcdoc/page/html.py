@@ -7,6 +7,7 @@ from typing import Final
 from calcdoc.page.faces import faces, style
 from calcdoc.page.mathml import mathml
 from calcdoc.page.sections import Entry, contents, sections
+from calcdoc.page.typeset import author
 from calcdoc.page.view import View
 from calcdoc.records.record import Record
 
@@ -64,7 +65,7 @@ def _strip(view: View) -> str:
     draft = '<strong class="draft">DRAFT</strong> ' if document.status == "draft" else ""
     return (
         f'<header class="strip"><b>{escape(document.number)} · revision '
-        f"{escape(document.revision)}</b> {draft}<span>{escape(document.title)}</span></header>\n"
+        f"{escape(document.revision)}</b> {draft}<span>{author(document.title)}</span></header>\n"
     )
 
 

@@ -1,17 +1,24 @@
 """Working lines: inputs, derived quantities, criteria, and assumptions that are sentences."""
 
+import re
 from html import escape
 
 from calcdoc.page import typeset
 from calcdoc.page.markup import band_bar, margin_bar, verdict
-from calcdoc.page.measure import measure
+from calcdoc.page.measure import measure, text_width
 from calcdoc.page.pieces import ROOM, is_formula, read
 from calcdoc.page.view import View
 from calcdoc.records.pictures import RELATIONS, equation, symbol
 from calcdoc.records.record import Assumption, Criterion, Quantity
 from calcdoc.records.shapes import Glyphs, Picture, Row
+from calcdoc.records.wording import typeset as typeset_text
 
 GIVEN = frozenset({"condition", "input", "assumption"})
+NOT_COMPUTED = frozenset({"by test", "by inspection"})
+BESIDE = 4
+"""So many values of a governing combination stand in the right margin; more, below the verdict."""
+UNITS_SIZE = 0.78
+"""Type size of the units carried, as a share of the formula's."""
 LEAD = 0.35
 """Space before the equals sign, in em."""
 WIDEST_LEFT = 9.0
@@ -26,7 +33,7 @@ def quantity_line(view: View, quantity: Quantity) -> str:
     label = escape(quantity.line)
     return (
         f'<div class="wl" id="q-{escape(quantity.symbol)}"><span class="no">{label}</span>'
-        f"{_side(view, quantity)}{_what(quantity.description)}{_steps(view, quantity)}{work}"
+        f"{_side(view, quantity)}{_what(view, quantity.description)}{_steps(view, quantity)}{work}"
         f"{_residual(view, quantity)}{_band(view, quantity)}{_cases(view, quantity)}"
         f"{_notes(view, quantity.notes)}</div>\n"
     )
@@ -34,38 +41,49 @@ def quantity_line(view: View, quantity: Quantity) -> str:
 
 def criterion_line(view: View, criterion: Criterion) -> str:
     """A criterion: inequality, numbers, bar against the limit, verdict in words."""
-    sentence = not is_formula(criterion.text)
     what = subject(criterion)
-    if criterion.description and criterion.description not in what:
-        what += f": {escape(criterion.description)}"
     clauses = (
-        f'<span class="cl">{view.sentence(criterion.clauses)}</span>' if criterion.clauses else ""
+        f' <span class="cl">{view.clauses(criterion.clauses)}</span>' if criterion.clauses else ""
     )
-    work = "" if sentence else f'<div class="eq">{view.math(criterion.text)} {clauses}</div>'
-    shown = f'<p class="what">{what}</p>' if what else ""
+    work = ""
+    if is_formula(criterion.text):
+        work = f'<div class="eq">{view.math(criterion.text)}{clauses}</div>'
     return (
         f'<div class="wl cr" id="c-{escape(criterion.id)}">'
         f'<span class="no">{escape(criterion.id)}</span>{_criterion_side(view, criterion)}'
-        f"{shown}{work}{_compared(view, criterion)}{_decided(view, criterion)}</div>\n"
+        f"{_what(view, what)}{work}{_compared(view, criterion)}{_decided(view, criterion)}"
+        f"{_governed(view, criterion)}</div>\n"
     )
 
 
 def subject(criterion: Criterion) -> str:
     """What a criterion is about, in words; empty when only its inequality says it."""
     if is_formula(criterion.text):
-        return escape(criterion.description)
-    reason_alone = criterion.verdict == "not applicable" and criterion.text == criterion.reason
-    return escape(criterion.description if reason_alone else "") or escape(criterion.text)
+        return criterion.description
+    if criterion.verdict == "not applicable" and criterion.description:
+        return criterion.description
+    return criterion.text
+
+
+def remark(criterion: Criterion) -> str:
+    """What there is to say besides the subject: a reason, or what a test is for; once."""
+    said = criterion.reason
+    if criterion.verdict in NOT_COMPUTED:
+        said = "; ".join(filter(None, (criterion.description, criterion.reason)))
+    return "" if said == subject(criterion) else said
 
 
 def sentence_line(view: View, assumption: Assumption) -> str:
     """An assumption that is a sentence."""
-    reason = f' <span class="soft">{escape(assumption.reason)}</span>' if assumption.reason else ""
+    reason = (
+        f' <span class="soft">{view.words(assumption.reason)}</span>' if assumption.reason else ""
+    )
     rests = view.places(assumption.rests_on_it)
-    side = [escape(_state(assumption.state, assumption.note)), f"used in {rests}" if rests else ""]
+    state = view.words(_state(assumption.state, assumption.note))
+    side = [state, f"used in {rests}" if rests else ""]
     return (
         f'<div class="in" id="a-{escape(assumption.id)}"><span class="no">{escape(assumption.id)}'
-        f'</span>{_aside(side)}<p class="what">{escape(assumption.text)}{reason}</p></div>\n'
+        f'</span>{_aside(side)}<p class="what">{view.opening(assumption.text)}{reason}</p></div>\n'
     )
 
 
@@ -74,28 +92,32 @@ def sentence_line(view: View, assumption: Assumption) -> str:
 
 def _given(view: View, quantity: Quantity) -> str:
     """One compact line: symbol, value with tolerance, limits, description."""
-    value = given_value(quantity)
     left = view.math(equation_left(quantity.symbol))
     limits = ""
     if quantity.varies and not gives_limits(quantity):
-        limits = f' <span class="soft nb">{_limits(quantity)}</span>'
+        limits = f' <span class="soft">{both_limits(quantity)}</span>'
     notes = _notes(view, quantity.notes)
     label = escape(quantity.id or quantity.line)
     return (
         f'<div class="in" id="q-{escape(quantity.symbol)}"><span class="no">{label}</span>'
-        f'{_side(view, quantity)}<p class="giv">{left} <span class="nb">{value}</span>{limits} '
-        f'<span class="what">{escape(quantity.description)}</span></p>{notes}</div>\n'
+        f'{_side(view, quantity)}<p class="giv">{left} {given_value(quantity)}{limits} '
+        f'<span class="what">{view.words(quantity.description)}</span></p>{notes}</div>\n'
     )
 
 
 def given_value(quantity: Quantity) -> str:
     """The value of a given quantity with its tolerance, which is typeset already."""
-    nominal = typeset.quantity(quantity.result)
+    nominal = f'<span class="nb">{typeset.quantity(quantity.result)}</span>'
     if not quantity.tolerance:
         return nominal
-    if gives_limits(quantity) and typeset.plain_quantity(quantity.result) not in quantity.tolerance:
-        return f"{nominal}, {escape(quantity.tolerance)}"
-    return escape(quantity.tolerance)
+    parts = re.split("(, | to )", quantity.tolerance)
+    shown = "".join(
+        each if at % 2 else f'<span class="nb">{escape(each)}</span>'
+        for at, each in enumerate(parts)
+    )
+    if gives_limits(quantity) and typeset_text(quantity.result) not in quantity.tolerance:
+        return f"{nominal}, {shown}"
+    return shown
 
 
 def gives_limits(quantity: Quantity) -> bool:
@@ -107,8 +129,8 @@ def assumed(view: View, assumption: Assumption) -> str:
     """What is assumed: a sentence, or a quantity with its value."""
     quantity = view.quantities.get(assumption.symbol)
     if quantity is None:
-        return escape(assumption.text)
-    return f'{view.symbol(quantity.symbol)} = <span class="nb">{given_value(quantity)}</span>'
+        return view.words(assumption.text)
+    return f"{view.symbol(quantity.symbol)} = {given_value(quantity)}"
 
 
 def equation_left(name: str) -> Picture:
@@ -116,10 +138,11 @@ def equation_left(name: str) -> Picture:
     return Row((symbol(name), Glyphs("=", "relation")))
 
 
-def _limits(quantity: Quantity) -> str:
+def both_limits(quantity: Quantity) -> str:
+    """Both ends of a band; a line may break between them."""
     least, greatest = (
-        typeset.quantity(quantity.least_text),
-        typeset.quantity(quantity.greatest_text),
+        f'<span class="nb">{typeset.quantity(each)}</span>'
+        for each in (quantity.least_text, quantity.greatest_text)
     )
     return f"{least} to {greatest}"
 
@@ -133,11 +156,14 @@ def _work(view: View, quantity: Quantity) -> str:
     width = measure(left).width + LEAD
     indent = width if width <= WIDEST_LEFT else 1.5
     room = ROOM - indent
-    rows = [quantity.formula, quantity.substitution]
-    if rows[0] == rows[1]:  # nothing to fill in
-        rows.pop()
-    rights = [view.math(_led(row), room=room) for row in rows if row]
+    texts = _worked_out(quantity)
     carried = quantity.units_carried
+    beside = UNITS_SIZE * text_width(carried) + 1.5 if carried else 0.0
+    formulas = [_led(each) for each in texts]
+    one_line = sum(measure(each).width for each in formulas) + beside <= room
+    rights = [view.math(each, room=room) for each in formulas]
+    if one_line and rights:
+        rights = [" ".join(rights)]
     if carried and rights:
         rights[-1] += f' <span class="units">{typeset.units(carried)}</span>'
     if quantity.result and quantity.result != quantity.formula:
@@ -152,6 +178,14 @@ def _work(view: View, quantity: Quantity) -> str:
         f'<div class="eq">{lead if at == 0 else ""}{row}</div>' for at, row in enumerate(rights)
     ]
     return f'<div class="work" style="padding-left:{indent:.2f}em">{"".join(rows)}</div>'
+
+
+def _worked_out(quantity: Quantity) -> tuple[str, ...]:
+    """Formula and substitution, each only when it says something new."""
+    texts = dict.fromkeys(filter(None, (quantity.formula, quantity.substitution)))
+    if quantity.result != quantity.formula:
+        texts.pop(quantity.result, None)
+    return tuple(texts)
 
 
 def _led(text: str) -> Picture:
@@ -172,8 +206,8 @@ def _series(view: View, quantity: Quantity) -> str:
     return f'<span class="ser">{"; ".join(items)}</span>'
 
 
-def _what(text: str) -> str:
-    return f'<p class="what">{escape(text)}</p>' if text else ""
+def _what(view: View, text: str) -> str:
+    return f'<p class="what">{view.opening(text)}</p>' if text else ""
 
 
 def _steps(view: View, quantity: Quantity) -> str:
@@ -223,7 +257,7 @@ def _side(view: View, quantity: Quantity) -> str:
     """Basis, what it rests on, where it is used."""
     basis = view.basis(quantity.basis)
     if quantity.kind == "assumption" and quantity.state and quantity.state not in quantity.basis:
-        basis = f"{escape(quantity.state)}: {basis}"
+        basis = _state(escape(quantity.state), basis)
     if not basis and quantity.kind in GIVEN:
         basis = "no source given"
     rests = view.places(quantity.depends_on)
@@ -234,17 +268,28 @@ def _side(view: View, quantity: Quantity) -> str:
 
 
 def _criterion_side(view: View, criterion: Criterion) -> str:
-    governing = view.setting(criterion.governing)
-    case = "" if criterion.case in ("", "normal") else f"case {escape(criterion.case)}"
-    by = "; ".join(part for part in (case, governing) if part)
-    unverified = ", ".join(escape(each) for each in criterion.unverified)
+    by = _combination(view, criterion) if len(criterion.governing) <= BESIDE else ""
+    unverified = ", ".join(view.words(each) for each in criterion.unverified)
     return _aside(
         [
             view.basis(criterion.basis),
-            f"governed by {by}" if by else "",
+            by,
             f"rests on values not verified: {unverified}" if unverified else "",
         ]
     )
+
+
+def _governed(view: View, criterion: Criterion) -> str:
+    """A long governing combination, below the verdict."""
+    if len(criterion.governing) <= BESIDE:
+        return ""
+    return f'<p class="band">{_combination(view, criterion)}</p>'
+
+
+def _combination(view: View, criterion: Criterion) -> str:
+    case = "" if criterion.case in ("", "normal") else f"case {escape(criterion.case)}"
+    by = "; ".join(filter(None, (case, view.setting(criterion.governing))))
+    return f"governed by {by}" if by else ""
 
 
 def _aside(parts: list[str], between: str = "<br>") -> str:
@@ -280,9 +325,10 @@ def _parts(shown: Picture) -> tuple[Picture, ...]:
 def _decided(view: View, criterion: Criterion) -> str:
     """The bar, the verdict in words, the margin, the remark."""
     words = verdict(criterion.verdict, criterion.accepted)
+    why = view.sentence(remark(criterion))
     margin = f"margin {typeset.quantity(criterion.margin_text)}" if criterion.margin_text else ""
     if criterion.verdict == "fail" and criterion.remark:
         margin = ""
-    details = [margin, view.sentence(criterion.remark), view.sentence(criterion.reason)]
-    text = ", ".join([words, *(each for each in details if each)])
-    return f'<p class="band">{margin_bar(criterion.margin, criterion.verdict)} {text}</p>'
+    first = f"{words}: {why}" if why else words
+    text = ", ".join(filter(None, (first, margin, view.sentence(criterion.remark))))
+    return f'<p class="band">{margin_bar(criterion)} {text}</p>'

@@ -3,6 +3,16 @@
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from html import escape
+from typing import Final
+
+from calcdoc.records.record import Criterion
+
+BAR: Final = 96.0
+"""Where the limit stands on a bar, in per cent of its length."""
+SHORTEST: Final = 30.0
+"""Where it stands at the least when the bar runs over it."""
+EQUAL: Final = 1e-9
+"""Share by which a value may pass its limit and still count as equal to it."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,23 +65,35 @@ def band_bar(least: float, nominal: float, greatest: float) -> str:
     return f'<span class="bb" aria-hidden="true"><span style="left:{at:.1f}%"></span></span>'
 
 
-def margin_bar(margin: float | None, verdict: str) -> str:
+def margin_bar(criterion: Criterion) -> str:
     """A bar against the limit, which is the upright tick; decoration beside the margin.
 
-    The bar ends short of the limit by the margin; past it, when the criterion fails, the whole
-    length is what is there and the tick stands where it should have ended.
+    What is filled is the share of the limit that is used up: value/limit below an upper limit,
+    limit/value above a lower one. A bar that runs over the tick fails.
     """
-    if margin is None:
+    used = _used(criterion)
+    if used is None:
         return ""
-    if margin >= 0:
-        filled, limit = 96 * max(0.0, 1 - margin), 96.0
-    else:
-        filled, limit = 100.0, max(30.0, 100 / (1 - margin))
-    kind = " bad" if verdict == "fail" else ""
+    filled, limit = BAR * used, BAR
+    if used > 1 + EQUAL:
+        filled, limit = 100.0, max(SHORTEST, 100 / used)
+    kind = " bad" if criterion.verdict == "fail" else ""
     return (
         f'<span class="mb{kind}" aria-hidden="true"><span class="fill" style="width:{filled:.1f}%">'
         f'</span><span class="tick" style="left:{limit:.1f}%"></span></span>'
     )
+
+
+def _used(criterion: Criterion) -> float | None:
+    """The share of the limit that is used up; None where there is none (zero, temperatures)."""
+    value, limit, upper = criterion.value, criterion.limit, criterion.relation.startswith("<")
+    if value is None or not limit or criterion.margin is None or criterion.unit == "°C":
+        return None
+    if limit < 0:  # -5 V against a least of -6 V is 5 V against a greatest of 6 V
+        value, limit, upper = -value, -limit, not upper
+    if upper:
+        return max(0.0, value / limit)
+    return limit / value if value > 0 else float("inf")
 
 
 def verdict(words: str, accepted: str | None = None) -> str:

@@ -20,6 +20,7 @@ from calcdoc.records.shapes import (
     Row,
     Script,
     Symbol,
+    linear,
 )
 
 PLAIN_SPACES: Final = str.maketrans({"\u2009": " ", "\u00a0": " ", "\u202f": " "})
@@ -34,29 +35,6 @@ def mathml(piece: Piece, links: Links) -> str:
     alternative = escape(linear(shown).translate(PLAIN_SPACES).strip())
     inner = "".join(_draw(part, links) for part in _parts(shown))
     return f'<math{kind}{style} alttext="{alternative}">{inner}</math>'
-
-
-def linear(shown: Picture) -> str:
-    """The picture on one line, as plain text: for readers that do not draw."""
-    match shown:
-        case Glyphs(text, kind):
-            return f" {text} " if kind in ("operator", "relation") else text
-        case Row(parts):
-            return "".join(linear(part) for part in parts)
-        case Symbol(_, shape):
-            return linear(shape)
-        case Fraction(over, under):
-            return f"({linear(over)})/({linear(under)})"
-        case Root(inner):
-            return f"√({linear(inner)})"
-        case Fence(opening, closing, inner):
-            return f"{opening}{linear(inner)}{closing}"
-        case Cases(rows):
-            return "{" + "; ".join(linear(row) for row in rows) + "}"
-        case Script(base, sub, sup):
-            below = f"_{linear(sub)}" if sub is not None else ""
-            above = f"^{linear(sup)}" if sup is not None else ""
-            return linear(base) + below + above
 
 
 def _draw(shown: Picture, links: Links, link: str = "") -> str:

@@ -1,9 +1,8 @@
 """The record as sheets of a PDF/A-3 file: the one module that knows WeasyPrint."""
 
-import io
 import os
 from base64 import b64encode
-from collections.abc import Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping
 from contextlib import contextmanager
 from datetime import UTC, datetime
 from hashlib import sha256
@@ -18,8 +17,10 @@ from calcdoc.page.sections import sections
 from calcdoc.page.typeset import digest
 from calcdoc.page.view import View
 from calcdoc.records.record import Record
+from calcdoc.records.wording import sentence
 
-PAPERS: Final = {"a4": "A4", "letter": "letter"}
+PAPERS: Final = {"a4": "A4", "letter": "letter;margin:15mm 17mm 13mm"}
+"""Paper by its name in the title block; letter is wider and lower."""
 STRIP: Final = 64
 """Characters of the title in the strip of a sheet."""
 EPOCH: Final = "SOURCE_DATE_EPOCH"
@@ -29,9 +30,6 @@ KINDS: Final = (
     "data:image/svg+xml",
     "data:font/",
 )
-ACCESSIBLE: Final = b"""<rdf:RDF xmlns:rdf="http://www.w3.org/1999/02/22-rdf-syntax-ns#">\
-<rdf:Description rdf:about="" xmlns:pdfuaid="http://www.aiim.org/pdfua/ns/id/">\
-<pdfuaid:part>1</pdfuaid:part></rdf:Description></rdf:RDF>"""
 
 
 def pdf(
@@ -59,7 +57,8 @@ def pdf(
         CalcdocError: If the page asked for something that is not embedded in it.
     """
     engine = _engine()
-    page = sheet_html(record, data, issued)
+    view = _view(record, data)
+    page = _sheets(view, issued)
     fetcher = _fetcher(engine)
 
     def attached(content: bytes, name: str, relationship: str) -> Any:  # noqa: ANN401
@@ -80,8 +79,7 @@ def pdf(
         written: bytes = engine.HTML(string=page, url_fetcher=fetcher).write_pdf(
             pdf_variant="pdf/a-3a",
             attachments=attachments,
-            xmp_metadata=[io.BytesIO(ACCESSIBLE)],
-            finisher=_each_file_once,
+            finisher=_finisher(view),
         )
     if fetcher.refused:
         raise CalcdocError(f"the page asked for {fetcher.refused[0][:60]}, which is not in it")
@@ -90,7 +88,15 @@ def pdf(
 
 def sheet_html(record: Record, data: bytes, issued: datetime) -> str:
     """What is handed to the layout engine: one HTML document without MathML."""
-    view = View(record=record, draw=boxes, paper=True, record_digest=sha256(data).hexdigest())
+    return _sheets(_view(record, data), issued)
+
+
+def _view(record: Record, data: bytes) -> View:
+    return View(record=record, draw=boxes, paper=True, record_digest=sha256(data).hexdigest())
+
+
+def _sheets(view: View, issued: datetime) -> str:
+    record = view.record
     main = "".join(
         f'<section class="{part.name}" id="{part.name}">{part.html}</section>\n'
         for part in sections(view)
@@ -112,6 +118,7 @@ def _sheet_rules(view: View) -> str:
     """Paper, title strip and foot of every sheet, which hold words of the record."""
     document = view.record.document
     date = document.date or "no date"
+    middle = _short(sentence(document.title, groups=False))
     strip = f"{document.number} · revision {document.revision}"
     across = ""
     if document.status == "draft":
@@ -124,7 +131,7 @@ def _sheet_rules(view: View) -> str:
     text, own = digest(view.record.source.sha256), digest(view.record_digest)
     return (
         f"@page{{size:{PAPERS.get(document.paper.lower(), 'A4')};{across}"
-        f"@top-left{{content:{_quoted(strip)}}}@top-center{{content:{_quoted(_short(document.title))}}}"
+        f"@top-left{{content:{_quoted(strip)}}}@top-center{{content:{_quoted(middle)}}}"
         f"@bottom-left{{content:{_quoted(left)}}}"
         f"@bottom-right{{content:{_quoted(f'text {text} · record {own}')}}}}}\n"
     )
@@ -168,11 +175,19 @@ def _fetcher(engine: Any) -> Any:  # noqa: ANN401
     return EmbeddedOnly()
 
 
-def _each_file_once(_document: Any, written: Any) -> None:  # noqa: ANN401
-    """The engine lists each attachment twice among the associated files of PDF/A-3."""
-    listed = written.catalog.get("AF")
-    if listed:
-        listed[:] = list(dict.fromkeys(listed))
+def _finisher(view: View) -> Callable[[Any, Any], None]:
+    """What is put right in the file when it is laid out."""
+
+    def finish(_document: Any, written: Any) -> None:  # noqa: ANN401
+        listed = written.catalog.get("AF")
+        if listed:  # the engine lists each attachment twice
+            listed[:] = list(dict.fromkeys(listed))
+        for each in written.objects:
+            if isinstance(each, dict) and each.get("Subtype") == "/Link" and "Dest" in each:
+                target = each["Dest"].string
+                each["Contents"] = type(each["Dest"])(view.destinations.get(target, target))
+
+    return finish
 
 
 @contextmanager

@@ -61,7 +61,7 @@ def inlines(view: View, items: Iterable[r.Inline]) -> str:
 def _inline(view: View, item: r.Inline) -> str:
     match item:
         case r.Words(text):
-            return escape(text, quote=False)
+            return typeset.author(text)
         case r.Emphasis(strong, inner):
             name = "strong" if strong else "em"
             return f"<{name}>{inlines(view, inner)}</{name}>"

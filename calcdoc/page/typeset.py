@@ -1,7 +1,8 @@
-"""Numbers and units in running text: the one place that typesets them outside formulas.
+"""Numbers, units and sentences as HTML, outside formulas.
 
-The record holds them in the language of the design text (``-3.2 V``, ``1.8e-3 ohm``); they are
-read and drawn like formulas, so that a number looks the same wherever it stands.
+The record holds numbers in the language of the design text (``-3.2 V``, ``1.8e-3 ohm``); they are
+read and drawn like formulas, so that a number looks the same wherever it stands. What can be said
+in plain characters is said by ``calcdoc.records.wording``.
 """
 
 import re
@@ -10,23 +11,19 @@ from html import escape
 from typing import Final
 
 from calcdoc.page.boxes import inline
-from calcdoc.page.mathml import linear
 from calcdoc.page.pieces import read
-from calcdoc.records.pictures import grouped, unit
+from calcdoc.records import wording
+from calcdoc.records.pictures import unit
 from calcdoc.records.rounding import significant
-from calcdoc.records.shapes import MINUS, NO_BREAK
+from calcdoc.records.shapes import MINUS
 from calcdoc.text.formula import parse_text
 from calcdoc.text.nodes import Quantity
 
-NUMBER: Final = re.compile(
-    r"(?<![\w.\u2212-])([-\u2212]?[0-9]+(?:\.[0-9]+)?)(?:e(-?[0-9]+))?(?![\w-]|\.[0-9])"
-    r"( (?=[A-Za-zµΩ°%]))?"
-)
 JOINTS: Final = frozenset("/·")
 """Where a line could break inside a unit."""
 BETWEEN_UNITS: Final = re.compile(r"( [-+\u2212=] )")
-RAISED: Final = str.maketrans("0123456789-\u2212", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻⁻")
-WORD: Final = re.compile(r"[^\s,;:()]+")
+JOINED: Final = re.compile(r"[\u2212(]*[0-9][^ \n,;:]*\u00a0[^ \n,;:]*[/·][^ \n,;:]*")
+"""A typeset quantity in which a line could break."""
 
 
 @lru_cache(maxsize=8192)
@@ -36,10 +33,22 @@ def quantity(text: str) -> str:
     return f'<span class="nb">{shown}</span>' if JOINTS.intersection(text) else shown
 
 
-@lru_cache(maxsize=8192)
-def plain_quantity(text: str) -> str:
-    """The same without markup, for attributes: exponents are raised characters."""
-    return re.sub(r"\^([\d\u2212-]+)", lambda m: m[1].translate(RAISED), linear(read(text)))
+def sentence(text: str) -> str:
+    """A sentence of the record: numbers and their units held together."""
+    return unbroken(wording.sentence(text))
+
+
+@lru_cache(maxsize=4096)
+def author(text: str) -> str:
+    """The author's words: numbers and their units held together, other digits left alone."""
+    return unbroken(wording.sentence(text, groups=False))
+
+
+def unbroken(text: str) -> str:
+    """Typeset text as HTML: no line may break at the solidus of a unit."""
+    return JOINED.sub(
+        lambda found: f'<span class="nb">{found[0]}</span>', escape(text, quote=False)
+    )
 
 
 @lru_cache(maxsize=4096)
@@ -69,31 +78,3 @@ def in_unit(value: float | None, unit_text: str, digits: int) -> str:
 def digest(sha256: str, groups: int = 2) -> str:
     """The start of a digest in groups of four, as on the foot of a sheet."""
     return " ".join(sha256[at : at + 4] for at in range(0, 4 * groups, 4))
-
-
-def signs(text: str) -> str:
-    r"""A sentence with numbers in it: a true minus, numbers and their units held together.
-
-    >>> signs("short by 7.2 V (-180 % of the limit)")
-    'short by 7.2\xa0V (\u2212180\xa0% of the limit)'
-    """
-    return NUMBER.sub(_held, text)
-
-
-def _held(found: re.Match[str]) -> str:
-    mantissa, power, space = found.groups()
-    shown = grouped(mantissa.replace(MINUS, "-"))
-    if power:
-        shown += f"{NO_BREAK}×{NO_BREAK}10{power.translate(RAISED)}"
-    if not space:
-        return shown
-    word = WORD.match(found.string, found.end())
-    return shown + (NO_BREAK if word and _is_unit(word[0].rstrip(".")) else " ")
-
-
-@lru_cache(maxsize=1024)
-def _is_unit(word: str) -> bool:
-    try:
-        return isinstance(parse_text(f"1 {word}"), Quantity)
-    except ValueError:
-        return False

@@ -7,6 +7,7 @@ from html import escape
 
 from calcdoc.page import boxes, typeset
 from calcdoc.page.pieces import ROOM, Draw, no_links, pieces, read
+from calcdoc.records import wording
 from calcdoc.records.pictures import symbol
 from calcdoc.records.record import Assumption, Criterion, Quantity, Record
 from calcdoc.records.shapes import Picture
@@ -14,6 +15,13 @@ from calcdoc.text.names import fold
 
 NAME = re.compile(r"[^\W\d_][^\W_]*(?:\.[^\W\d_][^\W_]*)?(?:_\w+)|[\u0370-\u03ff][^\W_]*")
 """What can only be a symbol in a sentence: with a subscript, or beginning with a Greek letter."""
+WORD = re.compile(r"(?<![^ (])[^\W\d_]\w*(?:\.[^\W\d_]\w*)?")
+"""What may be a symbol in the language: not behind a number and its no-break space."""
+TAG = re.compile(r"(<[^>]*>)")
+FIRST = re.compile(r"[a-z]+(?=[ ,;:.]|$)|[a-z]{2,}(?=-)")
+"""A first word that may get a capital, unless it is a symbol or a unit."""
+SMALL = frozenset({"rms"})
+"""Abbreviations that are written small wherever they stand."""
 FINE = 13.0
 """On a screen formulas are cut into pieces of this width, in em, to fit the narrowest."""
 KEY = re.compile(r"\[([^\[\]]+)\]")
@@ -63,6 +71,20 @@ class View:
             for each in self.record.quantities
         }
 
+    @cached_property
+    def destinations(self) -> dict[str, str]:
+        """What a link leads to, in words, by its anchor."""
+        known = {"back-assumptions": "register of assumptions"}
+        for each in self.record.references:
+            known[reference_anchor(each.key)] = f"reference {each.key}: {each.title}"
+        for one in self.record.assumptions:
+            known[f"a-{one.id}"] = f"assumption {one.id}: {one.text}"
+        for criterion in self.record.criteria:
+            known[f"c-{criterion.id}"] = f"criterion {criterion.id}: {criterion.description}"
+        for quantity in self.record.quantities:
+            known[f"q-{quantity.symbol}"] = f"line {quantity.line}: {quantity.description}"
+        return {anchor: words.rstrip(": ") for anchor, words in known.items()}
+
     def links(self, name: str) -> str:
         """Attributes of the link to the line that defines a symbol; empty where there is none."""
         return self._links.get(fold(name), "")
@@ -83,11 +105,30 @@ class View:
 
     def sentence(self, text: str) -> str:
         """A sentence of the record: its numbers typeset, its symbols set as symbols."""
-        return self.named(typeset.signs(text))
+        return NAME.sub(self._named, typeset.sentence(text))
 
     def named(self, text: str) -> str:
         """A sentence whose numbers are typeset already, its symbols set as symbols."""
-        return NAME.sub(self._named, escape(text, quote=False))
+        return NAME.sub(self._named, typeset.unbroken(text))
+
+    def clauses(self, text: str) -> str:
+        """Clauses in the language of the design text, their symbols set as symbols."""
+        parts = TAG.split(typeset.unbroken(wording.clauses(text)))
+        return "".join(
+            part if at % 2 else WORD.sub(self._named, part) for at, part in enumerate(parts)
+        )
+
+    def words(self, text: str) -> str:
+        """The author's words in running text."""
+        return NAME.sub(self._named, typeset.author(text))
+
+    def opening(self, text: str) -> str:
+        """The author's words where they stand as a line of their own: with a capital."""
+        first = FIRST.match(text)
+        small = not first or first[0] in SMALL or fold(first[0]) in self._links
+        if small or wording.is_unit(text[: first.end() if first else 0]):
+            return self.words(text)
+        return self.words(text[0].upper() + text[1:])
 
     def _named(self, found: re.Match[str]) -> str:
         return self.symbol(found[0]) if fold(found[0]) in self._links else found[0]
@@ -111,7 +152,7 @@ class View:
         """A basis with its citations set off and linked to the list of references."""
         parts = KEY.split(text)  # what stands between the brackets has the odd places
         return "".join(
-            self._citation(part) if at % 2 else escape(part) for at, part in enumerate(parts)
+            self._citation(part) if at % 2 else self.words(part) for at, part in enumerate(parts)
         )
 
     def _citation(self, inner: str) -> str:
@@ -128,11 +169,11 @@ class View:
 
     def setting(self, values: dict[str, str]) -> str:
         """A combination of values, as in *V*line 253 V, *C*res 8.0 µF."""
-        pairs = (
-            f'<span class="nb">{self.symbol(name)} {typeset.quantity(value)}</span>'
-            for name, value in values.items()
-        )
-        return ", ".join(pairs)
+        return ", ".join(self.stand(name, value) for name, value in values.items())
+
+    def stand(self, name: str, value: str) -> str:
+        """Where one quantity of a combination stands."""
+        return f'<span class="nb">{self.symbol(name)} {typeset.quantity(value)}</span>'
 
 
 def reference_anchor(key: str) -> str:
@@ -142,8 +183,9 @@ def reference_anchor(key: str) -> str:
 
 def card(quantity: Quantity) -> str:
     """Meaning, value and band of a quantity in one line of plain text."""
-    lines = [quantity.description or "no description", typeset.plain_quantity(quantity.result)]
+    meaning = wording.sentence(quantity.description, groups=False)
+    lines = [meaning or "no description", wording.typeset(quantity.result)]
     if quantity.varies:
-        least = typeset.plain_quantity(quantity.least_text)
-        lines.append(f"{least} to {typeset.plain_quantity(quantity.greatest_text)}")
+        least, greatest = quantity.least_text, quantity.greatest_text
+        lines.append(f"{wording.typeset(least)} to {wording.typeset(greatest)}")
     return " · ".join(line for line in lines if line)

@@ -133,3 +133,26 @@ def last(shown: Picture) -> Glyphs:
             return Glyphs("", "upright")
         shown = shown.base if isinstance(shown, Script) else inside(shown)[-1]
     return shown
+
+
+def linear(shown: Picture) -> str:
+    """The picture on one line, in plain characters: for readers that do not draw."""
+    match shown:
+        case Glyphs(text, kind):
+            return f" {text} " if kind in ("operator", "relation") else text
+        case Row(parts):
+            return "".join(linear(part) for part in parts)
+        case Symbol(_, shape):
+            return linear(shape)
+        case Fraction(over, under):
+            return f"({linear(over)})/({linear(under)})"
+        case Root(inner):
+            return f"√({linear(inner)})"
+        case Fence(opening, closing, inner):
+            return f"{opening}{linear(inner)}{closing}"
+        case Cases(rows):
+            return "{" + "; ".join(linear(row) for row in rows) + "}"
+        case Script(base, sub, sup):
+            below = f"_{linear(sub)}" if sub is not None else ""
+            above = f"^{linear(sup)}" if sup is not None else ""
+            return linear(base) + below + above

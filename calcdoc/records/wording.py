@@ -1,53 +1,95 @@
-"""Sentences and typeset numbers that the record says in words."""
+"""Sentences and typeset numbers in plain characters: what the record says in words.
+
+The rules for numbers and units live in ``calcdoc.records.pictures``; here they are written on one
+line, for texts of the record and for attributes of a page, and applied to numbers in sentences.
+"""
 
 import re
+from functools import lru_cache
 from typing import Final
 
+from calcdoc.records.pictures import grouped, picture
+from calcdoc.records.shapes import MINUS, linear
+from calcdoc.records.shapes import NO_BREAK as NO_BREAK  # noqa: PLC0414  for texts that use it
 from calcdoc.records.values import exact_limit, given_nominal, with_unit
+from calcdoc.text.formula import parse_text
 from calcdoc.text.given import Given, Style
+from calcdoc.text.nodes import Quantity
 from calcdoc.units import Unit
 
-NO_BREAK: Final = "\u00a0"
-THIN: Final = "\u202f"
-MINUS: Final = "\u2212"
-_NUMBER: Final = re.compile(r"(?<![A-Za-z0-9_.])(-?)([0-9]+)(?:\.([0-9]+))?(?:e(-?)([0-9]+))?")
-_RAISED: Final = str.maketrans("0123456789-", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻")
-_UNGROUPED: Final = 4
+_RAISED: Final = str.maketrans("0123456789-\u2212", "⁰¹²³⁴⁵⁶⁷⁸⁹⁻⁻")
+_POWER: Final = re.compile(r"\^([-\u2212]?[0-9]+)")
+_NUMBER: Final = re.compile(
+    r"(?<![\w.\u2212-])([-\u2212]?[0-9]+(?:\.[0-9]+)?)(?:e(-?[0-9]+))?(?![\w-]|\.[0-9])"
+    r"([ \n](?=[A-Za-zµΩ°%]))?"
+)
+"""A number in a sentence, with the space before what may be its unit."""
+_WORD: Final = re.compile(r"[^\s,;:()]+")
+_FACTOR: Final = re.compile(r"([-\u2212]?[0-9][^\s,]*(?: [^\s,±]+)?) (?:±|\+/-) ([0-9][0-9.]* %)")
+_PLUS_MINUS: Final = re.compile(r"± (?=[0-9])")
 
 
+@lru_cache(maxsize=4096)
 def typeset(text: str) -> str:
     """A quantity of the language as printed: true minus, thin groups, × 10ⁿ, no break.
 
     >>> typeset("-12345.6 V") == "\u221212\u202f345.6\u00a0V"
     True
+    >>> typeset("60 W/m/K") == "60\u00a0W/(m·K)"
+    True
     """
-    number, _, unit = text.partition(" ")
-    shown = _NUMBER.sub(_number, number)
-    return f"{shown}{NO_BREAK}{_printed_unit(unit)}" if unit else shown
+    try:
+        shown = linear(picture(parse_text(text)))
+    except ValueError:
+        return text
+    return _POWER.sub(lambda found: found[1].translate(_RAISED), shown)
 
 
-def _number(found: re.Match[str]) -> str:
-    sign, whole, part, minus, power = found.groups()
-    if len(whole) > _UNGROUPED:
-        head = len(whole) % 3
-        groups = [whole[:head]] * bool(head) + [
-            whole[i : i + 3] for i in range(head, len(whole), 3)
-        ]
-        whole = THIN.join(groups)
-    if part and len(part) > _UNGROUPED:
-        part = THIN.join(part[i : i + 3] for i in range(0, len(part), 3))
-    shown = (MINUS if sign else "") + whole + (f".{part}" if part else "")
-    if power is None:
-        return shown
-    return f"{shown}{NO_BREAK}×{NO_BREAK}10{(minus + power).translate(_RAISED)}"
+def sentence(text: str, *, groups: bool = True) -> str:
+    r"""A sentence with numbers in it: a true minus, numbers and their units held together.
+
+    Args:
+        text: Plain text in words.
+        groups: Whether a number without a unit is grouped in threes, too; not in the author's
+            words, where it may be the number of a drawing.
+
+    >>> sentence("short by 7.2 V (-180 % of the limit)")
+    'short by 7.2\xa0V (\u2212180\xa0% of the limit)'
+    >>> sentence("drawing 123456, 12000 h", groups=False) == "drawing 123456, 12\u202f000\u00a0h"
+    True
+    """
+
+    def held(found: re.Match[str]) -> str:
+        mantissa, power, space = found.groups()
+        word = _WORD.match(text, found.end()) if space else None
+        unit = word is not None and is_unit(word[0].rstrip("."))
+        shown = mantissa.replace("-", MINUS)
+        if groups or unit:
+            shown = grouped(mantissa.replace(MINUS, "-"))
+        if power:
+            shown += f"{NO_BREAK}×{NO_BREAK}10{power.translate(_RAISED)}"
+        return shown + (NO_BREAK if unit else space or "")
+
+    return _PLUS_MINUS.sub(f"±{NO_BREAK}", _NUMBER.sub(held, text))
 
 
-def _printed_unit(written: str) -> str:
-    """``W/m/K`` as ``W/(m·K)``, ``m^2`` as ``m²``."""
-    above, *below = written.split("/")
-    under = below[0] if len(below) == 1 else f"({'·'.join(below)})"
-    shown = above + (f"/{under}" if below else "")
-    return re.sub(r"\^(-?[0-9]+)", lambda m: m[1].translate(_RAISED), shown)
+def clauses(text: str) -> str:
+    """Clauses of the language as printed: a relative tolerance is a factor (rule T12).
+
+    >>> print(clauses("at V_line = 230 V ± 2 %, T_a = -25 °C").replace("\u00a0", "_"))
+    at V_line = 230_V_×_(1_±_2_%), T_a = −25_°C
+    """
+    times = f"{NO_BREAK}×{NO_BREAK}(1{NO_BREAK}±{NO_BREAK}"
+    return sentence(_FACTOR.sub(lambda found: f"{found[1]}{times}{found[2]})", text))
+
+
+@lru_cache(maxsize=1024)
+def is_unit(word: str) -> bool:
+    """Whether a word behind a number is read as its unit."""
+    try:
+        return isinstance(parse_text(f"1 {word}"), Quantity)
+    except ValueError:
+        return False
 
 
 def band_in_words(given: Given) -> str:

@@ -5,10 +5,14 @@ import re
 from html.parser import HTMLParser
 
 import pytest
+from msgspec import structs
 
+from calcdoc.page.boxes import boxes
 from calcdoc.page.html import POLICY, html, inert
-from calcdoc.page.lines import given_value
-from tests.helpers.sample_parts import quantity
+from calcdoc.page.lines import criterion_line, given_value
+from calcdoc.page.markup import margin_bar
+from calcdoc.page.view import View
+from tests.helpers.sample_parts import CRITERIA, criterion, quantity
 from tests.helpers.sample_record import DATA, sample
 
 VOID = frozenset({"meta", "br", "hr", "img", "col", "link"})
@@ -134,6 +138,9 @@ def test_cover_answers_what_is_open(page: str) -> None:
         "Values not verified: 1.",
     ):
         assert f"<b>{answer}</b>" in page
+    quiet = html(structs.replace(sample(), criteria=(), assumptions=(), body=()), DATA)
+    none = "Open assumptions: none. Open tests: none. Accepted failures: none. Values not verified"
+    assert f"<b>{none}: none.</b>" in quiet
 
 
 def test_order_of_the_page(page: str) -> None:
@@ -170,7 +177,121 @@ def test_nominal_stands_beside_limits() -> None:
     """A tolerance written as two limits does not hide the nominal value."""
     band = "\u221220\u00a0°C to 45\u00a0°C"
     warm = quantity(symbol="T_a", kind="condition", result="12.5 °C", tolerance=band, varies=True)
-    assert given_value(warm) == f"12.5\u00a0°C, {band}"
+    assert words(given_value(warm)) == f"12.5\u00a0°C, {band}"
     factor = "230\u00a0V × (1 ± 10\u00a0%)"
     line = quantity(symbol="V", kind="condition", result="230 V", tolerance=factor, varies=True)
-    assert given_value(line) == factor
+    assert words(given_value(line)) == factor
+
+
+def words(shown: str) -> str:
+    """The text of a piece of HTML."""
+    return re.sub("<[^>]*>", "", shown)
+
+
+@pytest.mark.parametrize(
+    ("value", "limit", "relation", "filled", "tick"),
+    [
+        (153.0, 200.0, "<=", 73.4, 96.0),  # 77 % of an upper limit is used up
+        (19.18, 5.0, ">=", 25.0, 96.0),  # a margin of 280 % above a lower limit is a short bar
+        (5.0, 5.0, ">=", 96.0, 96.0),
+        (6.0, 5.0, "<=", 100.0, 83.3),
+        (4.136, 5.0, ">=", 100.0, 82.7),
+        (-3.2, 4.0, ">=", 100.0, 30.0),
+        (-4.0, -5.0, ">=", 76.8, 96.0),
+        (-1.0, 5.0, "<=", 0.0, 96.0),
+    ],
+)
+def test_bar_shows_what_is_used_of_the_limit(
+    value: float, limit: float, relation: str, filled: float, tick: float
+) -> None:
+    """One rule for both directions, and a failure runs over the tick."""
+    one = criterion(id="X", value=value, limit=limit, relation=relation, margin=0.1, unit="V")
+    assert f"width:{filled:.1f}%" in margin_bar(one)
+    assert f"left:{tick:.1f}%" in margin_bar(one)
+
+
+def test_no_bar_for_temperatures_and_zero() -> None:
+    """Half of 100 °C means nothing, nor does a share of zero."""
+    assert margin_bar(criterion(id="X", value=50.0, limit=100.0, relation="<=", unit="°C")) == ""
+    assert margin_bar(criterion(id="X", value=-5.0, limit=0.0, relation="<=", unit="V")) == ""
+    assert margin_bar(criterion(id="X", verdict="by test")) == ""
+
+
+@pytest.mark.parametrize(
+    ("text", "opening"),
+    [
+        ("supply voltage, rms", "Supply voltage, rms"),
+        ("open-circuit voltage", "Open-circuit voltage"),
+        ("a half period", "A half period"),
+        ("rms supply voltage", "rms supply voltage"),
+        ("mA rating", "mA rating"),
+        ("min voltage", "min voltage"),
+        ("n-channel switch", "n-channel switch"),
+        ("pH of the water", "pH of the water"),
+        ("LEDs in series", "LEDs in series"),
+        ("", ""),
+    ],
+)
+def test_capital_only_for_words(text: str, opening: str) -> None:
+    """A line of its own begins with a capital, unless with a symbol, a unit or an abbreviation."""
+    assert a_view().opening(text) == opening
+
+
+def test_language_in_sentences_is_typeset() -> None:
+    """Symbols and tolerances in clauses, cautions and remarks look as in formulas."""
+    shown = words(a_view().clauses("at V_line = 230 V ± 2 %, T_a = 25 °C"))
+    assert shown == "at Vline = 230\u00a0V\u00a0×\u00a0(1\u00a0±\u00a02\u00a0%), Ta = 25\u00a0°C"
+    assert "<i>V</i><sub>line</sub>" in a_view().clauses("at V_line = 5 V")
+    assert "<i>C</i><sub>res</sub>" in a_view().words("after disconnection C_res stays charged")
+    assert a_view().words("no_such symbol") == "no_such symbol"
+
+
+def a_view() -> View:
+    """A view of the sample as the sheets use it."""
+    return View(record=sample(), draw=boxes, paper=True, record_digest="0" * 64)
+
+
+def test_reason_stands_once(page: str) -> None:
+    """What is not applicable says what it is about, then why, once."""
+    line = words(page[page.index('id="c-N1"') : page.index('id="back-clauses"')])
+    assert line.count("o dimmer is foreseen") == 1
+    described = criterion(
+        id="N2", text="too small", reason="too small", verdict="not applicable",
+        method="none", description="harmonics of the line current",
+    )  # fmt: skip
+    shown = words(criterion_line(a_view(), described))
+    assert shown.startswith("N2Harmonics of the line current")
+    assert shown.endswith("not applicable: too small\n")
+
+
+def test_tested_first_then_the_remark(page: str) -> None:
+    """A test names what is tested before it says why it is one."""
+    line = words(page[page.index('id="c-T1"') : page.index('id="c-N1"')])
+    assert "T1[EN 60598-1, 12.4]Temperature rise of the complete lamp by test: not covered" in line
+
+
+def test_subtitle_is_printed_as_it_is() -> None:
+    """Nothing is added to the author's subtitle; without one the kind of document stands there."""
+    assert '<p class="sub">Electrical design of the light engine</p>' in html(sample(), DATA)
+    assert '<p class="sub">Calculation record</p>' in html(sample(subtitle=""), DATA)
+
+
+def test_short_formula_and_substitution_share_a_line(page: str) -> None:
+    """Formula and numbers on one line when there is room, the result on its own."""
+    start = page.index('id="q-V_pk"')
+    assert page[start : page.index('id="q-t_dis"')].count('class="eq"') == 2
+    start = page.index('id="q-k_fit"')
+    assert page[start : page.index('id="c-R1"')].count('class="eq"') == 3
+
+
+def test_long_combination_is_cut_on_the_cover() -> None:
+    """The cover names conditions first and says how many more there are; the body has them all."""
+    at = {"V_D": "1 V", "C_res": "8 µF", "I_reg": "31.8 mA", "V_LED": "20.7 V", "R_bleed": "231 kΩ",
+          "V_line": "207 V", "f_line": "49.5 Hz", "T_a": "-20 °C"}  # fmt: skip
+    long = structs.replace(CRITERIA[1], governing=at, case="normal")
+    page = html(structs.replace(sample(), criteria=(CRITERIA[0], long, *CRITERIA[2:])), DATA)
+    row = words(page[page.index('id="verdicts"') : page.index('id="open"')])
+    assert "Vline 207\u00a0V, fline 49.5\u00a0Hz, Ta \u221220\u00a0°C, VD 1\u00a0V" in row
+    assert "and 3 more, see R2" in row
+    body = words(page[page.index('id="c-R2"') : page.index('id="c-R3"')])
+    assert "Rbleed 231\u00a0kΩ" in body

@@ -3,6 +3,7 @@
 import pytest
 
 from calcdoc.page import typeset
+from calcdoc.records import wording
 
 
 @pytest.mark.parametrize(
@@ -24,9 +25,10 @@ def test_quantity(text: str, expected: str) -> None:
     assert typeset.quantity(text) == expected
 
 
-def test_plain_quantity() -> None:
+def test_quantity_in_plain_characters() -> None:
     """Attributes hold no markup: exponents are raised characters."""
-    assert typeset.plain_quantity("1.8e-3 W/m^2") == "1.8\u00a0×\u00a010⁻³\u00a0W/m²"
+    assert wording.typeset("1.8e-3 W/m^2") == "1.8\u00a0×\u00a010⁻³\u00a0W/m²"
+    assert wording.typeset("no <number>") == "no <number>"
 
 
 @pytest.mark.parametrize(
@@ -55,7 +57,37 @@ def test_units(text: str, expected: str) -> None:
 )
 def test_numbers_in_sentences(text: str, expected: str) -> None:
     """Numbers are typeset, dates and names are left alone."""
-    assert typeset.signs(text) == expected
+    assert typeset.sentence(text) == expected
+
+
+@pytest.mark.parametrize(
+    ("text", "expected"),
+    [
+        ("over ± 10 % of 120 V", "over ±\u00a010\u00a0% of 120\u00a0V"),
+        ("drawing 123456, 20000 h", "drawing 123456, 20\u202f000\u00a0h"),
+        ("from -20 °C on, IEC 61000-3-2", "from \u221220\u00a0°C on, IEC 61000-3-2"),
+        ("2 LEDs, 3 in a row", "2 LEDs, 3 in a row"),
+        ("at 95 lm/W.", 'at <span class="nb">95\u00a0lm/W.</span>'),
+        ("R & D, 5 V < 6 V", "R &amp; D, 5\u00a0V &lt; 6\u00a0V"),
+    ],
+)
+def test_authors_words(text: str, expected: str) -> None:
+    """Numbers stay with their units, digits without a unit stay as they were typed."""
+    assert typeset.author(text) == expected
+
+
+@pytest.mark.parametrize(
+    ("text", "expected"),
+    [
+        ("at V = 230 V ± 2 %, T = -5 °C", "at V = 230_V_×_(1_±_2_%), T = \u22125_°C"),
+        ("at V = 230 V +/- 2 %", "at V = 230_V_×_(1_±_2_%)"),
+        ("at V = 230 V ± 23 V", "at V = 230_V ±_23_V"),
+        ("by extremes with margin 10 %", "by extremes with margin 10_%"),
+    ],
+)
+def test_clauses(text: str, expected: str) -> None:
+    """A relative tolerance is a factor, an absolute one has its unit twice."""
+    assert wording.clauses(text).replace("\u00a0", "_") == expected
 
 
 def test_number_of_the_record() -> None:

@@ -2,9 +2,18 @@
 
 import pytest
 
-from calcdoc.page.mathml import linear
 from calcdoc.records.pictures import grouped, picture, symbol
-from calcdoc.records.shapes import Cases, Fence, Fraction, Glyphs, Root, Row, Script, Symbol
+from calcdoc.records.shapes import (
+    Cases,
+    Fence,
+    Fraction,
+    Glyphs,
+    Root,
+    Row,
+    Script,
+    Symbol,
+    linear,
+)
 from calcdoc.source import Span
 from calcdoc.text.formula import parse_text
 from calcdoc.text.nodes import Binary, Group, Name, Negate, Node, Number
