@@ -1,10 +1,10 @@
 """From unit words to units, with factors and dimensions from Pint and our own registry file."""
 
-import difflib
+import re
 from collections.abc import Iterable
 from fractions import Fraction
 from functools import cache
-from importlib import resources
+from pathlib import Path
 from typing import TYPE_CHECKING, Final, cast
 
 from calcdoc.units.dimension import BASE_NAMES, Dimension, whole
@@ -14,35 +14,49 @@ from calcdoc.units.words import ALONE, NICKNAMES, PREFIXED, PREFIXES, SPELLED
 if TYPE_CHECKING:
     import pint
 
+_NAME: Final = re.compile(r"[a-z]+")
 _LOOK_ALIKES: Final = str.maketrans({"\u03bc": "µ", "\u2126": "Ω"})
 
 
 @cache
 def _registry() -> "pint.UnitRegistry[Fraction]":
-    """Pint with our own file only: exact fractions, none of its surprise units."""
+    """Pint without its own units: exact fractions, and what our file defines once it is used."""
     import pint  # noqa: PLC0415  (slow, and needed only once a unit is read)
 
-    with resources.as_file(resources.files("calcdoc.units") / "registry.txt") as path:
-        return pint.UnitRegistry(
-            str(path), non_int_type=Fraction, on_redefinition="raise", cache_folder=None
-        )
+    return pint.UnitRegistry(
+        None, non_int_type=Fraction, on_redefinition="raise", cache_folder=None
+    )
 
 
 @cache
-def _split(word: str) -> tuple[str, str, str] | None:
-    """A unit word as (prefix, base word, registry name), or None when it is not on the list."""
+def _definitions() -> dict[str, str]:
+    """Lines of our registry file by the name they define; the name of a prefix ends in a dash."""
+    text = Path(__file__).with_name("registry.txt").read_text(encoding="utf-8")
+    return {line.partition(" = ")[0]: line for line in text.splitlines() if " = " in line}
+
+
+@cache
+def _define(name: str) -> None:
+    """Give Pint one definition of our file, once, after those it is made of."""
+    line = _definitions()[name]
+    for part in _NAME.findall(line.partition(" = ")[2]):
+        if part in _definitions():
+            _define(part)
+    _registry().define(line)
+
+
+@cache
+def _split(word: str) -> tuple[str, str] | None:
+    """A unit word as prefix and base word as printed, or None when it is not on the list."""
     word = word.translate(_LOOK_ALIKES)
-    for base, name in (*PREFIXED.items(), *ALONE.items()):
-        if word == base:
-            return "", base, name
-    for spelled, base in SPELLED.items():
-        if word == spelled:
-            return "", base, (PREFIXED | ALONE)[base]
-    for prefix, prefix_name in (*PREFIXES.items(), ("u", "micro")):
-        base = word.removeprefix(prefix)
+    word = SPELLED.get(word, word)
+    if word in PREFIXED or word in ALONE:
+        return "", word
+    for written in (*PREFIXES, "u"):
+        base = word.removeprefix(written)
         base = SPELLED.get(base, base)
-        if word.startswith(prefix) and base in PREFIXED:
-            return "µ" if prefix == "u" else prefix, base, prefix_name + PREFIXED[base]
+        if word.startswith(written) and base in PREFIXED:
+            return "µ" if written == "u" else written, base
     return None
 
 
@@ -56,7 +70,12 @@ def _atom(word: str) -> tuple[str, Fraction, Dimension]:
     """Printed form, exact factor to the coherent SI unit, and dimension of one known word."""
     parts = _split(word)
     assert parts is not None, word
-    prefix, base, name = parts
+    prefix, base = parts
+    name = PREFIXED.get(base) or ALONE[base]
+    _define(name)
+    if prefix:
+        _define(PREFIXES[prefix] + "-")
+        name = PREFIXES[prefix] + name
     factor, _ = _registry().get_base_units(name)
     found = _registry().get_dimensionality(name)
     exponents = tuple(whole(Fraction(str(found.get(each, 0)))) for each in BASE_NAMES)
@@ -114,5 +133,7 @@ def nearest_word(word: str) -> str | None:
             return candidate
     if written_out := _written_out().get(word.lower().removesuffix("s")):
         return written_out
+    import difflib  # noqa: PLC0415  (needed only for a mistake)
+
     close = difflib.get_close_matches(word, _all_words(), n=1, cutoff=0.6)
     return close[0] if close else None
