@@ -6,7 +6,6 @@ Lines and columns are computed here, for views, and nowhere else.
 
 import bisect
 import hashlib
-from dataclasses import dataclass, field
 from functools import cached_property
 
 from calcdoc.frozen import Frozen
@@ -24,8 +23,7 @@ class Span(Frozen, frozen=True):
         return Span(self.path, self.start, other.end)
 
 
-@dataclass(frozen=True)
-class SourceFile:
+class SourceFile(Frozen, frozen=True, dict=True):
     r"""One text file, read and normalised.
 
     >>> SourceFile("a.md", "one\ntwo\n").position(5)
@@ -36,7 +34,7 @@ class SourceFile:
     """As the user named it; shown in findings."""
     text: str
     """The normalised text; every span points into it."""
-    sha256: str = field(default="")
+    sha256: str = ""
     """Digest of the bytes as they were on disk."""
 
     @cached_property

@@ -7,11 +7,10 @@ each of their lines.
 import re
 from bisect import bisect_right
 from collections.abc import Callable
-from dataclasses import dataclass, field
 from functools import cache
 from typing import TYPE_CHECKING, Final
 
-from calcdoc.frozen import Frozen
+from calcdoc.frozen import Frozen, Working
 from calcdoc.problems import Finding, error, warning
 from calcdoc.source import SourceFile, Span
 from calcdoc.text import prose
@@ -68,8 +67,7 @@ def _mention_rule(state: "StateInline", silent: bool) -> bool:
     return True
 
 
-@dataclass(slots=True)
-class _Builder:
+class _Builder(Working):
     """Walks the flat token list once and builds the tree."""
 
     source: SourceFile
@@ -77,7 +75,7 @@ class _Builder:
     """Line of the file (from 1) on which the parsed text begins."""
     read_fence: FenceReader
     findings: list[Finding]
-    tokens: "list[Token]" = field(default_factory=list)
+    tokens: "list[Token]"
     at: int = 0
     cursor: int = 0
     """Where in the file the search for the next cell of a table begins."""
@@ -243,8 +241,7 @@ class _InlinePlaces:
         return self.source.span(at, at + len(text))
 
 
-@dataclass(slots=True)
-class _InlineBuilder:
+class _InlineBuilder(Working):
     """Walks the children of an inline token."""
 
     builder: _Builder
@@ -336,6 +333,5 @@ def read_prose(
         first_line: The line of the file (from 1) the text begins on.
         read_fence: Makes a block of a fenced block, or None to leave it out.
     """
-    builder = _Builder(source, first_line, read_fence, [])
-    builder.tokens = _reader().parse(text)
+    builder = _Builder(source, first_line, read_fence, [], _reader().parse(text))
     return builder.blocks("end of text"), builder.findings

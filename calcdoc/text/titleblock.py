@@ -3,11 +3,10 @@
 import re
 import tomllib
 from collections.abc import Mapping
-from dataclasses import dataclass
 from datetime import date
 from typing import Final
 
-from calcdoc.frozen import Frozen
+from calcdoc.frozen import Frozen, Working
 from calcdoc.problems import Finding, error
 from calcdoc.source import Span
 from calcdoc.text.names import nearest
@@ -57,8 +56,7 @@ _TOML_PLACE: Final = re.compile(r" \(at line ([0-9]+), column ([0-9]+)\)$| \(at 
 Table = Mapping[str, object]
 
 
-@dataclass(slots=True)
-class _Reader:
+class _Reader(Working):
     """Takes values out of the table and notes what is wrong with them."""
 
     passage: Passage
