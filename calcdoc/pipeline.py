@@ -9,7 +9,7 @@ import base64
 import os
 from collections.abc import Iterable, Mapping
 from datetime import UTC, datetime
-from importlib.metadata import version
+from importlib import import_module
 from pathlib import Path
 from typing import Final
 
@@ -32,8 +32,13 @@ from calcdoc.text.document import pictures, read_document
 from calcdoc.text.prose import Block
 
 FORMS: Final = ("html", "pdf", "json")
-LIBRARIES: Final = ("markdown-it-py", "msgspec", "numpy", "pint")
-"""Libraries the numbers and the stored record depend on."""
+LIBRARIES: Final = {
+    "markdown-it-py": "markdown_it",
+    "msgspec": "msgspec",
+    "numpy": "numpy",
+    "pint": "pint",
+}
+"""Libraries the numbers and the stored record depend on, with the module that knows its version."""
 _MEDIA: Final = {b"\x89PNG\r\n\x1a\n": "image/png", b"\xff\xd8\xff": "image/jpeg"}
 
 
@@ -126,7 +131,8 @@ def record(evaluated: Evaluated) -> Record:
         raise TextHasErrors(
             f"{evaluated.design.source.path} has errors, so there is no record of it"
         )
-    tool = Tool(version=__version__, libraries={name: version(name) for name in LIBRARIES})
+    versions = {name: import_module(module).__version__ for name, module in LIBRARIES.items()}
+    tool = Tool(version=__version__, libraries=versions)
     made = Circumstances(tool, evaluated.findings, evaluated.design.pictures)
     return build_record(evaluated.evaluation, made)
 

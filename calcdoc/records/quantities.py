@@ -1,11 +1,11 @@
 """Working lines: every quantity with formula, substitution, result, band and who uses it."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from functools import cached_property
 
 from calcdoc.analysis.evaluation import Band, Combination, Evaluation
 from calcdoc.analysis.extremes import Proof
+from calcdoc.frozen import Frozen
 from calcdoc.model.model import Model, Variable
 from calcdoc.records import record as r
 from calcdoc.records.carried import units_carried
@@ -22,8 +22,7 @@ from calcdoc.text.unparse import unparse
 from calcdoc.units import PLAIN, Unit
 
 
-@dataclass(frozen=True)
-class Numbers:
+class Numbers(Frozen, frozen=True, dict=True):
     """An evaluation with the units and digits its numbers are shown in."""
 
     evaluation: Evaluation
@@ -38,6 +37,11 @@ class Numbers:
     def units(self) -> Mapping[str, Unit]:
         """The unit of every quantity, by key."""
         return {key: self._unit(variable) for key, variable in self.model.variables.items()}
+
+    @cached_property
+    def _stands(self) -> dict[tuple[str, float], str]:
+        """Inputs at a value, as text: all combinations hold the same few ends."""
+        return {}
 
     def _unit(self, variable: Variable) -> Unit:
         if variable.unit is not None:
@@ -56,9 +60,11 @@ class Numbers:
     def at(self, key: str, si: float) -> str:
         """A value of a quantity other than the nominal one."""
         given = self.model.variables[key].given
-        if given is not None:
-            return stands_at(given, si)
-        return computed(si, self.units[key], self.digits)
+        if given is None:
+            return computed(si, self.units[key], self.digits)
+        if (key, si) not in self._stands:
+            self._stands[key, si] = stands_at(given, si)
+        return self._stands[key, si]
 
     def combination(self, combination: Combination) -> dict[str, str]:
         """Where inputs stand, by symbol, in the author's order."""

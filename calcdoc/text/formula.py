@@ -1,6 +1,7 @@
 """The formula grammar, one function per rule; each docstring begins with its rule."""
 
 import re
+from functools import lru_cache
 from typing import Final
 
 from calcdoc.problems import Mistake, error
@@ -272,8 +273,9 @@ def whole_formula(passage: Passage, *, conditions: bool = False) -> Node:
     return node
 
 
+@lru_cache(maxsize=4096)
 def parse_text(text: str) -> Node:
-    """The tree of a formula or comparison in a record.
+    """The tree of a formula or comparison in a record, where many texts stand in several places.
 
     Raises:
         ValueError: when the text is not a formula.
