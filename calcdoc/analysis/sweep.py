@@ -6,6 +6,7 @@ respect to the inputs named by the column's slots. Where an operation meets the 
 sides, the interval is cut by the mean-value form: the centre plus slopes times half widths.
 """
 
+from dataclasses import dataclass, field
 from fractions import Fraction
 
 import numpy as np
@@ -33,12 +34,13 @@ class Boxes(Frozen, frozen=True):
         return np.clip(self.low + 0.5 * (self.high - self.low), self.low, self.high)
 
 
-class Swept(Frozen, frozen=True):
+@dataclass(frozen=True, slots=True)
+class Swept:
     """Ranges and slopes found by one pass, by row of the program."""
 
-    values: list[FloatArray]
+    values: list[FloatArray] = field(default_factory=list)
     """Intervals of shape (2, n_columns)."""
-    moves: list[Tangent]
+    moves: list[Tangent] = field(default_factory=list)
     """Tangents of shape (2, n_slots, n_columns); None where nothing moves."""
 
 
@@ -53,7 +55,7 @@ def sweep(program: Program, boxes: Boxes) -> Swept:
     half = _half_widths(boxes, centre)
     low = np.concatenate((boxes.low, centre), axis=1)
     high = np.concatenate((boxes.high, centre), axis=1)
-    swept = Swept([], [])
+    swept = Swept()
     both: list[FloatArray] = []  # boxes, then their centres, as columns of one array
     with np.errstate(all="ignore"):
         for at, step in enumerate(program.tape.instructions):

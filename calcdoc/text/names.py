@@ -1,6 +1,5 @@
 """Symbols: how they are written, when two are the same, and which words are taken."""
 
-import difflib
 import re
 import unicodedata
 from collections.abc import Iterable
@@ -83,5 +82,7 @@ def nearest(name: str, known: Iterable[str]) -> str | None:
     if len(candidates) > _COMPARED_MOST:
         alike = (each for each in candidates if each[:1] == name[:1] and len(each) == len(name))
         candidates = list(islice(alike, _COMPARED_MOST))
+    import difflib  # noqa: PLC0415  (needed only for a mistake)
+
     close = difflib.get_close_matches(name, candidates, n=1, cutoff=0.6)
     return close[0] if close else None
