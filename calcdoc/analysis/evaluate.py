@@ -1,63 +1,62 @@
-"""Evaluate a model: nominal, extremes, criteria and discharge times, all on one tape."""
+"""Evaluate a model: nominal, extremes, criteria, cross-checks, discharge times, on one tape."""
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Mapping
 from typing import Final
 
 import numpy as np
 
-from calcdoc.analysis.compile import Compiled, Side, compile_model
+from calcdoc.analysis.box import Box
+from calcdoc.analysis.compile import Check, Compiled, Side, compile_model
 from calcdoc.analysis.evaluation import (
     Band,
     Combination,
+    Crosschecked,
     Discharged,
     Evaluation,
     Judgement,
     Outcome,
+    Row,
     Stand,
 )
 from calcdoc.analysis.extremes import Extreme, Proof, Question, extremes
 from calcdoc.analysis.points import FloatArray, evaluate_points
+from calcdoc.analysis.numeric import found_numerically
 from calcdoc.analysis.trouble import troubles
-from calcdoc.frozen import Frozen
-from calcdoc.model.model import Judged, Model
-from calcdoc.problems import Finding
+from calcdoc.model.model import Compared, Judged, Model
+from calcdoc.problems import Finding, Mistake
 from calcdoc.text.statements import Inequality
 
 EQUAL: Final = 1e-12
 """Share of the largest term below which a requirement counts as met with equality."""
-
-
-class Box(Frozen, frozen=True):
-    """Ranges of all input columns, shape (n_columns,) each, in coherent SI."""
-
-    low: FloatArray
-    nominal: FloatArray
-    high: FloatArray
+SLIGHTLY: Final = 1e-9
+"""Relative gap between what was attained and what is proven that is no reason to doubt."""
+_DECLARED: Final = -1
 
 
 def evaluate_model(model: Model) -> tuple[Evaluation | None, tuple[Finding, ...]]:
     """Compute a model; None when something cannot be computed at nominal or within the band."""
-    compiled = compile_model(model)
+    try:
+        compiled = compile_model(model)
+    except Mistake as mistake:
+        return None, (mistake.finding,)
     boxes = _boxes(compiled, model)
-    found = troubles(compiled, model, [(box.low, box.nominal, box.high) for box in boxes.values()],
-                     [_targets(compiled, at) for at in boxes])  # fmt: skip
+    wanted = [_targets(compiled, at) for at in boxes]
+    found = troubles(compiled, model, list(boxes.values()), wanted)
     if found:
         return None, found
     return _Evaluator(compiled, model, boxes).run(), ()
 
 
 def _boxes(compiled: Compiled, model: Model) -> dict[int, Box]:
-    """The band as declared (-1), and one box for each criterion at an operating point."""
-    declared = Box(compiled.low, compiled.nominal, compiled.high)
-    boxes = {-1: declared}
+    """The band as declared, and one box for each criterion at an operating point, by number."""
+    boxes = {_DECLARED: compiled.box}
     for at, judged in enumerate(_judged(model)):
-        clauses = judged.statement.clauses
-        if not clauses.at:
+        points = judged.statement.clauses.at
+        if not points:
             continue
-        low, nominal, high = (
-            each.copy() for each in (declared.low, declared.nominal, declared.high)
-        )
-        for point in clauses.at:
+        box = compiled.box
+        low, nominal, high = box.low.copy(), box.nominal.copy(), box.high.copy()
+        for point in points:
             column = compiled.columns[point.symbol.key]
             low[column], nominal[column], high[column] = point.given.si
         boxes[at] = Box(low, nominal, high)
@@ -70,11 +69,13 @@ def _judged(model: Model) -> list[Judged]:
 
 def _targets(compiled: Compiled, criterion: int) -> list[int]:
     """What must be computable in a box: everything in the declared one, else the criterion."""
-    if criterion >= 0:
+    if criterion != _DECLARED:
         return [side.requirement for side in compiled.sides[criterion]]
     sides = [side.requirement for sides in compiled.sides for side in sides]
+    checks = [check.difference for check in compiled.checks]
     times = [each for each in compiled.discharges if each is not None]
-    return [*compiled.variables.values(), *sides, *times]
+    elements = [at for each in compiled.series.values() for at in each.values()]
+    return [*compiled.variables.values(), *elements, *sides, *checks, *times]
 
 
 class _Evaluator:
@@ -84,61 +85,77 @@ class _Evaluator:
         self.compiled, self.model, self.boxes = compiled, model, boxes
         self.keys = list(compiled.columns)
         self.questions: list[Question] = []
+        self.answers: tuple[Extreme, ...] = ()
 
     def run(self) -> Evaluation:
-        """All bands, judgements and discharge times."""
-        band_at = {
-            key: self._ask_band(at)
-            for key, at in self.compiled.variables.items()
+        """All bands, judgements, cross-checks and discharge times."""
+        compiled, whole = self.compiled, self.boxes[_DECLARED]
+        bands = {
+            key: self._ask_both(at, whole)
+            for key, at in compiled.variables.items()
             if self.model.variables[key].given is None
         }
-        side_at = [
-            [self._ask(side.requirement, False, self._box(criterion)) for side in sides]
-            for criterion, sides in enumerate(self.compiled.sides)
+        series = {
+            key: {n: self._ask_both(at, whole) for n, at in elements.items()}
+            for key, elements in compiled.series.items()
+        }
+        sides = [
+            [self._ask(side.requirement, False, self._box(number)) for side in each]
+            for number, each in enumerate(compiled.sides)
         ]
-        time_at = [None if at is None else self._ask(at, True, self.boxes[-1])
-                   for at in self.compiled.discharges]  # fmt: skip
-        answers = extremes(self.compiled.tape, self.questions)
-        governing = [min(sides, key=lambda at: answers[at].value) for sides in side_at]
-        # One pass: the nominal point, then the governing point of every criterion.
-        points = np.stack([self.compiled.nominal, *(answers[at].point for at in governing)], axis=1)
-        computed = evaluate_points(self.compiled.tape, points)
-        bands = {
-            key: self._band(float(computed[at, 0]), answers, band_at[key])
-            if key in band_at
+        checks = [self._ask_both(each.difference, whole) for each in compiled.checks]
+        times = [None if at is None else self._ask(at, True, whole) for at in compiled.discharges]
+        self.answers = extremes(compiled.tape, self.questions)
+        nominal = evaluate_points(compiled.tape, whole.nominal[:, None])[:, 0]
+        found = {
+            key: self._band(float(nominal[at]), bands[key])
+            if key in bands
             else self._given_band(key)
-            for key, at in self.compiled.variables.items()
+            for key, at in compiled.variables.items()
         }
         return Evaluation(
             self.model,
-            bands,
+            found,
+            {
+                key: {n: self._band(float(nominal[compiled.series[key][n]]), asked)
+                      for n, asked in elements.items()}
+                for key, elements in series.items()
+            },
+            self._judgements(sides),
             tuple(
-                self._judge(judged, self.compiled.sides[number][side_at[number].index(at)],
-                            answers[at], computed[:, number + 1])
-                for number, (judged, at) in enumerate(
-                    zip(_judged(self.model), governing, strict=True))
+                self._crosscheck(compared, check, nominal, asked)
+                for compared, check, asked in zip(
+                    self.model.crosschecks, compiled.checks, checks, strict=True
+                )
             ),
-            tuple(self._discharged(at, answers, bands[each.voltage].greatest)
-                  for at, each in zip(time_at, self.model.discharges, strict=True)),
+            compiled.chosen,
+            found_numerically(compiled, self._points()),
+            tuple(
+                self._discharged(at, found[each.voltage].greatest)
+                for at, each in zip(times, self.model.discharges, strict=True)
+            ),
         )  # fmt: skip
+
+    def _points(self) -> FloatArray:
+        """The nominal point and every point that was found, shape (n_columns, n_points)."""
+        points = [self.boxes[_DECLARED].nominal, *(each.point for each in self.answers)]
+        return np.unique(np.stack(points, axis=1), axis=1)
 
     def _box(self, criterion: int) -> Box:
         """The box a criterion is judged over."""
-        box = self.boxes.get(criterion, self.boxes[-1])
-        if _judged(self.model)[criterion].statement.clauses.at_nominal:
-            return Box(box.nominal, box.nominal, box.nominal)
-        return box
+        box = self.boxes.get(criterion, self.boxes[_DECLARED])
+        nominal = _judged(self.model)[criterion].statement.clauses.at_nominal
+        return box.at_nominal if nominal else box
 
     def _ask(self, target: int, greatest: bool, box: Box) -> int:
         self.questions.append(Question(target, greatest, box.low, box.nominal, box.high))
         return len(self.questions) - 1
 
-    def _ask_band(self, target: int) -> tuple[int, int]:
-        box = self.boxes[-1]
+    def _ask_both(self, target: int, box: Box) -> tuple[int, int]:
         return self._ask(target, False, box), self._ask(target, True, box)
 
-    def _band(self, nominal: float, answers: tuple[Extreme, ...], asked: tuple[int, int]) -> Band:
-        least, greatest = (answers[at] for at in asked)
+    def _band(self, nominal: float, asked: tuple[int, int]) -> Band:
+        least, greatest = (self.answers[at] for at in asked)
         # Rounding may put an attained end a hair on the wrong side of the nominal value.
         return Band(
             nominal, min(least.value, nominal), max(greatest.value, nominal),
@@ -159,39 +176,98 @@ class _Evaluator:
             for column in np.flatnonzero(extreme.matters)
         }
 
+    def _judgements(self, asked: list[list[int]]) -> tuple[Judgement, ...]:
+        """Every criterion at the point of its least requirement, computed in one pass."""
+        flat = [at for sides in asked for at in sides]
+        if not flat:
+            return ()
+        points = np.stack([self.answers[at].point for at in flat], axis=1)
+        computed = evaluate_points(self.compiled.tape, points)
+        column = {at: computed[:, number] for number, at in enumerate(flat)}
+        return tuple(
+            self._judge(judged, sides, self.compiled.sides[number], column)
+            for number, (judged, sides) in enumerate(zip(_judged(self.model), asked, strict=True))
+        )
+
     def _judge(
-        self, judged: Judged, side: Side, extreme: Extreme, computed: FloatArray
+        self,
+        judged: Judged,
+        asked: list[int],
+        sides: tuple[Side, ...],
+        column: Mapping[int, FloatArray],
     ) -> Judgement:
-        """A criterion at its governing point, where everything was computed already."""
-        value, limit = float(computed[side.value]), float(computed[side.limit])
-        slack = limit - value if side.relation[0] == "<" else value - limit
-        tolerance = EQUAL * max(abs(value), abs(limit))
-        requirement = extreme.value
-        equal = abs(requirement) <= tolerance
+        at = min(asked, key=lambda each: self.answers[each].value)
+        side, extreme, computed = sides[asked.index(at)], self.answers[at], column[at]
+        row = _row(side, extreme, computed)
+        tolerance = EQUAL * max(abs(row.value), abs(row.limit))
+        equal = abs(extreme.value) <= tolerance
+        rows = (
+            _row(each, self.answers[number], column[number])
+            for each, number in zip(sides, asked, strict=True)
+        )
         return Judgement(
-            judged, side, value, limit,
-            0.0 if abs(slack) <= tolerance else slack, 0.0 if equal else requirement, equal,
-            _outcome(side, requirement, extreme.bound, tolerance),
-            {**self._combination(extreme), **self._point(judged.statement, extreme)},
-            {key: float(computed[self.compiled.variables[key]]) for key in judged.depends_on},
+            judged, side, row.value, row.limit, row.slack,
+            0.0 if equal else extreme.value, equal, row.outcome,
+            {**self._combination(extreme), **self._set_by(judged.statement, extreme)},
+            self._named(judged, side, computed),
             extreme.proof, extreme.bound,
+            tuple(rows) if judged.statement.clauses.index else (),
         )  # fmt: skip
 
-    def _point(self, statement: Inequality, extreme: Extreme) -> Combination:
+    def _named(self, judged: Judged, side: Side, computed: FloatArray) -> dict[str, float]:
+        """Every quantity a criterion names, at its governing point; of a series its element."""
+        compiled, found = self.compiled, {}
+        for key in judged.depends_on:
+            at = compiled.variables.get(key)
+            if at is None and side.element is not None:
+                at = compiled.series[key].get(side.element)
+            if at is not None:
+                found[key] = float(computed[at])
+        return found
+
+    def _set_by(self, statement: Inequality, extreme: Extreme) -> dict[str, Stand]:
         """The quantities an operating point sets, whether they have a band or not."""
-        keys = [point.symbol.key for point in statement.clauses.at]
         columns = self.compiled.columns
         return {
             key: Stand(float(extreme.point[columns[key]]), bool(extreme.interior[columns[key]]))
-            for key in keys
+            for key in (point.symbol.key for point in statement.clauses.at)
         }
 
-    def _discharged(
-        self, at: int | None, answers: tuple[Extreme, ...], voltage: float
-    ) -> Discharged:
+    def _crosscheck(
+        self, compared: Compared, check: Check, nominal: FloatArray, asked: tuple[int, int]
+    ) -> Crosschecked:
+        """Agreement at nominal and at all extremes; the worst difference is kept."""
+        least, greatest = (self.answers[at] for at in asked)
+        form, allowed = compared.statement.form, compared.statement.allowed
+        first, second = float(nominal[check.first]), float(nominal[check.second])
+        tolerance = EQUAL * max(abs(first), abs(second))
+        if form == "against":
+            assert allowed is not None
+            worst = max(least, greatest, key=lambda each: abs(each.value))
+            most = float(allowed.unit.to_si(allowed.nominal))
+            agrees = abs(worst.value) <= most * (1 + EQUAL)
+        elif form == "not below":
+            worst, agrees = least, least.value >= -tolerance
+        else:
+            worst, agrees = greatest, greatest.value <= tolerance
+        return Crosschecked(
+            compared, first, second, worst.value, agrees, self._combination(worst), worst.proof
+        )
+
+    def _discharged(self, at: int | None, voltage: float) -> Discharged:
         if at is None:
             return Discharged(voltage, None, {})
-        return Discharged(voltage, answers[at].value, self._combination(answers[at]))
+        return Discharged(voltage, self.answers[at].value, self._combination(self.answers[at]))
+
+
+def _row(side: Side, extreme: Extreme, computed: FloatArray) -> Row:
+    """Value, limit and outcome of one limit at the point that governs it."""
+    value, limit = float(computed[side.value]), float(computed[side.limit])
+    slack = limit - value if side.relation[0] == "<" else value - limit
+    tolerance = EQUAL * max(abs(value), abs(limit))
+    outcome = _outcome(side, extreme.value, extreme.bound, tolerance)
+    slack = 0.0 if abs(slack) <= tolerance else slack
+    return Row(side.element or 0, value, limit, slack, outcome)
 
 
 def _outcome(side: Side, requirement: float, bound: float, tolerance: float) -> Outcome:
@@ -203,10 +279,10 @@ def _outcome(side: Side, requirement: float, bound: float, tolerance: float) -> 
 
     if not holds(requirement):
         return Outcome.FAIL
-    slightly = 1e-9 * abs(requirement)
-    return Outcome.PASS if holds(bound) or requirement - bound <= slightly else Outcome.NOT_DECIDED
+    proven = holds(bound) or requirement - bound <= SLIGHTLY * abs(requirement)
+    return Outcome.PASS if proven else Outcome.NOT_DECIDED
 
 
 def _weaker(*proofs: Proof) -> Proof:
-    order: Iterable[Proof] = (Proof.SEARCHED, Proof.BOUNDED, Proof.EXACT)
+    order = (Proof.SEARCHED, Proof.BOUNDED, Proof.EXACT)
     return next(each for each in order if each in proofs)

@@ -6,7 +6,7 @@ from enum import Enum
 from calcdoc.analysis.compile import Side
 from calcdoc.analysis.extremes import Proof
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import Judged, Model
+from calcdoc.model.model import Compared, Judged, Model, Root
 
 
 class Stand(Frozen, frozen=True):
@@ -48,6 +48,16 @@ class Outcome(Enum):
     NOT_DECIDED = "not decided"
 
 
+class Row(Frozen, frozen=True):
+    """One element of a criterion over a series, at the point that governs it."""
+
+    element: int
+    value: float
+    limit: float
+    slack: float
+    outcome: "Outcome"
+
+
 class Judgement(Frozen, frozen=True):
     """A criterion at its governing point: where limit less value is least."""
 
@@ -69,6 +79,32 @@ class Judgement(Frozen, frozen=True):
     proof: Proof
     bound: float
     """Proven: the requirement is nowhere below this."""
+    rows: tuple[Row, ...]
+    """For a criterion over a series, one for each element."""
+
+
+class Crosschecked(Frozen, frozen=True):
+    """A cross-check at nominal and over all bands."""
+
+    compared: Compared
+    first: float
+    second: float
+    """Both sides at nominal."""
+    worst: float
+    """The difference farthest from agreement, at nominal or over the bands: first less second,
+    or as a share of the second where a share is allowed."""
+    agrees: bool
+    combination: Combination
+    proof: Proof
+
+
+class Numeric(Frozen, frozen=True):
+    """How a quantity was found between two values."""
+
+    residual: float
+    """Left less right at the root, as a share of the largest term, the worst of all points."""
+    gain: float | None
+    """For a settled loop, the greatest loop gain over the band; one or more runs away."""
 
 
 class Discharged(Frozen, frozen=True):
@@ -86,6 +122,13 @@ class Evaluation(Frozen, frozen=True):
     model: Model
     bands: Mapping[str, Band]
     """By key."""
+    series: Mapping[str, Mapping[int, Band]]
+    """By key and index."""
     judgements: tuple[Judgement, ...]
     """One for each calculated criterion, in order."""
+    crosschecks: tuple[Crosschecked, ...]
+    chosen: Mapping[str, Root]
+    """Key of every solved quantity to the root that was left."""
+    numeric: Mapping[str, Numeric]
+    """Key of every quantity found between two values to how well it was found."""
     discharged: tuple[Discharged, ...]

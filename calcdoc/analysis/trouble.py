@@ -5,6 +5,7 @@ from typing import Final
 
 import numpy as np
 
+from calcdoc.analysis.box import Box
 from calcdoc.analysis.compile import Compiled
 from calcdoc.analysis.hazards import Hazard, hazards
 from calcdoc.analysis.points import FloatArray
@@ -14,8 +15,6 @@ from calcdoc.text.nodes import Binary, Call, Group, Node
 from calcdoc.text.scan import shown
 from calcdoc.text.unparse import unparse
 from calcdoc.units import Unit
-
-Range = tuple[FloatArray, FloatArray, FloatArray]
 
 _CODES: Final[Mapping[str, tuple[str, str, str]]] = {
     "division by zero": (
@@ -42,20 +41,20 @@ _CODES: Final[Mapping[str, tuple[str, str, str]]] = {
 
 
 def troubles(
-    compiled: Compiled, model: Model, boxes: Sequence[Range], targets: Sequence[Sequence[int]]
+    compiled: Compiled, model: Model, boxes: Sequence[Box], targets: Sequence[Sequence[int]]
 ) -> tuple[Finding, ...]:
     """Everything that cannot be computed at nominal or within a box, once each.
 
     Args:
         compiled: The tape and its origins.
         model: For names and units in the messages.
-        boxes: Least, nominal and greatest of the input columns, shape (n_columns,) each.
+        boxes: Ranges of the input columns.
         targets: For each box the instructions that must be computable in it.
     """
     found: dict[int, Finding] = {}
-    for (low, nominal, high), wanted in zip(boxes, targets, strict=True):
-        for hazard in hazards(compiled.tape, wanted, low, nominal, high):
-            at_nominal = bool(np.all(hazard.point == nominal))
+    for box, wanted in zip(boxes, targets, strict=True):
+        for hazard in hazards(compiled.tape, wanted, box.low, box.nominal, box.high):
+            at_nominal = bool(np.all(hazard.point == box.nominal))
             found.setdefault(hazard.instruction, _finding(compiled, model, hazard, at_nominal))
     return tuple(found.values())
 
@@ -87,7 +86,7 @@ def _combination(compiled: Compiled, model: Model, point: FloatArray) -> str:
     moved = [
         _value(model.variables[key], float(point[column]))
         for key, column in compiled.columns.items()
-        if point[column] != compiled.nominal[column]
+        if point[column] != compiled.box.nominal[column]
     ]
     return ", ".join(moved[:6]) or "the nominal values"
 

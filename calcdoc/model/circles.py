@@ -54,5 +54,6 @@ def _circle(path: list[str], used: str, labels: Mapping[str, Label]) -> Finding:
         f"{shown(labels[first].name)} depends on itself: {shape}",
         labels[first].span,
         related=tuple(Place(labels[key].span, "part of the circle") for key in rest[:5]),
-        help="define one of them without the others",
+        help="define one of them without the others, or settle one: settle "
+        f"{labels[first].name} within a .. b",
     )

@@ -8,11 +8,17 @@ from calcdoc.text.document import Document
 from calcdoc.text.given import Given
 from calcdoc.text.nodes import Node
 from calcdoc.text.statements import (
-    Definition,
+    Basis,
+    CrosscheckStatement,
     GivenStatement,
     HazardStatement,
+    Index,
     Inequality,
+    Label,
     ReferenceStatement,
+    RelationStatement,
+    RestateStatement,
+    SensitivityStatement,
     SentenceStatement,
     Uncalculated,
 )
@@ -28,35 +34,95 @@ class Typed(Frozen, frozen=True):
     difference and for everything else."""
 
 
+class Root(Frozen, frozen=True):
+    """One closed form of an unknown, with the steps that lead to it in words."""
+
+    tree: Node
+    steps: tuple[str, ...]
+    """``divide both sides by C_res: ΔV = I_reg*t_dis/C_res``"""
+
+
+class Solved(Frozen, frozen=True):
+    """Unknowns in closed form; when there are several combinations, ``where`` leaves one."""
+
+    unknowns: tuple[str, ...]
+    """Keys, in the author's order."""
+    relations: tuple[str, ...]
+    """Keys of the relations they were solved from."""
+    combinations: tuple[tuple[Root, ...], ...]
+    """Each has one root for every unknown."""
+    where: Node | None
+    span_of: Label
+    """Where to point when no combination, or more than one, is left."""
+
+
+class Implicit(Frozen, frozen=True):
+    """A quantity that is found numerically: where ``left`` equals ``right`` in a bracket."""
+
+    left: Node
+    right: Node
+    bracket: Given
+    inner: tuple[str, ...]
+    """For a settled loop: keys that are computed anew at every trial, in order."""
+    is_loop: bool
+    """Then ``left`` is the quantity's own formula and ``right`` the quantity."""
+    relation: str
+    """Key of the relation; empty for a loop."""
+
+
 class Variable(Frozen, frozen=True):
-    """A quantity with a name: given, or defined by a formula."""
+    """A quantity with a name: given, defined by a formula, solved for, or settled."""
 
     key: str
     """The spelling all spellings share."""
-    symbol: str
+    label: Label
     """As typed where it is defined."""
+    kind: str
+    """``condition``, ``input``, ``assumption``, ``derived``, ``solved`` or ``settled``."""
     typed: Typed
     unit: Unit | None
     """The unit it is shown in; None when one is to be chosen."""
-    statement: GivenStatement | Definition
+    description: str
+    basis: Basis
     depends_on: tuple[str, ...]
-    """Keys of the quantities its formula mentions, in order."""
+    """Keys of the quantities it rests on, in order."""
+    given: Given | None = None
+    """Its value, when it is given."""
+    stated: GivenStatement | None = None
+    """The statement that gives it."""
+    formula: Node | None = None
+    """Its formula, when it is defined by one (a loop has one too)."""
+    solved: Solved | None = None
+    implicit: Implicit | None = None
+    index: Index | None = None
+    """The indices of a series."""
 
     @property
-    def given(self) -> Given | None:
-        """Its value, when it is given and not defined."""
-        return self.statement.given if isinstance(self.statement, GivenStatement) else None
+    def symbol(self) -> str:
+        """As typed where it is defined."""
+        return self.label.name
 
-    @property
-    def formula(self) -> Node | None:
-        """Its formula, when it is defined."""
-        return self.statement.formula if isinstance(self.statement, Definition) else None
+
+class Relation(Frozen, frozen=True):
+    """An equation that is stated, with the quantities it names."""
+
+    key: str
+    statement: RelationStatement
+    names: tuple[str, ...]
 
 
 class Judged(Frozen, frozen=True):
     """A criterion that is calculated, with the kind of quantity it compares."""
 
     statement: Inequality
+    typed: Typed
+    depends_on: tuple[str, ...]
+
+
+class Compared(Frozen, frozen=True):
+    """A cross-check between two ways to one quantity."""
+
+    statement: CrosscheckStatement
     typed: Typed
     depends_on: tuple[str, ...]
 
@@ -78,7 +144,11 @@ class Model(Frozen, frozen=True):
     """By key, in the author's order."""
     order: tuple[str, ...]
     """Keys such that each comes after those it depends on."""
+    relations: Mapping[str, Relation]
     criteria: tuple[Judged | Uncalculated, ...]
+    crosschecks: tuple[Compared, ...]
+    restated: tuple[RestateStatement, ...]
+    sensitivities: tuple[SensitivityStatement, ...]
     sentences: tuple[SentenceStatement, ...]
     hazards: tuple[HazardStatement, ...]
     discharges: tuple[Discharge, ...]

@@ -1,6 +1,6 @@
 """One namespace for a whole document: symbols and ids, each defined once, all known."""
 
-from collections.abc import Iterable, Iterator, Mapping
+from collections.abc import Collection, Iterable, Iterator, Mapping
 
 from calcdoc.frozen import Frozen
 from calcdoc.model.constants import CONSTANTS
@@ -8,22 +8,29 @@ from calcdoc.problems import Finding, Place, error
 from calcdoc.text.document import Document
 from calcdoc.text.given import Given
 from calcdoc.text.names import fold, nearest, taken_as
-from calcdoc.text.nodes import Name, Node, Quantity, UnitText, names, walk
+from calcdoc.text.nodes import Node, Quantity, UnitText, names, walk
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
+    CrosscheckStatement,
     Definition,
     GivenStatement,
     HazardStatement,
+    Index,
     Inequality,
     Label,
+    RelationStatement,
+    RestateStatement,
+    SensitivityStatement,
     SentenceStatement,
+    SettleStatement,
+    SolvedStatement,
     Statement,
     Uncalculated,
 )
 from calcdoc.text.unparse import unit_text
 from calcdoc.units import known_word
 
-Valued = GivenStatement | Definition
+Valued = GivenStatement | Definition | SolvedStatement
 
 
 class Namespace(Frozen, frozen=True):
@@ -32,16 +39,19 @@ class Namespace(Frozen, frozen=True):
     quantities: Mapping[str, Valued]
     labels: Mapping[str, Label]
     """Symbols and ids alike."""
+    ids: Mapping[str, str]
+    """Key of an id to what it is the id of: ``relation``, ``criterion``, ..."""
 
     def spelled(self) -> list[str]:
         """Every symbol as typed where it is defined."""
-        return [each.symbol.name for each in self.quantities.values()]
+        return [self.labels[key].name for key in self.quantities]
 
 
 def collect(document: Document) -> tuple[Namespace, list[Finding]]:
     """Every symbol and id, and what is defined twice or takes a reserved word."""
     quantities: dict[str, Valued] = {}
     labels: dict[str, Label] = {}
+    ids: dict[str, str] = {}
     findings: list[Finding] = []
     for statement, label, what in _labels(document.statements):
         taken = taken_as(label.name)
@@ -67,21 +77,36 @@ def collect(document: Document) -> tuple[Namespace, list[Finding]]:
             )
         else:
             labels[label.key] = label
-            if what == "symbol" and isinstance(statement, GivenStatement | Definition):
+            if isinstance(statement, Valued) and what == "symbol":
                 quantities[label.key] = statement
-    return Namespace(quantities, labels), findings
+            else:
+                ids[label.key] = what
+    return Namespace(quantities, labels, ids), findings
 
 
 def _labels(statements: Iterable[Statement]) -> Iterator[tuple[Statement, Label, str]]:
+    """Every name a statement defines, and what it is."""
     for each in statements:
-        if isinstance(each, GivenStatement):
-            if each.id:
-                yield each, each.id, "id"
-            yield each, each.symbol, "symbol"
-        elif isinstance(each, Definition):
-            yield each, each.symbol, "symbol"
-        elif isinstance(each, SentenceStatement | Inequality | Uncalculated):
-            yield each, each.id, "id"
+        match each:
+            case GivenStatement():
+                if each.id:
+                    yield each, each.id, "assumption"
+                yield each, each.symbol, "symbol"
+            case Definition():
+                yield each, each.symbol, "symbol"
+            case SolvedStatement():
+                for unknown in each.unknowns:
+                    yield each, unknown.symbol, "symbol"
+            case RelationStatement():
+                yield each, each.name, "relation"
+            case SentenceStatement():
+                yield each, each.id, "assumption"
+            case CrosscheckStatement():
+                yield each, each.id, "cross-check"
+            case Inequality() | Uncalculated():
+                yield each, each.id, "criterion"
+            case _:
+                pass
 
 
 def _advice(what: str) -> str:
@@ -96,12 +121,53 @@ def unknown_names(document: Document, space: Namespace) -> list[Finding]:
     """Names that are used but nowhere defined, with the nearest one that is."""
     findings = []
     for statement in document.statements:
-        own = {statement.symbol.key} if isinstance(statement, Definition) else set()
+        own = {label.key for _, label, what in _labels((statement,)) if what == "symbol"}
+        running = {each.name.key for each in (running_index(statement),) if each}
         for label in _used(statement):
-            if label.key in space.quantities or label.key in CONSTANTS:
-                continue
-            findings.append(_unknown(label, space, own))
+            known = label.key in space.quantities or label.key in CONSTANTS
+            if not known and label.key not in running:
+                findings.append(_unknown(label, space, own))
+        findings += _unknown_relations(statement, space)
     return findings
+
+
+def running_index(statement: Statement) -> Index | None:
+    """The running index of a series or of a criterion for each element."""
+    if isinstance(statement, Definition):
+        return statement.index
+    return statement.clauses.index if isinstance(statement, Inequality) else None
+
+
+def shadowed(document: Document, space: Namespace) -> list[Finding]:
+    """Running indices that are also symbols, so that a formula could mean either."""
+    return [
+        error(
+            "series-form",
+            f"the running index {shown(index.name.name)} is also a symbol of this design",
+            index.name.span,
+            related=(Place(space.labels[index.name.key].span, "the symbol"),),
+            help="give the index another name",
+        )
+        for statement in document.statements
+        if (index := running_index(statement)) and index.name.key in space.labels
+    ]
+
+
+def _unknown_relations(statement: Statement, space: Namespace) -> Iterator[Finding]:
+    if not isinstance(statement, SolvedStatement):
+        return
+    relations = [key for key, what in space.ids.items() if what == "relation"]
+    for label in statement.relations:
+        if label.key not in relations:
+            near = nearest(label.name, [space.labels[key].name for key in relations])
+            yield error(
+                "unknown-symbol",
+                f"there is no relation {shown(label.name)}",
+                label.span,
+                help=f"did you mean {near}?"
+                if near
+                else f"state it: relation {label.name}: left = right",
+            )
 
 
 def _unknown(label: Label, space: Namespace, own: set[str]) -> Finding:
@@ -127,19 +193,37 @@ def _used(statement: Statement) -> Iterator[Label]:
     """Every name a statement uses, where it stands."""
     for tree in trees(statement):
         for name in names(tree):
-            if isinstance(name, Name):  # an element of a series is not available yet
-                yield Label(name.name, name.span)
-    if isinstance(statement, HazardStatement):
-        yield from statement.symbols
-    if isinstance(statement, Inequality):
-        yield from (point.symbol for point in statement.clauses.at)
+            yield Label(name.name, name.span)
+    match statement:
+        case HazardStatement():
+            yield from statement.symbols
+        case Inequality():
+            yield from (point.symbol for point in statement.clauses.at)
+        case SettleStatement():
+            yield statement.symbol
+        case RestateStatement():
+            yield from (statement.symbol, *statement.terms)
+        case SensitivityStatement():
+            yield from (statement.symbol, *statement.inputs)
+        case _:
+            pass
 
 
 def trees(statement: Statement) -> tuple[Node, ...]:
     """The formulas of a statement."""
-    if isinstance(statement, Definition):
-        return (statement.formula,)
-    return statement.operands if isinstance(statement, Inequality) else ()
+    match statement:
+        case Definition():
+            return (statement.formula,)
+        case Inequality():
+            return statement.operands
+        case RelationStatement():
+            return (statement.left, statement.right)
+        case SolvedStatement():
+            return (statement.where,) if statement.where is not None else ()
+        case CrosscheckStatement():
+            return (statement.first, statement.second)
+        case _:
+            return ()
 
 
 def two_readings(document: Document, space: Namespace) -> list[Finding]:
@@ -184,6 +268,8 @@ def _units(statement: Statement) -> Iterator[tuple[str, UnitText]]:
     given: list[Given] = []
     if isinstance(statement, GivenStatement):
         given.append(statement.given)
+    if isinstance(statement, SolvedStatement | SettleStatement) and statement.bracket:
+        given.append(statement.bracket)
     if isinstance(statement, Inequality):
         given += [point.given for point in statement.clauses.at]
         if statement.clauses.margin:
@@ -193,7 +279,9 @@ def _units(statement: Statement) -> Iterator[tuple[str, UnitText]]:
             yield "", unit
 
 
-def direct_uses(tree: Node, space: Namespace) -> tuple[str, ...]:
-    """Keys of the quantities a formula mentions, in order, each once."""
-    keys = (fold(name.name) for name in names(tree))
-    return tuple(dict.fromkeys(key for key in keys if key in space.quantities))
+def direct_uses(
+    trees_: Iterable[Node], space: Namespace, running: Collection[str] = ()
+) -> tuple[str, ...]:
+    """Keys of the quantities that formulas mention, in order, each once."""
+    keys = (fold(name.name) for tree in trees_ for name in names(tree))
+    return tuple(dict.fromkeys(k for k in keys if k in space.quantities and k not in running))

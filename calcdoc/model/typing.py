@@ -5,15 +5,17 @@ a plain factor scales them, a product of another dimension resets them to 0. Wha
 each side of a comparison, must have weight 0 or 1: ``T_a + P*R_th`` has, ``T_a + 10 °C`` has not.
 """
 
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from fractions import Fraction
 from itertools import pairwise
-from typing import Final, NoReturn
+from typing import Final
 
+from calcdoc.model import blame, series
+from calcdoc.model.blame import Places
+from calcdoc.model.constant import constant_value
 from calcdoc.model.constants import CONSTANTS
 from calcdoc.model.model import Typed
-from calcdoc.problems import Mistake, Place, error
-from calcdoc.source import Span
+from calcdoc.problems import Mistake, error
 from calcdoc.text import literal
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import (
@@ -31,12 +33,9 @@ from calcdoc.text.nodes import (
     Quantity,
     Text,
     children,
-    walk,
 )
-from calcdoc.text.scan import shown
-from calcdoc.text.unparse import unparse
+from calcdoc.text.statements import Index
 from calcdoc.units import ONE
-from calcdoc.units.dimension import TEMPERATURE
 
 PLAIN: Final = Typed(ONE)
 _SAME: Final = frozenset({"min", "max", "sum", "rss", "abs"})
@@ -45,10 +44,6 @@ _LARGEST_POWER: Final = 1000
 
 class Unknown(Exception):
     """A name has no type because its own line is wrong; that was reported there."""
-
-
-Lookup = Callable[[Name], Typed]
-Places = Mapping[str, Span]
 
 
 class Checker:
@@ -62,34 +57,37 @@ class Checker:
     def __init__(self, types: Mapping[str, Typed | None], places: Places) -> None:
         self.types = types
         self.places = places
+        self.sets: dict[str, tuple[int, ...]] = {}
+        """Indices of every series so far, by key."""
         self._known: dict[int, Typed] = {}
+        self._running: Index | None = None
 
-    def quantity(self, node: Node) -> Typed:
-        """The type of what gets a name.
+    def quantity(self, node: Node, running: Index | None = None) -> Typed:
+        """The type of what gets a name; ``running`` is the running index of a series.
 
         Raises:
             Mistake: at the smallest wrong piece.
             Unknown: when it rests on a name whose own line is wrong.
         """
+        self._running = running
         typed = self.of(node)
         if typed.weight not in (0, 1):
-            self._blame_weight(node)
+            blame.weight(node, self._known)
         return typed
 
-    def comparison(self, operands: tuple[Node, ...]) -> Typed:
+    def comparison(self, operands: tuple[Node, ...], running: Index | None = None) -> Typed:
         """The common type of the sides of a comparison."""
-        typed = self.quantity(operands[0])
+        typed = self.quantity(operands[0], running)
         for before, side in pairwise(operands):
-            other = self.quantity(side)
+            other = self.quantity(side, running)
             if other.dimension != typed.dimension:
-                self._mismatch(
+                blame.unlike(
                     f"cannot compare {typed.dimension.in_words()} with"
                     f" {other.dimension.in_words()}",
-                    before,
-                    side,
-                    typed,
-                    other,
+                    (before, typed),
+                    (side, other),
                     "and",
+                    self.places,
                 )
             if other.weight != typed.weight:
                 raise Mistake(
@@ -139,20 +137,33 @@ class Checker:
             case Text():
                 raise Mistake(error("syntax", "a text in quotes is for look-ups only", node.span))
             case Element():
-                raise Mistake(
-                    error(
-                        "not-available-yet",
-                        "an element of a series is not available yet",
-                        node.span,
-                        help="it is reserved for a coming version",
-                    )
+                return self._element(node)
+
+    def _element(self, node: Element) -> Typed:
+        """An element of a series is of the kind of the series."""
+        of_series = self._of_key(fold(node.name))
+        index = self.of(node.index)
+        if index.dimension != ONE:
+            raise Mistake(
+                error(
+                    "unit-mismatch",
+                    f"an index is a plain number, this is {index.dimension.in_words()}",
+                    node.index.span,
                 )
+            )
+        running = self._running
+        for value in running.values if running else (0,):
+            series.element(node, self.sets, {running.name.key: value} if running else {})
+        return of_series
 
     def _name(self, node: Name) -> Typed:
         key = fold(node.name)
-        if key in CONSTANTS:
-            return Typed(CONSTANTS[key].dimension)
-        typed = self.types[key]
+        if self._running and key == self._running.name.key:
+            return PLAIN
+        return Typed(CONSTANTS[key].dimension) if key in CONSTANTS else self._of_key(key)
+
+    def _of_key(self, key: str) -> Typed:
+        typed = self.types.get(key)
         if typed is None:
             raise Unknown
         return typed
@@ -164,7 +175,7 @@ class Checker:
         right = self.of(node.right)
         if node.op in "+-":
             if left.dimension != right.dimension:
-                self._sum_mismatch(node, left, right)
+                blame.unlike_sum(node, left, right, self.places)
             sign = 1 if node.op == "+" else -1
             return Typed(left.dimension, left.weight + sign * right.weight)
         if node.op == "*":
@@ -204,7 +215,7 @@ class Checker:
                     "unit-mismatch",
                     f"an exponent is a plain number, this is {exponent.dimension.in_words()}",
                     node.right.span,
-                    related=self._related(node.right),
+                    related=blame.defined(node.right, exponent, self.places),
                     help="divide it by a quantity of its kind",
                 )
             )
@@ -239,7 +250,8 @@ class Checker:
         if name in _SAME:
             typed = self._alike(node, arguments)
             if name == "sum":
-                return Typed(typed.dimension, typed.weight * len(arguments))
+                counted = max(len(arguments), len(series.over(arguments[0], self.sets)))
+                return Typed(typed.dimension, typed.weight * counted)
             if name == "rss" and typed.weight:
                 raise Mistake(
                     error(
@@ -261,14 +273,13 @@ class Checker:
         for argument in arguments[1:]:
             other = self.of(argument)
             if other.dimension != first.dimension:
-                self._mismatch(
+                blame.unlike(
                     f"{node.function} needs values of one kind, not"
                     f" {first.dimension.in_words()} and {other.dimension.in_words()}",
-                    arguments[0],
-                    argument,
-                    first,
-                    other,
+                    (arguments[0], first),
+                    (argument, other),
                     "and",
+                    self.places,
                     at=argument.span,
                 )
             if other.weight != first.weight:
@@ -290,7 +301,7 @@ class Checker:
                     "unit-mismatch",
                     f"{node.function} needs a plain number, this is {typed.dimension.in_words()}",
                     argument.span,
-                    related=self._related(argument),
+                    related=blame.defined(argument, typed, self.places),
                     help=f"divide it by a quantity of its kind, as in {node.function}(V/(1 V))",
                 )
             )
@@ -312,136 +323,3 @@ class Checker:
                         help="compare it, as in x > 0 V",
                     )
                 )
-
-    # --- what is wrong, and where -------------------------------------------------------------
-
-    def _sum_mismatch(self, node: Binary, left: Typed, right: Typed) -> NoReturn:
-        one, other = left.dimension.in_words(), right.dimension.in_words()
-        message = (
-            f"cannot add {one} and {other}"
-            if node.op == "+"
-            else f"cannot subtract {other} from {one}"
-        )
-        chained = isinstance(node.left, Binary) and node.left.op in "+-"
-        self._mismatch(
-            message,
-            node.left,
-            node.right,
-            left,
-            right,
-            node.op,
-            at=node.right.span if chained else None,
-        )
-
-    def _mismatch(  # noqa: PLR0913  (both sides, and how to say it)
-        self,
-        message: str,
-        left: Node,
-        right: Node,
-        one: Typed,
-        other: Typed,
-        joint: str,
-        at: Span | None = None,
-    ) -> NoReturn:
-        label = f"{_bare(one)} {joint} {_bare(other)}"
-        advice = ""
-        needed = one.dimension / other.dimension
-        if not needed.in_words().startswith("a quantity in") and needed != ONE:
-            advice = (
-                f"multiply {shown(unparse(right))} by {needed.in_words()} to get"
-                f" {one.dimension.in_words()}"
-            )
-        raise Mistake(
-            error(
-                "unit-mismatch",
-                message,
-                at or left.span.to(right.span),
-                label=label,
-                related=self._related(left) + self._related(right),
-                help=advice,
-            )
-        )
-
-    def _related(self, node: Node) -> tuple[Place, ...]:
-        """Where the name that is the whole of an operand was defined."""
-        while isinstance(node, Group):
-            node = node.inner
-        if not isinstance(node, Name) or fold(node.name) not in self.places:
-            return ()
-        words = self.of(node).dimension.in_words()
-        return (Place(self.places[fold(node.name)], f"{node.name} is {words}"),)
-
-    def _blame_weight(self, node: Node) -> NoReturn:
-        """Point at the smallest piece that is neither a temperature nor a difference."""
-        culprit = node
-        for each in walk(node):
-            known = self._known.get(id(each))
-            if known and known.dimension == TEMPERATURE and known.weight not in (0, 1):
-                culprit = each
-        while isinstance(culprit, Group):
-            culprit = culprit.inner
-        if isinstance(culprit, Binary) and culprit.op == "+":
-            right = culprit.right
-            advice = (
-                f"write {right.digits} K for a difference"
-                if isinstance(right, Quantity)
-                else "subtract 0 °C from one of them to make it a difference"
-            )
-            raise Mistake(
-                error(
-                    "temperature",
-                    "this adds two temperatures on the Celsius scale; a difference is in kelvin",
-                    right.span,
-                    help=advice,
-                )
-            )
-        raise Mistake(
-            error(
-                "temperature",
-                "a share of a temperature on the Celsius scale means nothing"
-                if isinstance(culprit, Binary) and culprit.op in "*/"
-                else "this is neither a temperature nor a difference of temperatures",
-                culprit.span,
-                help="take shares of differences: T_1 + 0.9*(T_2 - T_1)",
-            )
-        )
-
-
-def _bare(typed: Typed) -> str:
-    return typed.dimension.in_words().removeprefix("a ").removeprefix("an ")
-
-
-def constant_value(node: Node) -> Fraction | None:
-    """The exact value of an expression of plain numbers, or None; bounded in time."""
-    match node:
-        case Number(digits):
-            return Fraction(digits)
-        case Quantity(digits):
-            unit = literal.resolve(node.unit)
-            return Fraction(digits) * unit.factor if unit.dimension == ONE else None
-        case Group(inner):
-            return constant_value(inner)
-        case Negate(operand):
-            value = constant_value(operand)
-            return None if value is None else -value
-        case Binary(op, left, right):
-            one, other = constant_value(left), constant_value(right)
-            return None if one is None or other is None else _fold(op, one, other)
-        case _:
-            return None
-
-
-def _fold(op: str, one: Fraction, other: Fraction) -> Fraction | None:
-    match op:
-        case "+":
-            return one + other
-        case "-":
-            return one - other
-        case "*":
-            return one * other
-        case "/":
-            return one / other if other else None
-        case _:
-            small = other.denominator == 1 and abs(other) <= 20  # noqa: PLR2004  (keeps it quick)
-            short = max(one.numerator.bit_length(), one.denominator.bit_length()) < 64  # noqa: PLR2004
-            return one ** int(other) if small and short and (one or other > 0) else None

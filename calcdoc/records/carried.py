@@ -3,7 +3,7 @@
 from collections.abc import Callable
 from fractions import Fraction
 
-from calcdoc.model.typing import constant_value
+from calcdoc.model.constant import constant_value
 from calcdoc.records.rounding import trimmed
 from calcdoc.records.wording import NO_BREAK, typeset
 from calcdoc.text import literal

@@ -64,7 +64,7 @@ def hazard_warning(evaluation: Evaluation) -> tuple[Finding, ...]:
                 warning(
                     "hazards-missing",
                     f"`{variable.symbol}` is above 50 V and the text has no `hazards` block",
-                    variable.statement.symbol.span,
+                    variable.label.span,
                     help="declare what can hurt: supply V, stored C at V through R, not isolated;"
                     " until then the mains caution is printed",
                 ),

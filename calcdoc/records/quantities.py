@@ -17,7 +17,6 @@ from calcdoc.records.values import computed, exact_limit, given_nominal, stands_
 from calcdoc.records.wording import band_in_words, typeset
 from calcdoc.text.given import Given, Style
 from calcdoc.text.names import fold
-from calcdoc.text.statements import GivenStatement
 from calcdoc.text.unparse import unparse
 from calcdoc.units import PLAIN, Unit
 
@@ -81,13 +80,12 @@ def quantities(numbers: Numbers, naming: Naming) -> tuple[r.Quantity, ...]:
 
 def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantity:
     band, unit = numbers.evaluation.bands[variable.key], numbers.units[variable.key]
-    statement, given = variable.statement, variable.given
+    stated, given = variable.stated, variable.given
     least, nominal, greatest = _in_unit(band, unit, given)
-    stated = statement if isinstance(statement, GivenStatement) else None
     return r.Quantity(
         symbol=variable.symbol,
         line=naming.lines[variable.key],
-        kind=stated.kind.value if stated else "derived",
+        kind=variable.kind,
         unit=unit.text,
         nominal=nominal,
         least=least,
@@ -103,8 +101,8 @@ def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantit
         residual=None,
         depends_on=tuple(numbers.model.variables[key].symbol for key in variable.depends_on),
         used_by=naming.used_by[variable.key],
-        description=statement.description,
-        basis=statement.basis.text,
+        description=variable.description,
+        basis=variable.basis.text,
         by_case={},
         id=stated.id.name if stated and stated.id else "",
         state=stated.state if stated else "",

@@ -142,9 +142,5 @@ def unsourced(model: Model) -> tuple[str, ...]:
 
 
 def _lacks_source(variable: Variable) -> bool:
-    statement = variable.statement
-    return (
-        isinstance(statement, GivenStatement)
-        and statement.kind is not Kind.ASSUMPTION
-        and not statement.basis.text
-    )
+    stated = variable.stated
+    return stated is not None and stated.kind is not Kind.ASSUMPTION and not stated.basis.text

@@ -1,17 +1,18 @@
 """Acceptance criteria: an inequality with clauses, or a verdict that is not calculated."""
 
 import re
-from typing import Final, NoReturn
+from typing import Final
 
 from calcdoc.frozen import replace
 from calcdoc.problems import Mistake, error
 from calcdoc.text.cells import basis, columns, label, labelled, plain
+from calcdoc.text.derivation import index_set
 from calcdoc.text.formula import formula
 from calcdoc.text.given import given
 from calcdoc.text.literal import resolve
 from calcdoc.text.nodes import Node
 from calcdoc.text.passage import Passage
-from calcdoc.text.scan import Scanner
+from calcdoc.text.scan import Scanner, not_yet
 from calcdoc.text.statements import Clauses, Inequality, Label, Margin, PointValue, Uncalculated
 
 _UNCALCULATED: Final = re.compile(r"(by test|by inspection|not applicable)\s*:\s*")
@@ -32,7 +33,7 @@ def criterion(statement: Passage) -> Inequality | Uncalculated:
     """``ID ":" (inequality clause* | verdict ":" text) | description | basis``"""
     first, description, source = columns(statement, CRITERION_COLUMNS)
     if found := _ACCEPT.match(first.text):
-        _later(Scanner(first), found.start(), found.end() - 1, "an accepted failure")
+        raise Mistake(not_yet("an accepted failure", first.span(found.start(), found.end() - 1)))
     name, scanner = labelled(first, "the id of the criterion and a colon, as in R1:")
     if found := scanner.take(_UNCALCULATED):
         text = plain(first.part(found.end(), len(first.text)))
@@ -40,7 +41,7 @@ def criterion(statement: Passage) -> Inequality | Uncalculated:
             scanner.refuse(f"what `{found[1]}` is about")
         return Uncalculated(name, found[1], text, plain(description), basis(source), first.whole)
     if found := scanner.look(_ANY_OF):
-        _later(scanner, *found.span(), "`any of`")
+        raise Mistake(not_yet("`any of`", scanner.span(*found.span())))
     operands, operators = _inequality(scanner)
     clauses = _clauses(scanner)
     return Inequality(
@@ -108,13 +109,16 @@ def _clauses(scanner: Scanner) -> Clauses:
 
 def _clause(scanner: Scanner, clauses: Clauses, word: str, start: int) -> Clauses:
     if word in _LATER:
-        _later(scanner, start, scanner.at, _LATER[word])
+        raise Mistake(not_yet(_LATER[word], scanner.span(start, scanner.at)))
+    if word == "for":
+        scanner.at = start
+        return replace(clauses, index=index_set(scanner, None))
     if word == "by":
         found = scanner.take(_METHOD)
         if found is None:
             scanner.refuse("`extremes`, `root sum square` or `sampling`")
         if found[1] != "extremes":
-            _later(scanner, *found.span(), f"`by {found[1]}`")
+            raise Mistake(not_yet(f"`by {found[1]}`", scanner.span(*found.span())))
         return clauses
     if word == "with":
         scanner.expect(_MARGIN, "`margin` after `with`")
@@ -149,14 +153,3 @@ def _point(scanner: Scanner) -> tuple[PointValue, ...]:
         values.append(PointValue(symbol, given(scanner)))
         if scanner.take(_COMMA) is None:
             return tuple(values)
-
-
-def _later(scanner: Scanner, start: int, end: int, what: str) -> NoReturn:
-    raise Mistake(
-        error(
-            "not-available-yet",
-            f"{what} is not available yet",
-            scanner.span(start, end),
-            help="it is reserved for a coming version",
-        )
-    )

@@ -13,6 +13,7 @@ from calcdoc.text.commonmark import Fence, read_prose
 from calcdoc.text.criteria import criterion
 from calcdoc.text.passage import Passage
 from calcdoc.text.rules import RULES
+from calcdoc.text.scan import not_yet
 from calcdoc.text.statements import Statement
 from calcdoc.text.titleblock import TitleBlock, title_block
 
@@ -23,7 +24,7 @@ _STATEMENT_RULES: Final[dict[str, Callable[[Passage], Statement]]] = {
     "criteria": criterion,
 }
 _OTHER_BLOCKS: Final = ("document", "caution")
-_COMING: Final = ("crosschecks", "cases", "use", "figure", "takes", "gives")
+_COMING: Final = ("cases", "use", "figure", "takes", "gives")
 BLOCK_WORDS: Final = (*_OTHER_BLOCKS, *_STATEMENT_RULES, *_COMING)
 SIGNALS: Final = ("danger", "warning", "caution", "notice")
 _FENCE_LINE: Final = re.compile(r" {0,3}(?P<marks>`{3,}|~{3,}) *(?P<word>[a-z]+)(?: .*)?")
@@ -204,14 +205,7 @@ class _Reader:
         if fence.word in _STATEMENT_RULES:
             return self._statements(fence, _STATEMENT_RULES[fence.word])
         if fence.word in _COMING:
-            self.findings.append(
-                error(
-                    "not-available-yet",
-                    f"`{fence.word}` blocks are not available yet",
-                    fence.opening,
-                    help="the word is reserved for a coming version",
-                )
-            )
+            self.findings.append(not_yet(f"a `{fence.word}` block", fence.opening))
             return None
         self._check_word(fence)
         return prose.Listing("\n".join(fence.lines))

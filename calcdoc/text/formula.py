@@ -22,7 +22,7 @@ from calcdoc.text.nodes import (
     children,
 )
 from calcdoc.text.passage import Passage, passage_of
-from calcdoc.text.scan import Scanner, shown
+from calcdoc.text.scan import Scanner, not_yet, shown
 
 DEEPEST: Final = 60
 """Parentheses and functions within each other."""
@@ -166,12 +166,7 @@ class _Parser:
             return self._element(name, found)
         if of_method := _OF_METHOD.match(text, found.end()):
             raise Mistake(
-                error(
-                    "not-available-yet",
-                    "a symbol of a method is not available yet",
-                    self.scanner.span(found.start(), of_method.end()),
-                    help="it is reserved for a coming version",
-                )
+                not_yet("a symbol of a method", self.scanner.span(found.start(), of_method.end()))
             )
         return Name(name, span)
 

@@ -14,7 +14,7 @@ from calcdoc.problems import Mistake, error
 from calcdoc.source import Span
 from calcdoc.text import literal
 from calcdoc.text.nodes import Quantity, UnitText
-from calcdoc.text.scan import Scanner
+from calcdoc.text.scan import Scanner, not_yet
 from calcdoc.text.unparse import unit_text
 from calcdoc.units import ONE, PLAIN, Unit
 
@@ -96,11 +96,10 @@ def given(scanner: Scanner) -> Given:
         )
     if later := scanner.look(_LATER):
         raise Mistake(
-            error(
-                "not-available-yet",
-                f"`{later.group()}` is not available yet",
+            not_yet(
+                f"`{later.group()}`",
                 scanner.span(*later.span()),
-                help="state the band alone: ± 10 %, -20 % +50 %, or limits a .. b",
+                "state the band alone: ± 10 %, -20 % +50 %, or limits a .. b",
             )
         )
     return value

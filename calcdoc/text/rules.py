@@ -2,19 +2,18 @@
 
 import re
 from collections.abc import Callable, Mapping
-from typing import Final, NoReturn
+from typing import Final
 
 from calcdoc.problems import Mistake, error
-from calcdoc.text import literal
 from calcdoc.text.cells import basis, columns, label, labelled, plain, state
-from calcdoc.text.formula import formula
+from calcdoc.text.crosschecks import crosscheck
+from calcdoc.text.derivation import derivation
 from calcdoc.text.given import given
 from calcdoc.text.names import SYMBOL
 from calcdoc.text.passage import Passage
-from calcdoc.text.scan import Scanner
+from calcdoc.text.scan import Scanner, not_yet
 from calcdoc.text.statements import (
     Basis,
-    Definition,
     GivenStatement,
     HazardStatement,
     Kind,
@@ -28,10 +27,8 @@ _EQUALS: Final = re.compile(r"=(?!=)")
 _BRACKET: Final = re.compile(r"\[")
 _ID: Final = re.compile(rf"({SYMBOL.pattern})\s*:")
 _SYMBOL_EQUALS: Final = re.compile(rf"{SYMBOL.pattern}\s*(?:\[[^\]]*\])?\s*=")
-_LATER_DERIVE: Final = re.compile(r"(relation|settle|restate|sensitivity)\s+\S|[^=]*\s(from)\s")
 _AT: Final = re.compile(r"at\b")
 _THROUGH: Final = re.compile(r"through\b")
-_FOR: Final = re.compile(r"for\b")
 _HAZARD: Final = re.compile(r"(supply|stored|not isolated)(?=\s|$)")
 
 GIVEN_COLUMNS: Final = ("statement", "description", "basis")
@@ -62,7 +59,7 @@ def _given(  # noqa: PLR0913  (the parts of a statement)
         scanner.refuse("`=` (the unit of a given value stands after its number)")
     scanner.expect(_EQUALS, "`=`")
     if scanner.look(re.compile('"')):
-        _later(scanner, scanner.at, "a text value")
+        raise Mistake(not_yet("a text value", scanner.span(scanner.at, scanner.at + 1)))
     value = given(scanner)
     if not scanner.ended:
         scanner.refuse("a tolerance or the end of the statement (a given value is no formula)")
@@ -89,41 +86,6 @@ def assumption(statement: Passage) -> Statement:
     if not text:
         scanner.refuse("the assumption as a sentence or as a symbol with its value")
     return SentenceStatement(name, text, plain(description), basis(rest), mark, first.whole)
-
-
-def derivation(statement: Passage) -> Statement:
-    """``SYMBOL ["[" unit "]"] = sum | description | basis``"""
-    first, description, source = columns(statement, GIVEN_COLUMNS)
-    scanner = Scanner(first)
-    if found := _LATER_DERIVE.match(first.text):
-        group = 1 if found[1] else 2
-        _later(scanner, found.start(group), f"`{found[group]}`", found.end(group))
-    symbol = label(scanner, "a symbol, as in V_pk [V] = sqrt(2)*V_line")
-    unit = None
-    if first.text[scanner.at : scanner.at + 1] == "[":
-        _later(
-            scanner,
-            scanner.at,
-            "a series",
-            advice="`X[n]` is reserved for a coming version; a unit stands after a blank: X [V]",
-        )
-    if scanner.look(_BRACKET):
-        unit = literal.bracketed_unit(scanner)
-    scanner.expect(_EQUALS, "`=`" if unit else "`=` or a unit in brackets")
-    tree = formula(scanner)
-    if found := scanner.look(_FOR):
-        _later(scanner, found.start(), "a series with `for`", found.end())
-    if not scanner.ended:
-        scanner.refuse("an operator or the end of the formula")
-    return Definition(
-        symbol,
-        literal.resolve(unit) if unit else None,
-        unit,
-        tree,
-        plain(description),
-        basis(source),
-        first.whole,
-    )
 
 
 def hazard(statement: Passage) -> Statement:
@@ -170,22 +132,12 @@ def reference(statement: Passage) -> Statement:
     return ReferenceStatement(plain(key), plain(title), plain(edition), plain(held), key.whole)
 
 
-def _later(
-    scanner: Scanner,
-    start: int,
-    what: str,
-    end: int | None = None,
-    advice: str = "it is reserved for a coming version",
-) -> NoReturn:
-    span = scanner.span(start, end if end is not None else start + 1)
-    raise Mistake(error("not-available-yet", f"{what} is not available yet", span, help=advice))
-
-
 RULES: Final[Mapping[str, Callable[[Passage], Statement]]] = {
     "conditions": condition,
     "inputs": input_,
     "assumptions": assumption,
     "derive": derivation,
+    "crosschecks": crosscheck,
     "hazards": hazard,
     "references": reference,
 }

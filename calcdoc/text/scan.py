@@ -9,7 +9,7 @@ import unicodedata
 from dataclasses import dataclass
 from typing import Final, NoReturn
 
-from calcdoc.problems import Mistake, Place, error
+from calcdoc.problems import Finding, Mistake, Place, error
 from calcdoc.source import Span
 from calcdoc.text.names import LETTER, MARK
 from calcdoc.text.passage import Passage
@@ -125,6 +125,11 @@ def _advice(wanted: str, found: str) -> str:
 
 SHOWN_MOST: Final = 40
 """Characters of the author's text that a message shows."""
+
+
+def not_yet(what: str, span: Span, advice: str = "it is reserved for a coming version") -> Finding:
+    """What to say of a word whose meaning is fixed but cannot be computed yet."""
+    return error("not-available-yet", f"{what} is not available yet", span, help=advice)
 
 
 def shown(text: str) -> str:

@@ -72,8 +72,17 @@ class SentenceStatement(Frozen, frozen=True):
     span: Span
 
 
+class Index(Frozen, frozen=True):
+    """``for n in 3..39 odd``: the running index of a series and the values it takes."""
+
+    name: Label
+    values: tuple[int, ...]
+    text: str
+    """The set as written: ``3..39 odd``."""
+
+
 class Definition(Frozen, frozen=True):
-    """``V_pk [V] = sqrt(2)*V_line | description | basis``."""
+    """``V_pk [V] = sqrt(2)*V_line``, or a series ``limit[n] [mA] = 3.4 mA/n for n in 3..39 odd``."""
 
     symbol: Label
     unit: Unit | None
@@ -82,6 +91,84 @@ class Definition(Frozen, frozen=True):
     formula: Node
     description: str
     basis: Basis
+    span: Span
+    index: Index | None = None
+
+
+class Unknown(Frozen, frozen=True):
+    """A quantity that relations are solved for, with the unit it is shown in."""
+
+    symbol: Label
+    unit: Unit | None
+    unit_text: UnitText | None
+
+
+class RelationStatement(Frozen, frozen=True):
+    """``relation charge: C_res*ΔV = I_reg*t_dis``: an equation that is stated, not solved."""
+
+    name: Label
+    left: Node
+    right: Node
+    description: str
+    basis: Basis
+    span: Span
+
+
+class SolvedStatement(Frozen, frozen=True):
+    """``ΔV [V] from charge``, ``V_a, I_a from loop, node``, with ``where`` or ``within``."""
+
+    unknowns: tuple[Unknown, ...]
+    relations: tuple[Label, ...]
+    where: Node | None
+    """A condition that leaves one root."""
+    bracket: Given | None
+    """Solve numerically between these values."""
+    description: str
+    basis: Basis
+    span: Span
+
+
+class SettleStatement(Frozen, frozen=True):
+    """``settle T_b within -40 °C .. 200 °C``: a quantity that depends on itself."""
+
+    symbol: Label
+    bracket: Given
+    description: str
+    basis: Basis
+    span: Span
+
+
+class RestateStatement(Frozen, frozen=True):
+    """``restate ΔV in C_res, I_reg, f_line``: the same result in terms of chosen quantities."""
+
+    symbol: Label
+    terms: tuple[Label, ...]
+    description: str
+    span: Span
+
+
+class SensitivityStatement(Frozen, frozen=True):
+    """``sensitivity of P_reg to V_line, V_LED``: partial derivatives as formulas and numbers."""
+
+    symbol: Label
+    inputs: tuple[Label, ...]
+    description: str
+    span: Span
+
+
+class CrosscheckStatement(Frozen, frozen=True):
+    """``K1: ΔV against ΔV_1 within 25 %``, ``K2: ΔV not below ΔV_1``, ``K3: a not above b``."""
+
+    id: Label
+    first: Node
+    second: Node
+    form: str
+    """``against``, ``not below`` or ``not above``."""
+    allowed: Given | None
+    """The share of the second that ``against`` allows."""
+    description: str
+    basis: Basis
+    text: str
     span: Span
 
 
@@ -107,6 +194,7 @@ class Clauses(Frozen, frozen=True):
     at: tuple[PointValue, ...] = ()
     at_nominal: bool = False
     margin: Margin | None = None
+    index: Index | None = None
     text: str = ""
     """As written, for the record."""
 
@@ -158,6 +246,12 @@ Statement = (
     GivenStatement
     | SentenceStatement
     | Definition
+    | RelationStatement
+    | SolvedStatement
+    | SettleStatement
+    | RestateStatement
+    | SensitivityStatement
+    | CrosscheckStatement
     | Inequality
     | Uncalculated
     | HazardStatement

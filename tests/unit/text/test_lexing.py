@@ -192,6 +192,6 @@ def test_a_unit_in_brackets_needs_a_blank_before_it() -> None:
     assert isinstance(statement, Definition)
     assert statement.unit is not None
     assert (statement.symbol.name, statement.unit.text) == ("X", "V")
-    with pytest.raises(Mistake, match="a series is not available yet"):
+    with pytest.raises(Mistake, match="expected the name of the running index"):
         derivation(passage_of("", "X[3] = 3 V"))
     assert isinstance(whole_formula(passage_of("", "X[3]")), Element)

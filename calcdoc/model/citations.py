@@ -1,0 +1,94 @@
+"""Checks that need no types: citations have their references, prose names what exists."""
+
+from collections.abc import Callable, Iterator
+from typing import Final
+
+from calcdoc.model.namespace import Namespace
+from calcdoc.problems import Finding, Place, error
+from calcdoc.text.document import Document, mentions
+from calcdoc.text.names import fold, nearest
+from calcdoc.text.scan import shown
+from calcdoc.text.statements import (
+    Basis,
+    HazardStatement,
+    ReferenceStatement,
+    RestateStatement,
+    SensitivityStatement,
+    Statement,
+)
+
+
+def check_references(document: Document, _: Namespace) -> list[Finding]:
+    """Keys are unique, and every citation has its reference."""
+    keys: dict[str, ReferenceStatement] = {}
+    findings = []
+    for each in document.statements:
+        if isinstance(each, ReferenceStatement):
+            if each.key in keys:
+                findings.append(
+                    error(
+                        "defined-twice",
+                        f"the reference {shown(each.key)} stands here twice",
+                        each.span,
+                        related=(Place(keys[each.key].span, "first here"),),
+                        help="keep one of them",
+                    )
+                )
+            keys.setdefault(each.key, each)
+    for basis in _bases(document.statements):
+        for citation in basis.citations:
+            if citation.key not in keys:
+                near = nearest(citation.key, keys)
+                findings.append(
+                    error(
+                        "unknown-citation",
+                        f"there is no reference {shown(citation.key)}",
+                        citation.span,
+                        help=f"did you mean [{near}]?"
+                        if near
+                        else "add it to a `references` block: KEY | title | edition | where held",
+                    )
+                )
+    return findings
+
+
+def _bases(statements: tuple[Statement, ...]) -> Iterator[Basis]:
+    without = HazardStatement | ReferenceStatement | RestateStatement | SensitivityStatement
+    for each in statements:
+        if not isinstance(each, without):
+            yield each.basis
+
+
+def check_mentions(document: Document, space: Namespace) -> list[Finding]:
+    """Every ``{name}`` in prose is a symbol, or without a form the id of a criterion."""
+    ids = {key for key, what in space.ids.items() if what == "criterion"}
+    findings = []
+    for mention in mentions(document.body):
+        key = fold(mention.name)
+        if key in space.quantities or (key in ids and not mention.form):
+            continue
+        if key in ids:
+            findings.append(
+                error(
+                    "unknown-name",
+                    f"{shown(mention.name)} is a criterion, it has no {mention.form}",
+                    mention.span,
+                    help=f"write {{{mention.name}}}",
+                )
+            )
+            continue
+        near = nearest(mention.name, [*space.spelled(), *(space.labels[each].name for each in ids)])
+        findings.append(
+            error(
+                "unknown-name",
+                f"there is no symbol or criterion {shown(mention.name)}",
+                mention.span,
+                help=f"did you mean {{{near}}}?" if near else "for a plain brace write \\{",
+            )
+        )
+    return findings
+
+
+Check = Callable[[Document, Namespace], list[Finding]]
+CHECKS: Final[tuple[Check, ...]] = (check_references, check_mentions)
+"""Extend by adding a line."""

@@ -1,0 +1,172 @@
+"""Criteria, cross-checks and hazards: what they compare, and that it can be compared."""
+
+from collections.abc import Mapping
+
+from calcdoc.model import series
+from calcdoc.model.model import Compared, Discharge, Judged, Typed, Variable
+from calcdoc.model.namespace import Namespace, direct_uses
+from calcdoc.model.quantities import typed_as
+from calcdoc.model.typing import Checker, Unknown
+from calcdoc.problems import Finding, Mistake, Place, error
+from calcdoc.text.nodes import Node
+from calcdoc.text.scan import shown
+from calcdoc.text.statements import (
+    CrosscheckStatement,
+    HazardStatement,
+    Index,
+    Inequality,
+    PointValue,
+)
+from calcdoc.units import Dimension
+from calcdoc.units.dimension import CURRENT, TIME, VOLTAGE
+
+CAPACITANCE = CURRENT * TIME / VOLTAGE
+
+
+class Judging:
+    """Checks what stands on typed quantities."""
+
+    def __init__(
+        self, space: Namespace, checker: Checker, variables: Mapping[str, Variable]
+    ) -> None:
+        self.space, self.checker, self.variables = space, checker, variables
+
+    def criterion(self, statement: Inequality) -> Judged:
+        """A calculated criterion.
+
+        Raises:
+            Mistake: at the smallest wrong piece.
+            Unknown: when it rests on a line that is wrong itself.
+        """
+        index = statement.clauses.index
+        typed = self.checker.comparison(statement.operands, index)
+        self._check_series(statement.operands, index)
+        self._check_margin(statement, typed)
+        for point in statement.clauses.at:
+            self._check_point(point)
+        _check_once(statement.clauses.at)
+        running = {index.name.key} if index else set()
+        return Judged(statement, typed, direct_uses(statement.operands, self.space, running))
+
+    def crosscheck(self, statement: CrosscheckStatement) -> Compared:
+        """A cross-check; raises as :meth:`criterion` does."""
+        sides = (statement.first, statement.second)
+        typed = self.checker.comparison(sides)
+        self._check_series(sides, None)
+        if statement.allowed and typed.weight:
+            raise Mistake(
+                error(
+                    "temperature",
+                    "a share of a temperature on the Celsius scale means nothing",
+                    statement.allowed.span,
+                    help="compare differences of temperatures, or use `not below`",
+                )
+            )
+        return Compared(statement, typed, direct_uses(sides, self.space))
+
+    def _check_series(self, sides: tuple[Node, ...], index: Index | None) -> None:
+        """A whole series is judged element by element."""
+        for side in sides:
+            over = series.over(side, self.checker.sets)
+            if over and (index is None or over != index.values):
+                raise Mistake(
+                    error(
+                        "series-form",
+                        "this is a whole series, a limit holds for each element"
+                        if index is None
+                        else f"this series has other indices than {index.text}",
+                        side.span,
+                        help="name the element and add `for n in ...`, or take max(...)",
+                    )
+                )
+
+    def _check_margin(self, statement: Inequality, typed: Typed) -> None:
+        margin = statement.clauses.margin
+        if margin and margin.is_share and typed.weight:
+            raise Mistake(
+                error(
+                    "temperature",
+                    "a share of a temperature on the Celsius scale means nothing",
+                    margin.span,
+                    help="write the margin in K",
+                )
+            )
+        if margin and not margin.is_share and margin.value.unit.dimension != typed.dimension:
+            raise Mistake(
+                error(
+                    "unit-mismatch",
+                    f"the margin is {margin.value.unit.dimension.in_words()}, the"
+                    f" criterion compares {typed.dimension.in_words()}",
+                    margin.span,
+                    help="give the margin in per cent of the limit or in its unit",
+                )
+            )
+
+    def _check_point(self, point: PointValue) -> None:
+        symbol, typed = point.symbol, typed_as(point.given.unit)
+        target = self.variables.get(symbol.key)
+        if target is None:
+            raise Unknown
+        if target.given is None:
+            raise Mistake(
+                error(
+                    "operating-point",
+                    f"{shown(symbol.name)} is derived, an operating"
+                    " point sets conditions and inputs",
+                    symbol.span,
+                    related=(Place(target.label.span, "derived here"),),
+                )
+            )
+        if target.typed != typed:
+            raise Mistake(
+                error(
+                    "unit-mismatch",
+                    f"{shown(symbol.name)} is {target.typed.dimension.in_words()}, the value"
+                    f" here is {typed.dimension.in_words()}",
+                    symbol.span,
+                    related=(Place(target.label.span, "defined here"),),
+                )
+            )
+
+    def hazard(self, statement: HazardStatement) -> list[Finding]:
+        """What is wrong with the symbols of a hazard."""
+        wanted: tuple[tuple[Dimension, str], ...] = (
+            (CAPACITANCE, "a capacitance"),
+            (VOLTAGE, "a voltage"),
+            (VOLTAGE / CURRENT, "a resistance"),
+        )
+        if statement.kind == "supply":
+            wanted = wanted[1:2]
+        findings = []
+        for symbol, (dimension, words) in zip(statement.symbols, wanted, strict=False):
+            variable = self.variables.get(symbol.key)
+            if variable and (variable.typed.dimension != dimension or variable.index):
+                kind = "a series" if variable.index else variable.typed.dimension.in_words()
+                findings.append(
+                    error(
+                        "unit-mismatch",
+                        f"expected {words}, {shown(symbol.name)} is {kind}",
+                        symbol.span,
+                        help="name the symbol of the " + words.removeprefix("a "),
+                    )
+                )
+        return findings
+
+
+def discharge(statement: HazardStatement) -> Discharge:
+    """The keys of a stored charge."""
+    keys = [symbol.key for symbol in statement.symbols]
+    return Discharge(keys[0], keys[1], (*keys, None)[2], statement)
+
+
+def _check_once(points: tuple[PointValue, ...]) -> None:
+    for at, point in enumerate(points):
+        if point.symbol.key in [each.symbol.key for each in points[:at]]:
+            raise Mistake(
+                error(
+                    "operating-point",
+                    f"{shown(point.symbol.name)} has two values here",
+                    point.symbol.span,
+                    help="keep one of them",
+                )
+            )
