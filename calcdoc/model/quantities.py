@@ -6,7 +6,6 @@ from fractions import Fraction
 from calcdoc.model import series
 from calcdoc.model.model import Implicit, Solved, Typed, Variable
 from calcdoc.model.namespace import Namespace
-from calcdoc.model.solving import Relations, solved_for
 from calcdoc.model.typing import Checker, Unknown
 from calcdoc.model.uses import Rests
 from calcdoc.problems import Finding, Mistake, Place, error
@@ -19,6 +18,7 @@ from calcdoc.text.statements import (
     GivenStatement,
     Index,
     Label,
+    RelationStatement,
     SettleStatement,
     SolvedStatement,
 )
@@ -52,7 +52,7 @@ class Quantities:
         self,
         space: Namespace,
         rests: Rests,
-        relations: Relations,
+        relations: Mapping[str, RelationStatement],
         settled: Mapping[str, SettleStatement],
     ) -> None:
         self.space, self.rests, self.relations, self.settled = space, rests, relations, settled
@@ -175,6 +175,8 @@ class Quantities:
     def _found(self, key: str, statement: SolvedStatement) -> Variable:
         sought = next(each for each in statement.unknowns if each.symbol.key == key)
         if id(statement) not in self._solved:
+            from calcdoc.model.solving import solved_for  # noqa: PLC0415  (few designs need it)
+
             self._solved[id(statement)] = None
             self._solved[id(statement)] = solved_for(statement, self.relations)
         way = self._solved[id(statement)]

@@ -3,7 +3,7 @@
 from collections.abc import Mapping
 
 from calcdoc.model.model import Implicit, Root, Solved
-from calcdoc.model.symbolic.outcome import Failure, Solution, Step
+from calcdoc.model.symbolic import Failure, Solution, Step, solve
 from calcdoc.problems import Finding, Mistake, Place, error
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import names
@@ -26,8 +26,6 @@ def solved_for(statement: SolvedStatement, relations: Relations) -> Solved | Imp
     _check_counts(statement)
     if statement.bracket is not None:
         return _numerically(statement, used[0])
-    from calcdoc.model.symbolic import solve  # noqa: PLC0415  (few designs need it)
-
     keys = tuple(unknown.symbol.key for unknown in statement.unknowns)
     outcome = solve([(each.name.name, each.left, each.right) for each in used], keys)
     if isinstance(outcome, Failure):

@@ -1,0 +1,37 @@
+"""One relation, one unknown, by own steps: isolation, then linear and quadratic relations."""
+
+from calcdoc.model.symbolic.isolate import isolate
+from calcdoc.model.symbolic.outcome import LARGEST, Failure, Solution
+from calcdoc.model.symbolic.polynomial import polynomial
+from calcdoc.model.symbolic.simplify import simplified
+from calcdoc.model.symbolic.trees import mentions, readable, replaced, spelling
+from calcdoc.model.symbolic.verify import is_identity, is_pole
+from calcdoc.text.nodes import Node
+
+
+def single(label: str, left: Node, right: Node, key: str) -> tuple[Solution, ...] | Failure | None:
+    """Solve one relation for one unknown; None when own steps cannot."""
+    shown = spelling((left, right), key)
+    if not (mentions(left, key) or mentions(right, key)):
+        message = f"{shown} does not stand in {label}"
+        return Failure("unknown not in relation", message, (key, label))
+    found = isolate(left, right, key)
+    if found is None:
+        answer = polynomial(left, right, key)
+        if not isinstance(answer, tuple):
+            return answer
+        found = answer
+    kept = tuple(each for each in found if not is_wrong(left, right, {key: each.tree}))
+    if not kept:
+        return Failure("not solvable", f"no value of {shown} satisfies {label}", (key, label))
+    if not all(readable(each.tree, LARGEST) for each in kept):
+        return Failure("too large", f"the formula of {shown} is too long to read", (key, label))
+    return kept
+
+
+def is_wrong(left: Node, right: Node, trees: dict[str, Node]) -> bool:
+    """Whether putting in solutions divides by zero or leaves sides that certainly differ."""
+    one, other = replaced(left, trees), replaced(right, trees)
+    if is_pole(one) or is_pole(other):
+        return True
+    return is_identity(simplified(one), simplified(other)) is False
