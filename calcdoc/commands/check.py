@@ -55,8 +55,9 @@ def check_file(name: str) -> Checked:
 
 
 def status_of(made: Record) -> int:
-    """0 when every criterion passes or is not for calculation to decide, else 1."""
-    return FAILS if made.verdict.failed or made.verdict.undecided else PASSES
+    """0 when every criterion passes, or is not for calculation, and cross-checks agree; else 1."""
+    differs = any(not each.agrees for each in made.crosschecks)
+    return FAILS if made.verdict.failed or made.verdict.undecided or differs else PASSES
 
 
 def _say_problems(checked: Checked) -> None:

@@ -6,13 +6,18 @@ from collections.abc import Callable
 
 from calcdoc.frozen import Frozen
 from calcdoc.records import record as r
-from calcdoc.records.naming import Naming, is_numbered
+from calcdoc.records.naming import Naming, keys_of
 from calcdoc.text import prose
 from calcdoc.text.statements import (
+    CrosscheckStatement,
     Definition,
     GivenStatement,
     Inequality,
+    RelationStatement,
+    RestateStatement,
+    SensitivityStatement,
     SentenceStatement,
+    SolvedStatement,
     Statement,
     Uncalculated,
 )
@@ -135,7 +140,7 @@ class _Body:
             case prose.CautionBlock(signal, inner):
                 return (r.CautionBox(signal=signal, blocks=self._all(inner)),)
             case prose.Statements(_, statements):
-                return tuple(_line(each) for each in statements if is_numbered(each))
+                return tuple(line for each in statements for line in _lines(each, self.naming))
 
     def _all(self, body: tuple[prose.Block, ...]) -> tuple[r.Block, ...]:
         return tuple(each for block in body for each in self.block(block))
@@ -162,16 +167,27 @@ class _Body:
         return anchor
 
 
-def _line(statement: Statement) -> r.Block:
+def _lines(statement: Statement, naming: Naming) -> tuple[r.Block, ...]:
+    """Where the lines of a statement stand."""
     match statement:
         case GivenStatement() | Definition():
-            return r.QuantityLine(symbol=statement.symbol.name)
+            return (r.QuantityLine(symbol=statement.symbol.name),)
+        case SolvedStatement():
+            return tuple(r.QuantityLine(symbol=each.symbol.name) for each in statement.unknowns)
+        case RelationStatement():
+            return (r.RelationLine(name=statement.name.name),)
+        case RestateStatement():
+            return (r.RestatedLine(line=naming.lines[keys_of(statement)[0]]),)
+        case SensitivityStatement():
+            return (r.SensitivityLine(line=naming.lines[keys_of(statement)[0]]),)
+        case CrosscheckStatement():
+            return (r.CrosscheckLine(id=statement.id.name),)
         case SentenceStatement():
-            return r.SentenceLine(id=statement.id.name)
+            return (r.SentenceLine(id=statement.id.name),)
         case Inequality() | Uncalculated():
-            return r.CriterionLine(id=statement.id.name)
+            return (r.CriterionLine(id=statement.id.name),)
         case _:
-            raise AssertionError(statement)
+            return ()
 
 
 def caution_text(blocks_: tuple[r.Block, ...]) -> str:

@@ -9,6 +9,7 @@ from calcdoc.problems.views import as_data, in_order
 from calcdoc.records import body as prose_body
 from calcdoc.records import record as r
 from calcdoc.records.cautions import cautions, hazards
+from calcdoc.records.checks import crosschecks, relations
 from calcdoc.records.criteria import criteria
 from calcdoc.records.naming import name_lines
 from calcdoc.records.quantities import Numbers, quantities
@@ -61,9 +62,11 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
         sampling=None,
         cases=("normal",),
         quantities=lines,
-        relations=(),
+        relations=relations(numbers, naming),
+        restated=(),
+        sensitivities=(),
         criteria=judged,
-        crosschecks=(),
+        crosschecks=crosschecks(numbers, naming),
         assumptions=register,
         hazards=hazards(evaluation),
         cautions=cautions(evaluation, register, body),

@@ -56,8 +56,8 @@ def hazard_warning(evaluation: Evaluation) -> tuple[Finding, ...]:
     """A design above 50 V that declares no hazards."""
     if evaluation.model.hazards:
         return ()
-    for key, variable in evaluation.model.variables.items():
-        band = evaluation.bands[key]
+    for key, band in evaluation.bands.items():
+        variable = evaluation.model.variables[key]
         highest = max(abs(band.least), abs(band.greatest))
         if variable.typed.dimension == VOLTAGE and highest > TOUCH_VOLTAGE:
             return (

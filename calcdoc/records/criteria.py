@@ -1,6 +1,6 @@
 """Criteria with value, limit, margin and verdict at their governing point."""
 
-from calcdoc.analysis.evaluation import Judgement, Outcome
+from calcdoc.analysis.evaluation import Judgement, Outcome, Row
 from calcdoc.model.model import Judged, Typed
 from calcdoc.records import record as r
 from calcdoc.records.display import choose_unit
@@ -11,7 +11,7 @@ from calcdoc.records.substitute import substituted
 from calcdoc.records.values import difference, with_unit
 from calcdoc.text import literal
 from calcdoc.text.names import fold
-from calcdoc.text.nodes import Group, Name, Node, Quantity
+from calcdoc.text.nodes import Element, Group, Name, Node, Quantity
 from calcdoc.text.statements import Inequality, Uncalculated
 from calcdoc.text.unparse import unparse
 from calcdoc.units import Unit
@@ -87,7 +87,7 @@ def _calculated(numbers: Numbers, naming: Naming, judgement: Judgement) -> r.Cri
         case="normal",
         governing=numbers.combination(judgement.governing),
         by_case={},
-        rows=(),
+        rows=tuple(_row(numbers, judgement, unit, row) for row in judgement.rows),
         interval=None,
         standard_error=None,
         unverified=(),
@@ -101,6 +101,26 @@ def _calculated(numbers: Numbers, naming: Naming, judgement: Judgement) -> r.Cri
         margin_text=_margin_text(judgement, unit, share),
         remark=_remark(judgement, unit, share),
         proof=judgement.proof.value,
+    )
+
+
+def _row(numbers: Numbers, judgement: Judgement, unit: Unit, row: Row) -> r.CriterionRow:
+    """One element of a criterion over a series."""
+    value, limit = stored(unit.from_si(row.value)), stored(unit.from_si(row.limit))
+    shown, bound = apart(value, limit, numbers.digits)
+    plain_share = row.limit != 0 and not judgement.judged.typed.weight
+    share = row.slack / abs(row.limit) if plain_share else None
+    return r.CriterionRow(
+        index=row.element,
+        value=value,
+        limit=limit,
+        margin=None if share is None else stored(share),
+        verdict=row.outcome.value,
+        value_text=with_unit(shown, unit),
+        limit_text=with_unit(bound, unit),
+        margin_text=_difference(row.slack, unit)
+        if share is None
+        else f"{downward(share * _PER_CENT)} %",
     )
 
 
@@ -121,7 +141,7 @@ def _unit(numbers: Numbers, judgement: Judgement) -> Unit:
     """The unit of the value's symbol, else of a number in the limit, else a chosen one."""
     for tree in (judgement.side.value_tree, judgement.side.limit_tree):
         bare = _bare(tree)
-        if isinstance(bare, Name) and fold(bare.name) in numbers.units:
+        if isinstance(bare, Name | Element) and fold(bare.name) in numbers.units:
             return numbers.units[fold(bare.name)]
         if isinstance(bare, Quantity):
             return literal.resolve(bare.unit)
@@ -145,11 +165,11 @@ def _share(judgement: Judgement) -> float | None:
 def _substitution(numbers: Numbers, judgement: Judgement) -> str:
     """The value side with numbers at the governing point, when it is more than one symbol."""
     tree = judgement.side.value_tree
-    if isinstance(_bare(tree), Name | Quantity):
+    if isinstance(_bare(tree), Name | Element | Quantity):
         return ""
 
-    def value_of(name: str) -> str | None:
-        key = fold(name)
+    def value_of(node: Name | Element) -> str | None:
+        key = fold(node.name)
         return numbers.at(key, judgement.values[key]) if key in judgement.values else None
 
     return substituted(tree, value_of)

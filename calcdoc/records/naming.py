@@ -4,18 +4,34 @@ from collections.abc import Iterator, Mapping
 from typing import TypeGuard
 
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import Judged, Model
+from calcdoc.model.model import Compared, Judged, Model
 from calcdoc.text import prose
 from calcdoc.text.statements import (
+    CrosscheckStatement,
     Definition,
     GivenStatement,
     Inequality,
+    RelationStatement,
+    RestateStatement,
+    SensitivityStatement,
     SentenceStatement,
+    SolvedStatement,
     Statement,
     Uncalculated,
 )
 
-Numbered = GivenStatement | Definition | SentenceStatement | Inequality | Uncalculated
+Numbered = (
+    GivenStatement
+    | Definition
+    | SolvedStatement
+    | RelationStatement
+    | RestateStatement
+    | SensitivityStatement
+    | CrosscheckStatement
+    | SentenceStatement
+    | Inequality
+    | Uncalculated
+)
 
 
 class Naming(Frozen, frozen=True):
@@ -43,8 +59,9 @@ def name_lines(model: Model, body: tuple[prose.Block, ...]) -> Naming:
                 section, line = section + 1, 0
                 sections[id(each)] = str(section)
             continue
-        line += 1
-        lines[_key(each)] = f"{section}.{line}" if level else str(line)
+        for key in keys_of(each):
+            line += 1
+            lines[key] = f"{section}.{line}" if level else str(line)
     return Naming(lines, sections, level, _uses(model))
 
 
@@ -74,10 +91,19 @@ def is_numbered(statement: Statement) -> TypeGuard[Numbered]:
     return isinstance(statement, Numbered)
 
 
-def _key(statement: Numbered) -> str:
-    if isinstance(statement, GivenStatement | Definition):
-        return statement.symbol.key
-    return statement.id.key
+def keys_of(statement: Numbered) -> tuple[str, ...]:
+    """What the lines of a statement are known by: symbols, a name, an id, else their place."""
+    match statement:
+        case GivenStatement() | Definition():
+            return (statement.symbol.key,)
+        case SolvedStatement():
+            return tuple(each.symbol.key for each in statement.unknowns)
+        case RelationStatement():
+            return (statement.name.key,)
+        case RestateStatement() | SensitivityStatement():
+            return (f"line at {statement.span.start}",)
+        case _:
+            return (statement.id.key,)
 
 
 def _uses(model: Model) -> dict[str, tuple[str, ...]]:
@@ -85,10 +111,10 @@ def _uses(model: Model) -> dict[str, tuple[str, ...]]:
     for variable in model.variables.values():
         for key in variable.depends_on:
             uses[key].append(variable.symbol)
-    for criterion in model.criteria:
-        if isinstance(criterion, Judged):
-            for key in criterion.depends_on:
-                uses[key].append(criterion.statement.id.name)
+    for judged in (*model.criteria, *model.crosschecks):
+        if isinstance(judged, Judged | Compared):
+            for key in judged.depends_on:
+                uses[key].append(judged.statement.id.name)
     return {key: tuple(names) for key, names in uses.items()}
 
 
@@ -103,7 +129,7 @@ def rests_on(model: Model, naming: Naming, key: str) -> tuple[str, ...]:
     reached.add(key)
     ids = [
         each.statement.id.name
-        for each in model.criteria
-        if isinstance(each, Judged) and reached.intersection(each.depends_on)
+        for each in (*model.criteria, *model.crosschecks)
+        if isinstance(each, Judged | Compared) and reached.intersection(each.depends_on)
     ]
     return (*lines, *ids)

@@ -34,6 +34,8 @@ from calcdoc.text.names import GREEK
 RELATIONS: Final = {"<=": "≤", ">=": "≥", "!=": "≠", "==": "="}
 ARCS: Final = {"asin": "arcsin", "acos": "arccos", "atan": "arctan"}
 BARS: Final = {"abs": ("|", "|"), "floor": ("⌊", "⌋"), "ceil": ("⌈", "⌉")}
+PPM: Final = "ppm"
+"""Read, but printed as the power of ten it stands for."""
 SERIES_INDEX: Final = frozenset("nki")
 
 
@@ -83,9 +85,12 @@ def number(digits: str) -> Picture:
     shown = Glyphs(grouped(mantissa), "number")
     if not exponent:
         return shown
-    power = Script(Glyphs("10", "number"), sup=Glyphs(grouped(_trimmed(exponent)), "number"))
     times = Glyphs(f"{NO_BREAK}×{NO_BREAK}", "number")
-    return Row((shown, times, power))
+    return Row((shown, times, _ten(_trimmed(exponent))))
+
+
+def _ten(power: int | str) -> Script:
+    return Script(Glyphs("10", "number"), sup=Glyphs(grouped(str(power)), "number"))
 
 
 def grouped(digits: str) -> str:
@@ -129,6 +134,8 @@ def unit(text: nodes.UnitText) -> Picture:
 
 
 def _unit_power(word: nodes.UnitWord) -> Picture:
+    if word.word == PPM:
+        return _ten(-6 * word.exponent)
     shown = Glyphs(unit_word(word.word), "unit")
     if word.exponent == 1:
         return shown
@@ -138,7 +145,11 @@ def _unit_power(word: nodes.UnitWord) -> Picture:
 def quantity(digits: str, text: nodes.UnitText) -> Picture:
     """A number with its unit, held together by a no-break space; a plane angle is closed up."""
     shown = unit(text)
-    space = [] if shown == Glyphs("°", "unit") else [Glyphs(NO_BREAK, "space")]
+    space = [Glyphs(NO_BREAK, "space")]
+    if shown == Glyphs("°", "unit"):
+        space = []
+    elif text.words[0].word == PPM and not text.words[0].joint:
+        space = [Glyphs(f"{NO_BREAK}×{NO_BREAK}", "number")]
     return row([number(digits), *space, shown])
 
 

@@ -6,17 +6,19 @@ from functools import cached_property
 from calcdoc.analysis.evaluation import Band, Combination, Evaluation
 from calcdoc.analysis.extremes import Proof
 from calcdoc.frozen import Frozen
+from calcdoc.model.constant import constant_value
 from calcdoc.model.model import Model, Variable
 from calcdoc.records import record as r
 from calcdoc.records.carried import units_carried
 from calcdoc.records.display import choose_unit
 from calcdoc.records.naming import Naming
-from calcdoc.records.rounding import stored
+from calcdoc.records.rounding import significant, stored
 from calcdoc.records.substitute import substituted
-from calcdoc.records.values import computed, exact_limit, given_nominal, stands_at
+from calcdoc.records.values import computed, exact_limit, given_nominal, stands_at, with_unit
 from calcdoc.records.wording import band_in_words, typeset
 from calcdoc.text.given import Given, Style
 from calcdoc.text.names import fold
+from calcdoc.text.nodes import Element, Name, Node
 from calcdoc.text.unparse import unparse
 from calcdoc.units import PLAIN, Unit
 
@@ -45,8 +47,12 @@ class Numbers(Frozen, frozen=True, dict=True):
     def _unit(self, variable: Variable) -> Unit:
         if variable.unit is not None:
             return variable.unit
-        band = self.evaluation.bands[variable.key]
-        size = band.nominal or max(abs(band.least), abs(band.greatest))
+        bands = self.evaluation.series.get(variable.key)
+        if bands is None:
+            band = self.evaluation.bands[variable.key]
+            size = band.nominal or max(abs(band.least), abs(band.greatest))
+        else:
+            size = max(abs(band.nominal) for band in bands.values())
         return choose_unit(variable.typed, size)
 
     def nominal(self, key: str) -> str:
@@ -65,6 +71,17 @@ class Numbers(Frozen, frozen=True, dict=True):
             self._stands[key, si] = stands_at(given, si)
         return self._stands[key, si]
 
+    def value_of(self, node: Name | Element) -> str | None:
+        """The nominal value of a symbol or element; None for a constant and a whole series."""
+        key = fold(node.name)
+        if isinstance(node, Name):
+            return self.nominal(key) if key in self.evaluation.bands else None
+        index = constant_value(node.index)
+        if index is None:
+            return None
+        band = self.evaluation.series[key][int(index)]
+        return computed(band.nominal, self.units[key], self.digits)
+
     def combination(self, combination: Combination) -> dict[str, str]:
         """Where inputs stand, by symbol, in the author's order."""
         return {
@@ -79,26 +96,26 @@ def quantities(numbers: Numbers, naming: Naming) -> tuple[r.Quantity, ...]:
 
 
 def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantity:
-    band, unit = numbers.evaluation.bands[variable.key], numbers.units[variable.key]
     stated, given = variable.stated, variable.given
-    least, nominal, greatest = _in_unit(band, unit, given)
+    shown = _shown(numbers, variable)
+    formula = formula_of(numbers, variable)
     return r.Quantity(
         symbol=variable.symbol,
         line=naming.lines[variable.key],
         kind=variable.kind,
-        unit=unit.text,
-        nominal=nominal,
-        least=least,
-        greatest=greatest,
-        index=None,
-        at_least={} if stated else numbers.combination(band.at_least),
-        at_greatest={} if stated else numbers.combination(band.at_greatest),
-        proof=band.proof.value,
-        formula="" if variable.formula is None else unparse(variable.formula),
-        substitution=_substitution(numbers, variable),
-        result=numbers.nominal(variable.key),
-        steps=(),
-        residual=None,
+        unit=numbers.units[variable.key].text,
+        nominal=shown.nominal,
+        least=shown.least,
+        greatest=shown.greatest,
+        index=variable.index.values if variable.index else None,
+        at_least={} if stated else numbers.combination(shown.at_least),
+        at_greatest={} if stated else numbers.combination(shown.at_greatest),
+        proof=shown.proof,
+        formula="" if formula is None else unparse(formula),
+        substitution=_substitution(numbers, variable, formula),
+        result=shown.result,
+        steps=_steps(numbers, variable),
+        residual=_residual(numbers, variable),
         depends_on=tuple(numbers.model.variables[key].symbol for key in variable.depends_on),
         used_by=naming.used_by[variable.key],
         description=variable.description,
@@ -106,13 +123,74 @@ def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantit
         by_case={},
         id=stated.id.name if stated and stated.id else "",
         state=stated.state if stated else "",
-        units_carried=_carried(numbers, variable),
+        units_carried=_carried(numbers, variable, formula),
         tolerance=band_in_words(given) if given else "",
-        least_text=_end(numbers, variable, band.least, low=True),
-        greatest_text=_end(numbers, variable, band.greatest, low=False),
-        varies=band.varies,
-        notes=_notes(band, unit, numbers, given),
+        least_text=shown.least_text,
+        greatest_text=shown.greatest_text,
+        varies=shown.varies,
+        from_relation=", ".join(_relations(numbers, variable)),
+        notes=shown.notes,
     )
+
+
+class Shown(Frozen, frozen=True):
+    """The numbers of a quantity as they are shown; lists for a series."""
+
+    nominal: float | list[float]
+    least: float | list[float]
+    greatest: float | list[float]
+    at_least: Combination
+    at_greatest: Combination
+    proof: str
+    result: str
+    least_text: str
+    greatest_text: str
+    varies: bool
+    notes: tuple[str, ...]
+
+
+def _shown(numbers: Numbers, variable: Variable) -> Shown:
+    unit, given = numbers.units[variable.key], variable.given
+    if variable.index is not None:
+        return _shown_series(numbers, variable, unit)
+    band = numbers.evaluation.bands[variable.key]
+    least, nominal, greatest = _in_unit(band, unit, given)
+    return Shown(
+        nominal,
+        least,
+        greatest,
+        band.at_least,
+        band.at_greatest,
+        band.proof.value,
+        numbers.nominal(variable.key),
+        _end(numbers, variable, band.least, low=True),
+        _end(numbers, variable, band.greatest, low=False),
+        band.varies,
+        _notes(band, unit, numbers, given),
+    )
+
+
+def _shown_series(numbers: Numbers, variable: Variable, unit: Unit) -> Shown:
+    bands = numbers.evaluation.series[variable.key]
+    rows = [_in_unit(band, unit, None) for band in bands.values()]
+    shown = [computed(band.nominal, unit, numbers.digits) for band in bands.values()]
+    weakest = min((band.proof for band in bands.values()), key=_PROOFS.index)
+    return Shown(
+        [row[1] for row in rows],
+        [row[0] for row in rows],
+        [row[2] for row in rows],
+        {},
+        {},
+        weakest.value,
+        "; ".join(f"{n}: {text}" for n, text in zip(bands, shown, strict=True)),
+        "",
+        "",
+        any(band.varies for band in bands.values()),
+        (),
+    )
+
+
+_PROOFS = (Proof.SEARCHED, Proof.BOUNDED, Proof.EXACT)
 
 
 def _in_unit(band: Band, unit: Unit, given: Given | None) -> tuple[float, float, float]:
@@ -125,25 +203,64 @@ def _in_unit(band: Band, unit: Unit, given: Given | None) -> tuple[float, float,
     return least, nominal, greatest
 
 
-def _substitution(numbers: Numbers, variable: Variable) -> str:
+def formula_of(numbers: Numbers, variable: Variable) -> Node | None:
+    """The formula that is shown: as defined, or the root that was left of a relation."""
+    root = numbers.evaluation.chosen.get(variable.key)
+    return variable.formula if root is None else root.tree
+
+
+def _relations(numbers: Numbers, variable: Variable) -> tuple[str, ...]:
+    keys: tuple[str, ...] = ()
+    if variable.solved:
+        keys = variable.solved.relations
+    elif variable.implicit and variable.implicit.relation:
+        keys = (variable.implicit.relation,)
+    return tuple(numbers.model.relations[key].statement.name.name for key in keys)
+
+
+def _steps(numbers: Numbers, variable: Variable) -> tuple[str, ...]:
+    """How a solved or settled quantity was found."""
+    root = numbers.evaluation.chosen.get(variable.key)
+    if root is not None:
+        return root.steps
+    implicit = variable.implicit
+    if implicit is None:
+        return ()
+    low, high = (with_unit(end, implicit.bracket.unit) for end in implicit.bracket.spread)
+    if not implicit.is_loop:
+        return (f"solved numerically between {low} and {high}",)
+    through = [numbers.model.variables[key].symbol for key in implicit.inner]
+    around = f" through {', '.join(through)}" if through else ""
+    return (f"depends on itself{around}; settled between {low} and {high}",)
+
+
+def _residual(numbers: Numbers, variable: Variable) -> str | None:
+    """What is left when the solution is put back."""
+    root = numbers.evaluation.chosen.get(variable.key)
+    if root is not None:
+        names = ", ".join(_relations(numbers, variable))
+        return f"put back into {names}: left - right = 0"
+    found = numbers.evaluation.numeric.get(variable.key)
+    if found is None:
+        return None
+    left = f"left - right = {significant(found.residual, 2)} of the largest term"
+    if found.gain is None:
+        return f"put back: {left}"
+    return f"put back: {left}; loop gain at most {significant(found.gain, 3)}"
+
+
+def _substitution(numbers: Numbers, variable: Variable, formula: Node | None) -> str:
     """The formula with nominal values; empty when there is nothing to substitute."""
-    if variable.formula is None or not variable.depends_on:
+    if formula is None or not variable.depends_on or variable.index is not None:
         return ""
-
-    def value_of(name: str) -> str | None:
-        key = fold(name)
-        return numbers.nominal(key) if key in numbers.model.variables else None
-
-    return substituted(variable.formula, value_of)
+    return substituted(formula, numbers.value_of)
 
 
-def _carried(numbers: Numbers, variable: Variable) -> str:
-    if variable.formula is None:
+def _carried(numbers: Numbers, variable: Variable, formula: Node | None) -> str:
+    if formula is None:
         return ""
     unit_of = numbers.units
-    return units_carried(
-        variable.formula, numbers.units[variable.key], lambda key: unit_of.get(key, PLAIN)
-    )
+    return units_carried(formula, numbers.units[variable.key], lambda key: unit_of.get(key, PLAIN))
 
 
 def _end(numbers: Numbers, variable: Variable, si: float, *, low: bool) -> str:

@@ -139,6 +139,30 @@ class CriterionLine(Plain, frozen=True, tag_field="kind", tag="criterion"):
     id: str
 
 
+class RelationLine(Plain, frozen=True, tag_field="kind", tag="relation"):
+    """Here stands a relation."""
+
+    name: str
+
+
+class RestatedLine(Plain, frozen=True, tag_field="kind", tag="restated"):
+    """Here stands a result in terms of chosen quantities."""
+
+    line: str
+
+
+class SensitivityLine(Plain, frozen=True, tag_field="kind", tag="sensitivity"):
+    """Here stand the sensitivities of a quantity."""
+
+    line: str
+
+
+class CrosscheckLine(Plain, frozen=True, tag_field="kind", tag="crosscheck"):
+    """Here stands a cross-check."""
+
+    id: str
+
+
 class SentenceLine(Plain, frozen=True, tag_field="kind", tag="sentence"):
     """Here stands an assumption that is a sentence."""
 
@@ -162,6 +186,10 @@ Block = (
     | Rule
     | QuantityLine
     | CriterionLine
+    | RelationLine
+    | RestatedLine
+    | SensitivityLine
+    | CrosscheckLine
     | SentenceLine
     | CautionBox
 )
@@ -263,6 +291,8 @@ class Quantity(Plain, frozen=True):
     least_text: str
     greatest_text: str
     varies: bool
+    from_relation: str
+    """Names of the relations it was solved from, as in ``charge``; else empty."""
     notes: tuple[str, ...]
     """Sentences for the reader: the extreme lies inside the band, the nominal is the middle, ..."""
 
@@ -298,7 +328,7 @@ class Criterion(Plain, frozen=True):
     case: str
     governing: dict[str, str]
     by_case: dict[str, CriterionCase]
-    rows: tuple[CriterionCase, ...]
+    rows: tuple["CriterionRow", ...]
     interval: tuple[float, float] | None
     standard_error: float | None
     unverified: tuple[str, ...]
@@ -321,16 +351,102 @@ class Criterion(Plain, frozen=True):
     proof: str
 
 
+class CriterionRow(Plain, frozen=True):
+    """One element of a criterion over a series, at the point that governs it."""
+
+    index: int
+    value: float
+    limit: float
+    margin: float | None
+    verdict: str
+    value_text: str
+    limit_text: str
+    margin_text: str
+
+
 class Crosscheck(Plain, frozen=True):
-    """Two ways to one quantity (comes with a later capability; the list is empty until then)."""
+    """Two ways to one quantity, compared at nominal and over all bands."""
 
     id: str
     first: str
     second: str
+    """Both sides as written."""
     unit: str
+    """Of the difference: per cent of the second for ``against``, else the quantity's unit."""
     difference: float | None
+    """The difference farthest from agreement: first less second."""
     allowed: float | None
+    """The share that is allowed, or zero for a bound."""
     agrees: bool
+    # beyond the contract, for the pages
+    line: str
+    form: str
+    """``against``, ``not below`` or ``not above``."""
+    first_text: str
+    second_text: str
+    """Both sides at nominal."""
+    difference_text: str
+    allowed_text: str
+    at: dict[str, str]
+    """The combination at which the difference is worst; empty at nominal."""
+    proof: str
+    description: str
+    basis: str
+
+
+class Relation(Plain, frozen=True):
+    """An equation that is stated and solved elsewhere."""
+
+    name: str
+    line: str
+    left: str
+    right: str
+    description: str
+    basis: str
+    solved_in: tuple[str, ...]
+    """Line numbers of the quantities solved from it."""
+
+
+class Restated(Plain, frozen=True):
+    """A result in terms of chosen quantities, with its own numbers."""
+
+    line: str
+    symbol: str
+    terms: tuple[str, ...]
+    formula: str
+    substitution: str
+    result: str
+    residual: str
+    """How well it agrees with the line it restates."""
+    description: str
+
+
+class SensitivityRow(Plain, frozen=True):
+    """How a quantity answers to one of the quantities it depends on."""
+
+    symbol: str
+    formula: str
+    """The partial derivative."""
+    value: float
+    """At nominal, in ``unit``."""
+    unit: str
+    value_text: str
+    per_cent_text: str
+    """The change that one per cent of the input makes; empty where the input is a temperature."""
+    full: float
+    """The greater of the two changes that the full tolerance makes, in the quantity's unit."""
+    low_text: str
+    high_text: str
+    """The changes at the input's least and greatest value, all others at nominal."""
+
+
+class Sensitivity(Plain, frozen=True):
+    """The sensitivities of one quantity, the greatest effect of a full tolerance first."""
+
+    line: str
+    symbol: str
+    description: str
+    rows: tuple[SensitivityRow, ...]
 
 
 class Assumption(Plain, frozen=True):
@@ -446,7 +562,9 @@ class Record(Plain, frozen=True):
     sampling: dict[str, int] | None
     cases: tuple[str, ...]
     quantities: tuple[Quantity, ...]
-    relations: tuple[str, ...]
+    relations: tuple[Relation, ...]
+    restated: tuple[Restated, ...]
+    sensitivities: tuple[Sensitivity, ...]
     criteria: tuple[Criterion, ...]
     crosschecks: tuple[Crosscheck, ...]
     assumptions: tuple[Assumption, ...]

@@ -20,8 +20,8 @@ from calcdoc.text.nodes import (
 )
 from calcdoc.text.unparse import unparse
 
-ValueOf = Callable[[str], str | None]
-"""Name to the text of its value; None to keep the name (a constant)."""
+ValueOf = Callable[[Name | Element], str | None]
+"""A symbol or element to the text of its value; None to keep the name (a constant, a series)."""
 
 
 def substituted(node: Node, value_of: ValueOf) -> str:
@@ -31,8 +31,8 @@ def substituted(node: Node, value_of: ValueOf) -> str:
 
 def _with_values(node: Node, value_of: ValueOf) -> Node:
     match node:
-        case Name(name):
-            return _value(node, value_of(name))
+        case Name() | Element():
+            return _value(node, value_of(node))
         case Group(inner):
             # A symbol's value brings its own parentheses when it needs them.
             return Group(_without_group(_with_values(inner, value_of)), node.span)
@@ -55,11 +55,11 @@ def _with_values(node: Node, value_of: ValueOf) -> Node:
             )
         case Not(operand):
             return Not(_with_values(operand, value_of), node.span)
-        case Number() | Quantity() | Text() | Element():
+        case Number() | Quantity() | Text():
             return node
 
 
-def _value(name: Name, text: str | None) -> Node:
+def _value(name: Name | Element, text: str | None) -> Node:
     if text is None:
         return name
     tree = parse_text(text)

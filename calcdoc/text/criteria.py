@@ -25,7 +25,7 @@ _NOMINAL: Final = re.compile(r"nominal\b")
 _CLAUSE: Final = re.compile(r"(by|at|in|with|for|when)\b")
 _METHOD: Final = re.compile(r"(extremes|root sum square|sampling)\b")
 _MARGIN: Final = re.compile(r"margin\b")
-_LATER: Final = {word: f"the clause `{word}`" for word in ("in", "for", "when")}
+_LATER: Final = {word: f"the clause `{word}`" for word in ("in", "when")}
 CRITERION_COLUMNS: Final = ("criterion", "description", "basis")
 
 

@@ -83,6 +83,7 @@ def quantity(**values: object) -> r.Quantity:
         "least_text": "",
         "greatest_text": "",
         "varies": False,
+        "from_relation": "",
         "notes": (),
     }
     quiet.update(values)

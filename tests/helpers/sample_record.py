@@ -120,6 +120,8 @@ def sample(**changes: object) -> r.Record:
         cases=("normal", "one LED shorted", "one LED open"),
         quantities=(*map(given, GIVEN), *WORKED),
         relations=(),
+        restated=(),
+        sensitivities=(),
         criteria=CRITERIA,
         crosschecks=(),
         assumptions=(

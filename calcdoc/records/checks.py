@@ -1,0 +1,89 @@
+"""Cross-checks and relations as the record shows them."""
+
+from calcdoc.analysis.evaluation import Crosschecked
+from calcdoc.model.model import Relation
+from calcdoc.records import record as r
+from calcdoc.records.display import choose_unit
+from calcdoc.records.naming import Naming
+from calcdoc.records.quantities import Numbers
+from calcdoc.records.rounding import significant, stored
+from calcdoc.records.values import computed, difference, with_unit
+from calcdoc.text.names import fold
+from calcdoc.text.nodes import Group, Name, Node
+from calcdoc.text.unparse import unparse
+from calcdoc.units import Unit, unit_of
+
+_DIGITS = 3
+"""Digits of a difference: it says how far apart, not how much."""
+
+
+def crosschecks(numbers: Numbers, naming: Naming) -> tuple[r.Crosscheck, ...]:
+    """Every cross-check of the record, in the author's order."""
+    return tuple(_crosscheck(numbers, naming, each) for each in numbers.evaluation.crosschecks)
+
+
+def _crosscheck(numbers: Numbers, naming: Naming, done: Crosschecked) -> r.Crosscheck:
+    statement = done.compared.statement
+    unit = _unit(numbers, done)
+    shown_in = unit_of([("%", 1)]) if statement.allowed else unit
+    allowed = statement.allowed.nominal if statement.allowed else 0
+    in_unit = shown_in.difference_from_si(done.worst)
+    text = (
+        with_unit(significant(in_unit, _DIGITS), shown_in)
+        if statement.allowed
+        else difference(done.worst, unit, _DIGITS)
+    )
+    return r.Crosscheck(
+        id=statement.id.name,
+        first=unparse(statement.first),
+        second=unparse(statement.second),
+        unit=shown_in.text if not shown_in.celsius else "K",
+        difference=stored(in_unit),
+        allowed=float(allowed),
+        agrees=done.agrees,
+        line=naming.lines[statement.id.key],
+        form=statement.form,
+        first_text=computed(done.first, unit, numbers.digits),
+        second_text=computed(done.second, unit, numbers.digits),
+        difference_text=text,
+        allowed_text=with_unit(statement.allowed.digits, shown_in) if statement.allowed else "",
+        at=numbers.combination(done.combination),
+        proof=done.proof.value,
+        description=statement.description,
+        basis=statement.basis.text,
+    )
+
+
+def _unit(numbers: Numbers, done: Crosschecked) -> Unit:
+    """The unit of a side that is a symbol, else a chosen one."""
+    for tree in (done.compared.statement.first, done.compared.statement.second):
+        bare: Node = tree
+        while isinstance(bare, Group):
+            bare = bare.inner
+        if isinstance(bare, Name) and fold(bare.name) in numbers.units:
+            return numbers.units[fold(bare.name)]
+    return choose_unit(done.compared.typed, done.first or done.second)
+
+
+def relations(numbers: Numbers, naming: Naming) -> tuple[r.Relation, ...]:
+    """Every relation of the record, in the author's order."""
+    return tuple(_relation(numbers, naming, each) for each in numbers.model.relations.values())
+
+
+def _relation(numbers: Numbers, naming: Naming, relation: Relation) -> r.Relation:
+    statement = relation.statement
+    solved_in = [
+        naming.lines[key]
+        for key, variable in numbers.model.variables.items()
+        if (variable.solved and relation.key in variable.solved.relations)
+        or (variable.implicit and variable.implicit.relation == relation.key)
+    ]
+    return r.Relation(
+        name=statement.name.name,
+        line=naming.lines[relation.key],
+        left=unparse(statement.left),
+        right=unparse(statement.right),
+        description=statement.description,
+        basis=statement.basis.text,
+        solved_in=tuple(solved_in),
+    )
