@@ -63,6 +63,8 @@ class Compiled(Frozen, frozen=True):
     """Key of every solved quantity to the root that was left."""
     roots: Mapping[str, int]
     """Key of every quantity found numerically to its instruction."""
+    relations: Mapping[str, tuple[int, int]]
+    """Key of every solved or settled quantity to the sides of its relation, put together."""
     origins: Mapping[int, Node]
     """Instruction to the piece of formula it came from first."""
 
@@ -79,17 +81,22 @@ def compile_model(model: Model) -> Compiled:
     for key in model.order:
         working.variable(model.variables[key])
     judged = [each for each in model.criteria if isinstance(each, Judged)]
+    sides = tuple(_criterion(working, each) for each in judged)
+    checks = tuple(_crosscheck(working, each) for each in model.crosschecks)
+    discharges = tuple(_discharge(working, each) for each in model.discharges)
+    relations = _relations(working, model)
     return Compiled(
-        sides=tuple(_criterion(working, each) for each in judged),
-        checks=tuple(_crosscheck(working, each) for each in model.crosschecks),
-        discharges=tuple(_discharge(working, each) for each in model.discharges),
         tape=working.builder.tape(),
         columns=columns,
         variables=working.variables,
         series=working.series,
         box=working.box,
+        sides=sides,
+        checks=checks,
+        discharges=discharges,
         chosen=working.chosen,
         roots=working.roots,
+        relations=relations,
         origins=working.origins,
     )
 
@@ -114,6 +121,22 @@ def _si(model: Model, key: str) -> tuple[float, float, float]:
     given = model.variables[key].given
     assert given is not None
     return given.si
+
+
+def _relations(working: Working, model: Model) -> dict[str, tuple[int, int]]:
+    """Both sides of what each solved quantity was solved from, with the solutions in place."""
+    sides = {}
+    for key, variable in model.variables.items():
+        if variable.implicit is not None:
+            pair = (variable.implicit.left, variable.implicit.right)
+        elif variable.solved is not None:
+            at = variable.solved.unknowns.index(key)
+            statement = model.relations[variable.solved.relations[at]].statement
+            pair = (statement.left, statement.right)
+        else:
+            continue
+        sides[key] = (working.node(pair[0]), working.node(pair[1]))
+    return sides
 
 
 def _criterion(working: Working, judged: Judged) -> tuple[Side, ...]:

@@ -15,12 +15,14 @@ from calcdoc.analysis.evaluation import (
     Evaluation,
     Judgement,
     Outcome,
+    Restated,
     Row,
+    Sensitive,
     Stand,
 )
 from calcdoc.analysis.extremes import Extreme, Proof, Question, extremes
 from calcdoc.analysis.points import FloatArray, evaluate_points
-from calcdoc.analysis.numeric import found_numerically
+from calcdoc.analysis.putting_back import put_back
 from calcdoc.analysis.trouble import troubles
 from calcdoc.model.model import Compared, Judged, Model
 from calcdoc.problems import Finding, Mistake
@@ -44,7 +46,10 @@ def evaluate_model(model: Model) -> tuple[Evaluation | None, tuple[Finding, ...]
     found = troubles(compiled, model, list(boxes.values()), wanted)
     if found:
         return None, found
-    return _Evaluator(compiled, model, boxes).run(), ()
+    try:
+        return _Evaluator(compiled, model, boxes).run(), ()
+    except Mistake as mistake:
+        return None, (mistake.finding,)
 
 
 def _boxes(compiled: Compiled, model: Model) -> dict[int, Box]:
@@ -129,12 +134,27 @@ class _Evaluator:
                 )
             ),
             compiled.chosen,
-            found_numerically(compiled, self._points()),
+            put_back(compiled, self.model, self._points()),
             tuple(
                 self._discharged(at, found[each.voltage].greatest)
                 for at, each in zip(times, self.model.discharges, strict=True)
             ),
+            *self._restated(found),
         )  # fmt: skip
+
+    def _restated(
+        self, bands: Mapping[str, Band]
+    ) -> tuple[tuple[Restated, ...], tuple[Sensitive, ...]]:
+        model = self.model
+        if not model.restated and not model.sensitivities:
+            return (), ()
+        from calcdoc.analysis import restating  # noqa: PLC0415  (few designs need it)
+
+        known = restating.Known(model, bands, self.compiled.chosen)
+        return (
+            tuple(restating.restated(known, each) for each in model.restated),
+            tuple(restating.sensitive(known, each) for each in model.sensitivities),
+        )
 
     def _points(self) -> FloatArray:
         """The nominal point and every point that was found, shape (n_columns, n_points)."""

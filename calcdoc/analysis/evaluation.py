@@ -7,6 +7,8 @@ from calcdoc.analysis.compile import Side
 from calcdoc.analysis.extremes import Proof
 from calcdoc.frozen import Frozen
 from calcdoc.model.model import Compared, Judged, Model, Root
+from calcdoc.text.nodes import Node
+from calcdoc.text.statements import RestateStatement, SensitivityStatement
 
 
 class Stand(Frozen, frozen=True):
@@ -98,13 +100,47 @@ class Crosschecked(Frozen, frozen=True):
     proof: Proof
 
 
-class Numeric(Frozen, frozen=True):
-    """How a quantity was found between two values."""
+class PutBack(Frozen, frozen=True):
+    """How well a quantity that was solved for satisfies its relation."""
 
     residual: float
-    """Left less right at the root, as a share of the largest term, the worst of all points."""
+    """Left less right, as a share of the largest term, the worst of all points."""
+    proven: bool
+    """Whether left less right vanishes identically."""
     gain: float | None
     """For a settled loop, the greatest loop gain over the band; one or more runs away."""
+
+
+class Restated(Frozen, frozen=True):
+    """A result in terms of chosen quantities."""
+
+    statement: RestateStatement
+    tree: Node
+    value: float
+    """At nominal, computed from the closed form."""
+    original: float
+    """At nominal, as the line itself computed it."""
+
+
+class Answer(Frozen, frozen=True):
+    """How a quantity answers to one quantity it depends on; in coherent SI."""
+
+    key: str
+    slope: Node
+    value: float
+    """The partial derivative at nominal."""
+    per_cent: float
+    """The change that one per cent of the nominal value makes, in first order."""
+    low: float
+    high: float
+    """The changes at the least and the greatest value, all others at nominal."""
+
+
+class Sensitive(Frozen, frozen=True):
+    """The sensitivities of a quantity, the greatest effect of a full tolerance first."""
+
+    statement: SensitivityStatement
+    rows: tuple[Answer, ...]
 
 
 class Discharged(Frozen, frozen=True):
@@ -129,6 +165,8 @@ class Evaluation(Frozen, frozen=True):
     crosschecks: tuple[Crosschecked, ...]
     chosen: Mapping[str, Root]
     """Key of every solved quantity to the root that was left."""
-    numeric: Mapping[str, Numeric]
-    """Key of every quantity found between two values to how well it was found."""
+    put_back: Mapping[str, PutBack]
+    """Key of every solved or settled quantity to what is left when it is put back."""
     discharged: tuple[Discharged, ...]
+    restated: tuple[Restated, ...]
+    sensitive: tuple[Sensitive, ...]

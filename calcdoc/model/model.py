@@ -52,6 +52,8 @@ class Solved(Frozen, frozen=True):
     combinations: tuple[tuple[Root, ...], ...]
     """Each has one root for every unknown."""
     where: Node | None
+    proven: bool
+    """Whether every combination satisfies its relations identically."""
     span_of: Label
     """Where to point when no combination, or more than one, is left."""
 

@@ -3,7 +3,8 @@
 from collections.abc import Mapping
 
 from calcdoc.model.model import Implicit, Root, Solved
-from calcdoc.model.symbolic import Failure, Solution, Step, solve
+from calcdoc.model.symbolic import Failure, Solution, Step, is_identity, solve
+from calcdoc.model.symbolic.trees import replaced
 from calcdoc.problems import Finding, Mistake, Place, error
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import names
@@ -35,7 +36,17 @@ def solved_for(statement: SolvedStatement, relations: Relations) -> Solved | Imp
         tuple(each.key for each in statement.relations),
         tuple(tuple(_root(each) for each in roots) for roots in outcome.combinations),
         statement.where,
+        all(_satisfies(roots, used) for roots in outcome.combinations),
         statement.unknowns[0].symbol,
+    )
+
+
+def _satisfies(roots: tuple[Solution, ...], relations: list[RelationStatement]) -> bool:
+    """Whether a combination put back makes every relation an identity."""
+    trees = {each.unknown: each.tree for each in roots}
+    return all(
+        is_identity(replaced(each.left, trees), replaced(each.right, trees)) is True
+        for each in relations
     )
 
 

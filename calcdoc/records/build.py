@@ -14,6 +14,7 @@ from calcdoc.records.criteria import criteria
 from calcdoc.records.naming import name_lines
 from calcdoc.records.quantities import Numbers, quantities
 from calcdoc.records.registers import assumptions, references, tally, unsourced
+from calcdoc.records.restating import restated, sensitivities
 from calcdoc.records.wording import counted, typeset
 from calcdoc.text import prose
 from calcdoc.text.names import fold
@@ -63,8 +64,8 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
         cases=("normal",),
         quantities=lines,
         relations=relations(numbers, naming),
-        restated=(),
-        sensitivities=(),
+        restated=restated(numbers, naming),
+        sensitivities=sensitivities(numbers, naming),
         criteria=judged,
         crosschecks=crosschecks(numbers, naming),
         assumptions=register,

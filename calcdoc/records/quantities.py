@@ -236,17 +236,17 @@ def _steps(numbers: Numbers, variable: Variable) -> tuple[str, ...]:
 
 def _residual(numbers: Numbers, variable: Variable) -> str | None:
     """What is left when the solution is put back."""
-    root = numbers.evaluation.chosen.get(variable.key)
-    if root is not None:
-        names = ", ".join(_relations(numbers, variable))
-        return f"put back into {names}: left - right = 0"
-    found = numbers.evaluation.numeric.get(variable.key)
+    found = numbers.evaluation.put_back.get(variable.key)
     if found is None:
         return None
-    left = f"left - right = {significant(found.residual, 2)} of the largest term"
-    if found.gain is None:
-        return f"put back: {left}"
-    return f"put back: {left}; loop gain at most {significant(found.gain, 3)}"
+    names = ", ".join(_relations(numbers, variable))
+    into = f"put back into {names}" if names else "put back"
+    if found.proven or not found.residual:
+        left = "left - right = 0"
+    else:
+        left = f"left - right is at most {significant(found.residual, 2)} of the largest term"
+    gain = "" if found.gain is None else f"; loop gain at most {significant(found.gain, 3)}"
+    return f"{into}: {left}{gain}"
 
 
 def _substitution(numbers: Numbers, variable: Variable, formula: Node | None) -> str:
