@@ -29,13 +29,19 @@ def demo_symbols() -> list[str]:
     return [each.symbol.name for each in document.statements if isinstance(each, Definition)]
 
 
-def repeated(copies: int, *, chained: bool = False) -> str:
+DROP: Final = "V_pk_{0} - R_in*I_reg_{0}"
+"""A chain in which most slopes keep their sign."""
+MEAN: Final = "0.7*V_pk_{0} + 0.3*V_mean_{0}"
+"""A chain in which the extremes of ever more lines must be searched."""
+
+
+def repeated(copies: int, chain: str = "") -> str:
     """The demo's derive lines again and again under new names.
 
     Args:
         copies: How many times the derive lines stand there.
-        chained: Whether each copy begins with the reservoir voltage of the one before, so that
-            the last line depends on all others; else every copy begins with the inputs.
+        chain: The reservoir voltage of a copy from quantities of the one before, so that the last
+            line depends on all others; empty where every copy begins with the inputs.
     """
     blocks, symbols = demo_blocks(), demo_symbols()
     mine = re.compile(rf"(?<!\w)({'|'.join(map(re.escape, symbols))})(?!\w)")
@@ -44,8 +50,8 @@ def repeated(copies: int, *, chained: bool = False) -> str:
         for line in blocks["derive"]:
             statement, bar, rest = line.partition("|")
             renamed = mine.sub(rf"\g<1>_{copy}", statement)
-            if chained and copy and renamed.startswith("V_pk_"):
-                renamed = f"V_pk_{copy} [V] = 0.7*V_pk_{copy - 1} + 0.3*V_mean_{copy - 1} "
+            if chain and copy and renamed.startswith("V_pk_"):
+                renamed = f"V_pk_{copy} [V] = {chain.format(copy - 1)} "
             lines.append(renamed + bar + rest)
     return TITLE + "".join(
         f"\n```{word}\n" + "\n".join(each) + "\n```\n"

@@ -25,6 +25,8 @@ def test_benchmark_prints_every_row() -> None:
         "10 x the lines",
         "10 x the lines, each on the last",
         "10 x the lines, each on the last",
+        "10 x the lines, most to be searched",
+        "10 x the lines, most to be searched",
         "extremes of 10 quantities",
     ]
     assert [match and match[3] for match in found][:3] == ["<= 1.5", "<= 1.25", "<= 11"]
