@@ -5,9 +5,8 @@
 Each stage returns what it made and what it found; only a text without errors goes on.
 """
 
-import base64
 import os
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable
 from datetime import UTC, datetime
 from importlib import import_module
 from pathlib import Path
@@ -16,20 +15,20 @@ from typing import Final
 from calcdoc import __version__
 from calcdoc.analysis.evaluate import evaluate_model
 from calcdoc.analysis.evaluation import Evaluation
-from calcdoc.errors import CalcdocError, FileTrouble
+from calcdoc.beside import Beside, read_beside
+from calcdoc.errors import CalcdocError
 from calcdoc.folder import Folder, read_bytes, write_whole
 from calcdoc.frozen import Frozen
 from calcdoc.model.build import build
 from calcdoc.model.model import Model
 from calcdoc.problems import Finding, error
 from calcdoc.problems.views import full, has_errors, in_order
-from calcdoc.records.build import Circumstances, Embedded, build_record
+from calcdoc.records.build import Circumstances, build_record
 from calcdoc.records.cautions import hazard_warning
 from calcdoc.records.record import Record, Tool
 from calcdoc.records.store import to_json
 from calcdoc.source import SourceFile, digest
-from calcdoc.text.document import pictures, read_document
-from calcdoc.text.prose import Block
+from calcdoc.text.document import read_document
 
 FORMS: Final = ("html", "pdf", "json")
 LIBRARIES: Final = {
@@ -39,7 +38,6 @@ LIBRARIES: Final = {
     "pint": "pint",
 }
 """Libraries the numbers and the stored record depend on, with the module that knows its version."""
-_MEDIA: Final = {b"\x89PNG\r\n\x1a\n": "image/png", b"\xff\xd8\xff": "image/jpeg"}
 
 
 class TextHasErrors(CalcdocError):
@@ -54,7 +52,8 @@ class Design(Frozen, frozen=True):
     """The file as it is on disk."""
     model: Model | None
     findings: tuple[Finding, ...]
-    pictures: Mapping[str, Embedded] = {}
+    beside: Beside = Beside()
+    """The files it uses."""
 
     @property
     def ok(self) -> bool:
@@ -101,9 +100,11 @@ def read(path: str | os.PathLike[str]) -> Design:
     document, findings = read_document(source)
     if document is None:
         return Design(source, data, None, in_order(findings))
-    model, more = build(document)
-    embedded, trouble = _pictures(Folder(Path(name).parent), document.body)
-    return Design(source, data, model, in_order((*findings, *more, *trouble)), embedded)
+    beside, trouble = read_beside(document, Folder(Path(name).parent))
+    model, more = build(document, beside.tables)
+    if has_errors(trouble):
+        model = None
+    return Design(source, data, model, in_order((*findings, *trouble, *more)), beside)
 
 
 def evaluate(design: Design) -> Evaluated:
@@ -133,7 +134,9 @@ def record(evaluated: Evaluated) -> Record:
         )
     versions = {name: import_module(module).__version__ for name, module in LIBRARIES.items()}
     tool = Tool(version=__version__, libraries=versions)
-    made = Circumstances(tool, evaluated.findings, evaluated.design.pictures)
+    made = Circumstances(
+        tool, evaluated.findings, evaluated.design.beside.pictures, evaluated.design.beside.files
+    )
     return build_record(evaluated.evaluation, made)
 
 
@@ -185,8 +188,7 @@ def _rendered(form: str, made: Record, data: bytes, design: Design) -> bytes:
     if form == "pdf":
         from calcdoc.page.pdf import pdf  # noqa: PLC0415  (slow to load)
 
-        files = {each.name: base64.b64decode(each.base64) for each in design.pictures.values()}
-        return pdf(made, design.data, data, issued=_issued(made), files=files)
+        return pdf(made, design.data, data, issued=_issued(made), files=design.beside.files)
     raise CalcdocError(f"there is no form {form}; the forms are {', '.join(FORMS)}")
 
 
@@ -220,29 +222,3 @@ def _decoded(name: str, data: bytes) -> tuple[SourceFile, tuple[Finding, ...]]:
         return source, (error("nul-character", "the text holds a NUL character",
                               source.span(at, at + 1), help="remove it"),)  # fmt: skip
     return source, ()
-
-
-def _pictures(
-    folder: Folder, body: tuple[Block, ...]
-) -> tuple[dict[str, Embedded], tuple[Finding, ...]]:
-    """Every picture of the prose, read from the design's folder."""
-    embedded: dict[str, Embedded] = {}
-    findings = []
-    for node in pictures(body):
-        if node.path in embedded:
-            continue
-        try:
-            content = folder.read(node.path)
-        except FileTrouble as trouble:
-            message = f"this picture is not shown: {trouble}"
-            advice = "put the file beside the design and name it from there"
-            findings.append(error("picture", message, node.span, help=advice))
-            continue
-        kind = next((kind for magic, kind in _MEDIA.items() if content.startswith(magic)), None)
-        if kind is None:
-            findings.append(error("picture", "a picture is a PNG or a JPEG file", node.span,
-                                  help="convert it"))  # fmt: skip
-            continue
-        embedded[node.path] = Embedded(node.path, digest(content), kind,
-                                       base64.b64encode(content).decode())  # fmt: skip
-    return embedded, tuple(findings)

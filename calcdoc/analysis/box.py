@@ -1,5 +1,7 @@
 """Ranges of all input columns at once."""
 
+import numpy as np
+
 from calcdoc.analysis.points import FloatArray
 from calcdoc.frozen import Frozen
 
@@ -10,6 +12,12 @@ class Box(Frozen, frozen=True):
     low: FloatArray
     nominal: FloatArray
     high: FloatArray
+
+    def with_column(self, low: float, nominal: float, high: float) -> "Box":
+        """The box with one more column."""
+        return Box(
+            np.append(self.low, low), np.append(self.nominal, nominal), np.append(self.high, high)
+        )
 
     @property
     def at_nominal(self) -> "Box":

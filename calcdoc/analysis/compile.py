@@ -8,6 +8,7 @@ import numpy as np
 
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.formulas import is_constant
+from calcdoc.analysis.looking_up import LookedUp
 from calcdoc.analysis.tape import Op, Tape
 from calcdoc.analysis.working import Working
 from calcdoc.frozen import Frozen
@@ -65,6 +66,8 @@ class Compiled(Frozen, frozen=True):
     """Key of every quantity found numerically to its instruction."""
     relations: Mapping[str, tuple[int, int]]
     """Key of every solved or settled quantity to the sides of its relation, put together."""
+    looked: tuple[LookedUp, ...]
+    """Every look-up of a table."""
     origins: Mapping[int, Node]
     """Instruction to the piece of formula it came from first."""
 
@@ -85,9 +88,10 @@ def compile_model(model: Model) -> Compiled:
     checks = tuple(_crosscheck(working, each) for each in model.crosschecks)
     discharges = tuple(_discharge(working, each) for each in model.discharges)
     relations = _relations(working, model)
+    moving = {each.key: each.column for each in working.looked if each.column is not None}
     return Compiled(
         tape=working.builder.tape(),
-        columns=columns,
+        columns={**columns, **moving},
         variables=working.variables,
         series=working.series,
         box=working.box,
@@ -97,6 +101,7 @@ def compile_model(model: Model) -> Compiled:
         chosen=working.chosen,
         roots=working.roots,
         relations=relations,
+        looked=tuple(working.looked),
         origins=working.origins,
     )
 
@@ -141,6 +146,7 @@ def _relations(working: Working, model: Model) -> dict[str, tuple[int, int]]:
 
 def _criterion(working: Working, judged: Judged) -> tuple[Side, ...]:
     """The limits of a criterion, for every element when it is judged over a series."""
+    working.owner = judged.statement.id.key
     index = judged.statement.clauses.index
     if index is None:
         return _limits(working, judged, None)
@@ -194,6 +200,7 @@ def _turned(operator: str) -> str:
 
 def _crosscheck(working: Working, compared: Compared) -> Check:
     statement = compared.statement
+    working.owner = statement.id.key
     first, second = working.node(statement.first), working.node(statement.second)
     difference = working.builder.add(Op.SUB, first, second)
     if statement.allowed:

@@ -139,6 +139,7 @@ class _Evaluator:
                 self._discharged(at, found[each.voltage].greatest)
                 for at, each in zip(times, self.model.discharges, strict=True)
             ),
+            compiled.looked,
             *self._restated(found),
         )  # fmt: skip
 

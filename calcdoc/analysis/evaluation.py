@@ -5,6 +5,7 @@ from enum import Enum
 
 from calcdoc.analysis.compile import Side
 from calcdoc.analysis.extremes import Proof
+from calcdoc.analysis.looking_up import LookedUp
 from calcdoc.frozen import Frozen
 from calcdoc.model.model import Compared, Judged, Model, Root
 from calcdoc.text.nodes import Node
@@ -168,5 +169,6 @@ class Evaluation(Frozen, frozen=True):
     put_back: Mapping[str, PutBack]
     """Key of every solved or settled quantity to what is left when it is put back."""
     discharged: tuple[Discharged, ...]
+    looked: tuple[LookedUp, ...]
     restated: tuple[Restated, ...]
     sensitive: tuple[Sensitive, ...]

@@ -9,6 +9,7 @@ from calcdoc.analysis.tape import Op, TapeBuilder
 from calcdoc.model import series
 from calcdoc.model.constant import Running, constant_value
 from calcdoc.model.constants import CONSTANTS
+from calcdoc.problems import Mistake, error
 from calcdoc.text import literal
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import (
@@ -128,6 +129,8 @@ class Formulas:
         return self.builder.add(op, *((left, right) if operator[0] == "<" else (right, left)))
 
     def _call(self, function: str, arguments: tuple[Node, ...]) -> int:
+        if function == "lookup":
+            return self.looked_up(arguments)
         if function in _ONE_ARGUMENT:
             return self.builder.add(_ONE_ARGUMENT[function], self.node(arguments[0]))
         if function == "if":
@@ -155,6 +158,17 @@ class Formulas:
         for part in rest:
             first = self.builder.add(op, first, part)
         return first
+
+    def looked_up(self, arguments: tuple[Node, ...]) -> int:
+        """The value of a table; where a table cannot be read its arguments are to blame."""
+        raise Mistake(
+            error(
+                "table",
+                "a table cannot be looked up inside a loop, a numeric solution or a restatement",
+                arguments[0].span,
+                help="look it up on a line of its own, outside",
+            )
+        )
 
     def elements(self, tree: Node, indices: tuple[int, ...], running: str) -> dict[int, int]:
         """The instructions of a series, element by element."""

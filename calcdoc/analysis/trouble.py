@@ -86,7 +86,7 @@ def _combination(compiled: Compiled, model: Model, point: FloatArray) -> str:
     moved = [
         _value(model.variables[key], float(point[column]))
         for key, column in compiled.columns.items()
-        if point[column] != compiled.box.nominal[column]
+        if key in model.variables and point[column] != compiled.box.nominal[column]
     ]
     return ", ".join(moved[:6]) or "the nominal values"
 

@@ -5,10 +5,15 @@ from collections.abc import Mapping
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.choice import choose
 from calcdoc.analysis.formulas import Formulas
+from calcdoc.analysis.looking_up import LookedUp, argument_range, snapped
 from calcdoc.analysis.tape import Implicit, Op
 from calcdoc.model.model import Model, Root, Solved, Variable
+from calcdoc.problems import Finding, Mistake, error
+from calcdoc.tables.table import OutsideAxis, Table, look_up
 from calcdoc.text.given import Given
-from calcdoc.text.nodes import Name
+from calcdoc.text.nodes import Name, Node, Text
+from calcdoc.text.scan import shown
+from calcdoc.text.unparse import unparse
 
 
 class Working(Formulas):
@@ -19,6 +24,9 @@ class Working(Formulas):
         self.model, self.columns, self.box = model, columns, box
         self.chosen: dict[str, Root] = {}
         self.roots: dict[str, int] = {}
+        self.looked: list[LookedUp] = []
+        self.owner = ""
+        """Key of the quantity, criterion or cross-check that is compiled now."""
 
     def variable(self, variable: Variable) -> None:
         """Add one quantity; what it rests on was added before.
@@ -26,7 +34,7 @@ class Working(Formulas):
         Raises:
             Mistake: when a solved quantity has several roots over the band, or none.
         """
-        key = variable.key
+        key = self.owner = variable.key
         if variable.given is not None:
             self.variables[key] = self._given(key, variable.given)
         elif variable.implicit is not None:
@@ -46,6 +54,31 @@ class Working(Formulas):
         if key in self.columns:
             return self.builder.add(Op.INPUT, value=self.columns[key])
         return self.constant(given.unit.to_si(given.nominal))
+
+    def looked_up(self, arguments: tuple[Node, ...]) -> int:
+        """The value of a table: a constant, or a column when a range of arguments has several."""
+        name = arguments[0]
+        assert isinstance(name, Text)
+        table = self.model.tables[name.value]
+        ranges = tuple(
+            each.value if isinstance(each, Text) else argument_range(self, self.node(each), axis)
+            for each, axis in zip(arguments[1:], table.axes, strict=True)
+        )
+        try:
+            found = look_up(table, tuple(snapped(table, n, each) for n, each in enumerate(ranges)))
+        except OutsideAxis as outside:
+            raise Mistake(_outside(table, arguments[outside.number + 1], outside)) from outside
+        least, nominal, greatest = (
+            each * table.unit.factor for each in (found.least, found.nominal, found.greatest)
+        )
+        if least == greatest:
+            self.looked.append(LookedUp(self.owner, table, found, None))
+            return self.constant(nominal)
+        column = self.builder.n_inputs
+        self.builder.n_inputs += 1
+        self.box = self.box.with_column(float(least), float(nominal), float(greatest))
+        self.looked.append(LookedUp(self.owner, table, found, column))
+        return self.builder.add(Op.INPUT, value=column)
 
     def _solved(self, solved: Solved) -> None:
         """All unknowns of a line at once: the combination of roots that is left."""
@@ -84,6 +117,15 @@ class Working(Formulas):
         at = self.builder.add(Op.ROOT, *arguments, value=value)
         self.origins.setdefault(at, Name(variable.symbol, variable.label.span))
         return at
+
+
+def _outside(table: Table, argument: Node, outside: OutsideAxis) -> Finding:
+    return error(
+        "outside-axis",
+        f"{shown(unparse(argument))} lies outside of the table {shown(table.name)}",
+        argument.span,
+        help=str(outside),
+    )
 
 
 def _again(inner: Formulas, variable: Variable) -> None:

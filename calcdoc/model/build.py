@@ -1,5 +1,7 @@
 """From document to model: the checks in order, each reporting all it finds."""
 
+from collections.abc import Mapping
+
 from calcdoc.model import namespace
 from calcdoc.model.citations import CHECKS
 from calcdoc.model.judging import Judging, discharge
@@ -10,6 +12,7 @@ from calcdoc.model.typing import Unknown
 from calcdoc.model.uses import Rests, find_uses
 from calcdoc.problems import Finding, Mistake
 from calcdoc.problems.views import has_errors
+from calcdoc.tables.table import Table
 from calcdoc.text.document import Document
 from calcdoc.text.statements import (
     CrosscheckStatement,
@@ -25,8 +28,16 @@ from calcdoc.text.statements import (
 )
 
 
-def build(document: Document) -> tuple[Model | None, tuple[Finding, ...]]:
-    """Check a document; None when a mistake stops it from being computed."""
+def build(
+    document: Document, tables: Mapping[str, Table] | None = None
+) -> tuple[Model | None, tuple[Finding, ...]]:
+    """Check a document; None when a mistake stops it from being computed.
+
+    Args:
+        document: The design text as it was read.
+        tables: The tables its formulas look up, by name.
+    """
+    tables = tables or {}
     space, findings = namespace.collect(document)
     for check in (namespace.unknown_names, namespace.two_readings, namespace.shadowed):
         findings += check(document, space)
@@ -37,7 +48,7 @@ def build(document: Document) -> tuple[Model | None, tuple[Finding, ...]]:
         each.symbol.key: each for each in document.statements if isinstance(each, SettleStatement)
     }
     rests, found = find_uses(space, relations, settled)
-    quantities = Quantities(space, rests, relations, settled)
+    quantities = Quantities(space, rests, relations, settled, tables)
     quantities.run()
     judged, compared, more = _judge(document, space, quantities)
     findings += [*found, *quantities.findings, *more]
@@ -49,7 +60,8 @@ def build(document: Document) -> tuple[Model | None, tuple[Finding, ...]]:
         key: Relation(key, each, direct_uses((each.left, each.right), space))
         for key, each in relations.items()
     }
-    return _model(document, quantities, rests, stated, judged, compared), tuple(findings)
+    made = _model(document, tables, quantities, rests, stated, judged, compared)
+    return made, tuple(findings)
 
 
 def _judge(
@@ -81,6 +93,7 @@ def _judge(
 
 def _model(  # noqa: PLR0913  (the parts of a model)
     document: Document,
+    tables: Mapping[str, Table],
     quantities: Quantities,
     rests: Rests,
     relations: dict[str, Relation],
@@ -91,6 +104,7 @@ def _model(  # noqa: PLR0913  (the parts of a model)
     hazards = tuple(each for each in given if isinstance(each, HazardStatement))
     return Model(
         document,
+        tables,
         {key: quantities.variables[key] for key in quantities.space.quantities},
         rests.order,
         relations,

@@ -4,6 +4,7 @@ from collections.abc import Mapping
 from fractions import Fraction
 
 from calcdoc.frozen import Frozen
+from calcdoc.tables.table import Table
 from calcdoc.text.document import Document
 from calcdoc.text.given import Given
 from calcdoc.text.nodes import Node
@@ -142,6 +143,7 @@ class Model(Frozen, frozen=True):
     """A design that can be computed."""
 
     document: Document
+    tables: Mapping[str, Table]
     variables: Mapping[str, Variable]
     """By key, in the author's order."""
     order: tuple[str, ...]

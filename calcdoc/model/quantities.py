@@ -10,6 +10,7 @@ from calcdoc.model.typing import Checker, Unknown
 from calcdoc.model.uses import Rests
 from calcdoc.problems import Finding, Mistake, Place, error
 from calcdoc.source import Span
+from calcdoc.tables.table import Table
 from calcdoc.text.given import Given
 from calcdoc.text.nodes import Name
 from calcdoc.text.scan import shown
@@ -46,6 +47,7 @@ class Quantities:
         rests: What rests on what.
         relations: Relations by key.
         settled: Settle statements by the key of their symbol.
+        tables: Tables by name.
     """
 
     def __init__(
@@ -54,10 +56,12 @@ class Quantities:
         rests: Rests,
         relations: Mapping[str, RelationStatement],
         settled: Mapping[str, SettleStatement],
+        tables: Mapping[str, Table],
     ) -> None:
         self.space, self.rests, self.relations, self.settled = space, rests, relations, settled
         self.types: dict[str, Typed | None] = dict.fromkeys(space.quantities)
-        self.checker = Checker(self.types, {k: v.span for k, v in space.labels.items()})
+        places = {key: label.span for key, label in space.labels.items()}
+        self.checker = Checker(self.types, places, tables)
         self.variables: dict[str, Variable] = {}
         self.findings: list[Finding] = []
         self._solved: dict[int, Solved | Implicit | None] = {}

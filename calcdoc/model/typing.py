@@ -14,8 +14,10 @@ from calcdoc.model import blame, series
 from calcdoc.model.blame import Places
 from calcdoc.model.constant import constant_value
 from calcdoc.model.constants import CONSTANTS
+from calcdoc.model.lookups import typed_lookup
 from calcdoc.model.model import Typed
 from calcdoc.problems import Mistake, error
+from calcdoc.tables.table import Table
 from calcdoc.text import literal
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import (
@@ -52,11 +54,15 @@ class Checker:
     Args:
         types: The type of every name so far, by key; None for a name whose own line is wrong.
         places: Where every name is defined, by key.
+        tables: Tables that formulas look up, by name.
     """
 
-    def __init__(self, types: Mapping[str, Typed | None], places: Places) -> None:
+    def __init__(
+        self, types: Mapping[str, Typed | None], places: Places, tables: Mapping[str, Table]
+    ) -> None:
         self.types = types
         self.places = places
+        self.tables = tables
         self.sets: dict[str, tuple[int, ...]] = {}
         """Indices of every series so far, by key."""
         self._known: dict[int, Typed] = {}
@@ -236,14 +242,10 @@ class Checker:
     def _call(self, node: Call) -> Typed:
         name, arguments = node.function, node.arguments
         if name == "lookup":
-            raise Mistake(
-                error(
-                    "not-available-yet",
-                    "`lookup` is not available yet",
-                    node.name_span,
-                    help="it is reserved for a coming version",
-                )
-            )
+            found = typed_lookup(node, self.tables, self.of)
+            if found is None:
+                raise Unknown
+            return found
         if name == "if":
             self.condition(arguments[0])
             return self._alike(node, arguments[1:])

@@ -16,6 +16,7 @@ from calcdoc.records.quantities import Numbers, quantities
 from calcdoc.records.registers import assumptions, references, tally, unsourced
 from calcdoc.records.restating import restated, sensitivities
 from calcdoc.records.wording import counted, typeset
+from calcdoc.source import digest
 from calcdoc.text import prose
 from calcdoc.text.names import fold
 from calcdoc.text.titleblock import TitleBlock
@@ -37,6 +38,8 @@ class Circumstances(Frozen, frozen=True):
     findings: tuple[Finding, ...] = ()
     pictures: Mapping[str, Embedded] = {}
     """By path as written in the text."""
+    files: Mapping[str, bytes] = {}
+    """Every file of the design's folder that was used, by name."""
 
 
 def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
@@ -108,8 +111,8 @@ def _source(evaluation: Evaluation, made: Circumstances) -> r.Source:
         name=source.path.replace("\\", "/").rpartition("/")[2],
         sha256=source.sha256,
         files=tuple(
-            r.File(name=each.name, sha256=each.sha256)
-            for each in sorted(made.pictures.values(), key=lambda each: each.name)
+            r.File(name=name, sha256=digest(content))
+            for name, content in sorted(made.files.items())
         ),
     )
 

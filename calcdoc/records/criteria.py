@@ -4,6 +4,7 @@ from calcdoc.analysis.evaluation import Judgement, Outcome, Row
 from calcdoc.model.model import Judged, Typed
 from calcdoc.records import record as r
 from calcdoc.records.display import choose_unit
+from calcdoc.records.looked import unverified
 from calcdoc.records.naming import Naming
 from calcdoc.records.quantities import Numbers
 from calcdoc.records.rounding import apart, downward, stored
@@ -90,7 +91,7 @@ def _calculated(numbers: Numbers, naming: Naming, judgement: Judgement) -> r.Cri
         rows=tuple(_row(numbers, judgement, unit, row) for row in judgement.rows),
         interval=None,
         standard_error=None,
-        unverified=(),
+        unverified=unverified(numbers.evaluation, judgement.judged),
         description=statement.description,
         basis=statement.basis.text,
         reason=_reason(judgement, unit, numbers.digits),

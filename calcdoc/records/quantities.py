@@ -11,6 +11,7 @@ from calcdoc.model.model import Model, Variable
 from calcdoc.records import record as r
 from calcdoc.records.carried import units_carried
 from calcdoc.records.display import choose_unit
+from calcdoc.records.looked import looked_up
 from calcdoc.records.naming import Naming
 from calcdoc.records.rounding import significant, stored
 from calcdoc.records.substitute import substituted
@@ -84,10 +85,13 @@ class Numbers(Frozen, frozen=True, dict=True):
 
     def combination(self, combination: Combination) -> dict[str, str]:
         """Where inputs stand, by symbol, in the author's order."""
-        return {
-            self.model.variables[key].symbol: self.at(key, stand.value)
-            for key, stand in combination.items()
-        }
+        return dict(self._stand(key, stand.value) for key, stand in combination.items())
+
+    def _stand(self, key: str, si: float) -> tuple[str, str]:
+        if key in self.model.variables:
+            return self.model.variables[key].symbol, self.at(key, si)
+        looked = next(each for each in self.evaluation.looked if each.key == key)
+        return f'lookup("{looked.table.name}")', computed(si, looked.table.unit, self.digits)
 
 
 def quantities(numbers: Numbers, naming: Naming) -> tuple[r.Quantity, ...]:
@@ -129,7 +133,7 @@ def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantit
         greatest_text=shown.greatest_text,
         varies=shown.varies,
         from_relation=", ".join(_relations(numbers, variable)),
-        notes=shown.notes,
+        notes=(*shown.notes, *looked_up(numbers.evaluation, variable.key)),
     )
 
 

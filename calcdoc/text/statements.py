@@ -82,7 +82,7 @@ class Index(Frozen, frozen=True):
 
 
 class Definition(Frozen, frozen=True):
-    """``V_pk [V] = sqrt(2)*V_line``, or a series ``limit[n] [mA] = 3.4 mA/n for n in 3..39 odd``."""
+    """``V_pk [V] = sqrt(2)*V_line``, or a series ``i[n] [mA] = 3.4 mA/n for n in 3..39 odd``."""
 
     symbol: Label
     unit: Unit | None
