@@ -4,11 +4,12 @@ Formulas go in and come out as trees. Own steps come first, each named in words;
 cannot do goes to SymPy, in a process of its own.
 """
 
-from collections.abc import Sequence
+from collections.abc import Collection, Sequence
 
 from calcdoc.model.symbolic.ask_sympy import SECONDS, ask_sympy
 from calcdoc.model.symbolic.derivative import derivative
 from calcdoc.model.symbolic.eliminate import Blocked, eliminate
+from calcdoc.model.symbolic.elimination import eliminated
 from calcdoc.model.symbolic.outcome import (
     Failure,
     How,
@@ -20,8 +21,8 @@ from calcdoc.model.symbolic.outcome import (
 )
 from calcdoc.model.symbolic.simplify import simplified
 from calcdoc.model.symbolic.single import is_wrong
-from calcdoc.model.symbolic.system import Relation, eliminated, spellings, substituted
-from calcdoc.model.symbolic.trees import mentions
+from calcdoc.model.symbolic.system import substituted
+from calcdoc.model.symbolic.trees import Relation, mentions, spellings
 from calcdoc.model.symbolic.verify import is_identity
 from calcdoc.text.nodes import Node
 
@@ -62,7 +63,7 @@ def solve(
     """
     labels = tuple(label for label, _, _ in relations)
     if len(relations) != len(unknowns) or len(set(unknowns)) != len(unknowns) or not unknowns:
-        message = f"{len(set(unknowns))} unknowns from {len(relations)} relations"
+        message = f"{_count(set(unknowns), 'unknown')} from {_count(relations, 'relation')}"
         return Failure("not solvable", message, labels)
     shown = spellings(relations, unknowns)
     for key in unknowns:
@@ -78,6 +79,10 @@ def solve(
         return checked
     asked = ask_sympy(relations, unknowns, seconds)
     return own if isinstance(own, Failure) and isinstance(asked, Failure) else asked
+
+
+def _count(things: Collection[object], word: str) -> str:
+    return f"{len(things)} {word}{'s' * (len(things) != 1)}"
 
 
 def _checked(roots: Roots, relations: Sequence[Relation]) -> Roots:

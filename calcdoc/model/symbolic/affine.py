@@ -5,17 +5,15 @@ from typing import Final
 
 from calcdoc.frozen import Frozen
 from calcdoc.model.symbolic.build import (
-    ONE,
-    ZERO,
     add,
-    bare,
     divide,
     multiply,
-    name,
     negate,
+    positive_first,
     subtract,
     total,
 )
+from calcdoc.model.symbolic.grouping import ONE, ZERO, bare, name
 from calcdoc.model.symbolic.simplify import simplified
 from calcdoc.model.symbolic.trees import mentions
 from calcdoc.model.symbolic.verify import is_zero
@@ -46,6 +44,10 @@ class Row(Frozen, frozen=True):
     def without(self, key: str, pivot: "Row") -> "Row":
         """This row less as much of another as makes the coefficient of an unknown zero."""
         own, other = self.coefficients[key], pivot.coefficients[key]
+        if len(pivot.coefficients) == 1:  # its value is known
+            left = {each: c for each, c in self.coefficients.items() if each != key}
+            value = divide(pivot.rest, other)
+            return tidy(self.relation, left, subtract(self.rest, multiply(own, value)))
         mine, theirs = self.scaled(other), pivot.scaled(own)
         keys = [*mine.coefficients, *(k for k in theirs.coefficients if k not in mine.coefficients)]
         left = {
@@ -59,7 +61,7 @@ class Row(Frozen, frozen=True):
 def tidy(relation: str, coefficients: Mapping[str, Node], rest: Node) -> Row:
     """A row with its formulas simplified and what is certainly zero left out."""
     kept = {key: simplified(c) for key, c in coefficients.items() if not is_zero(c)}
-    return Row(relation, kept, ZERO if is_zero(rest) else simplified(rest))
+    return Row(relation, kept, ZERO if is_zero(rest) else positive_first(simplified(rest)))
 
 
 def row(relation: tuple[str, Node, Node], keys: Sequence[str]) -> Row | None:

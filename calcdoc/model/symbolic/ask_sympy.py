@@ -13,7 +13,7 @@ from collections.abc import Sequence
 from pathlib import Path
 from typing import Final
 
-from calcdoc.model.symbolic.build import name
+from calcdoc.model.symbolic.grouping import name
 from calcdoc.model.symbolic.outcome import (
     LARGEST,
     Failure,
@@ -24,8 +24,7 @@ from calcdoc.model.symbolic.outcome import (
     Step,
 )
 from calcdoc.model.symbolic.single import is_wrong
-from calcdoc.model.symbolic.system import Relation, spellings
-from calcdoc.model.symbolic.trees import readable
+from calcdoc.model.symbolic.trees import Relation, readable, spellings
 from calcdoc.model.symbolic.wire import Table
 
 SECONDS: Final = 5.0

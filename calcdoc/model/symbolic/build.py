@@ -1,9 +1,7 @@
-"""Makes formula trees that print as what they mean.
+"""Sums, products and powers that drop what says nothing and keep the order they are given.
 
-``unparse`` adds no parentheses, so a tree carries a ``Group`` wherever precedence asks for one.
-``binary`` puts them; the other constructors also drop what says nothing (0 +, 1 *, - -) and keep
-the order of what they are given. For every tree made here from trees that a parser made, reading
-its text gives it back.
+``0 +``, ``1 *`` and double signs go, fractions of fractions become one, numbers are computed
+exactly. Parentheses stand where precedence asks for them (see ``grouping``).
 """
 
 from collections.abc import Iterable
@@ -12,110 +10,30 @@ from math import isqrt
 from typing import Final
 
 from calcdoc.model.constant import constant_value
-from calcdoc.source import Span
+from calcdoc.model.symbolic.grouping import (
+    NOWHERE,
+    ONE,
+    SIGN,
+    ZERO,
+    bare,
+    binary,
+    call,
+    fit,
+    is_plain,
+    plain,
+    split_sign,
+)
 from calcdoc.text.nodes import (
     Binary,
     Call,
-    Comparison,
-    Group,
-    Logic,
-    Name,
     Negate,
     Node,
-    Not,
     Number,
-    Quantity,
     walk,
 )
-from calcdoc.units import known_word
 
-NOWHERE: Final = Span("", 0, 0)
-ZERO: Final = Number("0", NOWHERE)
-ONE: Final = Number("1", NOWHERE)
-CONDITION, SUM, PRODUCT, SIGN, POWER, ATOM = range(6)
 _DECIMALS_MOST: Final = 12
 _BITS_MOST: Final = 180
-_LEVELS: Final = {"+": SUM, "-": SUM, "*": PRODUCT, "/": PRODUCT, "^": POWER}
-
-
-def level(node: Node) -> int:
-    """How tightly a node binds as it prints."""
-    match node:
-        case Logic() | Not() | Comparison():
-            return CONDITION
-        case Binary(op):
-            return _LEVELS[op]
-        case Negate():
-            return SIGN
-        case _:
-            return ATOM
-
-
-def bare(node: Node) -> Node:
-    """What stands inside the outermost parentheses."""
-    while isinstance(node, Group):
-        node = node.inner
-    return node
-
-
-def fit(node: Node, needed: int) -> Node:
-    """The node with exactly the parentheses that a place of this level asks for."""
-    inner = bare(node)
-    if level(inner) >= needed:
-        return inner
-    return node if isinstance(node, Group) and node.inner is inner else Group(inner, NOWHERE)
-
-
-def name(text: str) -> Name:
-    """A symbol."""
-    return Name(text, NOWHERE)
-
-
-def binary(op: str, left: Node, right: Node) -> Binary:
-    """``left op right`` as it stands, with the parentheses it needs."""
-    here = _LEVELS[op]
-    if op == "^":
-        left, right = fit(left, ATOM), fit(right, SIGN)
-        if isinstance(left, Quantity):  # 2 V^2 is 2 square volts
-            left = Group(left, NOWHERE)
-    else:
-        left, right = fit(left, here), fit(right, here + 1)
-        if split_sign(right)[0]:
-            right = Group(bare(right), NOWHERE)
-    if op == "/" and _ends_in_quantity(left) and _begins_as_unit(right):
-        left = Group(left, NOWHERE)  # 1 s/m is a unit, (1 s)/m divides by the symbol m
-    return Binary(op, left, right, NOWHERE, NOWHERE)
-
-
-def _ends_in_quantity(node: Node) -> bool:
-    while isinstance(node, Binary | Negate):
-        node = node.right if isinstance(node, Binary) else node.operand
-    return isinstance(node, Quantity)
-
-
-def _begins_as_unit(node: Node) -> bool:
-    while isinstance(node, Binary):
-        node = node.left
-    return isinstance(node, Name) and known_word(node.name)
-
-
-def plain(node: Node) -> Fraction | None:
-    """The value of a number, a negative number or a fraction of numbers; else None."""
-    match bare(node):
-        case Number(digits):
-            return Fraction(digits)
-        case Negate(operand):
-            value = plain(operand)
-            return None if value is None else -value
-        case Binary("/", Number(above), Number(below)) if Fraction(below):
-            return Fraction(above) / Fraction(below)
-        case _:
-            return None
-
-
-def is_plain(node: Node, value: int) -> bool:
-    """Whether a node is this number as it stands."""
-    return plain(node) == value
 
 
 def number(value: Fraction | int, *, decimal: bool = False) -> Node:
@@ -138,22 +56,6 @@ def number(value: Fraction | int, *, decimal: bool = False) -> Node:
 def writable(value: Fraction) -> bool:
     """Whether a number is short enough to be written in a formula."""
     return max(value.numerator.bit_length(), value.denominator.bit_length()) <= _BITS_MOST
-
-
-def split_sign(node: Node) -> tuple[bool, Node]:
-    """Whether a term begins with a minus sign, and the term without it."""
-    match node:
-        case Negate(operand):
-            negative, rest = split_sign(operand)
-            return not negative, rest
-        case Group(inner) if level(inner) >= PRODUCT or isinstance(inner, Group):
-            negative, rest = split_sign(inner)
-            return (True, rest) if negative else (False, node)
-        case Binary("*" | "/" as op, left, right):
-            negative, rest = split_sign(left)
-            return (True, binary(op, rest, right)) if negative else (False, node)
-        case _:
-            return False, node
 
 
 def negate(node: Node) -> Node:
@@ -324,6 +226,24 @@ def root(node: Node) -> Node:
     return call("sqrt", node)
 
 
-def call(function: str, *arguments: Node) -> Call:
-    """A function of arguments."""
-    return Call(function, tuple(bare(each) for each in arguments), NOWHERE, NOWHERE)
+def terms(node: Node) -> list[tuple[bool, Node]]:
+    """The terms of a sum, each with whether it is subtracted; parentheses are one term."""
+    if isinstance(node, Binary) and node.op in "+-":
+        negative, term = split_sign(node.right)
+        return [*terms(node.left), (negative != (node.op == "-"), term)]
+    return [split_sign(node)]
+
+
+def positive_first(node: Node) -> Node:
+    """A sum that does not begin with a minus sign if that can be helped: ``a - b``, not ``-b + a``.
+
+    For sums of our own making alone: the author's keep their order.
+    """
+    found = terms(bare(node))
+    if not found[0][0] or all(negative for negative, _ in found):
+        return node
+    return total(negate(each) if minus else each for minus, each in sorted(found, key=_is_minus))
+
+
+def _is_minus(term: tuple[bool, Node]) -> bool:
+    return term[0]

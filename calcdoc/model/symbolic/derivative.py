@@ -5,16 +5,8 @@ from functools import reduce
 
 from calcdoc.model.constant import constant_value
 from calcdoc.model.symbolic.build import (
-    NOWHERE,
-    ONE,
-    SUM,
-    ZERO,
     add,
-    bare,
-    binary,
-    call,
     divide,
-    fit,
     multiply,
     negate,
     number,
@@ -23,6 +15,7 @@ from calcdoc.model.symbolic.build import (
     subtract,
     total,
 )
+from calcdoc.model.symbolic.grouping import NOWHERE, ONE, SUM, ZERO, bare, binary, call, fit
 from calcdoc.model.symbolic.outcome import Failure, Refused
 from calcdoc.model.symbolic.simplify import simplified
 from calcdoc.model.symbolic.trees import mentions

@@ -7,13 +7,8 @@ from typing import Final
 from calcdoc.frozen import Frozen
 from calcdoc.model.constant import constant_value
 from calcdoc.model.symbolic.build import (
-    ONE,
-    bare,
-    call,
     divide,
-    is_plain,
     multiply,
-    name,
     negate,
     number,
     power,
@@ -21,6 +16,7 @@ from calcdoc.model.symbolic.build import (
     subtract,
     total,
 )
+from calcdoc.model.symbolic.grouping import ONE, bare, call, is_plain, name
 from calcdoc.model.symbolic.trees import mentions, words
 from calcdoc.text.nodes import Binary, Call, Node
 

@@ -8,18 +8,16 @@ from typing import Final
 
 from calcdoc.frozen import Frozen
 from calcdoc.model.symbolic.build import (
-    ONE,
     add,
-    bare,
     divide,
-    is_plain,
     multiply,
     negate,
     product,
-    split_sign,
     subtract,
+    terms,
     total,
 )
+from calcdoc.model.symbolic.grouping import ONE, bare, is_plain
 from calcdoc.model.symbolic.inverse import Move, undo_call, undo_power
 from calcdoc.model.symbolic.outcome import Solution, Step
 from calcdoc.model.symbolic.trees import count, mentions, words
@@ -113,14 +111,6 @@ def _undo_sum(left: Node, right: Node, key: str) -> Move:
 def _kept(left: Node, plus: list[Node], unknown: Node) -> list[Node]:
     """The terms that stay, in the order in which they stand."""
     return [term for _, term in terms(left) if term is unknown or any(term is p for p in plus)]
-
-
-def terms(node: Node) -> list[tuple[bool, Node]]:
-    """The terms of a sum, each with whether it is subtracted; parentheses are one term."""
-    if isinstance(node, Binary) and node.op in "+-":
-        negative, term = split_sign(node.right)
-        return [*terms(node.left), (negative != (node.op == "-"), term)]
-    return [split_sign(node)]
 
 
 def _undo_product(left: Node, right: Node, key: str) -> list[Move]:

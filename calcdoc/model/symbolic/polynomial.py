@@ -4,21 +4,17 @@ from typing import Final
 
 from calcdoc.frozen import Frozen
 from calcdoc.model.symbolic.build import (
-    ZERO,
     add,
     divide,
-    is_plain,
     multiply,
-    name,
     negate,
     number,
-    plain,
     power,
     root,
-    split_sign,
     subtract,
+    terms,
 )
-from calcdoc.model.symbolic.isolate import terms
+from calcdoc.model.symbolic.grouping import ZERO, is_plain, name, plain, split_sign
 from calcdoc.model.symbolic.outcome import Failure, Solution, Step
 from calcdoc.model.symbolic.ratio import Poly, common, denominator, over, ratio, shown
 from calcdoc.model.symbolic.simplify import simplified
@@ -104,7 +100,7 @@ def _linear(sides: _Sides) -> tuple[Solution, ...]:
     backward = simplified(subtract(r_1, l_1)), simplified(subtract(l_0, r_0))
     factor, rest = min(forward, backward, key=lambda pair: _minuses(*pair))
     x, steps = sides.unknown, list(sides.steps)
-    steps.append(Step(f"collect the terms with {words(x)}", multiply(factor, x), rest))
+    _note(steps, Step(f"collect the terms with {words(x)}", multiply(factor, x), rest))
     tree = rest
     if not is_plain(factor, 1):
         tree = simplified(divide(rest, factor))
@@ -122,8 +118,9 @@ def _quadratic(sides: _Sides) -> tuple[Solution, ...] | Failure:
     said = f"collect the terms with {words(x)}"
     if b == ZERO:
         square = multiply(a, power(x, 2))
-        steps = (*sides.steps, Step(said, square, negate(c)))
-        return _pure(sides, a, c, steps)
+        before = list(sides.steps)
+        _note(before, Step(said, square, negate(c)))
+        return _pure(sides, a, c, tuple(before))
     steps = (*sides.steps, Step(said, shown((c, b, a), x), ZERO))
     if c == ZERO:
         trees: tuple[Node, ...] = (ZERO, simplified(negate(divide(b, a))))
@@ -144,6 +141,12 @@ def _quadratic(sides: _Sides) -> tuple[Solution, ...] | Failure:
     first = _root(sides, steps, f"{word}, root with the plus sign", trees[0])
     second = _root(sides, steps, f"{word}, root with the minus sign", trees[1])
     return (first,) if first.tree == second.tree else (first, second)
+
+
+def _note(steps: list[Step], step: Step) -> None:
+    """Add a step that changes something."""
+    if not steps or (steps[-1].left, steps[-1].right) != (step.left, step.right):
+        steps.append(step)
 
 
 def _root(sides: _Sides, steps: tuple[Step, ...], word: str, tree: Node) -> Solution:

@@ -9,7 +9,8 @@ from typing import Final
 
 from calcdoc.frozen import Frozen
 from calcdoc.model.constant import constant_value
-from calcdoc.model.symbolic.build import ONE, ZERO, add, bare, divide, multiply, name, negate, power
+from calcdoc.model.symbolic.build import add, divide, multiply, negate, power
+from calcdoc.model.symbolic.grouping import ONE, ZERO, bare, name
 from calcdoc.model.symbolic.trees import mentions
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Binary, Call, Group, Name, Negate, Node

@@ -12,6 +12,7 @@ independent otherwise. What a drawn value came from is kept, so that exp(ln(a)) 
 """
 
 from fractions import Fraction
+from functools import lru_cache
 from hashlib import blake2b
 from math import gcd
 from typing import Final
@@ -37,6 +38,7 @@ from calcdoc.text.nodes import (
 )
 
 PRIMES: Final = tuple(k * 2459559130353965640 - 1 for k in (1, 2, 7, 16))
+_HALF: Final = Fraction(1, 2)
 _CELSIUS: Final = Fraction("273.15")
 _UNDONE: Final = {
     "exp": "ln", "ln": "exp", "log10": "ten", "ten": "log10",
@@ -44,6 +46,20 @@ _UNDONE: Final = {
 }  # fmt: skip
 """Function and the one that it undoes for every argument that this one takes."""
 _ODD: Final = frozenset({"sin", "tan", "asin", "atan"})
+
+
+@lru_cache(maxsize=1024)
+def _residue(digits: str, prime: int) -> int:
+    value = Fraction(digits)
+    return value.numerator * pow(value.denominator, -1, prime) % prime
+
+
+@lru_cache(maxsize=256)
+def _turns(exponent: Fraction, half: int) -> int | None:
+    """The whole power that does the same as a fractional one in a group of this odd order."""
+    if gcd(exponent.denominator, half) != 1:
+        return None
+    return exponent.numerator * pow(exponent.denominator, -1, half) % half
 
 
 class Unusable(Exception):
@@ -77,7 +93,7 @@ class Point:
         """
         match node:
             case Number(digits):
-                return self._exact(Fraction(digits))
+                return _residue(digits, self.prime)
             case Quantity(digits, written):
                 unit = literal.resolve(written)
                 value = Fraction(digits) * unit.factor
@@ -143,9 +159,9 @@ class Point:
         self.rooted = True
         if a == 0 and exponent > 0:
             return 0
-        if pow(a, half, self.prime) != 1 or gcd(exponent.denominator, half) != 1:
+        turns = _turns(exponent, half)
+        if turns is None or pow(a, half, self.prime) != 1:
             raise Unusable
-        turns = exponent.numerator * pow(exponent.denominator, -1, half) % half
         return pow(a, turns, self.prime)
 
     def _call(self, function: str, arguments: tuple[Node, ...]) -> int:
@@ -155,12 +171,12 @@ class Point:
         values = [self.value(each) for each in arguments]
         match function:
             case "sqrt":
-                return self._rational_power(values[0], Fraction(1, 2))
+                return self._rational_power(values[0], _HALF)
             case "sum":
                 return sum(values) % self.prime
             case "rss":
                 squares = sum(each**2 for each in values) % self.prime
-                return self._rational_power(squares, Fraction(1, 2))
+                return self._rational_power(squares, _HALF)
             case "abs":
                 self.rooted = True
                 half = (self.prime - 1) // 2

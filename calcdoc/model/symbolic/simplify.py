@@ -12,28 +12,25 @@ from typing import Final
 
 from calcdoc.frozen import Frozen, replace
 from calcdoc.model.symbolic.build import (
-    ONE,
-    ZERO,
     add,
-    bare,
-    call,
     divide,
     multiply,
     negate,
     number,
-    plain,
     power,
     product,
     root,
-    split_sign,
     subtract,
     writable,
 )
+from calcdoc.model.symbolic.grouping import ONE, ZERO, bare, call, is_plain, plain, split_sign
 from calcdoc.text.nodes import Binary, Call, Group, Negate, Node, Number, walk
 from calcdoc.text.unparse import unparse
 
 _EXACT: Final = {"exp": (0, 1), "ln": (1, 0), "log10": (1, 0), "sin": (0, 0), "cos": (0, 1)}
 """Function, an argument, and its exact value there."""
+_ALIKE: Final = frozenset({"min", "max", "sum", "rss"})
+"""Functions whose arguments must be of one kind."""
 _INTEGER_MOST: Final = 12
 
 
@@ -217,10 +214,11 @@ def _power(node: Binary) -> Node:
 def _call(node: Call) -> Node:
     arguments = node.arguments
     if node.function == "if":
-        chosen = (simplified(arguments[1]), simplified(arguments[2]))
+        chosen = (_of_a_kind(arguments[1]), _of_a_kind(arguments[2]))
         tidy = call("if", arguments[0], *chosen)
         return node if tidy == node else tidy
-    tidy = call(node.function, *(simplified(each) for each in arguments))
+    keep = _of_a_kind if node.function in _ALIKE else simplified
+    tidy = call(node.function, *(keep(each) for each in arguments))
     if node.function == "sqrt":
         rooted = root(tidy.arguments[0])
         return node if rooted == node else rooted
@@ -228,3 +226,9 @@ def _call(node: Call) -> Node:
     if exact and plain(tidy.arguments[0]) == exact[0]:
         return ONE if exact[1] else ZERO
     return node if tidy == node else tidy
+
+
+def _of_a_kind(node: Node) -> Node:
+    """An argument simplified, unless that leaves a zero that has lost its unit."""
+    tidy = simplified(node)
+    return node if is_plain(tidy, 0) and plain(node) is None else tidy

@@ -1,12 +1,13 @@
 """One relation, one unknown, by own steps: isolation, then linear and quadratic relations."""
 
+from calcdoc.model.symbolic.build import subtract
 from calcdoc.model.symbolic.isolate import isolate
 from calcdoc.model.symbolic.outcome import LARGEST, Failure, Solution
-from calcdoc.model.symbolic.polynomial import polynomial
+from calcdoc.model.symbolic.polynomial import dropped, polynomial
 from calcdoc.model.symbolic.simplify import simplified
 from calcdoc.model.symbolic.trees import mentions, readable, replaced, spelling
-from calcdoc.model.symbolic.verify import is_identity, is_pole
-from calcdoc.text.nodes import Node
+from calcdoc.model.symbolic.verify import differs, is_pole
+from calcdoc.text.nodes import Node, names
 
 
 def single(label: str, left: Node, right: Node, key: str) -> tuple[Solution, ...] | Failure | None:
@@ -17,6 +18,9 @@ def single(label: str, left: Node, right: Node, key: str) -> tuple[Solution, ...
         return Failure("unknown not in relation", message, (key, label))
     found = isolate(left, right, key)
     if found is None:
+        one, other = simplified(left), simplified(right)
+        if not (mentions(one, key) or mentions(other, key)):
+            return dropped(left, right, subtract(one, other), key)
         answer = polynomial(left, right, key)
         if not isinstance(answer, tuple):
             return answer
@@ -34,4 +38,6 @@ def is_wrong(left: Node, right: Node, trees: dict[str, Node]) -> bool:
     one, other = replaced(left, trees), replaced(right, trees)
     if is_pole(one) or is_pole(other):
         return True
-    return is_identity(simplified(one), simplified(other)) is False
+    if not any(True for side in (one, other) for _ in names(side)):
+        one, other = simplified(one), simplified(other)  # roots of numbers come out
+    return differs(one, other)

@@ -1,9 +1,9 @@
 """Questions about formula trees: where a symbol stands, how large they are, and replacing."""
 
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from typing import Final
 
-from calcdoc.model.symbolic.build import NOWHERE, SIGN, SUM, bare, binary, fit
+from calcdoc.model.symbolic.grouping import NOWHERE, SIGN, SUM, bare, binary, fit
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import (
     Binary,
@@ -22,6 +22,8 @@ from calcdoc.text.nodes import (
 )
 from calcdoc.text.unparse import unparse
 
+Relation = tuple[str, Node, Node]
+"""Name, left side, right side."""
 _TALLEST: Final = 100
 _DEEPEST: Final = 50
 
@@ -40,6 +42,12 @@ def spelling(nodes: Iterator[Node] | tuple[Node, ...], key: str) -> str:
     """A symbol as the author first typed it in these trees, or its key."""
     found = (each.name for node in nodes for each in names(node) if fold(each.name) == key)
     return next(found, key)
+
+
+def spellings(relations: Sequence[Relation], keys: Sequence[str]) -> dict[str, str]:
+    """Each unknown as its author first typed it."""
+    sides = tuple(side for _, left, right in relations for side in (left, right))
+    return {key: spelling(sides, key) for key in keys}
 
 
 def words(node: Node) -> str:

@@ -2,7 +2,7 @@
 
 from typing import Final
 
-from calcdoc.model.symbolic.build import ZERO
+from calcdoc.model.symbolic.grouping import ZERO
 from calcdoc.model.symbolic.residues import Point, Pole, Unusable
 from calcdoc.text.nodes import Node
 
@@ -11,6 +11,7 @@ _N_PLAIN: Final = 3
 _N_ROOTS: Final = 128
 """Points enough where each root has its sign by chance."""
 _N_TRIES: Final = 1500
+_N_QUICK: Final = 8
 
 
 def is_identity(left: Node, right: Node) -> bool | None:
@@ -27,8 +28,8 @@ def is_identity(left: Node, right: Node) -> bool | None:
         try:
             equal = point.value(left) == point.value(right)
         except Unusable:
-            if index >= _N_ROOTS and not n_equal:  # no root of what is negative always
-                return None
+            if index >= _N_ROOTS and n_equal * _N_TRIES < wanted * index:
+                return None  # too few points count: it would never come to enough of them
             continue
         if not equal:
             return None if point.drawn or point.rooted else False
@@ -37,6 +38,18 @@ def is_identity(left: Node, right: Node) -> bool | None:
         if n_equal >= wanted:
             return True
     return None
+
+
+def differs(left: Node, right: Node) -> bool:
+    """Whether two formulas of + − · / are certainly not equal; quick, and no for all others."""
+    for index in range(_N_QUICK):
+        point = Point(index)
+        try:
+            equal = point.value(left) == point.value(right)
+        except Unusable:
+            continue
+        return not (equal or point.drawn or point.rooted)
+    return False
 
 
 def is_zero(node: Node) -> bool:

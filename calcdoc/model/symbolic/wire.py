@@ -9,18 +9,8 @@ from collections.abc import Sequence
 from fractions import Fraction
 from typing import Final
 
-from calcdoc.model.symbolic.build import (
-    add,
-    bare,
-    call,
-    divide,
-    multiply,
-    name,
-    number,
-    plain,
-    power,
-    writable,
-)
+from calcdoc.model.symbolic.build import add, divide, multiply, number, power, writable
+from calcdoc.model.symbolic.grouping import bare, call, name, plain
 from calcdoc.model.symbolic.outcome import Failure, Refused
 from calcdoc.model.symbolic.trees import mentions
 from calcdoc.text.names import fold
