@@ -9,9 +9,14 @@ settings.load_profile("small")
 
 
 def pytest_addoption(parser: pytest.Parser) -> None:
-    """Add ``--rewrite-cases``: write what is found into the case files, for review."""
+    """Add ``--rewrite-cases`` and ``--rewrite-records``: write what is found, for review."""
     parser.addoption(
         "--rewrite-cases",
         action="store_true",
         help="replace the expected blocks of tests/cases by what is found now (without -n)",
+    )
+    parser.addoption(
+        "--rewrite-records",
+        action="store_true",
+        help="replace the golden records of tests/records by what is found now",
     )

@@ -18,6 +18,7 @@ from calcdoc.page.lines import (
 from calcdoc.page.markup import Column, table, verdict
 from calcdoc.page.view import View, reference_anchor
 from calcdoc.records.record import Criterion, Quantity
+from calcdoc.text.names import GREEK
 
 
 @dataclass(frozen=True, slots=True)
@@ -118,7 +119,7 @@ def assumptions(view: View) -> str:
     rows = [
         (
             view.place(each.id),
-            assumed(view, each),
+            assumed(view, each) if each.symbol else view.opening(each.text),
             view.opening(each.reason),
             view.words(": ".join(filter(None, (each.state, each.note)))),
             view.places(each.rests_on_it),
@@ -137,7 +138,7 @@ def symbols(view: View) -> str:
         Column("line", 7),
         Column("used in", 27),
     )
-    ordered = sorted(view.record.quantities, key=lambda each: (each.symbol.lower(), each.symbol))
+    ordered = sorted(view.record.quantities, key=lambda each: _alphabetical(each.symbol))
     rows = [
         (
             view.symbol(each.symbol),
@@ -149,6 +150,13 @@ def symbols(view: View) -> str:
         for each in ordered
     ]
     return table("symbols", "Symbols", columns, rows) if rows else ""
+
+
+def _alphabetical(name: str) -> tuple[str, str]:
+    """Latin before Greek, a spelled letter in the place of its sign, small beside capital."""
+    base, _, below = name.partition("_")
+    shown = f"{GREEK.get(base, base)}_{below}"
+    return shown.lower(), shown
 
 
 def crosschecks(view: View) -> str:

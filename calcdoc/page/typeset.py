@@ -15,7 +15,7 @@ from calcdoc.page.pieces import read
 from calcdoc.records import wording
 from calcdoc.records.pictures import unit
 from calcdoc.records.rounding import significant
-from calcdoc.records.shapes import MINUS
+from calcdoc.records.shapes import MINUS, NO_BREAK
 from calcdoc.text.formula import parse_text
 from calcdoc.text.nodes import Quantity
 
@@ -54,6 +54,10 @@ def unbroken(text: str) -> str:
 @lru_cache(maxsize=4096)
 def units(text: str) -> str:
     """A unit, or an equation between units as ``mA·ms/µF = V``, as HTML."""
+    return "; ".join(_equation(each) for each in text.split("; "))
+
+
+def _equation(text: str) -> str:
     parts = BETWEEN_UNITS.split(text)
     return "".join(
         part.replace("-", MINUS) if at % 2 else _unit(part) for at, part in enumerate(parts)
@@ -61,11 +65,13 @@ def units(text: str) -> str:
 
 
 def _unit(text: str) -> str:
+    """A unit, or a number with one."""
+    held = escape(text, quote=False).replace(" ", NO_BREAK)
     try:
         node = parse_text(f"1 {text}")
     except ValueError:
-        return escape(text, quote=False)
-    return inline(unit(node.unit)) if isinstance(node, Quantity) else escape(text, quote=False)
+        return held
+    return inline(unit(node.unit)) if isinstance(node, Quantity) else held
 
 
 def in_unit(value: float | None, unit_text: str, digits: int) -> str:
