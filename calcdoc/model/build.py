@@ -54,7 +54,8 @@ def build(
     findings += [*found, *quantities.findings, *more]
     for each in CHECKS:
         findings += each(document, space)
-    if has_errors(findings):
+    # A table that could not be read leaves lines untyped; whoever read it reports that.
+    if has_errors(findings) or len(quantities.variables) < len(space.quantities):
         return None, tuple(findings)
     stated = {
         key: Relation(key, each, direct_uses((each.left, each.right), space))
