@@ -1,5 +1,6 @@
 """Confirm a suspected failure: find a point in the box at which it happens, or clear it."""
 
+from fractions import Fraction
 from typing import Final
 
 import numpy as np
@@ -40,7 +41,7 @@ def scale(tape: Tape, at: int, ranges: dict[int, FloatArray]) -> float:
         return max(scale(tape, arg, ranges) for arg in step.args)
     if step.op is Op.MUL:
         return scale(tape, step.args[0], ranges) * scale(tape, step.args[1], ranges)
-    if step.op is Op.POWER and step.value is not None and step.value > 0:
+    if step.op is Op.POWER and isinstance(step.value, Fraction | int) and step.value > 0:
         return float(scale(tape, step.args[0], ranges) ** float(step.value))
     return float(np.abs(ranges[at]).max())
 

@@ -19,6 +19,9 @@ POWER: Final = "power of a negative base"
 ARC: Final = "arcsine outside -1..1"
 TANGENT: Final = "tangent at a pole"
 OVERFLOW: Final = "overflow"
+NO_CHANGE: Final = "no sign change in the bracket"
+SEVERAL: Final = "several roots in the bracket"
+JUMP: Final = "jump over zero in the bracket"
 
 
 class Need(Enum):

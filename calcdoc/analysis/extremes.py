@@ -13,11 +13,11 @@ import numpy as np
 
 from calcdoc.analysis.hunt import Hunt
 from calcdoc.analysis.points import FloatArray
-from calcdoc.analysis.program import Program, by_derivatives, by_structure, needed
+from calcdoc.analysis.program import Program, by_derivatives, by_structure
 from calcdoc.analysis.questions import Extreme, Proof, Question
 from calcdoc.analysis.search import search
 from calcdoc.analysis.starts import Start, first_sweep, settle_more
-from calcdoc.analysis.tape import Tape
+from calcdoc.analysis.tape import Implicit, Tape, needed
 
 __all__ = ["Extreme", "Proof", "Question", "extremes"]
 
@@ -29,6 +29,8 @@ WORK_OF_ALL: Final = 8_000_000
 """The same for all hard questions together."""
 LEAST_BOXES: Final = 32
 MOST_BOXES: Final = 8192
+ROOT_EFFORT: Final = 40
+"""Passes through its residual that a root costs in a sweep."""
 
 
 def extremes(
@@ -84,7 +86,7 @@ def _answers(
 
 def _hunt(part: Program, question: Question, start: Start, n_hard: int) -> Hunt:
     """Set out to search the open inputs of a question that is one of ``n_hard``."""
-    weight = len(needed(part.tape, (part.row[question.target],))) * (len(start.open) + 8)
+    weight = effort(part.tape, part.row[question.target]) * (len(start.open) + 8)
     work = min(WORK, WORK_OF_ALL // n_hard)
     return Hunt(
         target=question.target,
@@ -95,6 +97,16 @@ def _hunt(part: Program, question: Question, start: Start, n_hard: int) -> Hunt:
         high=question.high[start.open][:, None],
         bound=np.array([np.inf]),
         limit=int(np.clip(work // weight, LEAST_BOXES, MOST_BOXES)),
+    )
+
+
+def effort(tape: Tape, target: int) -> int:
+    """Instructions that a target costs; a root costs its residual many times."""
+    return sum(
+        ROOT_EFFORT * effort(step.value.tape, step.value.residual)
+        if isinstance(step.value, Implicit)
+        else 1
+        for step in (tape.instructions[at] for at in needed(tape, (target,)))
     )
 
 

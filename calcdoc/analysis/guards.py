@@ -6,8 +6,7 @@ only where the first does not decide. The condition is added to the tape as inst
 
 from collections.abc import Sequence
 
-from calcdoc.analysis.program import needed
-from calcdoc.analysis.tape import Op, TapeBuilder
+from calcdoc.analysis.tape import Op, TapeBuilder, needed
 
 Guard = int | None
 """The instruction of a condition; None for always."""

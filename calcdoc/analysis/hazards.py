@@ -11,14 +11,25 @@ from typing import Final
 import numpy as np
 
 from calcdoc.analysis.blame import ZERO, Box, Judge, scale
-from calcdoc.analysis.domains import OVERFLOW, Case, Need, cases, suspected
+from calcdoc.analysis.bracket import Ends, ends, jumps, several
+from calcdoc.analysis.domains import (
+    JUMP,
+    NO_CHANGE,
+    OVERFLOW,
+    SEVERAL,
+    Case,
+    Need,
+    cases,
+    suspected,
+)
 from calcdoc.analysis.extremes import extremes
 from calcdoc.analysis.guards import Guard, guards
+from calcdoc.analysis.opened import LostSign, Opened, doubtful, doubtful_inside, surely_one
 from calcdoc.analysis.points import FloatArray
-from calcdoc.analysis.program import Program, by_structure, needed, plain
+from calcdoc.analysis.program import Program, by_structure, plain
 from calcdoc.analysis.questions import Question
 from calcdoc.analysis.sweep import Boxes, sweep
-from calcdoc.analysis.tape import Op, Tape, TapeBuilder
+from calcdoc.analysis.tape import Implicit, Op, Tape, TapeBuilder, needed
 from calcdoc.frozen import Frozen
 
 FAR: Final = 1e300
@@ -35,7 +46,14 @@ class Hazard(Frozen, frozen=True):
     point: FloatArray
     """Shape (n_inputs,): inputs at which it happens; nominal when it happens there."""
     value: float
-    """Value of the argument there."""
+    """Value of the argument there; NaN for a root that is not there."""
+    inner: tuple[int, ...] = ()
+    """For what happens inside a residual: its instruction in the tape of the residual; for a root
+    within a residual that root first."""
+    unknown: tuple[float, ...] = ()
+    """Value of the unknown at which it happens, for each of ``inner``."""
+    ends: Ends | None = None
+    """The residual at the ends of the bracket, when the root itself is to blame."""
 
 
 def hazards(
@@ -81,7 +99,10 @@ def _suspects(tape: Tape, ranges: dict[int, FloatArray]) -> dict[int, tuple[int,
     suspects = {}
     for at in ranges:
         step = tape.instructions[at]
-        if (found := suspected(step, [ranges[arg] for arg in step.args])) is not None:
+        if isinstance(step.value, Implicit):
+            if doubtful(step.value, [ranges[arg] for arg in step.args]):
+                suspects[at] = at, NO_CHANGE
+        elif (found := suspected(step, [ranges[arg] for arg in step.args])) is not None:
             place, kind = found
             suspects[at] = step.args[place], kind
     return suspects
@@ -103,6 +124,11 @@ def _decide(
     reached: dict[int, Guard],
 ) -> dict[int, Hazard]:
     """Find out which of some suspects fail; none of them depends on another."""
+    roots = [at for at, (_, kind) in wave.items() if kind == NO_CHANGE]
+    found = _roots(builder, box, roots, reached)
+    wave = {at: each for at, each in wave.items() if at not in roots}
+    if not wave:
+        return found
     todo = [
         case
         for at, (argument, kind) in wave.items()
@@ -122,13 +148,87 @@ def _decide(
     answers = extremes(builder.tape(), questions, goals)
     for judge, answer in zip(owners, answers, strict=True):
         points[judge.case].append(answer.point)
-    found: dict[int, Hazard] = {}
     for judge in judges:
         at, argument, kind = judge.case.instruction, judge.case.argument, judge.case.kind
         point = judge.verdict(np.stack(points[judge.case], axis=1))
         if point is not None and at not in found:
             found[at] = Hazard(at, argument, kind, point, judge.value(point, argument))
     return found
+
+
+def _roots(
+    builder: TapeBuilder, box: Box, roots: Sequence[int], reached: dict[int, Guard]
+) -> dict[int, Hazard]:
+    """What goes wrong with some roots: inside the residual, at its ends, or between them."""
+    found: dict[int, Hazard] = {}
+    for at in roots:
+        hazard = _inside(builder.tape(), box, at, reached[at])
+        hazard = hazard or _itself(builder, box, at, reached[at])
+        if hazard is not None:
+            found[at] = hazard
+    return found
+
+
+def _inside(tape: Tape, box: Box, at: int, guard: Guard) -> Hazard | None:
+    """What cannot be computed of a residual, for any value of the unknown in the bracket."""
+    step = tape.instructions[at]
+    assert isinstance(step.value, Implicit)
+    if not doubtful_inside(step.value, _arguments(tape, box, at)):
+        return None
+    opened = Opened.of(tape, at, guard)
+    low, high = float(step.value.low), float(step.value.high)
+    part = plain(tape, (at,))
+    root = float(part.evaluate(box.nominal[:, None])[part.row[at], 0])
+    middle = low + 0.5 * (high - low)
+    for hazard in hazards(
+        opened.tape,
+        (opened.target,),
+        np.append(box.low, low),
+        np.append(box.nominal, root if np.isfinite(root) else middle),
+        np.append(box.high, high),
+    ):
+        if (inner := opened.origins.get(hazard.instruction)) is not None:
+            return Hazard(
+                at, at, hazard.kind, hazard.point[:-1], hazard.value,
+                inner=(inner, *hazard.inner),
+                unknown=(float(hazard.point[-1]), *hazard.unknown),
+                ends=hazard.ends,
+            )  # fmt: skip
+    return None
+
+
+def _arguments(tape: Tape, box: Box, at: int) -> list[FloatArray]:
+    """Natural intervals (2, 1) of the arguments of an instruction."""
+    step = tape.instructions[at]
+    ranges = _ranges(plain(tape, step.args), box)
+    return [ranges[arg] for arg in step.args]
+
+
+def _itself(builder: TapeBuilder, box: Box, at: int, guard: Guard) -> Hazard | None:
+    """A root that is not there, or not alone, somewhere in the box."""
+    lost = LostSign.at(builder, at, guard)
+    tape = builder.tape()
+    points = [box.nominal]
+    questions = lost.questions(tape, box.low, box.nominal, box.high)
+    answers = extremes(tape, questions, [0.0] * len(questions))
+    points += [answer.point for answer in answers]
+    if (first := lost.first(tape, points)) is None and lost.possible(questions, answers):
+        least = Question(lost.subject, False, box.low, box.nominal, box.high)
+        points += [answer.point for answer in extremes(tape, [least], [-5e-324])]
+        first = lost.first(tape, points)
+    if first is not None:
+        return Hazard(at, at, NO_CHANGE, first, np.nan, ends=ends(tape, at, first))
+    step = tape.instructions[at]
+    assert isinstance(step.value, Implicit)
+    if surely_one(step.value, _arguments(tape, box, at)):
+        return None
+    own = [Question(at, greatest, box.low, box.nominal, box.high) for greatest in (False, True)]
+    points += [answer.point for answer in extremes(tape, own)]
+    for kind, bad in ((SEVERAL, several), (JUMP, jumps)):
+        for point in points:
+            if lost.computed(tape, point) and bad(tape, at, point[:, None])[0]:
+                return Hazard(at, at, kind, point, np.nan, ends=ends(tape, at, point))
+    return None
 
 
 def _subject(builder: TapeBuilder, case: Case, around: FloatArray, *, greatest: bool) -> int:

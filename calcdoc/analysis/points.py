@@ -7,11 +7,22 @@ from typing import Final
 import numpy as np
 from numpy.typing import NDArray
 
-from calcdoc.analysis.tape import Instruction, Op, Tape
+from calcdoc.analysis.solver import FloatArray, IntArray, solve
+from calcdoc.analysis.tape import Implicit, Instruction, Op, Tape, needed
 
-FloatArray = NDArray[np.float64]
+__all__ = [
+    "BoolArray",
+    "FloatArray",
+    "IntArray",
+    "Step",
+    "compile_steps",
+    "evaluate_points",
+    "residual_size",
+    "run",
+    "solved",
+]
+
 BoolArray = NDArray[np.bool_]
-IntArray = NDArray[np.intp]
 
 _ONE: Final[Mapping[Op, Callable[..., FloatArray]]] = {
     Op.NEG: np.negative,
@@ -42,6 +53,9 @@ _TWO: Final[Mapping[Op, Callable[..., FloatArray]]] = {
     Op.AND: np.minimum,
     Op.OR: np.maximum,
 }
+
+JUMP: Final = 1e-6
+"""A residual that stays this large, as a share of its terms, jumps over zero: there is no root."""
 
 
 Step = Callable[[FloatArray, FloatArray, FloatArray], object]
@@ -89,6 +103,8 @@ def _step(instruction: Instruction) -> Step:
         return lambda values, _inputs, out: _choose(values, args, out)
     if op is Op.NOT:
         return lambda values, _inputs, out: np.subtract(1.0, values[args[0]], out=out)
+    if isinstance(value, Implicit):
+        return _root(value, args)
     assert value is not None
     if op is Op.INPUT:
         row = int(value)
@@ -115,3 +131,68 @@ def _power(a: int, exponent: Fraction) -> Step:
         return lambda values, _inputs, out: np.sqrt(values[a], out=out)
     power = float(exponent)
     return lambda values, _inputs, out: np.power(values[a], power, out=out)
+
+
+def _root(implicit: Implicit, args: tuple[int, ...]) -> Step:
+    """Solve for the unknown of all columns together."""
+    steps = compile_steps(implicit.tape)
+    index = list(args)
+    return lambda values, _inputs, out: np.copyto(out, solved(implicit, steps, values[index]))
+
+
+def solved(implicit: Implicit, steps: Sequence[Step], known: FloatArray) -> FloatArray:
+    """The unknown for arguments (n_args, n_columns); NaN where no root is found.
+
+    ``steps`` are those of the residual's tape.
+    """
+    n_columns = known.shape[1]
+    row = implicit.residual
+    low, high = (np.full(n_columns, float(end)) for end in (implicit.low, implicit.high))
+    ends = run(steps, np.vstack((np.concatenate((low, high)), np.tile(known, 2))))[row]
+    at_low, at_high = ends[:n_columns], ends[n_columns:]
+    found = solve(
+        lambda x, columns: run(steps, np.vstack((x, known[:, columns])))[row],
+        low, high, at_low, at_high,
+    )  # fmt: skip
+    values = run(steps, np.vstack((found, known)))
+    size = residual_size(implicit, values, at_low, at_high)
+    return np.where(np.abs(values[row]) > JUMP * size, np.nan, found)
+
+
+def residual_size(
+    implicit: Implicit, values: FloatArray, at_low: FloatArray, at_high: FloatArray
+) -> FloatArray:
+    """What a residual is small against: its terms at the root, its values at the ends."""
+    size = largest_term(implicit.tape, implicit.residual, values)
+    return np.fmax(size, np.fmax(_finite(at_low), _finite(at_high)))
+
+
+def _finite(values: FloatArray) -> FloatArray:
+    """Sizes, without those that have no end."""
+    return np.where(np.isfinite(values), np.abs(values), 0.0)
+
+
+def largest_term(tape: Tape, at: int, values: FloatArray) -> FloatArray:
+    """Size of the largest term that makes up an instruction: what a difference is small against.
+
+    Args:
+        tape: The formulas.
+        at: The instruction.
+        values: All values of the tape, shape (n_instructions, n_columns).
+
+    Returns:
+        Shape (n_columns,).
+    """
+    sizes: dict[int, FloatArray] = {}
+    for each in needed(tape, (at,)):
+        step = tape.instructions[each]
+        terms = [sizes[arg] for arg in step.args]
+        if step.op in (Op.ADD, Op.SUB, Op.NEG, Op.ABS):
+            sizes[each] = np.maximum.reduce(terms)
+        elif step.op is Op.MUL:
+            sizes[each] = terms[0] * terms[1]
+        elif step.op is Op.POWER and isinstance(step.value, Fraction | int) and step.value > 0:
+            sizes[each] = np.power(terms[0], float(step.value))
+        else:
+            sizes[each] = np.abs(values[each])
+    return sizes[at]

@@ -5,7 +5,7 @@ from collections.abc import Iterable, Sequence
 import numpy as np
 
 from calcdoc.analysis.points import BoolArray, FloatArray, Step, compile_steps, run
-from calcdoc.analysis.tape import Op, Tape
+from calcdoc.analysis.tape import Op, Tape, needed
 from calcdoc.analysis.vanish import dependence
 from calcdoc.frozen import Frozen, replace
 
@@ -41,18 +41,6 @@ class Program(Frozen, frozen=True):
     def evaluate(self, inputs: FloatArray) -> FloatArray:
         """Values (n_rows, n_columns) at points (n_inputs, n_columns)."""
         return run(self.steps, inputs)
-
-
-def needed(tape: Tape, targets: Iterable[int]) -> tuple[int, ...]:
-    """Indices of the instructions that the targets use, themselves included, ascending."""
-    seen: set[int] = set()
-    stack = list(targets)
-    while stack:
-        at = stack.pop()
-        if at not in seen:
-            seen.add(at)
-            stack.extend(tape.instructions[at].args)
-    return tuple(sorted(seen))
 
 
 def renumber(tape: Tape, order: Sequence[int]) -> Tape:

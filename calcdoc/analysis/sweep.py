@@ -6,42 +6,19 @@ respect to the inputs named by the column's slots. Where an operation meets the 
 sides, the interval is cut by the mean-value form: the centre plus slopes times half widths.
 """
 
-from dataclasses import dataclass, field
 from fractions import Fraction
 
 import numpy as np
 
 from calcdoc.analysis import intervals as iv
+from calcdoc.analysis.boxes import Boxes, Swept
+from calcdoc.analysis.enclosure import enclose
 from calcdoc.analysis.points import BoolArray, FloatArray, IntArray
 from calcdoc.analysis.program import Program
 from calcdoc.analysis.slopes import Tangent, tangent
-from calcdoc.analysis.tape import Instruction, Op
-from calcdoc.frozen import Frozen
+from calcdoc.analysis.tape import Implicit, Instruction, Op
 
-
-class Boxes(Frozen, frozen=True):
-    """Boxes as columns."""
-
-    low: FloatArray
-    """Shape (n_inputs, n_columns)."""
-    high: FloatArray
-    """Shape (n_inputs, n_columns)."""
-    slots: IntArray
-    """Shape (n_slots, n_columns): the inputs whose slopes are wanted, -1 for none."""
-
-    def centre(self) -> FloatArray:
-        """Middle of each box, surely inside it; shape (n_inputs, n_columns)."""
-        return np.clip(self.low + 0.5 * (self.high - self.low), self.low, self.high)
-
-
-@dataclass(frozen=True, slots=True)
-class Swept:
-    """Ranges and slopes found by one pass, by row of the program."""
-
-    values: list[FloatArray] = field(default_factory=list)
-    """Intervals of shape (2, n_columns)."""
-    moves: list[Tangent] = field(default_factory=list)
-    """Tangents of shape (2, n_slots, n_columns); None where nothing moves."""
+__all__ = ["Boxes", "Swept", "sweep"]
 
 
 def sweep(program: Program, boxes: Boxes) -> Swept:
@@ -65,12 +42,17 @@ def sweep(program: Program, boxes: Boxes) -> Swept:
                 row = step.value
                 both.append(np.array((low[row], high[row])))
                 move = _seed(boxes.slots, row)
+            elif isinstance(step.value, Implicit):
+                args = [both[arg] for arg in step.args]
+                root = enclose(step.value, args, 2 * n_columns, sweep)
+                both.append(root.value)
+                move = root.tangent([swept.moves[arg] for arg in step.args], n_columns)
             else:
                 both.append(_value(step, [both[arg] for arg in step.args], 2 * n_columns))
             value = both[at][:, :n_columns]
-            if step.args:
-                args = tuple(swept.values[arg] for arg in step.args)
-                move = tangent(step, args, tuple(swept.moves[arg] for arg in step.args), value)
+            if step.args and step.op is not Op.ROOT:
+                values = tuple(swept.values[arg] for arg in step.args)
+                move = tangent(step, values, tuple(swept.moves[arg] for arg in step.args), value)
             if move is not None and at in program.lost:
                 move = _forget(move, boxes.slots, program.depends[at])
             if at in program.meets:
@@ -97,7 +79,7 @@ def _seed(slots: IntArray, row: int) -> Tangent:
 def _value(step: Instruction, args: list[FloatArray], n_columns: int) -> FloatArray:
     """Interval of one instruction over boxes and centres, by natural interval arithmetic."""
     if step.op is Op.CONST:
-        assert step.value is not None
+        assert isinstance(step.value, Fraction | float | int)
         number = float(step.value)
         out = np.full((2, n_columns), number)
         return out if step.value == number else iv.outward(out)

@@ -10,6 +10,7 @@ true for *any* function in its place, which makes jumps and kinks safe.
 
 from collections.abc import Callable, Mapping
 from fractions import Fraction
+from functools import lru_cache
 from hashlib import blake2b
 from typing import Final
 
@@ -17,7 +18,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from calcdoc.analysis.points import BoolArray
-from calcdoc.analysis.tape import Instruction, Op, Tape
+from calcdoc.analysis.tape import Implicit, Instruction, Op, Tape
 
 PRIME: Final = 2**31 - 1
 N_POINTS: Final = 3
@@ -99,6 +100,7 @@ def _rule(step: Instruction, point: int, *args: Residue) -> tuple[Residue, tuple
         if step.op is Op.INPUT:
             return draw("input", step.value, point), ()
         if step.op is Op.CONST:
+            assert isinstance(step.value, Fraction | float | int)
             return _constant(step.value), ()
         if step.op is Op.POWER:
             assert isinstance(step.value, Fraction | int)
@@ -107,13 +109,34 @@ def _rule(step: Instruction, point: int, *args: Residue) -> tuple[Residue, tuple
             return rule(*known)
     except ValueError:  # no inverse of zero, here alone
         return None, (None,) * len(args)
+    if isinstance(step.value, Implicit):
+        return _root(step.value, known)
     slopes = tuple(draw(step.op.value, which, known) for which in range(len(args)))
     return draw(step.op.value, known), slopes
 
 
-def _constant(value: Fraction | float | None) -> Residue:
+def _root(implicit: Implicit, known: tuple[int, ...]) -> tuple[Residue, tuple[Residue, ...]]:
+    """A root as any function of the arguments that its residual depends on.
+
+    Its slopes are drawn, not derived from the residual: with several roots in the bracket it may
+    jump from one to another, so that x*y need not be constant where x*y = 1 is one of the roots.
+    """
+    matters = dependence_of_residual(implicit)
+    key = "root", repr(implicit), tuple(a if m else 0 for a, m in zip(known, matters, strict=True))
+    return draw(key), tuple(
+        draw(key, which) if matter else 0 for which, matter in enumerate(matters)
+    )
+
+
+@lru_cache(maxsize=64)
+def dependence_of_residual(implicit: Implicit) -> tuple[bool, ...]:
+    """Whether the root may depend on each argument."""
+    depends = dependence(implicit.tape)[implicit.residual]
+    return tuple(bool(each) for each in depends[1:])
+
+
+def _constant(value: Fraction | float) -> Residue:
     """Residue of a number; a float is the fraction that it is."""
-    assert value is not None
     exact = Fraction(value)
     return exact.numerator * _inverse(exact.denominator) % PRIME
 
