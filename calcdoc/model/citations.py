@@ -65,7 +65,8 @@ def check_mentions(document: Document, space: Namespace) -> list[Finding]:
     findings = []
     for mention in mentions(document.body):
         key = fold(mention.name)
-        if key in space.quantities or (key in ids and not mention.form):
+        known = key in space.quantities or (key in ids and not mention.form)
+        if known or key in document.broken:
             continue
         if key in ids:
             findings.append(

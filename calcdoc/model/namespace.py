@@ -125,9 +125,9 @@ def unknown_names(document: Document, space: Namespace) -> list[Finding]:
         running = {each.name.key for each in (running_index(statement),) if each}
         for label in _used(statement):
             known = label.key in space.quantities or label.key in CONSTANTS
-            if not known and label.key not in running:
+            if not known and label.key not in running and label.key not in document.broken:
                 findings.append(_unknown(label, space, own))
-        findings += _unknown_relations(statement, space)
+        findings += _unknown_relations(statement, space, document.broken)
     return findings
 
 
@@ -153,12 +153,14 @@ def shadowed(document: Document, space: Namespace) -> list[Finding]:
     ]
 
 
-def _unknown_relations(statement: Statement, space: Namespace) -> Iterator[Finding]:
+def _unknown_relations(
+    statement: Statement, space: Namespace, broken: Collection[str]
+) -> Iterator[Finding]:
     if not isinstance(statement, SolvedStatement):
         return
     relations = [key for key, what in space.ids.items() if what == "relation"]
     for label in statement.relations:
-        if label.key not in relations:
+        if label.key not in relations and label.key not in broken:
             near = nearest(label.name, [space.labels[key].name for key in relations])
             yield error(
                 "unknown-symbol",

@@ -11,6 +11,7 @@ from calcdoc.source import SourceFile, Span
 from calcdoc.text import prose
 from calcdoc.text.commonmark import Fence, read_prose
 from calcdoc.text.criteria import criterion
+from calcdoc.text.names import SYMBOL, fold
 from calcdoc.text.passage import Passage
 from calcdoc.text.rules import RULES
 from calcdoc.text.scan import not_yet
@@ -31,6 +32,8 @@ _FENCE_LINE: Final = re.compile(r" {0,3}(?P<marks>`{3,}|~{3,}) *(?P<word>[a-z]+)
 _DEEP_FENCE: Final = re.compile(
     r"[\s>]*(?:(?:[-*+]|[0-9]{1,9}[.)])\s+)*(?:`{3,}|~{3,})\s*([A-Za-z]+)"
 )
+_DEFINED_BEFORE: Final = re.compile(r"=|\|| from ")
+_UNIT: Final = re.compile(r"\[[^\]]*\]")
 _SIGNAL: Final = re.compile(r"\s*(danger|warning|caution|notice)\b[ \t]*[:.]?[ \t]*", re.IGNORECASE)
 
 
@@ -40,6 +43,8 @@ class Document(Frozen, frozen=True):
     source: SourceFile
     title: TitleBlock
     body: tuple[prose.Block, ...]
+    broken: frozenset[str] = frozenset()
+    """Keys of names that lines define which could not be read; they are not unknown."""
 
     @property
     def statements(self) -> tuple[Statement, ...]:
@@ -125,7 +130,7 @@ def read_document(source: SourceFile) -> tuple[Document | None, tuple[Finding, .
             )
         )
     title = reader.title or TitleBlock("", "", "")
-    return Document(source, title, body), tuple(reader.findings)
+    return Document(source, title, body, reader.broken), tuple(reader.findings)
 
 
 class _Reader:
@@ -135,6 +140,7 @@ class _Reader:
         self.source = source
         self.findings: list[Finding] = []
         self.title: TitleBlock | None = None
+        self.broken: frozenset[str] = frozenset()
         self.saw_document: Place | None = None
         self.seen: set[int] = set()
         """Lines that CommonMark reads as a fence or as its content."""
@@ -262,6 +268,7 @@ class _Reader:
                 if passage.offset(0) >= sure:
                     break
                 self.findings.append(mistake.finding)
+                self.broken |= _defined(passage.text)
         return prose.Statements(fence.word, tuple(found))
 
     def _surely_within(self, fence: Fence) -> int:
@@ -356,6 +363,12 @@ class _Reader:
                     )
                 )
             start += len(line) + 1
+
+
+def _defined(text: str) -> frozenset[str]:
+    """Keys of the names that a statement would define, had it been read."""
+    head = _DEFINED_BEFORE.split(text, maxsplit=1)[0]
+    return frozenset(fold(name) for name in SYMBOL.findall(_UNIT.sub(" ", head)))
 
 
 def _capital(text: str) -> str:
