@@ -70,6 +70,8 @@ class Compiled(Frozen, frozen=True):
     """Every look-up of a table."""
     origins: Mapping[int, Node]
     """Instruction to the piece of formula it came from first."""
+    inside: Mapping[int, Mapping[int, Node]]
+    """The same for the residual of every root, by the instruction of the root."""
 
 
 def compile_model(model: Model) -> Compiled:
@@ -103,6 +105,7 @@ def compile_model(model: Model) -> Compiled:
         relations=relations,
         looked=tuple(working.looked),
         origins=working.origins,
+        inside=working.inside,
     )
 
 

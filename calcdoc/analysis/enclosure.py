@@ -9,7 +9,6 @@ the unknown may jump with every argument, anywhere in the bracket.
 """
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from functools import lru_cache
 from typing import Final
 
@@ -34,8 +33,7 @@ SLACK: Final = 2
 """The computed root may be this many floating-point steps from where its residual is zero."""
 
 
-@dataclass(slots=True)
-class Enclosure:
+class Enclosure(Frozen, frozen=True):
     """Roots over boxes, one box a column."""
 
     value: FloatArray

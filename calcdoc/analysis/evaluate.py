@@ -22,7 +22,7 @@ from calcdoc.analysis.evaluation import (
 )
 from calcdoc.analysis.extremes import Extreme, Proof, Question, extremes
 from calcdoc.analysis.points import FloatArray, evaluate_points
-from calcdoc.analysis.putting_back import put_back
+from calcdoc.analysis.putting_back import put_back, running_away
 from calcdoc.analysis.trouble import troubles
 from calcdoc.model.model import Compared, Judged, Model
 from calcdoc.problems import Finding, Mistake
@@ -91,6 +91,7 @@ class _Evaluator:
         self.keys = list(compiled.columns)
         self.questions: list[Question] = []
         self.answers: tuple[Extreme, ...] = ()
+        self.away: Mapping[str, frozenset[str]] = {}
 
     def run(self) -> Evaluation:
         """All bands, judgements, cross-checks and discharge times."""
@@ -111,6 +112,8 @@ class _Evaluator:
         checks = [self._ask_both(each.difference, whole) for each in compiled.checks]
         times = [None if at is None else self._ask(at, True, whole) for at in compiled.discharges]
         self.answers = extremes(compiled.tape, self.questions)
+        back = put_back(compiled, self.model, self._points())
+        self.away = running_away(self.model, back)
         nominal = evaluate_points(compiled.tape, whole.nominal[:, None])[:, 0]
         found = {
             key: self._band(float(nominal[at]), bands[key])
@@ -134,7 +137,7 @@ class _Evaluator:
                 )
             ),
             compiled.chosen,
-            put_back(compiled, self.model, self._points()),
+            back,
             tuple(
                 self._discharged(at, found[each.voltage].greatest)
                 for at, each in zip(times, self.model.discharges, strict=True)
@@ -222,17 +225,20 @@ class _Evaluator:
         row = _row(side, extreme, computed)
         tolerance = EQUAL * max(abs(row.value), abs(row.limit))
         equal = abs(extreme.value) <= tolerance
+        away = sorted({key for each in judged.depends_on for key in self.away[each]})
         rows = (
             _row(each, self.answers[number], column[number])
             for each, number in zip(sides, asked, strict=True)
         )
         return Judgement(
             judged, side, row.value, row.limit, row.slack,
-            0.0 if equal else extreme.value, equal, row.outcome,
+            0.0 if equal else extreme.value, equal,
+            Outcome.FAIL if away else row.outcome,
             {**self._combination(extreme), **self._set_by(judged.statement, extreme)},
             self._named(judged, side, computed),
             extreme.proof, extreme.bound,
             tuple(rows) if judged.statement.clauses.index else (),
+            tuple(away),
         )  # fmt: skip
 
     def _named(self, judged: Judged, side: Side, computed: FloatArray) -> dict[str, float]:

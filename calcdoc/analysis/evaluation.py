@@ -84,6 +84,8 @@ class Judgement(Frozen, frozen=True):
     """Proven: the requirement is nowhere below this."""
     rows: tuple[Row, ...]
     """For a criterion over a series, one for each element."""
+    away: tuple[str, ...]
+    """Keys of settled quantities it rests on that run away: then it fails."""
 
 
 class Crosschecked(Frozen, frozen=True):

@@ -5,9 +5,13 @@ from typing import Final
 
 import numpy as np
 
+from calcdoc.analysis.box import Box
 from calcdoc.analysis.compile import Compiled
+from calcdoc.analysis.derivative import loop_slope
 from calcdoc.analysis.evaluation import PutBack
+from calcdoc.analysis.extremes import Question, extremes
 from calcdoc.analysis.points import FloatArray, evaluate_points
+from calcdoc.analysis.tape import TapeBuilder
 from calcdoc.model.model import Model, Variable
 from calcdoc.problems import Finding, Mistake, error
 from calcdoc.text.scan import shown
@@ -40,8 +44,30 @@ def put_back(compiled: Compiled, model: Model, points: FloatArray) -> Mapping[st
         proven = variable.solved is not None and variable.solved.proven
         if not residual <= CLOSE and not proven:
             raise Mistake(_not_satisfied(variable, residual))
-        found[key] = PutBack(residual, proven, None)
+        is_loop = variable.implicit is not None and variable.implicit.is_loop
+        gain = _gain(compiled, compiled.roots[key], compiled.box) if is_loop else None
+        found[key] = PutBack(residual, proven, gain)
     return found
+
+
+def _gain(compiled: Compiled, root: int, box: Box) -> float:
+    """The greatest gain of a loop over the declared band; one or more runs away."""
+    builder = TapeBuilder.on(compiled.tape)
+    slope = loop_slope(builder, root)
+    (greatest,) = extremes(builder.tape(), [Question(slope, True, box.low, box.nominal, box.high)])
+    return greatest.value
+
+
+def running_away(model: Model, found: Mapping[str, PutBack]) -> Mapping[str, frozenset[str]]:
+    """Key of every quantity to the settled loops it rests on whose gain reaches one."""
+    away = {key for key, each in found.items() if each.gain is not None and each.gain >= 1}
+    rests: dict[str, frozenset[str]] = {}
+    for key in model.order:
+        own = {key} & away
+        rests[key] = frozenset(own).union(
+            *(rests[each] for each in model.variables[key].depends_on)
+        )
+    return rests
 
 
 def _not_satisfied(variable: Variable, residual: float) -> Finding:

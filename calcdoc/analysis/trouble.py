@@ -7,6 +7,7 @@ import numpy as np
 
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.compile import Compiled
+from calcdoc.analysis.domains import NO_CHANGE, SEVERAL
 from calcdoc.analysis.hazards import Hazard, hazards
 from calcdoc.analysis.points import FloatArray
 from calcdoc.model.model import Model, Variable
@@ -14,21 +15,21 @@ from calcdoc.problems import Finding, error
 from calcdoc.text.nodes import Binary, Call, Group, Node
 from calcdoc.text.scan import shown
 from calcdoc.text.unparse import unparse
-from calcdoc.units import Unit
+from calcdoc.units import Dimension, Unit
+from calcdoc.units.choose import choose_unit
 
+_GUARD: Final = "narrow the band, or leave the case out with if(condition, a, b)"
 _CODES: Final[Mapping[str, tuple[str, str, str]]] = {
     "division by zero": (
-        "division-by-zero", "the divisor {piece} becomes zero {where}",
-        "narrow the band, or leave the case out with if(condition, a, b)"),
+        "division-by-zero", "the divisor {piece} becomes zero {where}", _GUARD),
     "square root of a negative": (
         "out-of-domain", "the square root is taken of a negative value of {piece} {where}",
-        "narrow the band, or leave the case out with if(condition, a, b)"),
+        _GUARD),
     "power of a negative base": (
         "out-of-domain", "the broken power is taken of a negative value of {piece} {where}",
-        "narrow the band, or leave the case out with if(condition, a, b)"),
+        _GUARD),
     "logarithm of zero or less": (
-        "out-of-domain", "the logarithm is taken of zero or less: {piece} {where}",
-        "narrow the band, or leave the case out with if(condition, a, b)"),
+        "out-of-domain", "the logarithm is taken of zero or less: {piece} {where}", _GUARD),
     "arcsine outside -1..1": (
         "out-of-domain", "{piece} lies outside -1 .. 1 {where}",
         "limit it with max(-1, min(1, x)) where that is right"),
@@ -51,21 +52,96 @@ def troubles(
         boxes: Ranges of the input columns.
         targets: For each box the instructions that must be computable in it.
     """
+    teller = _Teller(compiled, model)
     found: dict[int, Finding] = {}
     for box, wanted in zip(boxes, targets, strict=True):
         for hazard in hazards(compiled.tape, wanted, box.low, box.nominal, box.high):
             at_nominal = bool(np.all(hazard.point == box.nominal))
-            found.setdefault(hazard.instruction, _finding(compiled, model, hazard, at_nominal))
+            found.setdefault(hazard.instruction, teller.finding(hazard, at_nominal=at_nominal))
     return tuple(found.values())
 
 
-def _finding(compiled: Compiled, model: Model, hazard: Hazard, at_nominal: bool) -> Finding:
-    code, message, advice = _CODES[hazard.kind]
-    piece = _piece(compiled.origins[hazard.instruction], hazard.kind)
-    where = "at the nominal values" if at_nominal else "within the band"
-    label = "" if at_nominal else f"at {_combination(compiled, model, hazard.point)}"
-    return error(code, message.format(piece=shown(unparse(piece)), where=where), piece.span,
-                 label=label, help=advice)  # fmt: skip
+class _Teller:
+    """Says what a hazard is in the words and at the place of the author's text."""
+
+    def __init__(self, compiled: Compiled, model: Model) -> None:
+        self.compiled, self.model = compiled, model
+        self.of_root = {at: key for key, at in compiled.roots.items()}
+
+    def finding(self, hazard: Hazard, *, at_nominal: bool) -> Finding:
+        """The finding for a hazard."""
+        where = "at the nominal values" if at_nominal else "within the band"
+        label = "" if at_nominal else f"at {self._combination(hazard.point)}"
+        if hazard.kind not in _CODES:
+            return self._root(hazard, where, label)
+        code, message, advice = _CODES[hazard.kind]
+        piece = _piece(self._origin(hazard), hazard.kind)
+        if hazard.inner:
+            where = f"between the ends of the bracket, {where}"
+        return error(
+            code,
+            message.format(piece=shown(unparse(piece)), where=where),
+            piece.span,
+            label=label,
+            help=advice,
+        )
+
+    def _origin(self, hazard: Hazard) -> Node:
+        """The piece of formula an instruction came from, also inside of a residual."""
+        origins = self.compiled.origins
+        if hazard.inner:
+            inside = self.compiled.inside.get(hazard.instruction, {})
+            return inside.get(hazard.inner[0], origins[hazard.instruction])
+        return origins[hazard.instruction]
+
+    def _root(self, hazard: Hazard, where: str, label: str) -> Finding:
+        """A root that is not in its bracket, or not alone in it."""
+        variable = self.model.variables[self.of_root[hazard.instruction]]
+        implicit = variable.implicit
+        assert implicit is not None
+        span = variable.label.span if implicit.is_loop else implicit.bracket.span
+        low, high = (f"{end} {implicit.bracket.unit.text}".rstrip() for end in
+                     implicit.bracket.spread)  # fmt: skip
+        name = shown(variable.symbol)
+        if hazard.kind == SEVERAL:
+            return error(
+                "several-roots",
+                f"there are several values of {name} between {low} and {high} {where}",
+                span,
+                label=label,
+                help="narrow the bracket to the one that is meant",
+            )
+        ends = ""
+        if hazard.kind == NO_CHANGE and hazard.ends is not None:
+            one, other = (self._left(end, implicit.dimension) for end in
+                          (hazard.ends.low, hazard.ends.high))  # fmt: skip
+            ends = f": left less right is {one} at {low} and {other} at {high}"
+        message = (
+            f"{name} does not settle between {low} and {high} {where}{ends}"
+            if implicit.is_loop
+            else f"no value of {name} between {low} and {high} solves the relation {where}{ends}"
+        )
+        return error(
+            "no-root",
+            message,
+            span,
+            label=label,
+            help="left less right must change its sign between the ends; move the bracket",
+        )
+
+    def _left(self, value: float, dimension: Dimension) -> str:
+        unit = choose_unit(dimension, value)
+        return f"{unit.from_si(value):.4g} {unit.text}".rstrip()
+
+    def _combination(self, point: FloatArray) -> str:
+        """``V_line = 207 V, C = 8 µF``: the inputs that do not stand at nominal."""
+        nominal, variables = self.compiled.box.nominal, self.model.variables
+        moved = [
+            _value(variables[key], float(point[column]))
+            for key, column in self.compiled.columns.items()
+            if key in variables and point[column] != nominal[column]
+        ]
+        return ", ".join(moved[:6]) or "the nominal values"
 
 
 def _piece(node: Node, kind: str) -> Node:
@@ -79,16 +155,6 @@ def _piece(node: Node, kind: str) -> Node:
     while isinstance(node, Group):
         node = node.inner
     return node
-
-
-def _combination(compiled: Compiled, model: Model, point: FloatArray) -> str:
-    """``V_line = 207 V, C = 8 µF``: the inputs that do not stand at nominal."""
-    moved = [
-        _value(model.variables[key], float(point[column]))
-        for key, column in compiled.columns.items()
-        if key in model.variables and point[column] != compiled.box.nominal[column]
-    ]
-    return ", ".join(moved[:6]) or "the nominal values"
 
 
 def _value(variable: Variable, si: float) -> str:

@@ -24,6 +24,8 @@ class Working(Formulas):
         self.model, self.columns, self.box = model, columns, box
         self.chosen: dict[str, Root] = {}
         self.roots: dict[str, int] = {}
+        self.inside: dict[int, dict[int, Node]] = {}
+        """Instruction of a root to the origins of its residual's instructions."""
         self.looked: list[LookedUp] = []
         self.owner = ""
         """Key of the quantity, criterion or cross-check that is compiled now."""
@@ -115,6 +117,7 @@ class Working(Formulas):
         loop = left if implicit.is_loop else None
         value = Implicit(inner.builder.tape(), residual, low, high, loop)
         at = self.builder.add(Op.ROOT, *arguments, value=value)
+        self.inside[at] = inner.origins
         self.origins.setdefault(at, Name(variable.symbol, variable.label.span))
         return at
 

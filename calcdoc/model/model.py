@@ -64,6 +64,8 @@ class Implicit(Frozen, frozen=True):
 
     left: Node
     right: Node
+    dimension: Dimension
+    """Of both sides, and so of what is left between them."""
     bracket: Given
     inner: tuple[str, ...]
     """For a settled loop: keys that are computed anew at every trial, in order."""

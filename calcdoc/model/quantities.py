@@ -3,6 +3,7 @@
 from collections.abc import Mapping
 from fractions import Fraction
 
+from calcdoc.frozen import replace
 from calcdoc.model import series
 from calcdoc.model.model import Implicit, Solved, Typed, Variable
 from calcdoc.model.namespace import Namespace
@@ -151,6 +152,7 @@ class Quantities:
         return Implicit(
             statement.formula,
             Name(statement.symbol.name, statement.symbol.span),
+            settle.bracket.unit.dimension,
             settle.bracket,
             self.rests.inner[key],
             is_loop=True,
@@ -188,7 +190,7 @@ class Quantities:
             raise Unknown
         typed = self._type_of_root(key, way, sought)
         if isinstance(way, Implicit):
-            self._check_relation(way, {key: typed})
+            way = self._check_relation(way, {key: typed})
         _check_whole(sought.symbol, typed, statement.span)
         _check_unit(sought.symbol, sought, typed, statement.span)
         self._check_where(statement, key, typed)
@@ -223,10 +225,11 @@ class Quantities:
                 )
             ) from mistake
 
-    def _check_relation(self, way: Implicit, own: Mapping[str, Typed]) -> None:
+    def _check_relation(self, way: Implicit, own: Mapping[str, Typed]) -> Implicit:
         """Both sides of a relation are of one kind, with the unknown as its bracket says."""
         self.types.update(own)
-        self.checker.comparison((way.left, way.right))
+        typed = self.checker.comparison((way.left, way.right))
+        return replace(way, dimension=typed.dimension)
 
     def _check_where(self, statement: SolvedStatement, key: str, typed: Typed) -> None:
         if statement.where is None or statement.unknowns[-1].symbol.key != key:

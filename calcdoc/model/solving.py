@@ -11,6 +11,7 @@ from calcdoc.text.nodes import names
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import RelationStatement, SolvedStatement
 from calcdoc.text.unparse import unparse
+from calcdoc.units import ONE
 
 Relations = Mapping[str, RelationStatement]
 
@@ -67,6 +68,7 @@ def _numerically(statement: SolvedStatement, relation: RelationStatement) -> Imp
     return Implicit(
         relation.left,
         relation.right,
+        ONE,  # found out when both sides are typed
         statement.bracket,
         (),
         is_loop=False,

@@ -3,7 +3,6 @@
 from calcdoc.analysis.evaluation import Crosschecked
 from calcdoc.model.model import Relation
 from calcdoc.records import record as r
-from calcdoc.records.display import choose_unit
 from calcdoc.records.naming import Naming
 from calcdoc.records.quantities import Numbers
 from calcdoc.records.rounding import significant, stored
@@ -12,6 +11,7 @@ from calcdoc.text.names import fold
 from calcdoc.text.nodes import Group, Name, Node
 from calcdoc.text.unparse import unparse
 from calcdoc.units import Unit, unit_of
+from calcdoc.units.choose import choose_unit
 
 _DIGITS = 3
 """Digits of a difference: it says how far apart, not how much."""
@@ -62,7 +62,11 @@ def _unit(numbers: Numbers, done: Crosschecked) -> Unit:
             bare = bare.inner
         if isinstance(bare, Name) and fold(bare.name) in numbers.units:
             return numbers.units[fold(bare.name)]
-    return choose_unit(done.compared.typed, done.first or done.second)
+    return choose_unit(
+        done.compared.typed.dimension,
+        done.first or done.second,
+        celsius=bool(done.compared.typed.weight),
+    )
 
 
 def relations(numbers: Numbers, naming: Naming) -> tuple[r.Relation, ...]:

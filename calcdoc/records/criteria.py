@@ -3,7 +3,6 @@
 from calcdoc.analysis.evaluation import Judgement, Outcome, Row
 from calcdoc.model.model import Judged, Typed
 from calcdoc.records import record as r
-from calcdoc.records.display import choose_unit
 from calcdoc.records.looked import unverified
 from calcdoc.records.naming import Naming
 from calcdoc.records.quantities import Numbers
@@ -16,6 +15,7 @@ from calcdoc.text.nodes import Element, Group, Name, Node, Quantity
 from calcdoc.text.statements import Inequality, Uncalculated
 from calcdoc.text.unparse import unparse
 from calcdoc.units import Unit
+from calcdoc.units.choose import choose_unit
 
 _PER_CENT = 100
 
@@ -94,7 +94,7 @@ def _calculated(numbers: Numbers, naming: Naming, judgement: Judgement) -> r.Cri
         unverified=unverified(numbers.evaluation, judgement.judged),
         description=statement.description,
         basis=statement.basis.text,
-        reason=_reason(judgement, unit, numbers.digits),
+        reason=_reason(numbers, judgement, unit),
         clauses=statement.clauses.text,
         substitution=_substitution(numbers, judgement),
         value_text=with_unit(shown, unit),
@@ -147,7 +147,9 @@ def _unit(numbers: Numbers, judgement: Judgement) -> Unit:
         if isinstance(bare, Quantity):
             return literal.resolve(bare.unit)
     typed: Typed = judgement.judged.typed
-    return choose_unit(typed, judgement.value or judgement.limit)
+    return choose_unit(
+        typed.dimension, judgement.value or judgement.limit, celsius=bool(typed.weight)
+    )
 
 
 def _bare(tree: Node) -> Node:
@@ -190,6 +192,8 @@ def _difference(si: float, unit: Unit) -> str:
 
 def _remark(judgement: Judgement, unit: Unit, share: float | None) -> str:
     margin = judgement.judged.statement.clauses.margin
+    if judgement.away:
+        return "thermal runaway"
     if judgement.outcome is Outcome.FAIL:
         short = _difference(judgement.slack, unit).removeprefix("-")
         if judgement.slack > 0:
@@ -205,7 +209,11 @@ def _remark(judgement: Judgement, unit: Unit, share: float | None) -> str:
     return ""
 
 
-def _reason(judgement: Judgement, unit: Unit, digits: int) -> str:
+def _reason(numbers: Numbers, judgement: Judgement, unit: Unit) -> str:
+    if judgement.away:
+        names = ", ".join(numbers.model.variables[key].symbol for key in judgement.away)
+        return f"it rests on {names}, which runs away: the loop gain reaches one"
+    digits = numbers.digits
     if judgement.outcome is not Outcome.NOT_DECIDED:
         return ""
     attained = difference(judgement.requirement, unit, digits)

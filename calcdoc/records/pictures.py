@@ -207,12 +207,24 @@ def _binary(node: nodes.Binary, *, flat: bool) -> Picture:
             sup = picture(_bare(node.right), flat=True)
             return Script(_operand(node.left, "^", flat=flat), sup=sup)
         case "*":
-            left, right = _operand(node.left, "*", flat=flat), _operand(node.right, "*", flat=flat)
+            first_one = picture if _leads_negative(node.left) else _factor
+            left, right = first_one(node.left, flat=flat), _factor(node.right, flat=flat)
             return row([left, _times(left, right), right])
         case op:
             left = picture(node.left, flat=flat)
             sign = Glyphs(MINUS if op == "-" else op, "operator")
             return row([left, sign, _operand(node.right, op, flat=flat)])
+
+
+def _factor(node: nodes.Node, *, flat: bool) -> Picture:
+    return _operand(node, "*", flat=flat)
+
+
+def _leads_negative(node: nodes.Node) -> bool:
+    """Whether a product begins with a minus, which needs brackets behind another sign only."""
+    while isinstance(node, nodes.Binary) and node.op == "*":
+        node = node.left
+    return isinstance(node, nodes.Negate)
 
 
 def _operand(node: nodes.Node, op: str, *, flat: bool) -> Picture:
@@ -223,7 +235,7 @@ def _operand(node: nodes.Node, op: str, *, flat: bool) -> Picture:
             bracket = True
         case nodes.Binary() | nodes.Number() | nodes.Quantity() if op == "^":
             bracket = not isinstance(shown, Glyphs)
-        case nodes.Negate():
+        case _ if _leads_negative(node):
             bracket = True
         case nodes.Comparison() | nodes.Logic() | nodes.Not():
             bracket = True

@@ -10,7 +10,6 @@ from calcdoc.model.constant import constant_value
 from calcdoc.model.model import Model, Variable
 from calcdoc.records import record as r
 from calcdoc.records.carried import units_carried
-from calcdoc.records.display import choose_unit
 from calcdoc.records.looked import looked_up
 from calcdoc.records.naming import Naming
 from calcdoc.records.rounding import significant, stored
@@ -22,6 +21,7 @@ from calcdoc.text.names import fold
 from calcdoc.text.nodes import Element, Name, Node
 from calcdoc.text.unparse import unparse
 from calcdoc.units import PLAIN, Unit
+from calcdoc.units.choose import choose_unit
 
 
 class Numbers(Frozen, frozen=True, dict=True):
@@ -54,7 +54,7 @@ class Numbers(Frozen, frozen=True, dict=True):
             size = band.nominal or max(abs(band.least), abs(band.greatest))
         else:
             size = max(abs(band.nominal) for band in bands.values())
-        return choose_unit(variable.typed, size)
+        return choose_unit(variable.typed.dimension, size, celsius=bool(variable.typed.weight))
 
     def nominal(self, key: str) -> str:
         """The nominal value as text: in the author's digits when it is given."""
@@ -133,7 +133,11 @@ def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantit
         greatest_text=shown.greatest_text,
         varies=shown.varies,
         from_relation=", ".join(_relations(numbers, variable)),
-        notes=(*shown.notes, *looked_up(numbers.evaluation, variable.key)),
+        notes=(
+            *shown.notes,
+            *_runaway(numbers, variable),
+            *looked_up(numbers.evaluation, variable.key),
+        ),
     )
 
 
@@ -251,6 +255,19 @@ def _residual(numbers: Numbers, variable: Variable) -> str | None:
         left = f"left - right is at most {significant(found.residual, 2)} of the largest term"
     gain = "" if found.gain is None else f"; loop gain at most {significant(found.gain, 3)}"
     return f"{into}: {left}{gain}"
+
+
+def _runaway(numbers: Numbers, variable: Variable) -> tuple[str, ...]:
+    """A loop whose gain reaches one does not come to rest: said in plain words."""
+    found = numbers.evaluation.put_back.get(variable.key)
+    if found is None or found.gain is None or found.gain < 1:
+        return ()
+    gain = significant(found.gain, 3)
+    note = (
+        f"thermal runaway: the loop gain reaches {gain}, so a small rise comes back larger and the"
+        " quantity does not come to rest; everything that rests on it fails"
+    )
+    return (note,)
 
 
 def _substitution(numbers: Numbers, variable: Variable, formula: Node | None) -> str:

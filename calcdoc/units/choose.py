@@ -3,19 +3,21 @@
 from functools import lru_cache
 from typing import Final
 
-from calcdoc.model.model import Typed
-from calcdoc.units import ONE, PLAIN, Dimension, Unit, unit_of
 from calcdoc.units.dimension import (
     BASE_UNITS,
     CURRENT,
     LENGTH,
     LUMINOUS,
     MASS,
+    ONE,
     POWER,
     TEMPERATURE,
     TIME,
     VOLTAGE,
+    Dimension,
 )
+from calcdoc.units.reader import unit_of
+from calcdoc.units.unit import PLAIN, Unit
 
 Words = tuple[tuple[str, int], ...]
 
@@ -58,20 +60,21 @@ _SECONDS_ABOVE: Final = 4
 _LEAST, _MOST = 1.0, 1000.0
 
 
-def choose_unit(typed: Typed, value: float) -> Unit:
+def choose_unit(dimension: Dimension, value: float, *, celsius: bool = False) -> Unit:
     """A prefix so that the number lies between 1 and 1000.
 
     Args:
-        typed: Dimension and temperature weight of the quantity.
-        value: Its nominal value in the coherent SI unit; zero keeps the unit without prefix.
+        dimension: The dimension of the quantity.
+        value: Its value in the coherent SI unit; zero keeps the unit without prefix.
+        celsius: Whether it is a temperature and no difference.
     """
-    if typed.weight:
+    if celsius:
         return unit_of([("°C", 1)])
-    if typed.dimension == ONE:
+    if dimension == ONE:
         return PLAIN
-    words = _NAMED.get(typed.dimension) or _base_words(typed.dimension)
+    words = _NAMED.get(dimension) or _base_words(dimension)
     if words is None:
-        return Unit(((typed.dimension.in_base_units(), 1),), PLAIN.factor, typed.dimension)
+        return Unit(((dimension.in_base_units(), 1),), PLAIN.factor, dimension)
     (first, power), *rest = words
     if power != 1 or first in _UNPREFIXED or not value:
         return unit_of(words)
