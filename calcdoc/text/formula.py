@@ -47,7 +47,6 @@ _TEXT: Final = re.compile(r'"([^"\n]*)"')
 _OR: Final = re.compile(r"or\b")
 _AND: Final = re.compile(r"and\b")
 _NOT: Final = re.compile(r"not\b")
-_OF_METHOD: Final = re.compile(rf"\.{SYMBOL.pattern}")
 SIGN_ALIKE: Final = {"·": "*", "×": "*"}
 
 
@@ -164,7 +163,8 @@ class _Parser:
         self.scanner.at = found.end()
         if follows == "[":
             return self._element(name, found)
-        if of_method := _OF_METHOD.match(text, found.end()):
+        of_method = SYMBOL.match(text, found.end() + 1) if follows == "." else None
+        if of_method:
             raise Mistake(
                 not_yet("a symbol of a method", self.scanner.span(found.start(), of_method.end()))
             )

@@ -19,10 +19,9 @@ _GLUED: Final = re.compile(rf"[{LETTER}0-9_.%°]+")
 _DECIMAL_COMMA: Final = re.compile(r",[0-9]")
 _RANGE: Final = re.compile(r"\.\.")
 _NUMBER_AGAIN: Final = re.compile(r" [0-9](?!/)|  +1/|  +[0-9]")
-_PER: Final = re.compile(rf" 1/(?=[{LETTER}°%])")
-_WORD: Final = re.compile(rf"%|°C?|[{LETTER}]+")
+_PER: Final = re.compile(r" 1/")
 _IDENTIFIER: Final = re.compile(rf"%|°[A-Za-z]*|[{LETTER}][{LETTER}{MARK}0-9_]*")
-_SPACED: Final = re.compile(rf"[ \n]+(?=[{LETTER}°%])")
+_SPACED: Final = re.compile(r"[ \n]+")
 _EXPONENT: Final = re.compile(r"\^(-?[0-9]{1,2})(?![0-9])|([⁻]?[⁰¹²³⁴⁵⁶⁷⁸⁹]{1,2})")
 _POWER: Final = re.compile(rf"\^-?[{LETTER}{MARK}0-9_.]*|[⁻⁰¹²³⁴⁵⁶⁷⁸⁹]+")
 _ODD_POWER: Final = re.compile(r"\.[0-9]+|\^|[⁻⁰¹²³⁴⁵⁶⁷⁸⁹]+")
@@ -118,15 +117,12 @@ def unit_after_number(scanner: Scanner) -> UnitText | None:
     """``" " unit``, where a clause word is no unit."""
     text, at = scanner.passage.text, scanner.at
     per = _PER.match(text, at)
-    if per:
+    if per and _IDENTIFIER.match(text, per.end()):
         scanner.at = per.end()
         return _unit(scanner, at + 1, first_joint="/")
     spaced = _SPACED.match(text, at)
-    if spaced is None:
-        return None
-    word = _IDENTIFIER.match(text, spaced.end())
-    assert word is not None
-    if word.group() in CLAUSE_WORDS:
+    word = _IDENTIFIER.match(text, spaced.end()) if spaced else None
+    if spaced is None or word is None or word.group() in CLAUSE_WORDS:
         return None
     if spaced.group() != " ":
         raise Mistake(

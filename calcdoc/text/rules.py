@@ -25,8 +25,8 @@ from calcdoc.text.statements import (
 
 _EQUALS: Final = re.compile(r"=(?!=)")
 _BRACKET: Final = re.compile(r"\[")
-_ID: Final = re.compile(rf"({SYMBOL.pattern})\s*:")
-_SYMBOL_EQUALS: Final = re.compile(rf"{SYMBOL.pattern}\s*(?:\[[^\]]*\])?\s*=")
+_COLON: Final = re.compile(r"\s*:")
+_UNIT_EQUALS: Final = re.compile(r"\s*(?:\[[^\]]*\])?\s*=")
 _AT: Final = re.compile(r"at\b")
 _THROUGH: Final = re.compile(r"through\b")
 _HAZARD: Final = re.compile(r"(supply|stored|not isolated)(?=\s|$)")
@@ -73,9 +73,9 @@ def assumption(statement: Passage) -> Statement:
     """``[ID ":"] SYMBOL = given | description | state basis`` or ``ID ":" sentence | ...``"""
     first, description, last = columns(statement, GIVEN_COLUMNS)
     scanner, name = Scanner(first), None
-    if _ID.match(first.text):
+    if _symbol_and(_COLON, first.text, 0):
         name, scanner = labelled(first, "an id, as in A1:")
-    is_quantity = _SYMBOL_EQUALS.match(first.text, scanner.at)
+    is_quantity = _symbol_and(_UNIT_EQUALS, first.text, scanner.at)
     if name is None and not is_quantity:
         scanner.refuse("an id and a colon, or a symbol and `=`, as in A1: R_th = 60 K/W ± 15 %")
     mark, rest = state(last)
@@ -86,6 +86,12 @@ def assumption(statement: Passage) -> Statement:
     if not text:
         scanner.refuse("the assumption as a sentence or as a symbol with its value")
     return SentenceStatement(name, text, plain(description), basis(rest), mark, first.whole)
+
+
+def _symbol_and(rest: re.Pattern[str], text: str, at: int) -> bool:
+    """Whether a symbol stands here, and the rest behind it."""
+    symbol = SYMBOL.match(text, at)
+    return symbol is not None and rest.match(text, symbol.end()) is not None
 
 
 def hazard(statement: Passage) -> Statement:

@@ -6,16 +6,17 @@ number and a function elsewhere. It knows ASCII digits only and never evaluates 
 
 import re
 import unicodedata
-from dataclasses import dataclass
 from typing import Final, NoReturn
 
+from calcdoc.frozen import Working
 from calcdoc.problems import Finding, Mistake, Place, error
 from calcdoc.source import Span
 from calcdoc.text.names import LETTER, MARK
 from calcdoc.text.passage import Passage
 
 _BLANKS: Final = re.compile(r"[ \n]*")
-_PIECE: Final = re.compile(rf"[{LETTER}][{LETTER}{MARK}0-9_]*|[0-9][0-9.]*|.", re.DOTALL)
+_PIECE: Final = rf"(?s)[{LETTER}][{LETTER}{MARK}0-9_]*|[0-9][0-9.]*|."
+"""What stands here, for a mistake; compiled when there is one."""
 
 TYPICAL: Final = {
     "≤": "write <= for ≤",
@@ -38,8 +39,7 @@ TYPICAL: Final = {
 """What people write in place of the sign this language knows."""
 
 
-@dataclass(slots=True)
-class Scanner:
+class Scanner(Working):
     """A place in a passage and what can be read from there."""
 
     passage: Passage
@@ -89,7 +89,7 @@ class Scanner:
         """Say what was wanted here and what stands here instead."""
         self.blanks()
         text = self.passage.text
-        piece = _PIECE.match(text, self.at)
+        piece = re.compile(_PIECE).match(text, self.at)
         if piece is None:
             end = len(text)
             raise Mistake(
