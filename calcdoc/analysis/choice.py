@@ -70,5 +70,5 @@ def _refusal(solved: Solved, left: Sequence[int]) -> Finding:
         "several-roots",
         f"{len(left)} roots are left for {shown(names)}",
         span,
-        help=f"leave one with `where`, as in where {names} > 0; the roots are: {roots}",
+        help=f"leave one with `where` and a condition on {names}; the roots are: {roots}",
     )

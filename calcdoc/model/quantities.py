@@ -189,10 +189,11 @@ class Quantities:
         if way is None:
             raise Unknown
         typed = self._type_of_root(key, way, sought)
+        _check_whole(sought.symbol, typed, statement.span)
+        place = way.bracket.span if isinstance(way, Implicit) else statement.span
+        _check_unit(sought.symbol, sought, typed, place)
         if isinstance(way, Implicit):
             way = self._check_relation(way, {key: typed})
-        _check_whole(sought.symbol, typed, statement.span)
-        _check_unit(sought.symbol, sought, typed, statement.span)
         self._check_where(statement, key, typed)
         return Variable(
             key=key,

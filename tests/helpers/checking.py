@@ -1,8 +1,9 @@
 """From a design text to its findings as people read them."""
 
+from calcdoc.analysis.evaluate import evaluate_model
 from calcdoc.model.build import build
 from calcdoc.problems import Finding
-from calcdoc.problems.views import full, in_order
+from calcdoc.problems.views import full, has_errors, in_order
 from calcdoc.source import SourceFile
 from calcdoc.text.document import read_document
 
@@ -11,10 +12,13 @@ TITLE = '```document\nnumber = "T-1"\ntitle = "Trial"\nrevision = "A"\n```\n'
 
 
 def findings_of(text: str, path: str = "lamp.md") -> tuple[Finding, ...]:
-    """Everything that reading and checking find, in the order shown."""
+    """Everything that reading, checking and computing find, in the order shown."""
     document, findings = read_document(SourceFile(path, text))
     if document is not None:
-        findings += build(document)[1]
+        model, more = build(document)
+        findings += more
+        if model is not None and not has_errors(findings):
+            findings += evaluate_model(model)[1]
     return in_order(findings)
 
 
