@@ -160,8 +160,8 @@ _SYMPY: Final = {"ln": "log", "abs": "Abs"}
 
 
 def symbol(name: str) -> Any:  # noqa: ANN401
-    """A known symbol is positive, the unknown may be anything."""
-    return sympy.Symbol(name, positive=None if name == UNKNOWN else True)
+    """A drawn symbol is positive; the unknown and the right side may be anything."""
+    return sympy.Symbol(name, positive=True if name in KNOWN else None)
 
 
 def expression(node: Node) -> Any:  # noqa: ANN401
@@ -251,6 +251,11 @@ def worlds() -> SearchStrategy[dict[str, Any]]:
     return st.fixed_dictionaries({fold(name): one for name in (*KNOWN, UNKNOWN)})
 
 
+_ONE_WAY: Final = (
+    "minus sign", "square both", "take the sine", "take the cosine", "take the tangent",
+)  # fmt: skip
+
+
 def settles(left: Node, right: Node, values: Values) -> bool | None:
     """Whether the sides agree to 1e-9 of the larger; None where one has no value."""
     one, other = value_or_none(left, values), value_or_none(right, values)
@@ -283,8 +288,8 @@ def test_an_isolated_unknown_satisfies_its_relation(left: Node, values: dict[str
             assert parse_text(unparse(step.right)) == step.right
         world = put_in(found, values)
         good = world and settles(left, Name("y", left.span), world)
-        if good is False:  # only what squaring brought in
-            assert any("minus sign" in s.words or "square both" in s.words for s in found.steps)
+        if good is False:  # only what a step that cannot be turned back brought in
+            assert any(said in step.words for step in found.steps for said in _ONE_WAY)
         satisfied.append(good)
         if good:
             _sympy_agrees(left, found.tree, values)
