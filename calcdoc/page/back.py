@@ -162,22 +162,23 @@ def _alphabetical(name: str) -> tuple[str, str]:
 def crosschecks(view: View) -> str:
     """Two ways to one quantity."""
     columns = (
-        Column("id", 8),
-        Column("first way", 26),
-        Column("second way", 26),
-        Column("difference", 14, "num"),
-        Column("allowed", 14, "num"),
+        Column("id", 6),
+        Column("first way", 24),
+        Column("second way", 24),
+        Column("condition", 12),
+        Column("difference", 12, "num"),
+        Column("allowed", 10, "num"),
         Column("verdict", 12),
     )
-    digits = view.record.document.digits
     rows = [
         (
-            f'<span id="k-{escape(each.id)}">{escape(each.id)}</span>',
-            view.math(each.first, room=15),
-            view.math(each.second, room=15),
-            typeset.in_unit(each.difference, each.unit, digits),
-            typeset.in_unit(each.allowed, each.unit, digits),
-            verdict("agrees" if each.agrees else "fail"),
+            view.place(each.id),
+            view.math(each.first, room=14),
+            view.math(each.second, room=14),
+            escape(each.form),
+            typeset.quantity(each.difference_text),
+            typeset.quantity(each.allowed_text),
+            verdict("agrees" if each.agrees else "differs"),
         )
         for each in view.record.crosschecks
     ]

@@ -10,7 +10,7 @@ from calcdoc.page.markup import Column, margin_bar, table, verdict
 from calcdoc.page.measure import SCRIPT, text_width
 from calcdoc.page.prose import caution
 from calcdoc.page.view import View
-from calcdoc.records.record import Assumption, Criterion
+from calcdoc.records.record import Assumption, Criterion, Crosscheck
 from calcdoc.records.wording import counted
 
 VERDICTS: Final = (
@@ -130,12 +130,15 @@ def _open(view: View) -> str:
     tests = [each for each in record.criteria if each.verdict in NOT_COMPUTED]
     accepted = [each for each in record.criteria if each.accepted]
     unverified = dict.fromkeys(name for each in record.criteria for name in each.unverified)
-    answers = (
+    answers = [
         ("Open assumptions", [_assumption(view, each.id) for each in waiting]),
         ("Open tests", [_test(view, each) for each in tests]),
         ("Accepted failures", [_accepted(view, each) for each in accepted]),
         ("Values not verified", [view.words(name) for name in unverified]),
-    )
+    ]
+    if record.crosschecks:
+        apart = [each for each in record.crosschecks if not each.agrees]
+        answers.append(("Cross-checks that differ", [_crosscheck(view, each) for each in apart]))
     rows = "".join(_answer(name, items) for name, items in answers if items)
     none = " ".join(f"{name}: none." for name, items in answers if not items)
     rows += f"<p><b>{none}</b></p>\n" if none else ""
@@ -165,6 +168,11 @@ def _resting(view: View, assumption: Assumption) -> str:
     parts += [counted(lines, "line")] if lines else []
     register = '<a href="#back-assumptions">see its register</a>'
     return f". Rests on it: {' and '.join(parts)}, {register}" if parts else ""
+
+
+def _crosscheck(view: View, check: Crosscheck) -> str:
+    shown = f"{view.place(check.id)}: {view.words(check.description)}".rstrip(": ")
+    return f"{shown}, difference {typeset.quantity(check.difference_text)}"
 
 
 def _test(view: View, criterion: Criterion) -> str:

@@ -33,7 +33,7 @@ def quantity_line(view: View, quantity: Quantity) -> str:
     label = escape(quantity.line)
     return (
         f'<div class="wl" id="q-{escape(quantity.symbol)}"><span class="no">{label}</span>'
-        f"{_side(view, quantity)}{_what(view, quantity.description)}{_steps(view, quantity)}{work}"
+        f"{_side(view, quantity)}{opened(view, quantity.description)}{_steps(view, quantity)}{work}"
         f"{_residual(view, quantity)}{_band(view, quantity)}{_cases(view, quantity)}"
         f"{_notes(view, quantity.notes)}</div>\n"
     )
@@ -51,9 +51,24 @@ def criterion_line(view: View, criterion: Criterion) -> str:
     return (
         f'<div class="wl cr" id="c-{escape(criterion.id)}">'
         f'<span class="no">{escape(criterion.id)}</span>{_criterion_side(view, criterion)}'
-        f"{_what(view, what)}{work}{_compared(view, criterion)}{_decided(view, criterion)}"
-        f"{_governed(view, criterion)}</div>\n"
+        f"{opened(view, what)}{work}{_compared(view, criterion)}{_decided(view, criterion)}"
+        f"{_governed(view, criterion)}{_rows(criterion)}</div>\n"
     )
+
+
+def _rows(criterion: Criterion) -> str:
+    """A criterion over a series, element by element."""
+    if not criterion.rows:
+        return ""
+    heads = ("element", "value", "limit", "margin", "verdict")
+    head = "".join(f'<th scope="col">{each}</th>' for each in heads)
+    rows = "".join(
+        f'<tr><th scope="row">{each.index}</th><td>{typeset.quantity(each.value_text)}</td>'
+        f"<td>{typeset.quantity(each.limit_text)}</td>"
+        f"<td>{typeset.quantity(each.margin_text)}</td><td>{verdict(each.verdict)}</td></tr>"
+        for each in criterion.rows
+    )
+    return f'<table class="grid rows"><thead><tr>{head}</tr></thead><tbody>{rows}</tbody></table>'
 
 
 def subject(criterion: Criterion) -> str:
@@ -83,7 +98,7 @@ def sentence_line(view: View, assumption: Assumption) -> str:
     side = [state, f"used in {rests}" if rests else ""]
     return (
         f'<div class="in" id="a-{escape(assumption.id)}"><span class="no">{escape(assumption.id)}'
-        f'</span>{_aside(side)}<p class="what">{view.opening(assumption.text)}{reason}</p></div>\n'
+        f'</span>{aside(side)}<p class="what">{view.opening(assumption.text)}{reason}</p></div>\n'
     )
 
 
@@ -151,25 +166,42 @@ def both_limits(quantity: Quantity) -> str:
 
 
 def _work(view: View, quantity: Quantity) -> str:
-    """Formula, substitution and result, their equals signs under each other."""
-    left = symbol(quantity.symbol)
+    texts = _worked_out(quantity)
+    if quantity.index is not None:
+        running = _running(quantity)
+        lists = _series(view, quantity)
+        return worked_rows(view, symbol(quantity.symbol, running), (*texts, ""), below=lists)
+    result = quantity.result if quantity.result != quantity.formula else ""
+    carried = quantity.units_carried
+    return worked_rows(view, symbol(quantity.symbol), (*texts, result), carried=carried)
+
+
+def worked_rows(
+    view: View,
+    left: Picture,
+    texts: tuple[str, ...],
+    *,
+    carried: str = "",
+    below: str = "",
+) -> str:
+    """Formula and substitution, then the result (the last text), equals signs under each other.
+
+    Formula and substitution share a line when there is room for both.
+    """
     width = measure(left).width + LEAD
     indent = width if width <= WIDEST_LEFT else 1.5
     room = ROOM - indent
-    texts = _worked_out(quantity)
-    carried = quantity.units_carried
+    formulas = [_led(each) for each in texts[:-1] if each]
     beside = UNITS_SIZE * text_width(carried) + 1.5 if carried else 0.0
-    formulas = [_led(each) for each in texts]
-    one_line = sum(measure(each).width for each in formulas) + beside <= room
     rights = [view.math(each, room=room) for each in formulas]
-    if one_line and rights:
+    if rights and sum(measure(each).width for each in formulas) + beside <= room:
         rights = [" ".join(rights)]
     if carried and rights:
         rights[-1] += f' <span class="units">{typeset.units(carried)}</span>'
-    if quantity.result and quantity.result != quantity.formula:
-        rights.append(view.math(_led(quantity.result), bold=True, room=room))
-    if quantity.index is not None:
-        rights.append(_series(view, quantity))
+    if texts[-1]:
+        rights.append(view.math(_led(texts[-1]), bold=True, room=room))
+    if below:
+        rights.append(below)
     lead = (
         f'<span class="lhs" style="margin-left:{-indent:.2f}em;min-width:{indent:.2f}em">'
         f"{view.math(left)}</span>"
@@ -178,6 +210,12 @@ def _work(view: View, quantity: Quantity) -> str:
         f'<div class="eq">{lead if at == 0 else ""}{row}</div>' for at, row in enumerate(rights)
     ]
     return f'<div class="work" style="padding-left:{indent:.2f}em">{"".join(rows)}</div>'
+
+
+def _running(quantity: Quantity) -> Picture:
+    """The running index of a series, as its formula names it."""
+    words = set(re.findall(r"\w+", quantity.formula))
+    return Glyphs(next((each for each in "nki" if each in words), "n"), "italic")
 
 
 def _worked_out(quantity: Quantity) -> tuple[str, ...]:
@@ -195,27 +233,47 @@ def _led(text: str) -> Picture:
 
 
 def _series(view: View, quantity: Quantity) -> str:
-    """The values of a series, each behind its index."""
-    values = quantity.nominal if isinstance(quantity.nominal, list) else [quantity.nominal]
-    digits = view.record.document.digits
-    pairs = zip(quantity.index or (), values, strict=False)
-    items = (
-        f'<span class="nb">{index}: {typeset.in_unit(value, quantity.unit, digits)}</span>'
-        for index, value in pairs
-    )
-    return f'<span class="ser">{"; ".join(items)}</span>'
+    """The values of a series, each behind its index, and the band of each."""
+    lists = [("", quantity.nominal)]
+    if quantity.varies:
+        lists += [("least ", quantity.least), ("greatest ", quantity.greatest)]
+    shown = []
+    for name, values in lists:
+        items = (
+            f'<span class="nb">{at}: {typeset.in_unit(value, quantity.unit, _digits(view))}</span>'
+            for at, value in zip(quantity.index or (), _listed(values), strict=False)
+        )
+        kind = "cl" if name else "ser"
+        shown.append(f'<span class="{kind}">{name}{"; ".join(items)}</span>')
+    return "<br>".join(shown)
 
 
-def _what(view: View, text: str) -> str:
+def _listed(values: float | list[float]) -> list[float]:
+    return values if isinstance(values, list) else [values]
+
+
+def _digits(view: View) -> int:
+    return view.record.document.digits
+
+
+def opened(view: View, text: str) -> str:
+    """The description of a line, above its formulas."""
     return f'<p class="what">{view.opening(text)}</p>' if text else ""
 
 
 def _steps(view: View, quantity: Quantity) -> str:
-    return "".join(f'<p class="step">{view.sentence(step)}</p>' for step in quantity.steps)
+    """How it was solved: from which relations, and each step; the last one is the formula."""
+    last = f": {quantity.symbol} = {quantity.formula}"
+    shown = [view.step(each.removesuffix(last)) for each in quantity.steps]
+    names = [each.strip() for each in quantity.from_relation.split(",") if each.strip()]
+    if names:
+        origin = f"from {view.places(tuple(names))}"
+        shown[:1] = ["; ".join([origin, *shown[:1]])]
+    return "".join(f'<p class="step">{each}</p>' for each in shown)
 
 
 def _residual(view: View, quantity: Quantity) -> str:
-    return f'<p class="step">{view.sentence(quantity.residual)}</p>' if quantity.residual else ""
+    return f'<p class="step">{view.step(quantity.residual)}</p>' if quantity.residual else ""
 
 
 def _notes(view: View, notes: tuple[str, ...]) -> str:
@@ -264,13 +322,13 @@ def _side(view: View, quantity: Quantity) -> str:
     used = view.places(quantity.used_by)
     between = " · " if quantity.kind in GIVEN else "<br>"
     parts = [basis, f"from {rests}" if rests else "", f"used in {used}" if used else ""]
-    return _aside(parts, between)
+    return aside(parts, between)
 
 
 def _criterion_side(view: View, criterion: Criterion) -> str:
     by = _combination(view, criterion) if len(criterion.governing) <= BESIDE else ""
     unverified = ", ".join(view.words(each) for each in criterion.unverified)
-    return _aside(
+    return aside(
         [
             view.basis(criterion.basis),
             by,
@@ -292,7 +350,8 @@ def _combination(view: View, criterion: Criterion) -> str:
     return f"governed by {by}" if by else ""
 
 
-def _aside(parts: list[str], between: str = "<br>") -> str:
+def aside(parts: list[str], between: str = "<br>") -> str:
+    """What stands in the right margin of a line."""
     shown = between.join(part for part in parts if part)
     return f'<div class="side">{shown}</div>' if shown else ""
 

@@ -11,6 +11,7 @@ BAR: Final = 96.0
 """Where the limit stands on a bar, in per cent of its length."""
 SHORTEST: Final = 30.0
 """Where it stands at the least when the bar runs over it."""
+BAD: Final = frozenset({"fail", "differs"})
 EQUAL: Final = 1e-9
 """Share by which a value may pass its limit and still count as equal to it."""
 
@@ -99,4 +100,4 @@ def _used(criterion: Criterion) -> float | None:
 def verdict(words: str, accepted: str | None = None) -> str:
     """A verdict in words; a failure also in the ink kept for it."""
     reason = f" (accepted: {escape(accepted)})" if accepted else ""
-    return f'<span class="v{" bad" if words == "fail" else ""}">{escape(words)}</span>{reason}'
+    return f'<span class="v{" bad" if words in BAD else ""}">{escape(words)}</span>{reason}'

@@ -3,7 +3,7 @@
 from collections.abc import Iterable
 from html import escape
 
-from calcdoc.page import lines, typeset
+from calcdoc.page import lines, solved, typeset
 from calcdoc.page.markup import verdict
 from calcdoc.page.view import View
 from calcdoc.records import record as r
@@ -19,7 +19,7 @@ def blocks(view: View, items: Iterable[r.Block], levels: dict[int, int] | None =
     return "".join(block(view, item, levels or {}) for item in items)
 
 
-def block(view: View, item: r.Block, levels: dict[int, int]) -> str:  # noqa: PLR0911
+def block(view: View, item: r.Block, levels: dict[int, int]) -> str:
     """One block: a table of cases, one for each kind."""
     match item:
         case r.Heading():
@@ -38,14 +38,40 @@ def block(view: View, item: r.Block, levels: dict[int, int]) -> str:  # noqa: PL
             return _grid(view, item)
         case r.Rule():
             return "<hr>\n"
+        case r.CautionBox(signal, inner):
+            return caution(signal, blocks(view, inner))
+        case _:
+            return _line(view, item)
+
+
+Line = (
+    r.QuantityLine
+    | r.CriterionLine
+    | r.RelationLine
+    | r.RestatedLine
+    | r.SensitivityLine
+    | r.CrosscheckLine
+    | r.SentenceLine
+)
+
+
+def _line(view: View, item: Line) -> str:
+    """A line of the calculation."""
+    match item:
         case r.QuantityLine(symbol):
             return lines.quantity_line(view, view.quantities[symbol])
         case r.CriterionLine(name):
             return lines.criterion_line(view, view.criteria[name])
+        case r.RelationLine(name):
+            return solved.relation_line(view, view.relations[name])
+        case r.RestatedLine(line):
+            return solved.restated_line(view, view.restated[line])
+        case r.SensitivityLine(line):
+            return solved.sensitivity_line(view, view.sensitivities[line])
+        case r.CrosscheckLine(name):
+            return solved.crosscheck_line(view, view.crosschecks[name])
         case r.SentenceLine(name):
             return lines.sentence_line(view, view.assumptions[name])
-        case r.CautionBox(signal, inner):
-            return caution(signal, blocks(view, inner))
 
 
 def caution(signal: str, inner: str) -> str:

@@ -6,11 +6,20 @@ from functools import cached_property
 from html import escape
 
 from calcdoc.page import boxes, typeset
-from calcdoc.page.pieces import ROOM, Draw, no_links, pieces, read
+from calcdoc.page.pieces import ROOM, Draw, is_formula, no_links, pieces, read
 from calcdoc.records import wording
 from calcdoc.records.pictures import symbol
-from calcdoc.records.record import Assumption, Criterion, Quantity, Record
-from calcdoc.records.shapes import Picture
+from calcdoc.records.record import (
+    Assumption,
+    Criterion,
+    Crosscheck,
+    Quantity,
+    Record,
+    Relation,
+    Restated,
+    Sensitivity,
+)
+from calcdoc.records.shapes import MINUS, Picture
 from calcdoc.text.names import fold
 
 NAME = re.compile(r"[^\W\d_][^\W_]*(?:\.[^\W\d_][^\W_]*)?(?:_\w+)|[\u0370-\u03ff][^\W_]*")
@@ -62,6 +71,11 @@ class View:
             places |= dict.fromkeys(filter(None, (each.symbol, each.line, each.id)), here)
         for one in self.record.criteria:
             places |= dict.fromkeys(filter(None, (one.line, one.id)), (one.id, f"c-{one.id}"))
+        for check in self.record.crosschecks:
+            places |= dict.fromkeys((check.line, check.id), (check.id, f"k-{check.id}"))
+        for relation in self.record.relations:
+            here = (relation.line, f"r-{relation.line}")
+            places |= dict.fromkeys((relation.line, relation.name), here)
         return {fold(name): place for name, place in places.items()}
 
     @cached_property
@@ -81,9 +95,33 @@ class View:
             known[f"a-{one.id}"] = f"assumption {one.id}: {one.text}"
         for criterion in self.record.criteria:
             known[f"c-{criterion.id}"] = f"criterion {criterion.id}: {criterion.description}"
+        for check in self.record.crosschecks:
+            known[f"k-{check.id}"] = f"cross-check {check.id}: {check.description}"
+        for relation in self.record.relations:
+            known[f"r-{relation.line}"] = f"relation {relation.name}: {relation.description}"
         for quantity in self.record.quantities:
             known[f"q-{quantity.symbol}"] = f"line {quantity.line}: {quantity.description}"
         return {anchor: words.rstrip(": ") for anchor, words in known.items()}
+
+    @cached_property
+    def relations(self) -> dict[str, Relation]:
+        """Relations by name."""
+        return {each.name: each for each in self.record.relations}
+
+    @cached_property
+    def restated(self) -> dict[str, Restated]:
+        """Restated results by line."""
+        return {each.line: each for each in self.record.restated}
+
+    @cached_property
+    def sensitivities(self) -> dict[str, Sensitivity]:
+        """Sensitivities by line."""
+        return {each.line: each for each in self.record.sensitivities}
+
+    @cached_property
+    def crosschecks(self) -> dict[str, Crosscheck]:
+        """Cross-checks by id."""
+        return {each.id: each for each in self.record.crosschecks}
 
     def links(self, name: str) -> str:
         """Attributes of the link to the line that defines a symbol; empty where there is none."""
@@ -117,6 +155,13 @@ class View:
         return "".join(
             part if at % 2 else WORD.sub(self._named, part) for at, part in enumerate(parts)
         )
+
+    def step(self, text: str) -> str:
+        """A step of a solution: words, and behind a colon an equation."""
+        words, colon, equation = text.partition(": ")
+        if colon and " = " in equation and is_formula(equation):
+            return f"{self.sentence(words)}: {self.math(equation)}"
+        return self.sentence(text.replace(" - ", f" {MINUS} "))
 
     def words(self, text: str) -> str:
         """The author's words in running text."""

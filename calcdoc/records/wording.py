@@ -26,6 +26,7 @@ _NUMBER: Final = re.compile(
 """A number in a sentence, with the space before what may be its unit."""
 _WORD: Final = re.compile(r"[^\s,;:()]+")
 _FACTOR: Final = re.compile(r"([-\u2212]?[0-9][^\s,]*(?: [^\s,±]+)?) (?:±|\+/-) ([0-9][0-9.]* %)")
+_RANGE: Final = re.compile(r" ?\.\. ?(?=-?[0-9])")
 _PLUS_MINUS: Final = re.compile(r"± (?=[0-9])")
 
 
@@ -78,9 +79,12 @@ def clauses(text: str) -> str:
 
     >>> print(clauses("at V_line = 230 V ± 2 %, T_a = -25 °C").replace("\u00a0", "_"))
     at V_line = 230_V_×_(1_±_2_%), T_a = −25_°C
+    >>> clauses("for n in 3..39 odd")
+    'for n in 3 to 39 odd'
     """
     times = f"{NO_BREAK}×{NO_BREAK}(1{NO_BREAK}±{NO_BREAK}"
-    return sentence(_FACTOR.sub(lambda found: f"{found[1]}{times}{found[2]})", text))
+    text = _FACTOR.sub(lambda found: f"{found[1]}{times}{found[2]})", text)
+    return sentence(_RANGE.sub(" to ", text))
 
 
 @lru_cache(maxsize=1024)

@@ -60,8 +60,10 @@ def differences(found: object, expected: object, at: str = "record") -> Iterator
         yield f"{at}: {found!r}, expected {expected!r}"
 
 
-def test_folders_are_complete() -> None:
+def test_folders_are_complete(expected: Golden) -> None:
     """There are golden records, and each has its text and all its files."""
+    if expected.rewrite:
+        pytest.skip("the files are being written")
     assert len(NAMES) >= 5
     for name in NAMES:
         assert design_of(name).exists()
