@@ -5,6 +5,7 @@ from fractions import Fraction
 
 from calcdoc.frozen import replace
 from calcdoc.model import series
+from calcdoc.model.constant import constant_value
 from calcdoc.model.model import Implicit, Solved, Typed, Variable
 from calcdoc.model.namespace import Namespace
 from calcdoc.model.typing import Checker, Unknown
@@ -212,8 +213,11 @@ class Quantities:
         if isinstance(way, Implicit):
             return typed_as(way.bracket.unit)
         at = way.unknowns.index(key)
+        # A root that is plainly zero has no unit of its own; the others say what it is.
+        trees = [roots[at].tree for roots in way.combinations]
+        telling = [tree for tree in trees if constant_value(tree) != 0] or trees
         try:
-            return self.checker.quantity(way.combinations[0][at].tree)
+            return self.checker.quantity(telling[0])
         except Mistake as mistake:
             raise Mistake(
                 error(

@@ -7,6 +7,7 @@ import pytest
 
 from calcdoc import pipeline
 from calcdoc.model import solving
+from calcdoc.model.symbolic import solve
 from tests.helpers.checking import TITLE
 from tests.helpers.command import Shell
 
@@ -41,7 +42,7 @@ def first_line(err: str, code: str) -> str:
 
 def test_relation_that_runs_out_of_time(shell: Shell, monkeypatch: pytest.MonkeyPatch) -> None:
     """A solve that takes too long is ended and `within` is suggested, within six seconds."""
-    monkeypatch.setattr(solving, "solve", partial(solving.solve, seconds=0.01))
+    monkeypatch.setattr(solving, "solve", partial(solve, seconds=0.01))
     text = (
         f"{TITLE}\n```inputs\na = 2\n```\n\n```derive\n"
         "relation r: sqrt(x) + sqrt(x + a) + x^1.37 = 5*a\nx from r\n```\n"

@@ -1,8 +1,8 @@
 """Ripple and conduction of a capacitor-input rectifier, solved numerically as design texts.
 
 Sources: facts 1.1 (exact forms; for constant current seen at hobby-electronics.info, for a
-resistive load our change of span), 1.2 case C and R6 (seen there), 1.3 and R7 to R9 (computed for the ideal
-model, no published values).
+resistive load our change of span), 1.2 case C and R6 (seen there), 1.3 and R7 to R9 (computed for
+the ideal model, no published values).
 """
 
 import pytest

@@ -19,7 +19,7 @@ from calcdoc.text.nodes import (
     UnitWord,
 )
 from calcdoc.text.passage import passage_of
-from calcdoc.text.rules import derivation
+from calcdoc.text.derivation import derivation
 from calcdoc.text.scan import Scanner
 from calcdoc.text.statements import Definition
 from calcdoc.text.unparse import unparse
