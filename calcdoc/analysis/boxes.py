@@ -1,7 +1,6 @@
 """Boxes of inputs as columns, and what one pass finds over them."""
 
 from collections.abc import Callable
-from dataclasses import dataclass, field
 
 import numpy as np
 
@@ -26,13 +25,12 @@ class Boxes(Frozen, frozen=True):
         return np.clip(self.low + 0.5 * (self.high - self.low), self.low, self.high)
 
 
-@dataclass(frozen=True, slots=True)
-class Swept:
+class Swept(Frozen, frozen=True):
     """Ranges and slopes found by one pass, by row of the program."""
 
-    values: list[FloatArray] = field(default_factory=list)
+    values: list[FloatArray]
     """Intervals of shape (2, n_columns)."""
-    moves: list[Tangent] = field(default_factory=list)
+    moves: list[Tangent]
     """Tangents of shape (2, n_slots, n_columns); None where nothing moves."""
 
 

@@ -32,7 +32,7 @@ def sweep(program: Program, boxes: Boxes) -> Swept:
     half = _half_widths(boxes, centre)
     low = np.concatenate((boxes.low, centre), axis=1)
     high = np.concatenate((boxes.high, centre), axis=1)
-    swept = Swept()
+    swept = Swept([], [])
     both: list[FloatArray] = []  # boxes, then their centres, as columns of one array
     with np.errstate(all="ignore"):
         for at, step in enumerate(program.tape.instructions):
