@@ -16,7 +16,7 @@ from tests.helpers.tapes import Term, inputs, number
 from tests.property.test_extremes import bounded, check, grid, positive
 from tests.unit.analysis.rooted import root, settled
 
-N_MODELS = 100
+N_MODELS = 60
 Maker = Callable[[Term, Term, Term], Term]
 
 SMOOTH: tuple[Maker, ...] = (

@@ -300,3 +300,13 @@ def test_a_root_in_a_branch() -> None:
     own = root(lambda x, y: x.then(Op.LN) - y, 1, 100, y)
     term = choose(number(y, 0) < y, own, 1.0)
     assert at(term, [-1.0, log(7.0)]).tolist() == pytest.approx([1.0, 7.0])
+
+
+def test_a_root_that_is_lost_in_a_part_of_the_box() -> None:
+    """The root of x^2 = y in 0 .. 2 ends at y = 4: the greatest that there is."""
+    (y,) = inputs(1)
+    term = root(lambda x, y: x * x - y, 0, 2, y)
+    least, most = ends(term, (1.0, 2.0, 5.0))
+    assert least.value == 1.0
+    assert 1.999 < most.value <= 2.0 <= most.bound
+    assert most.interior[0]
