@@ -3,6 +3,7 @@
 import pytest
 
 from calcdoc.problems import Mistake
+from calcdoc.text.derivation import derivation
 from calcdoc.text.formula import formula, whole_formula
 from calcdoc.text.given import Style, given
 from calcdoc.text.nodes import (
@@ -19,7 +20,6 @@ from calcdoc.text.nodes import (
     UnitWord,
 )
 from calcdoc.text.passage import passage_of
-from calcdoc.text.derivation import derivation
 from calcdoc.text.scan import Scanner
 from calcdoc.text.statements import Definition
 from calcdoc.text.unparse import unparse
