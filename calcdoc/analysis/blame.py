@@ -5,6 +5,7 @@ from typing import Final
 
 import numpy as np
 
+from calcdoc.analysis.box import Box
 from calcdoc.analysis.domains import Case, Need
 from calcdoc.analysis.points import BoolArray, FloatArray
 from calcdoc.analysis.program import plain
@@ -18,14 +19,6 @@ JUMP: Final = 1e-6
 """A change of sign that stays this far from zero on both sides is a jump, not a zero."""
 NEAR: Final = 1e-9
 """Share of the box around a point within which a guard must hold for a zero not hit exactly."""
-
-
-class Box(Frozen, frozen=True):
-    """Ranges of the inputs, shape (n_inputs,) each."""
-
-    low: FloatArray
-    nominal: FloatArray
-    high: FloatArray
 
 
 def scale(tape: Tape, at: int, ranges: dict[int, FloatArray]) -> float:

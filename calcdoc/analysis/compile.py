@@ -13,7 +13,7 @@ from calcdoc.analysis.tape import Op, Tape
 from calcdoc.analysis.working import Working
 from calcdoc.frozen import Frozen
 from calcdoc.model.model import Compared, Discharge, Judged, Model, Root
-from calcdoc.text.nodes import Node
+from calcdoc.text.nodes import Binary, Group, Negate, Node
 
 SAFE_VOLTAGE: Final = Fraction(60)
 """Volts a stored charge may keep: 60 V d.c., the residual voltage of IEC 60204-1 (6.2.4)."""
@@ -43,6 +43,14 @@ class Check(Frozen, frozen=True):
     """First less second; as a share of the second where a share is allowed."""
 
 
+class Sides(Frozen, frozen=True):
+    """Both sides of a relation as instructions, and the terms they are sums of."""
+
+    left: int
+    right: int
+    terms: tuple[int, ...]
+
+
 class Compiled(Frozen, frozen=True):
     """A tape with the way back to the names."""
 
@@ -64,7 +72,7 @@ class Compiled(Frozen, frozen=True):
     """Key of every solved quantity to the root that was left."""
     roots: Mapping[str, int]
     """Key of every quantity found numerically to its instruction."""
-    relations: Mapping[str, tuple[int, int]]
+    relations: Mapping[str, Sides]
     """Key of every solved or settled quantity to the sides of its relation, put together."""
     looked: tuple[LookedUp, ...]
     """Every look-up of a table."""
@@ -131,7 +139,7 @@ def _si(model: Model, key: str) -> tuple[float, float, float]:
     return given.si
 
 
-def _relations(working: Working, model: Model) -> dict[str, tuple[int, int]]:
+def _relations(working: Working, model: Model) -> dict[str, Sides]:
     """Both sides of what each solved quantity was solved from, with the solutions in place."""
     sides = {}
     for key, variable in model.variables.items():
@@ -143,8 +151,21 @@ def _relations(working: Working, model: Model) -> dict[str, tuple[int, int]]:
             pair = (statement.left, statement.right)
         else:
             continue
-        sides[key] = (working.node(pair[0]), working.node(pair[1]))
+        left, right = (working.node(side) for side in pair)
+        terms = tuple(working.node(term) for side in pair for term in _terms(side))
+        sides[key] = Sides(left, right, terms)
     return sides
+
+
+def _terms(node: Node) -> list[Node]:
+    """What a side is a sum of."""
+    match node:
+        case Group(inner) | Negate(inner):
+            return _terms(inner)
+        case Binary("+" | "-", left, right):
+            return [*_terms(left), *_terms(right)]
+        case _:
+            return [node]
 
 
 def _criterion(working: Working, judged: Judged) -> tuple[Side, ...]:

@@ -15,6 +15,7 @@ from calcdoc.analysis.evaluation import (
     Evaluation,
     Judgement,
     Outcome,
+    PutBack,
     Restated,
     Row,
     Sensitive,
@@ -91,6 +92,7 @@ class _Evaluator:
         self.keys = list(compiled.columns)
         self.questions: list[Question] = []
         self.answers: tuple[Extreme, ...] = ()
+        self.back: Mapping[str, PutBack] = {}
         self.away: Mapping[str, frozenset[str]] = {}
 
     def run(self) -> Evaluation:
@@ -113,7 +115,7 @@ class _Evaluator:
         times = [None if at is None else self._ask(at, True, whole) for at in compiled.discharges]
         self.answers = extremes(compiled.tape, self.questions)
         back = put_back(compiled, self.model, self._points())
-        self.away = running_away(self.model, back)
+        self.back, self.away = back, running_away(self.model, back)
         nominal = evaluate_points(compiled.tape, whole.nominal[:, None])[:, 0]
         found = {
             key: self._band(float(nominal[at]), bands[key])
@@ -234,13 +236,20 @@ class _Evaluator:
         return Judgement(
             judged, side, row.value, row.limit, row.slack,
             0.0 if equal else extreme.value, equal,
-            Outcome.FAIL if away else row.outcome,
+            self._outcome(row.outcome, away),
             {**self._combination(extreme), **self._set_by(judged.statement, extreme)},
             self._named(judged, side, computed),
             extreme.proof, extreme.bound,
             tuple(rows) if judged.statement.clauses.index else (),
             tuple(away),
         )  # fmt: skip
+
+    def _outcome(self, outcome: Outcome, away: list[str]) -> Outcome:
+        """A criterion that rests on a loop fails when the loop runs away."""
+        gains = [self.back[key].gain for key in away]
+        if any(gain and gain.runs_away for gain in gains):
+            return Outcome.FAIL
+        return Outcome.NOT_DECIDED if away and outcome is Outcome.PASS else outcome
 
     def _named(self, judged: Judged, side: Side, computed: FloatArray) -> dict[str, float]:
         """Every quantity a criterion names, at its governing point; of a series its element."""

@@ -85,7 +85,8 @@ class Judgement(Frozen, frozen=True):
     rows: tuple[Row, ...]
     """For a criterion over a series, one for each element."""
     away: tuple[str, ...]
-    """Keys of settled quantities it rests on that run away: then it fails."""
+    """Keys of settled quantities it rests on whose loop gain may reach one: then it fails, or is
+    not decided."""
 
 
 class Crosschecked(Frozen, frozen=True):
@@ -103,6 +104,24 @@ class Crosschecked(Frozen, frozen=True):
     proof: Proof
 
 
+class Gain(Frozen, frozen=True):
+    """The greatest share of a small change that comes back through a settled loop."""
+
+    value: float
+    bound: float
+    """Proven: it is nowhere greater."""
+
+    @property
+    def settles(self) -> bool:
+        """Whether it is proven to stay below one."""
+        return self.bound < 1
+
+    @property
+    def runs_away(self) -> bool:
+        """Whether it reaches one; a gain that could not be computed counts as doing so."""
+        return not self.value < 1
+
+
 class PutBack(Frozen, frozen=True):
     """How well a quantity that was solved for satisfies its relation."""
 
@@ -110,8 +129,8 @@ class PutBack(Frozen, frozen=True):
     """Left less right, as a share of the largest term, the worst of all points."""
     proven: bool
     """Whether left less right vanishes identically."""
-    gain: float | None
-    """For a settled loop, the greatest loop gain over the band; one or more runs away."""
+    gain: Gain | None
+    """For a settled loop."""
 
 
 class Restated(Frozen, frozen=True):

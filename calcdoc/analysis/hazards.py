@@ -10,7 +10,8 @@ from typing import Final
 
 import numpy as np
 
-from calcdoc.analysis.blame import ZERO, Box, Judge, scale
+from calcdoc.analysis.blame import ZERO, Judge, scale
+from calcdoc.analysis.box import Box
 from calcdoc.analysis.bracket import Ends, ends, jumps, several
 from calcdoc.analysis.domains import (
     JUMP,

@@ -8,7 +8,7 @@ import numpy as np
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.compile import Compiled
 from calcdoc.analysis.derivative import loop_slope
-from calcdoc.analysis.evaluation import PutBack
+from calcdoc.analysis.evaluation import Gain, PutBack
 from calcdoc.analysis.extremes import Question, extremes
 from calcdoc.analysis.points import FloatArray, evaluate_points
 from calcdoc.analysis.tape import TapeBuilder
@@ -35,11 +35,11 @@ def put_back(compiled: Compiled, model: Model, points: FloatArray) -> Mapping[st
         return {}
     values = evaluate_points(compiled.tape, points)
     found = {}
-    for key, (left, right) in compiled.relations.items():
-        size = np.maximum(np.abs(values[left]), np.abs(values[right]))
+    for key, sides in compiled.relations.items():
+        size = np.max(np.abs(values[list(sides.terms)]), axis=0)
+        left = np.abs(values[sides.left] - values[sides.right])
         with np.errstate(divide="ignore", invalid="ignore"):
-            shares = np.where(size > 0, np.abs(values[left] - values[right]) / size, 0.0)
-        residual = float(np.max(shares))
+            residual = float(np.max(np.where(left > 0, left / size, 0.0)))
         variable = model.variables[key]
         proven = variable.solved is not None and variable.solved.proven
         if not residual <= CLOSE and not proven:
@@ -50,17 +50,20 @@ def put_back(compiled: Compiled, model: Model, points: FloatArray) -> Mapping[st
     return found
 
 
-def _gain(compiled: Compiled, root: int, box: Box) -> float:
-    """The greatest gain of a loop over the declared band; one or more runs away."""
+def _gain(compiled: Compiled, root: int, box: Box) -> Gain:
+    """The greatest gain of a loop over the declared band.
+
+    It counts with its sign: a change that comes back smaller, or turned round, dies out.
+    """
     builder = TapeBuilder.on(compiled.tape)
     slope = loop_slope(builder, root)
     (greatest,) = extremes(builder.tape(), [Question(slope, True, box.low, box.nominal, box.high)])
-    return greatest.value
+    return Gain(greatest.value, greatest.bound)
 
 
 def running_away(model: Model, found: Mapping[str, PutBack]) -> Mapping[str, frozenset[str]]:
-    """Key of every quantity to the settled loops it rests on whose gain reaches one."""
-    away = {key for key, each in found.items() if each.gain is not None and each.gain >= 1}
+    """Key of every quantity to the settled loops it rests on whose gain may reach one."""
+    away = {key for key, each in found.items() if each.gain and not each.gain.settles}
     rests: dict[str, frozenset[str]] = {}
     for key in model.order:
         own = {key} & away

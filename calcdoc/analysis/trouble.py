@@ -7,7 +7,7 @@ import numpy as np
 
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.compile import Compiled
-from calcdoc.analysis.domains import NO_CHANGE, SEVERAL
+from calcdoc.analysis.domains import JUMP, NO_CHANGE, SEVERAL
 from calcdoc.analysis.hazards import Hazard, hazards
 from calcdoc.analysis.points import FloatArray
 from calcdoc.model.model import Model, Variable
@@ -111,8 +111,17 @@ class _Teller:
                 label=label,
                 help="narrow the bracket to the one that is meant",
             )
+        if hazard.kind == JUMP:
+            return error(
+                "no-root",
+                f"left less right jumps over zero between {low} and {high} {where}, at a pole or a"
+                f" step, so no value of {name} is a solution",
+                span,
+                label=label,
+                help="narrow the bracket so that the jump lies outside of it",
+            )
         ends = ""
-        if hazard.kind == NO_CHANGE and hazard.ends is not None:
+        if hazard.kind == NO_CHANGE and hazard.ends is not None and not hazard.inner:
             one, other = (self._left(end, implicit.dimension) for end in
                           (hazard.ends.low, hazard.ends.high))  # fmt: skip
             ends = f": left less right is {one} at {low} and {other} at {high}"
@@ -126,7 +135,8 @@ class _Teller:
             message,
             span,
             label=label,
-            help="left less right must change its sign between the ends; move the bracket",
+            help="left less right must change its sign between the ends; move the bracket"
+            + (", or lower its upper end below the point of running away" * implicit.is_loop),
         )
 
     def _left(self, value: float, dimension: Dimension) -> str:

@@ -11,11 +11,11 @@ from calcdoc.records import record as r
 from calcdoc.records.cautions import cautions, hazards
 from calcdoc.records.checks import crosschecks, relations
 from calcdoc.records.criteria import criteria
+from calcdoc.records.method import method_statement
 from calcdoc.records.naming import name_lines
 from calcdoc.records.quantities import Numbers, quantities
 from calcdoc.records.registers import assumptions, references, tally, unsourced
 from calcdoc.records.restating import restated, sensitivities
-from calcdoc.records.wording import counted, typeset
 from calcdoc.source import digest
 from calcdoc.text import prose
 from calcdoc.text.names import fold
@@ -75,7 +75,7 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
         hazards=hazards(evaluation),
         cautions=cautions(evaluation, register, body),
         references=references(model, naming),
-        methods=_methods(lines, title.digits),
+        methods=method_statement(lines, title.digits),
         figures=(),
         notices=unsourced(model),
         problems=tuple(_problem(evaluation, each) for each in in_order(made.findings)),
@@ -159,36 +159,3 @@ def _fill(
                          media_type=found.media_type, data=found.base64)  # fmt: skip
 
     return prose_body.Fill(mention, picture)
-
-
-def _methods(lines: tuple[r.Quantity, ...], digits: int) -> tuple[str, ...]:
-    """How the numbers came about, one paragraph each."""
-    proofs = [each.proof for each in lines if each.varies and each.formula]
-    exact, bounded, searched = (proofs.count(p) for p in ("exact", "bounded", "searched"))
-    return (
-        (
-            "Units and dimensions of every formula were checked before any number was computed;"
-            " the computation runs in coherent SI units and nothing is rounded on the way."
-        ),
-        (
-            "Extremes: every quantity is taken at its least and greatest value while all"
-            " conditions, inputs and assumptions it depends on move through their whole bands at"
-            " once; a quantity used twice moves once. Bands are not combined statistically."
-        ),
-        (
-            f"Of the bands of {counted(len(proofs), 'derived quantity', 'derived quantities')}"
-            f" {exact} are exact (attained, and nothing in the band lies beyond), {bounded} are"
-            f" attained and proven to within a share of {typeset('1e-9')}, {searched} were"
-            " searched and are not proven."
-        ),
-        (
-            "A criterion is judged at the combination where limit less value is least, both sides"
-            " moving together, on unrounded values; equality within a share of"
-            f" {typeset('1e-12')} counts as equal."
-        ),
-        (
-            f"Values are shown with {digits} significant digits, ties to even; margins are rounded"
-            " towards less margin, waiting times towards more. Limits and values get the digits"
-            " it takes to tell them apart."
-        ),
-    )

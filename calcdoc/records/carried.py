@@ -110,5 +110,8 @@ class _Walker:
             return
         factor = unit.factor / result.factor
         number = "" if factor == 1 else typeset(trimmed(factor, 6)).removeprefix(_ONE_TIMES)
-        right = " ".join(part for part in (number, result.text) if part) or "1"
+        if result.text == "deg" and not unit.words:
+            self.reductions.append(f"1{NO_BREAK}rad = {number}°")  # an angle is a plain number
+            return
+        right = NO_BREAK.join(part for part in (number, result.text) if part) or "1"
         self.reductions.append(f"{unit.text or '1'} = {right}")

@@ -192,7 +192,7 @@ def _difference(si: float, unit: Unit) -> str:
 
 def _remark(judgement: Judgement, unit: Unit, share: float | None) -> str:
     margin = judgement.judged.statement.clauses.margin
-    if judgement.away:
+    if judgement.away and judgement.outcome is Outcome.FAIL:
         return "thermal runaway"
     if judgement.outcome is Outcome.FAIL:
         short = _difference(judgement.slack, unit).removeprefix("-")
@@ -212,7 +212,9 @@ def _remark(judgement: Judgement, unit: Unit, share: float | None) -> str:
 def _reason(numbers: Numbers, judgement: Judgement, unit: Unit) -> str:
     if judgement.away:
         names = ", ".join(numbers.model.variables[key].symbol for key in judgement.away)
-        return f"it rests on {names}, which runs away: the loop gain reaches one"
+        if judgement.outcome is Outcome.FAIL:
+            return f"it rests on {names}, which runs away: the loop gain reaches one"
+        return f"it rests on {names}, whose loop gain is not proven to stay below one"
     digits = numbers.digits
     if judgement.outcome is not Outcome.NOT_DECIDED:
         return ""

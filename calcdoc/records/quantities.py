@@ -253,16 +253,20 @@ def _residual(numbers: Numbers, variable: Variable) -> str | None:
         left = "left - right = 0"
     else:
         left = f"left - right is at most {significant(found.residual, 2)} of the largest term"
-    gain = "" if found.gain is None else f"; loop gain at most {significant(found.gain, 3)}"
+    gain = ""
+    if found.gain is not None:
+        gain = f"; loop gain at most {typeset(significant(found.gain.value, 3))}"
     return f"{into}: {left}{gain}"
 
 
 def _runaway(numbers: Numbers, variable: Variable) -> tuple[str, ...]:
     """A loop whose gain reaches one does not come to rest: said in plain words."""
     found = numbers.evaluation.put_back.get(variable.key)
-    if found is None or found.gain is None or found.gain < 1:
+    if found is None or found.gain is None or found.gain.settles:
         return ()
-    gain = significant(found.gain, 3)
+    if not found.gain.runs_away:
+        return ("it could not be proven that the loop gain stays below one",)
+    gain = typeset(significant(found.gain.value, 3))
     note = (
         f"thermal runaway: the loop gain reaches {gain}, so a small rise comes back larger and the"
         " quantity does not come to rest; everything that rests on it fails"

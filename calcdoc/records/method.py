@@ -1,0 +1,58 @@
+"""The method statement: how the numbers came about, one paragraph each."""
+
+from collections.abc import Iterator
+
+from calcdoc.records import record as r
+from calcdoc.records.wording import counted, typeset
+
+
+def method_statement(lines: tuple[r.Quantity, ...], digits: int) -> tuple[str, ...]:
+    """What a reviewer must know of the computation, in the order it was done."""
+    return tuple(_paragraphs(lines, digits))
+
+
+def _paragraphs(lines: tuple[r.Quantity, ...], digits: int) -> Iterator[str]:
+    yield (
+        "Units and dimensions of every formula were checked before any number was computed; the"
+        " computation runs in coherent SI units and nothing is rounded on the way."
+    )
+    kinds = {each.kind for each in lines}
+    if "solved" in kinds:
+        yield (
+            "Solved lines: a relation is solved step by step, or numerically between two values by"
+            " bisection and inverse interpolation to the last digits; the solution is put back, at"
+            " nominal and at every governing combination, and what is left is printed."
+        )
+    if "settled" in kinds:
+        yield (
+            "Settled quantities depend on themselves and are found as the fixed point between two"
+            " values. The loop gain is the share of a small change that comes back: at one or more"
+            " the quantity runs away, and what rests on it fails."
+        )
+    yield (
+        "Extremes: every quantity is taken at its least and greatest value while all conditions,"
+        " inputs and assumptions it depends on move through their whole bands at once; a quantity"
+        " used twice moves once. Bands are not combined statistically."
+    )
+    proofs = [each.proof for each in lines if each.varies and each.kind in _COMPUTED]
+    if proofs:
+        exact, bounded, searched = (proofs.count(p) for p in ("exact", "bounded", "searched"))
+        many = counted(len(proofs), "computed quantity", "computed quantities")
+        yield (
+            f"Of the bands of {many} {exact} are exact (attained, and nothing in the band lies"
+            f" beyond), {bounded} are attained and proven to within a share of {typeset('1e-9')},"
+            f" {searched} were searched and are not proven."
+        )
+    yield (
+        "A criterion is judged at the combination where limit less value is least, both sides"
+        " moving together, on unrounded values; equality within a share of"
+        f" {typeset('1e-12')} counts as equal."
+    )
+    yield (
+        f"Values are shown with {digits} significant digits, ties to even; margins are rounded"
+        " towards less margin, waiting times towards more. Limits and values get the digits it"
+        " takes to tell them apart."
+    )
+
+
+_COMPUTED = frozenset({"derived", "solved", "settled"})
