@@ -10,13 +10,15 @@ from calcdoc.text.statements import Definition
 
 ROOT: Final = Path(__file__).parents[2]
 DEMO: Final = ROOT / "designs" / "quay-stair-light-230.md"
+CLOSED: Final = ROOT / "tests" / "helpers" / "designs" / "closed-form.md"
+"""The same with every line a formula: nothing is solved for."""
 TITLE: Final = '```document\nnumber = "B-1"\ntitle = "Benchmark"\nrevision = "A"\n```\n'
 
 
 def demo_blocks() -> dict[str, list[str]]:
     """The statements of the demo by block word, as written."""
     found: dict[str, list[str]] = {}
-    text = DEMO.read_text(encoding="utf-8")
+    text = CLOSED.read_text(encoding="utf-8")
     for word, inner in re.findall(r"^```([a-z]+)\n(.*?)^```", text, re.DOTALL | re.MULTILINE):
         found.setdefault(word, []).extend(inner.splitlines())
     return found
@@ -24,7 +26,7 @@ def demo_blocks() -> dict[str, list[str]]:
 
 def demo_symbols() -> list[str]:
     """The symbols the demo derives."""
-    document, _ = read_document(SourceFile("demo.md", DEMO.read_text(encoding="utf-8")))
+    document, _ = read_document(SourceFile("closed-form.md", CLOSED.read_text(encoding="utf-8")))
     assert document is not None
     return [each.symbol.name for each in document.statements if isinstance(each, Definition)]
 

@@ -9,6 +9,7 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from fractions import Fraction
 from functools import reduce
+from pathlib import Path
 from typing import Any, Final
 
 import mpmath  # type: ignore[import-untyped]
@@ -25,6 +26,12 @@ PLAIN: Final = frozenset({"V", "A", "Ω", "F", "s", "Hz", "W", "K", "lm", "J", "
 """Coherent units with prefixes; the formulas of the demos need no others."""
 OTHERS: Final = {"%": "0.01", "°C": "1", "min": "60", "h": "3600"}
 RAISED: Final = str.maketrans("⁰¹²³⁴⁵⁶⁷⁸⁹⁻", "0123456789-")
+
+CLOSED: Final = (
+    Path(__file__).with_name("designs") / "closed-form.md",
+    Path("designs/quay-stair-light-120.md"),
+)
+"""The demos of 230 V and 120 V with every line a formula; nothing is solved for in them."""
 
 Value = Any  # an mpmath number or a NumPy array
 

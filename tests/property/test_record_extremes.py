@@ -9,12 +9,11 @@ import pytest
 from calcdoc.pipeline import evaluate, read, record
 from calcdoc.records.record import Record
 from calcdoc.text.names import fold
-from tests.helpers.independent import QUICK, given
+from tests.helpers.independent import CLOSED, QUICK, given
 
-DESIGNS = tuple(sorted(Path("designs").glob("*.md")))
 N_DRAWS = 1000
 CLOSE = 1e-9
-every_design = pytest.mark.parametrize("path", DESIGNS, ids=lambda path: path.stem)
+every_design = pytest.mark.parametrize("path", CLOSED, ids=lambda path: path.stem)
 pytestmark = pytest.mark.property
 
 

@@ -22,9 +22,8 @@ from calcdoc.records.store import from_json, to_json
 from calcdoc.text.formula import parse_text
 from calcdoc.text.names import fold
 from tests.helpers.design import worked
-from tests.helpers.independent import PRECISE
+from tests.helpers.independent import CLOSED, PRECISE
 
-DESIGNS = tuple(sorted(Path("designs").glob("*.md")))
 CLOSE = 1e-9
 
 
@@ -41,7 +40,7 @@ def agrees(stated: object, precise: Any, unit: str) -> bool:  # noqa: ANN401
     return bool(abs(stated - expected) <= CLOSE * abs(expected))
 
 
-@pytest.mark.parametrize("path", DESIGNS, ids=lambda path: path.stem)
+@pytest.mark.parametrize("path", CLOSED, ids=lambda path: path.stem)
 def test_nominal_values(path: Path) -> None:
     """Each derived line of a demo has the nominal value that mpmath gives, to 1e-9."""
     made = demo(path)
@@ -53,7 +52,7 @@ def test_nominal_values(path: Path) -> None:
             assert agrees(each.nominal, known[fold(each.symbol)], each.unit), each.symbol
 
 
-@pytest.mark.parametrize("path", DESIGNS, ids=lambda path: path.stem)
+@pytest.mark.parametrize("path", CLOSED, ids=lambda path: path.stem)
 def test_governing_combinations_of_quantities(path: Path) -> None:
     """At the stated combination each line takes its stated least and greatest value, to 1e-9."""
     made = demo(path)
@@ -67,7 +66,7 @@ def test_governing_combinations_of_quantities(path: Path) -> None:
             assert agrees(each.greatest, greatest, each.unit), each.symbol
 
 
-@pytest.mark.parametrize("path", DESIGNS, ids=lambda path: path.stem)
+@pytest.mark.parametrize("path", CLOSED, ids=lambda path: path.stem)
 def test_governing_combinations_of_criteria(path: Path) -> None:
     """Value and limit of each criterion are what mpmath gives where it is decided, to 1e-9."""
     made = demo(path)
