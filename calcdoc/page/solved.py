@@ -50,7 +50,13 @@ def restated_line(view: View, restated: Restated) -> str:
 
 def sensitivity_line(view: View, sensitivity: Sensitivity) -> str:
     """How a quantity answers to each of the quantities it depends on."""
-    heads = ("of", "partial derivative", "at nominal", "1 % more makes", "the full band makes")
+    heads = (
+        "of",
+        "partial derivative",
+        "at nominal",
+        "1\N{NO-BREAK SPACE}% more makes",
+        "the full band makes",
+    )
     head = "".join(f'<th scope="col">{each}</th>' for each in heads)
     rows = "".join(_answers(view, each) for each in sensitivity.rows)
     side = aside([f"sensitivity of {view.symbol(sensitivity.symbol)}"])

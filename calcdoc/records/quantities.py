@@ -250,9 +250,10 @@ def _residual(numbers: Numbers, variable: Variable) -> str | None:
     names = ", ".join(_relations(numbers, variable))
     into = f"put back into {names}" if names else "put back"
     if found.proven or not found.residual:
-        left = "left - right = 0"
+        left = "both sides are equal"
     else:
-        left = f"left - right is at most {significant(found.residual, 2)} of the largest term"
+        share = typeset(significant(found.residual, 2))
+        left = f"the sides differ by at most {share} of the largest term"
     gain = ""
     if found.gain is not None:
         gain = f"; loop gain at most {typeset(significant(found.gain.value, 3))}"

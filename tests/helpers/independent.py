@@ -18,13 +18,30 @@ import numpy as np
 from calcdoc.records.record import Quantity, Record
 from calcdoc.text.formula import parse_text
 from calcdoc.text.names import fold
-from calcdoc.text.nodes import Binary, Call, Comparison, Group, Name, Negate, Node, Number, UnitText
+from calcdoc.text.nodes import (
+    Binary,
+    Call,
+    Comparison,
+    Group,
+    Name,
+    Negate,
+    Node,
+    Number,
+    UnitText,
+    names,
+)
 from calcdoc.text.nodes import Quantity as Amount
 
 PREFIXES: Final = {"m": "1e-3", "µ": "1e-6", "n": "1e-9", "p": "1e-12", "k": "1e3", "M": "1e6"}
 PLAIN: Final = frozenset({"V", "A", "Ω", "F", "s", "Hz", "W", "K", "lm", "J", "m", "rad"})
 """Coherent units with prefixes; the formulas of the demos need no others."""
-OTHERS: Final = {"%": "0.01", "°C": "1", "min": "60", "h": "3600"}
+OTHERS: Final = {
+    "deg": "0.01745329251994329576923690768488612713",
+    "%": "0.01",
+    "°C": "1",
+    "min": "60",
+    "h": "3600",
+}
 RAISED: Final = str.maketrans("⁰¹²³⁴⁵⁶⁷⁸⁹⁻", "0123456789-")
 
 CLOSED: Final = (
@@ -65,6 +82,8 @@ class Library:
     number: Callable[[Fraction], Value]
     functions: Mapping[str, Callable[..., Value]]
     constants: Mapping[str, Value]
+    choose: Callable[[Value, Value, Value], Value]
+    """The second where the first holds, else the third."""
 
     def quantity(self, text: str) -> Value:
         """A text of the record with its unit, in coherent SI: ``230 V``, ``-14.4 mV/K``."""
@@ -108,14 +127,56 @@ class Library:
     def lines(self, record: Record, inputs: Mapping[str, Value]) -> dict[str, Value]:
         """Every quantity of a record in coherent SI, by folded symbol, from its inputs."""
         known = dict(inputs)
-        waiting = [each for each in record.quantities if each.formula]
+        waiting = [each for each in record.quantities if fold(each.symbol) not in known]
         while waiting:
             ready = [e for e in waiting if all(fold(name) in known for name in e.depends_on)]
             assert ready, "a circle"
             for each in ready:
-                known[fold(each.symbol)] = self.value(parse_text(each.formula), known)
+                known[fold(each.symbol)] = self._line(record, each, known)
             waiting = [each for each in waiting if fold(each.symbol) not in known]
         return known
+
+    def _line(self, record: Record, line: Quantity, known: Mapping[str, Value]) -> Value:
+        """One line from the lines before it."""
+        if line.kind == "settled":
+            return self._settled(record, line, known)
+        if line.formula:
+            return self.value(parse_text(line.formula), known)
+        return self._between(record, line, known)
+
+    def _settled(self, record: Record, line: Quantity, known: Mapping[str, Value]) -> Value:
+        """What comes out when the loop is gone round until it stands still."""
+        formulas = {fold(each.symbol): each.formula for each in record.quantities}
+        value = self.quantity(line.result)
+        for _ in range(_ROUNDS):
+            inside = {**known, fold(line.symbol): value}
+
+            def reached(node: Node, inside: dict[str, Value] = inside) -> Value:
+                for name in names(node):
+                    if fold(name.name) not in inside and fold(name.name) in formulas:
+                        inner = parse_text(formulas[fold(name.name)])
+                        inside[fold(name.name)] = reached(inner, inside)
+                return self.value(node, inside)
+
+            value = reached(parse_text(line.formula))
+        return value
+
+    def _between(self, record: Record, line: Quantity, known: Mapping[str, Value]) -> Value:
+        """The root of the line's relation by plain halving of the bracket it states."""
+        relation = next(each for each in record.relations if each.name == line.from_relation)
+        left, right = parse_text(relation.left), parse_text(relation.right)
+        low, high = (self.quantity(each) for each in _BRACKET.findall(line.steps[0])[0])
+
+        def difference(at: Value) -> Value:
+            inside = {**known, fold(line.symbol): at}
+            return self.value(left, inside) - self.value(right, inside)
+
+        rising = difference(high) > 0
+        for _ in range(_ROUNDS):
+            middle = (low + high) / 2
+            above = (difference(middle) > 0) == rising
+            low, high = self.choose(above, low, middle), self.choose(above, middle, high)
+        return (low + high) / 2
 
     def nominal(self, record: Record) -> dict[str, Value]:
         """The given quantities at nominal."""
@@ -135,9 +196,12 @@ class Library:
 
 def given(record: Record) -> list[Quantity]:
     """The quantities that are not computed."""
-    return [each for each in record.quantities if not each.formula]
+    return [each for each in record.quantities if each.kind in _GIVEN]
 
 
+_GIVEN: Final = ("condition", "input", "assumption")
+_ROUNDS: Final = 200
+_BRACKET: Final = re.compile(r"between (.+) and (.+)")
 _OPERATIONS: Final[dict[str, Callable[[Value, Value], Value]]] = {
     "+": lambda a, b: a + b,
     "-": lambda a, b: a - b,
@@ -162,6 +226,7 @@ PRECISE: Final = Library(
         "rss": lambda *values: mpmath.sqrt(mpmath.fsum(each**2 for each in values)),
     },
     constants={"pi": mpmath.pi},
+    choose=lambda holds, one, other: one if holds else other,
 )
 """mpmath, in its working precision."""
 
@@ -177,5 +242,6 @@ QUICK: Final = Library(
         "rss": lambda *values: np.sqrt(sum(each**2 for each in values)),
     },
     constants={"pi": np.pi},
+    choose=np.where,
 )  # fmt: skip
 """NumPy, for many draws at once."""
