@@ -66,11 +66,14 @@ def _refuse_one_name(ready: list[Evaluated]) -> None:
 
 
 def _written(evaluated: Evaluated, folder: str, forms: tuple[str, ...]) -> int:
-    try:
-        paths = write_record(evaluated, folder, forms)
-    except CalcdocError as trouble:
-        click.echo(f"calcdoc: {evaluated.design.source.path}: {trouble}", err=True)
-        return WORLD_IS_WRONG
-    for path in paths:
-        click.echo(str(path))
-    return 0
+    """Write one form after the other, so that what stands in the way of one leaves the others."""
+    status = 0
+    for form in forms:
+        try:
+            (path,) = write_record(evaluated, folder, (form,))
+        except CalcdocError as trouble:
+            click.echo(f"calcdoc: {evaluated.design.source.path}: {trouble}", err=True)
+            status = WORLD_IS_WRONG
+        else:
+            click.echo(str(path))
+    return status

@@ -50,7 +50,7 @@ HOSTILE = {
     "nested conditions": (derive("if(" + "not " * 5000 + "1 < 2, 1, 2)"), ("formula-size",)),
     "a long sum": (derive("+".join("1" * 9000)), ("formula-size",)),
     "a tower of powers": (derive("^".join("9" * 5000)), ("formula-size",)),
-    "a small tower of powers": (derive("9^9^9^9"), ()),
+    "a small tower of powers": (derive("9^9^9^9"), ("too-large",)),
     "an exponent tower on a unit": (derive("(2 V)^(9^9^9^9)"), ("unit-mismatch",)),
     "a statement of 30 000 characters": (derive("1 + " + "a" * 30_000), ("formula-size",)),
     "a number of 19 000 digits": (inputs("9" * 19_000 + " V"), ("number-form",)),
