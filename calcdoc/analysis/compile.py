@@ -239,6 +239,6 @@ def _discharge(working: Working, discharge: Discharge) -> int | None:
         return None
     add, variables = working.builder.add, working.variables
     safe = working.constant(SAFE_VOLTAGE)
-    start = add(Op.MAX, variables[discharge.voltage], safe)
+    start = add(Op.MAX, add(Op.ABS, variables[discharge.voltage]), safe)
     constant = add(Op.MUL, variables[discharge.resistance], variables[discharge.capacitance])
     return add(Op.MUL, constant, add(Op.LN, add(Op.DIV, start, safe)))

@@ -42,6 +42,11 @@ class Band(Frozen, frozen=True):
         """Whether it has a band at all."""
         return self.least < self.greatest
 
+    @property
+    def magnitude(self) -> float:
+        """The greatest size over the band, whatever its sign."""
+        return max(abs(self.least), abs(self.greatest))
+
 
 class Outcome(Enum):
     """How a calculated criterion came out."""
@@ -52,7 +57,7 @@ class Outcome(Enum):
 
 
 class Row(Frozen, frozen=True):
-    """One element of a criterion over a series, at the point that governs it."""
+    """One limit of a criterion, for one element of a series, at the point that governs it."""
 
     element: int
     value: float
@@ -83,7 +88,7 @@ class Judgement(Frozen, frozen=True):
     bound: float
     """Proven: the requirement is nowhere below this."""
     rows: tuple[Row, ...]
-    """For a criterion over a series, one for each element."""
+    """Each limit at the point that governs it: both sides, and every element of a series."""
     away: tuple[str, ...]
     """Keys of settled quantities it rests on whose loop gain may reach one: then it fails, or is
     not decided."""
@@ -166,7 +171,7 @@ class Sensitive(Frozen, frozen=True):
 
 
 class Discharged(Frozen, frozen=True):
-    """A stored charge: its greatest voltage, and the greatest time to a safe voltage."""
+    """A stored charge: its greatest voltage of either sign, and the greatest time to 60 V."""
 
     greatest_voltage: float
     seconds: float | None

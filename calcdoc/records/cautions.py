@@ -58,8 +58,7 @@ def hazard_warning(evaluation: Evaluation) -> tuple[Finding, ...]:
         return ()
     for key, band in evaluation.bands.items():
         variable = evaluation.model.variables[key]
-        highest = max(abs(band.least), abs(band.greatest))
-        if variable.typed.dimension == VOLTAGE and highest > TOUCH_VOLTAGE:
+        if variable.typed.dimension == VOLTAGE and band.magnitude > TOUCH_VOLTAGE:
             return (
                 warning(
                     "hazards-missing",
@@ -99,7 +98,7 @@ def _of_hazards(evaluation: Evaluation) -> Iterator[r.Caution]:
     kinds = [each.kind for each in evaluation.model.hazards]
     supplies = [each for each in evaluation.model.hazards if each.kind == "supply"]
     bands = [evaluation.bands[fold(each.symbols[0].name)] for each in supplies]
-    if any(max(abs(band.least), abs(band.greatest)) > TOUCH_VOLTAGE for band in bands):
+    if any(band.magnitude > TOUCH_VOLTAGE for band in bands):
         yield _danger(MAINS)
     elif "not isolated" in kinds:
         yield _danger(NOT_ISOLATED)
