@@ -20,6 +20,8 @@ text = true
 rows = [[50, "I", 0.60], [50, "II", 0.85, "unverified"]]
 """
 
+import math
+import re
 import tomllib
 from collections.abc import Mapping
 from fractions import Fraction
@@ -27,6 +29,7 @@ from typing import Final, NoReturn
 
 from calcdoc.errors import CalcdocError
 from calcdoc.problems import Mistake
+from calcdoc.tables.lines import TOP, Lines, Section
 from calcdoc.tables.table import EXACT, LINEAR, RULES, Axis, Row, Table
 from calcdoc.text.literal import bracketed_unit, resolve
 from calcdoc.text.passage import passage_of
@@ -38,10 +41,11 @@ _KEYS: Final = frozenset(
     {"title", "edition", "clause", "verified", "note", "value", "axis", "rows"}
 )
 MOST_ROWS: Final = 5000
+_TOML_PLACE: Final = re.compile(r" \(at (?:line ([0-9]+), column [0-9]+|end of document)\)$")
 
 
 class TableTrouble(CalcdocError):
-    """A table file does not say what a table needs."""
+    """A table file does not say what a table needs; the second line says where and what to do."""
 
 
 def read_table(name: str, data: bytes) -> Table:
@@ -51,27 +55,29 @@ def read_table(name: str, data: bytes) -> Table:
         TableTrouble: with the first thing that is wrong.
     """
     reader = _Reader(name)
-    try:
-        found = tomllib.loads(data.decode("utf-8"))
-    except (UnicodeDecodeError, tomllib.TOMLDecodeError, RecursionError) as trouble:
-        reader.wrong(f"it is not TOML: {trouble}")
+    found = reader.parsed(data)
     for key in found:
         if key not in _KEYS:
-            reader.wrong(f"there is no key `{key}`")
-    axes = tuple(reader.axis(each) for each in reader.tables(found, "axis"))
+            reader.wrong(f"there is no key `{key}`", line=reader.lines.key(key))
+    axes = tuple(
+        reader.axis(each, ("axis", number))
+        for number, each in enumerate(reader.tables(found, "axis"), 1)
+    )
     if not axes:
         reader.wrong("it has no [[axis]]")
     if sum(axis.rule == LINEAR for axis in axes) > 1:
         reader.wrong("at most one axis is linear")
     value = found.get("value", {})
-    unit = reader.unit(value.get("unit", "")) if isinstance(value, dict) else PLAIN
+    unit = reader.unit(value, ("value", 1)) if isinstance(value, dict) else PLAIN
     verified = found.get("verified", True)
     rows = found.get("rows", [])
     if not isinstance(rows, list) or not 0 < len(rows) <= MOST_ROWS:
-        reader.wrong(f"`rows` is a list of 1 to {MOST_ROWS} rows")
-    read = tuple(reader.row(each, axes, verified=bool(verified)) for each in rows)
-    if len({row.at for row in read}) < len(read):
-        reader.wrong("two rows stand at the same place")
+        reader.wrong(f"`rows` is a list of 1 to {MOST_ROWS} rows", line=reader.lines.key("rows"))
+    read = tuple(
+        reader.row(each, number, axes, verified=bool(verified))
+        for number, each in enumerate(rows, 1)
+    )
+    reader.all_apart(read)
     return Table(
         name,
         reader.text(found, "title"),
@@ -88,68 +94,136 @@ class _Reader:
 
     def __init__(self, name: str) -> None:
         self.name = name
+        self.lines = Lines("")
 
-    def wrong(self, what: str) -> NoReturn:
-        """Say what is wrong."""
-        raise TableTrouble(f"the table `{self.name}` cannot be read: {what}")
+    def wrong(self, what: str, advice: str = "", *, line: int | None = None) -> NoReturn:
+        """Say what is wrong, in which file and line, and what to do."""
+        where = f"in tables/{self.name}.toml" + (f", line {line}" if line else "")
+        raise TableTrouble(
+            f"the table `{self.name}` cannot be read: {what}\n{where}"
+            + (f": {advice}" if advice else "")
+        )
 
-    def text(self, found: Mapping[str, object], key: str) -> str:
+    def parsed(self, data: bytes) -> Mapping[str, object]:
+        """The TOML of the file."""
+        try:
+            text = data.decode("utf-8").replace("\r\n", "\n")
+        except UnicodeDecodeError as trouble:
+            line = data.count(b"\n", 0, trouble.start) + 1
+            self.wrong("it is not UTF-8", "save the file as UTF-8", line=line)
+        self.lines = Lines(text)
+        try:
+            return tomllib.loads(text)
+        except RecursionError:
+            self.wrong("it is nested too deeply")
+        except tomllib.TOMLDecodeError as trouble:
+            said = str(trouble)
+            place = _TOML_PLACE.search(said)
+            line = text.rstrip().count("\n") + 1
+            if place:
+                said = said[: place.start()]
+                line = int(place[1] or line)
+            self.wrong(f"it is not TOML: {said[:1].lower()}{said[1:]}", line=line)
+
+    def text(self, found: Mapping[str, object], key: str, section: Section = TOP) -> str:
         """A text that must be there."""
         value = found.get(key, "")
         if not isinstance(value, str) or not value.strip():
-            self.wrong(f"`{key}` is a text that says where the values come from")
+            self.wrong(
+                f"`{key}` is a text that says where the values come from",
+                line=self.lines.key(key, section),
+            )
         return " ".join(value.split())
 
     def tables(self, found: Mapping[str, object], key: str) -> list[Mapping[str, object]]:
         """A list of tables."""
         value = found.get(key, [])
         if not isinstance(value, list) or not all(isinstance(each, dict) for each in value):
-            self.wrong(f"`{key}` is written as [[{key}]]")
+            line = self.lines.key(key) or self.lines.section((key, 1))
+            self.wrong(f"`{key}` is written as [[{key}]]", line=line)
         return value
 
-    def unit(self, text: object) -> Unit:
-        """A unit, or none for a plain number."""
+    def unit(self, found: Mapping[str, object], section: Section) -> Unit:
+        """The unit of an axis or of the value, or none for plain numbers."""
+        text, line = found.get("unit", ""), self.lines.key("unit", section)
         if not isinstance(text, str):
-            self.wrong("a unit is a text")
+            self.wrong("a unit is a text", line=line)
         if not text:
             return PLAIN
         try:
             unit = resolve(bracketed_unit(Scanner(passage_of("", f"[{text}]"))))
         except Mistake as mistake:
-            self.wrong(mistake.finding.message)
+            self.wrong(mistake.finding.message, mistake.finding.help, line=line)
         if unit.celsius:
-            self.wrong("a table is in kelvin, or in differences")
+            self.wrong("a table is in kelvin, or in differences", line=line)
         return unit
 
-    def axis(self, found: Mapping[str, object]) -> Axis:
+    def axis(self, found: Mapping[str, object], section: Section) -> Axis:
         """One axis."""
-        name, rule = self.text(found, "name"), found.get("rule", EXACT)
+        name, rule = self.text(found, "name", section), found.get("rule", EXACT)
         if rule not in RULES:
-            self.wrong(f"the rule of an axis is one of: {', '.join(RULES)}")
+            line = self.lines.key("rule", section)
+            self.wrong(f"the rule of an axis is one of: {', '.join(RULES)}", line=line)
         if found.get("text"):
             return Axis(name, None, EXACT)
-        return Axis(name, self.unit(found.get("unit", "")), str(rule))
+        return Axis(name, self.unit(found, section), str(rule))
 
-    def row(self, found: object, axes: tuple[Axis, ...], *, verified: bool) -> Row:
+    def row(self, found: object, number: int, axes: tuple[Axis, ...], *, verified: bool) -> Row:
         """One row: a place on every axis, the value, and perhaps the mark."""
-        n_axes = len(axes)
-        if not isinstance(found, list) or len(found) not in (n_axes + 1, n_axes + 2):
-            self.wrong(f"a row has {n_axes + 1} entries, this one is {found}")
+        n_axes, line = len(axes), self.lines.row(number)
+        if not isinstance(found, list):
+            # Its line is not known: only lists are counted.
+            self.wrong(f"row {number} is {_said(found)}, expected a list")
+        if len(found) not in (n_axes + 1, n_axes + 2):
+            self.wrong(
+                f"row {number} has {len(found)} entries, expected {n_axes + 1},"
+                f" or {n_axes + 2} with a mark",
+                "write a place on each axis, then the value",
+                line=line,
+            )
         *at, value = found[: n_axes + 1]
         mark = found[n_axes + 1 :]
         if mark not in ([], [UNVERIFIED]):
-            self.wrong(f'behind the value only the mark "{UNVERIFIED}" can stand, not {mark}')
-        places = tuple(self._place(each, axis) for each, axis in zip(at, axes, strict=True))
-        return Row(places, self._number(value), verified and not mark)
+            self.wrong(
+                f"{_said(mark[0])} is no mark of a row",
+                f'behind the value only "{UNVERIFIED}" can stand',
+                line=line,
+            )
+        places = tuple(self._place(each, axis, line) for each, axis in zip(at, axes, strict=True))
+        return Row(places, self._number(value, line), verified and not mark)
 
-    def _place(self, found: object, axis: Axis) -> Fraction | str:
+    def all_apart(self, rows: tuple[Row, ...]) -> None:
+        """Refuse two rows at one place."""
+        seen: dict[tuple[Fraction | str, ...], int] = {}
+        for number, row in enumerate(rows, 1):
+            first = seen.setdefault(row.at, number)
+            if first < number:
+                what = f"row {number} stands at the same place as row {first}"
+                self.wrong(what, line=self.lines.row(number))
+
+    def _place(self, found: object, axis: Axis, line: int | None) -> Fraction | str:
         if axis.unit is None:
             if not isinstance(found, str):
-                self.wrong(f"on the axis {axis.name} stand texts, not {found}")
+                self.wrong(f"on the axis {axis.name} stand texts, not {_said(found)}", line=line)
             return found
-        return self._number(found)
+        return self._number(found, line)
 
-    def _number(self, found: object) -> Fraction:
-        if isinstance(found, bool) or not isinstance(found, int | float):
-            self.wrong(f"{found} is no number")
+    def _number(self, found: object, line: int | None) -> Fraction:
+        if (
+            isinstance(found, bool)
+            or not isinstance(found, int | float)
+            or not math.isfinite(found)
+        ):
+            self.wrong(f"{_said(found)} is no number", line=line)
         return Fraction(repr(found))
+
+
+def _said(found: object) -> str:
+    """A value as it is written in TOML, or its kind."""
+    if isinstance(found, str):
+        return f'"{found}"'
+    if isinstance(found, bool):
+        return str(found).lower()
+    if isinstance(found, list | dict):
+        return "a list" if isinstance(found, list) else "a table"
+    return str(found)

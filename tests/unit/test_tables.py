@@ -1,0 +1,103 @@
+"""Table files: what is wrong with one is said with the file, the line and what to do."""
+
+import pytest
+
+from calcdoc.tables.reader import TableTrouble, read_table
+
+GOOD = """\
+title = "Creepage distances"
+edition = "IEC 60664-1"
+clause = "table F.4"
+rows = [
+    [200, "I", 1.0],
+    [250, "I", 1.25, "unverified"],
+]
+
+[value]
+unit = "mm"
+
+[[axis]]
+name = "working voltage"
+unit = "V"
+rule = "next higher"
+
+[[axis]]
+name = "material group"
+text = true
+"""
+
+
+def refused(text: str | bytes) -> str:
+    """The whole message for a table file that is refused."""
+    data = text.encode() if isinstance(text, str) else text
+    with pytest.raises(TableTrouble) as caught:
+        read_table("lin", data)
+    return str(caught.value)
+
+
+def changed(old: str, new: str) -> str:
+    """The good table with one part of it changed."""
+    assert GOOD.count(old) == 1
+    return GOOD.replace(old, new)
+
+
+def said(what: str, where: str) -> str:
+    """The message that a fault has, with what follows the file's name."""
+    return f"the table `lin` cannot be read: {what}\nin tables/lin.toml{where}"
+
+
+def test_good_table() -> None:
+    """The table the others differ from is read, with the mark of its one row."""
+    table = read_table("lin", GOOD.encode())
+    assert [row.verified for row in table.rows] == [True, False]
+
+
+@pytest.mark.parametrize(
+    ("text", "message"),
+    [
+        (changed('unit = "mm"', "unit = mm"), said("it is not TOML: invalid value", ", line 10")),
+        (changed("[250, ", "[250 "), said("it is not TOML: unclosed array", ", line 6")),
+        ("rows = [", said("it is not TOML: invalid value", ", line 1")),
+        (
+            b'title = "a"\nedition = "\xff"\n',
+            said("it is not UTF-8", ", line 2: save the file as UTF-8"),
+        ),
+        (f"a = {'[' * 5000}", said("it is nested too deeply", "")),
+    ],
+)
+def test_file_that_is_no_toml(text: str | bytes, message: str) -> None:
+    """A file that is no TOML is named, with the line where reading it ends."""
+    assert refused(text) == message
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "message"),
+    [
+        ('[250, "I", 1.25,', '[250, "I", 1.25, 3,', said(
+            "row 2 has 5 entries, expected 3, or 4 with a mark",
+            ", line 6: write a place on each axis, then the value",
+        )),
+        ('[200, "I", 1.0]', "250", said("row 1 is 250, expected a list", "")),
+        ('[250, "I"', "[250, 3", said(
+            "on the axis material group stand texts, not 3", ", line 6"
+        )),
+        ("[250,", "[true,", said("true is no number", ", line 6")),
+        ("[250,", "[inf,", said("inf is no number", ", line 6")),
+        ("[250,", "[200,", said("row 2 stands at the same place as row 1", ", line 6")),
+        ('unit = "V"', "unit = 3", said("a unit is a text", ", line 14")),
+        ('unit = "V"', 'unit = "°C"', said(
+            "a table is in kelvin, or in differences", ", line 14"
+        )),
+    ],
+)  # fmt: skip
+def test_fault_has_file_and_line(old: str, new: str, message: str) -> None:
+    """What is wrong in a row or a section is said with the file and the line."""
+    assert refused(changed(old, new)) == message
+
+
+def test_line_that_is_not_sure() -> None:
+    """A bracket in a comment opens no row, and what has no line of its own is said without one."""
+    text = changed("rows = [\n", "rows = [ # [not a row]\n").replace("[250,", "[true,")
+    assert refused(text) == said("true is no number", ", line 6")
+    inline = 'title = "a"\nedition = "b"\nclause = "c"\nrows = [[1, 2]]\naxis = [{name = 3}]\n'
+    assert refused(inline) == said("`name` is a text that says where the values come from", "")
