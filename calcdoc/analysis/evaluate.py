@@ -34,7 +34,6 @@ EQUAL: Final = 1e-12
 SLIGHTLY: Final = 1e-9
 """Relative gap between what was attained and what is proven that is no reason to doubt."""
 _DECLARED: Final = -1
-_WORST_FIRST: Final = (Outcome.FAIL, Outcome.NOT_DECIDED, Outcome.PASS)
 
 
 def evaluate_model(model: Model) -> tuple[Evaluation | None, tuple[Finding, ...]]:
@@ -224,17 +223,16 @@ class _Evaluator:
         sides: tuple[Side, ...],
         column: Mapping[int, FloatArray],
     ) -> Judgement:
-        rows = tuple(
-            _row(each, self.answers[number], column[number])
-            for each, number in zip(sides, asked, strict=True)
-        )
-        requirements = [self.answers[number].value for number in asked]
-        which = _governing(judged, rows, requirements)
-        at, side, row = asked[which], sides[which], rows[which]
-        extreme, computed = self.answers[at], column[at]
+        at = min(asked, key=lambda each: self.answers[each].value)
+        side, extreme, computed = sides[asked.index(at)], self.answers[at], column[at]
+        row = _row(side, extreme, computed)
         tolerance = EQUAL * max(abs(row.value), abs(row.limit))
         equal = abs(extreme.value) <= tolerance
         away = sorted({key for each in judged.depends_on for key in self.away[each]})
+        rows = (
+            _row(each, self.answers[number], column[number])
+            for each, number in zip(sides, asked, strict=True)
+        )
         return Judgement(
             judged, side, row.value, row.limit, row.slack,
             0.0 if equal else extreme.value, equal,
@@ -242,7 +240,7 @@ class _Evaluator:
             {**self._combination(extreme), **self._set_by(judged.statement, extreme)},
             self._named(judged, side, computed),
             extreme.proof, extreme.bound,
-            rows,
+            tuple(rows) if judged.statement.clauses.index else (),
             tuple(away),
         )  # fmt: skip
 
@@ -297,22 +295,6 @@ class _Evaluator:
         if at is None:
             return Discharged(voltage, None, {})
         return Discharged(voltage, self.answers[at].value, self._combination(self.answers[at]))
-
-
-def _governing(judged: Judged, rows: tuple[Row, ...], requirements: list[float]) -> int:
-    """The limit nearest to being broken: the worst verdict first, then the least distance.
-
-    Elements of a series have limits of their own size, so shares of the limit compare them.
-    """
-    by_share = bool(judged.statement.clauses.index) and all(
-        row.limit != 0 and not judged.typed.weight for row in rows
-    )
-
-    def distance(at: int) -> tuple[int, float]:
-        size = abs(rows[at].limit) if by_share else 1.0
-        return _WORST_FIRST.index(rows[at].outcome), requirements[at] / size
-
-    return min(range(len(rows)), key=distance)
 
 
 def _row(side: Side, extreme: Extreme, computed: FloatArray) -> Row:
