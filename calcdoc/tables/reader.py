@@ -69,13 +69,12 @@ def read_table(name: str, data: bytes) -> Table:
         reader.wrong("at most one axis is linear")
     value = found.get("value", {})
     unit = reader.unit(value, ("value", 1)) if isinstance(value, dict) else PLAIN
-    verified = found.get("verified", True)
+    verified = reader.flag(found, "verified", otherwise=True)
     rows = found.get("rows", [])
     if not isinstance(rows, list) or not 0 < len(rows) <= MOST_ROWS:
         reader.wrong(f"`rows` is a list of 1 to {MOST_ROWS} rows", line=reader.lines.key("rows"))
     read = tuple(
-        reader.row(each, number, axes, verified=bool(verified))
-        for number, each in enumerate(rows, 1)
+        reader.row(each, number, axes, verified=verified) for number, each in enumerate(rows, 1)
     )
     reader.all_apart(read)
     return Table(
@@ -135,6 +134,19 @@ class _Reader:
             )
         return " ".join(value.split())
 
+    def flag(
+        self, found: Mapping[str, object], key: str, section: Section = TOP, *, otherwise: bool
+    ) -> bool:
+        """Strictly true or false, so that no word is taken for its opposite."""
+        value = found.get(key, otherwise)
+        if not isinstance(value, bool):
+            self.wrong(
+                f"`{key}` is {_said(value)}, expected true or false",
+                f"write {key} = {str(not otherwise).lower()}",
+                line=self.lines.key(key, section),
+            )
+        return value
+
     def tables(self, found: Mapping[str, object], key: str) -> list[Mapping[str, object]]:
         """A list of tables."""
         value = found.get(key, [])
@@ -164,7 +176,7 @@ class _Reader:
         if rule not in RULES:
             line = self.lines.key("rule", section)
             self.wrong(f"the rule of an axis is one of: {', '.join(RULES)}", line=line)
-        if found.get("text"):
+        if self.flag(found, "text", section, otherwise=False):
             return Axis(name, None, EXACT)
         return Axis(name, self.unit(found, section), str(rule))
 

@@ -101,3 +101,51 @@ def test_line_that_is_not_sure() -> None:
     assert refused(text) == said("true is no number", ", line 6")
     inline = 'title = "a"\nedition = "b"\nclause = "c"\nrows = [[1, 2]]\naxis = [{name = 3}]\n'
     assert refused(inline) == said("`name` is a text that says where the values come from", "")
+
+
+@pytest.mark.parametrize(
+    ("written", "shown"),
+    [
+        ('"no"', '"no"'),
+        ('"false"', '"false"'),
+        ('"unverified"', '"unverified"'),
+        ("0", "0"),
+        ("[]", "a list"),
+        ("{}", "a table"),
+    ],
+)
+def test_mark_of_the_table_is_strict(written: str, shown: str) -> None:
+    """The mark of a table is true or false; no other value counts as either."""
+    assert refused(f"verified = {written}\n{GOOD}") == said(
+        f"`verified` is {shown}, expected true or false", ", line 1: write verified = false"
+    )
+
+
+@pytest.mark.parametrize(
+    ("mark", "shown"),
+    [
+        ('"Unverified"', '"Unverified"'),
+        ('"verified"', '"verified"'),
+        ("false", "false"),
+        ("[]", "a list"),
+    ],
+)
+def test_mark_of_a_row_is_strict(mark: str, shown: str) -> None:
+    """Behind the value of a row only "unverified" can stand."""
+    assert refused(changed('"unverified"', mark)) == said(
+        f"{shown} is no mark of a row", ', line 6: behind the value only "unverified" can stand'
+    )
+
+
+@pytest.mark.parametrize(("written", "verified"), [("true", [True, False]), ("false", [False] * 2)])
+def test_mark_of_the_table_holds_for_its_rows(written: str, verified: list[bool]) -> None:
+    """A table that is not verified has no verified row; in one that is, rows keep their marks."""
+    table = read_table("lin", f"verified = {written}\n{GOOD}".encode())
+    assert [row.verified for row in table.rows] == verified
+
+
+def test_axis_of_texts_is_said_strictly() -> None:
+    """That an axis is one of texts is said by true or false."""
+    assert refused(changed("text = true", 'text = "no"')) == said(
+        '`text` is "no", expected true or false', ", line 19: write text = true"
+    )
