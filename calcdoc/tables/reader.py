@@ -32,14 +32,16 @@ from calcdoc.problems import Mistake
 from calcdoc.tables.lines import TOP, Lines, Section
 from calcdoc.tables.table import EXACT, LINEAR, RULES, Axis, Row, Table
 from calcdoc.text.literal import bracketed_unit, resolve
+from calcdoc.text.names import nearest
 from calcdoc.text.passage import passage_of
-from calcdoc.text.scan import Scanner
+from calcdoc.text.scan import Scanner, shown
 from calcdoc.units import PLAIN, Unit
 
 UNVERIFIED: Final = "unverified"
-_KEYS: Final = frozenset(
-    {"title", "edition", "clause", "verified", "note", "value", "axis", "rows"}
-)
+_KEYS: Final = ("title", "edition", "clause", "verified", "note", "rows", "value", "axis")
+_AXIS_KEYS: Final = ("name", "unit", "rule", "text")
+_VALUE_KEYS: Final = ("unit",)
+_IN: Final = {"axis": " in [[axis]]", "value": " in [value]"}
 MOST_ROWS: Final = 5000
 _TOML_PLACE: Final = re.compile(r" \(at (?:line ([0-9]+), column [0-9]+|end of document)\)$")
 
@@ -56,9 +58,8 @@ def read_table(name: str, data: bytes) -> Table:
     """
     reader = _Reader(name)
     found = reader.parsed(data)
-    for key in found:
-        if key not in _KEYS:
-            reader.wrong(f"there is no key `{key}`", line=reader.lines.key(key))
+    reader.known(found, _KEYS)
+    reader.note(found)
     axes = tuple(
         reader.axis(each, ("axis", number))
         for number, each in enumerate(reader.tables(found, "axis"), 1)
@@ -67,8 +68,7 @@ def read_table(name: str, data: bytes) -> Table:
         reader.wrong("it has no [[axis]]")
     if sum(axis.rule == LINEAR for axis in axes) > 1:
         reader.wrong("at most one axis is linear")
-    value = found.get("value", {})
-    unit = reader.unit(value, ("value", 1)) if isinstance(value, dict) else PLAIN
+    unit = reader.value(found)
     verified = reader.flag(found, "verified", otherwise=True)
     rows = found.get("rows", [])
     if not isinstance(rows, list) or not 0 < len(rows) <= MOST_ROWS:
@@ -124,6 +124,33 @@ class _Reader:
                 line = int(place[1] or line)
             self.wrong(f"it is not TOML: {said[:1].lower()}{said[1:]}", line=line)
 
+    def known(
+        self, found: Mapping[str, object], keys: tuple[str, ...], section: Section = TOP
+    ) -> None:
+        """Refuse a key that is not on the list: it would say something nobody reads."""
+        for key in found:
+            if key not in keys:
+                near = nearest(key, keys)
+                self.wrong(
+                    f"there is no key {shown(key)}{_IN.get(section[0], '')}",
+                    f"did you mean `{near}`?" if near else f"the keys are: {', '.join(keys)}",
+                    line=self.lines.key(key, section),
+                )
+
+    def note(self, found: Mapping[str, object]) -> None:
+        """A note is for who reads the file."""
+        if not isinstance(found.get("note", ""), str):
+            self.wrong("`note` is a text", line=self.lines.key("note"))
+
+    def value(self, found: Mapping[str, object]) -> Unit:
+        """The unit of the value."""
+        value = found.get("value", {})
+        if not isinstance(value, dict):
+            line = self.lines.key("value") or self.lines.section(("value", 1))
+            self.wrong("`value` is written as [value]", line=line)
+        self.known(value, _VALUE_KEYS, ("value", 1))
+        return self.unit(value, ("value", 1))
+
     def text(self, found: Mapping[str, object], key: str, section: Section = TOP) -> str:
         """A text that must be there."""
         value = found.get(key, "")
@@ -172,13 +199,24 @@ class _Reader:
 
     def axis(self, found: Mapping[str, object], section: Section) -> Axis:
         """One axis."""
+        self.known(found, _AXIS_KEYS, section)
         name, rule = self.text(found, "name", section), found.get("rule", EXACT)
         if rule not in RULES:
+            near = nearest(rule, RULES) if isinstance(rule, str) else None
+            self.wrong(
+                f"there is no rule {_said(rule)}",
+                f'did you mean "{near}"?' if near else f"the rules are: {', '.join(RULES)}",
+                line=self.lines.key("rule", section),
+            )
+        if not self.flag(found, "text", section, otherwise=False):
+            return Axis(name, self.unit(found, section), str(rule))
+        if "unit" in found:
+            line = self.lines.key("unit", section)
+            self.wrong("an axis of texts has no unit", "remove `unit`", line=line)
+        if rule != EXACT:
             line = self.lines.key("rule", section)
-            self.wrong(f"the rule of an axis is one of: {', '.join(RULES)}", line=line)
-        if self.flag(found, "text", section, otherwise=False):
-            return Axis(name, None, EXACT)
-        return Axis(name, self.unit(found, section), str(rule))
+            self.wrong("an axis of texts is exact", "remove `rule`", line=line)
+        return Axis(name, None, EXACT)
 
     def row(self, found: object, number: int, axes: tuple[Axis, ...], *, verified: bool) -> Row:
         """One row: a place on every axis, the value, and perhaps the mark."""
@@ -233,7 +271,7 @@ class _Reader:
 def _said(found: object) -> str:
     """A value as it is written in TOML, or its kind."""
     if isinstance(found, str):
-        return f'"{found}"'
+        return shown(f'"{found}"')[1:-1]
     if isinstance(found, bool):
         return str(found).lower()
     if isinstance(found, list | dict):

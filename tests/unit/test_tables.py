@@ -149,3 +149,65 @@ def test_axis_of_texts_is_said_strictly() -> None:
     assert refused(changed("text = true", 'text = "no"')) == said(
         '`text` is "no", expected true or false', ", line 19: write text = true"
     )
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "message"),
+    [
+        ("rows =", "raws =", said("there is no key `raws`", ", line 4: did you mean `rows`?")),
+        ("clause =", "page =", said(
+            "there is no key `page`",
+            ", line 3: the keys are: title, edition, clause, verified, note, rows, value, axis",
+        )),
+        ('unit = "mm"', 'unti = "mm"', said(
+            "there is no key `unti` in [value]", ", line 10: did you mean `unit`?"
+        )),
+        ('unit = "V"', 'unti = "V"', said(
+            "there is no key `unti` in [[axis]]", ", line 14: did you mean `unit`?"
+        )),
+        ("rule =", "rul =", said(
+            "there is no key `rul` in [[axis]]", ", line 15: did you mean `rule`?"
+        )),
+        ("rule =", "between =", said(
+            "there is no key `between` in [[axis]]",
+            ", line 15: the keys are: name, unit, rule, text",
+        )),
+        ("text = true", "txt = true", said(
+            "there is no key `txt` in [[axis]]", ", line 19: did you mean `text`?"
+        )),
+    ],
+)  # fmt: skip
+def test_unknown_key(old: str, new: str, message: str) -> None:
+    """A key that means nothing is refused wherever it stands, with the key that is like it."""
+    assert refused(changed(old, new)) == message
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "message"),
+    [
+        ('"next higher"', '"next-higher"', said(
+            'there is no rule "next-higher"', ', line 15: did you mean "next higher"?'
+        )),
+        ('"next higher"', "3", said(
+            "there is no rule 3", ", line 15: the rules are: exact, next higher, linear"
+        )),
+        ("text = true", 'text = true\nunit = "V"', said(
+            "an axis of texts has no unit", ", line 20: remove `unit`"
+        )),
+        ("text = true", 'text = true\nrule = "linear"', said(
+            "an axis of texts is exact", ", line 20: remove `rule`"
+        )),
+        ("[value]", "[[value]]", said("`value` is written as [value]", ", line 9")),
+        ("rows =", "note = 3\nrows =", said("`note` is a text", ", line 4")),
+    ],
+)  # fmt: skip
+def test_key_that_would_be_ignored(old: str, new: str, message: str) -> None:
+    """A known key that could not be followed is refused, not ignored."""
+    assert refused(changed(old, new)) == message
+
+
+def test_unit_that_is_unknown() -> None:
+    """A unit that nobody knows is refused with the help the units give in a design."""
+    assert refused(changed('unit = "mm"', 'unit = "mmm"')) == said(
+        "`mmm` is not a unit", ", line 10: the nearest unit is mm"
+    )
