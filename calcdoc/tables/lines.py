@@ -5,6 +5,7 @@ Only a place that is found once is told; for anything else there is no line rath
 
 import re
 from collections.abc import Iterator
+from functools import cached_property
 from typing import Final
 
 TOP: Final = ("", 1)
@@ -36,19 +37,25 @@ class Lines:
 
     def row(self, number: int) -> int | None:
         """The line where a row begins, counted from 1."""
+        return self._rows[number - 1] if number <= len(self._rows) else None
+
+    @cached_property
+    def _rows(self) -> list[int]:
+        """The line of every row, found once for all of them."""
         opened = list(_ROWS.finditer(self.text))
         if len(opened) != 1:
-            return None
-        depth = count = 0
+            return []
+        found: list[int] = []
+        depth, at, line = 0, 0, 1
         for token in _TOKEN.finditer(self.text, opened[0].end()):
             depth += {"[": 1, "]": -1}.get(token[0], 0)
+            if token[0] == "[" and depth == _IN_ROW:
+                line += self.text.count("\n", at, token.start())
+                at = token.start()
+                found.append(line)
             if depth == 0 and token[0] == "]":
                 break
-            if token[0] == "[" and depth == _IN_ROW:
-                count += 1
-                if count == number:
-                    return self.text.count("\n", 0, token.start()) + 1
-        return None
+        return found
 
     def _lines(self) -> Iterator[tuple[int, Section, str]]:
         """Every line with its number and the section it stands in."""

@@ -1,9 +1,10 @@
-"""Tables from TOML: title, edition, clause, axes with units, rows, and marks.
+"""Tables from TOML: title, edition, clause, rows with marks, and the axes with units.
 
 title = "Creepage distances"
 edition = "IEC 60664-1"
 clause = "table F.4"
 verified = false        # or a mark on single rows
+rows = [[50, "I", 0.60], [50, "II", 0.85, "unverified"]]
 
 [value]
 unit = "mm"
@@ -17,7 +18,7 @@ rule = "next higher"    # exact, next higher, linear
 name = "material group"
 text = true
 
-rows = [[50, "I", 0.60], [50, "II", 0.85, "unverified"]]
+What belongs to the table stands before the first section: TOML gives what follows to the section.
 """
 
 import math
@@ -38,7 +39,9 @@ from calcdoc.text.scan import Scanner, shown
 from calcdoc.units import PLAIN, Unit
 
 UNVERIFIED: Final = "unverified"
-_KEYS: Final = ("title", "edition", "clause", "verified", "note", "rows", "value", "axis")
+_BEFORE: Final = ("title", "edition", "clause", "verified", "note", "rows")
+"""Keys that belong to the table, which TOML gives to the section they stand in."""
+_KEYS: Final = (*_BEFORE, "value", "axis")
 _AXIS_KEYS: Final = ("name", "unit", "rule", "text")
 _VALUE_KEYS: Final = ("unit",)
 _IN: Final = {"axis": " in [[axis]]", "value": " in [value]"}
@@ -65,12 +68,15 @@ def read_table(name: str, data: bytes) -> Table:
         for number, each in enumerate(reader.tables(found, "axis"), 1)
     )
     if not axes:
-        reader.wrong("it has no [[axis]]")
+        reader.wrong("[[axis]] is missing", "an axis is what a value is looked up by")
     if sum(axis.rule == LINEAR for axis in axes) > 1:
         reader.wrong("at most one axis is linear")
     unit = reader.value(found)
+    title, edition, clause = (reader.text(found, key) for key in ("title", "edition", "clause"))
     verified = reader.flag(found, "verified", otherwise=True)
-    rows = found.get("rows", [])
+    if "rows" not in found:
+        reader.wrong("`rows` is missing", "write rows = [[place, value], ...] before [[axis]]")
+    rows = found["rows"]
     if not isinstance(rows, list) or not 0 < len(rows) <= MOST_ROWS:
         reader.wrong(f"`rows` is a list of 1 to {MOST_ROWS} rows", line=reader.lines.key("rows"))
     read = tuple(
@@ -79,9 +85,9 @@ def read_table(name: str, data: bytes) -> Table:
     reader.all_apart(read)
     return Table(
         name,
-        reader.text(found, "title"),
-        reader.text(found, "edition"),
-        reader.text(found, "clause"),
+        title,
+        edition,
+        clause,
         axes,
         unit,
         read,
@@ -129,6 +135,11 @@ class _Reader:
     ) -> None:
         """Refuse a key that is not on the list: it would say something nobody reads."""
         for key in found:
+            if section != TOP and key in _BEFORE:
+                first = {"axis": "the first [[axis]]", "value": "[value]"}[section[0]]
+                what = f"`{key}` must stand before {first}"
+                self.wrong(what, f"move it to the top: it is{_IN[section[0]]} now",
+                           line=self.lines.key(key, section))  # fmt: skip
             if key not in keys:
                 near = nearest(key, keys)
                 self.wrong(
@@ -153,12 +164,16 @@ class _Reader:
 
     def text(self, found: Mapping[str, object], key: str, section: Section = TOP) -> str:
         """A text that must be there."""
-        value = found.get(key, "")
-        if not isinstance(value, str) or not value.strip():
-            self.wrong(
-                f"`{key}` is a text that says where the values come from",
-                line=self.lines.key(key, section),
-            )
+        if key not in found:
+            line = self.lines.section(section) if section != TOP else None
+            self.wrong(f"`{key}` is missing{_IN.get(section[0], '')}", f'write {key} = "..."',
+                       line=line)  # fmt: skip
+        value = found[key]
+        line = self.lines.key(key, section)
+        if not isinstance(value, str):
+            self.wrong(f"`{key}` is {_said(value)}, expected a text", line=line)
+        if not value.strip():
+            self.wrong(f"`{key}` is empty", line=line)
         return " ".join(value.split())
 
     def flag(

@@ -2,6 +2,7 @@
 
 import pytest
 
+from calcdoc.tables import reader
 from calcdoc.tables.reader import TableTrouble, read_table
 
 GOOD = """\
@@ -100,7 +101,7 @@ def test_line_that_is_not_sure() -> None:
     text = changed("rows = [\n", "rows = [ # [not a row]\n").replace("[250,", "[true,")
     assert refused(text) == said("true is no number", ", line 6")
     inline = 'title = "a"\nedition = "b"\nclause = "c"\nrows = [[1, 2]]\naxis = [{name = 3}]\n'
-    assert refused(inline) == said("`name` is a text that says where the values come from", "")
+    assert refused(inline) == said("`name` is 3, expected a text", "")
 
 
 @pytest.mark.parametrize(
@@ -211,3 +212,68 @@ def test_unit_that_is_unknown() -> None:
     assert refused(changed('unit = "mm"', 'unit = "mmm"')) == said(
         "`mmm` is not a unit", ", line 10: the nearest unit is mm"
     )
+
+
+TITLE, EDITION, CLAUSE, *_ = GOOD.splitlines(keepends=True)
+ROWS = GOOD[GOOD.index("rows") : GOOD.index("[value]")]
+
+
+@pytest.mark.parametrize(
+    ("part", "key", "line"), [(ROWS, "rows", 15), (EDITION, "edition", 19), (CLAUSE, "clause", 19)]
+)
+def test_key_of_the_table_behind_an_axis(part: str, key: str, line: int) -> None:
+    """What belongs to the table and stands behind an axis is said to be in the wrong place."""
+    assert refused(changed(part, "") + part) == said(
+        f"`{key}` must stand before the first [[axis]]",
+        f", line {line}: move it to the top: it is in [[axis]] now",
+    )
+
+
+def test_rows_behind_the_value() -> None:
+    """Rows that stand in the section of the value are said to be in the wrong place."""
+    text = changed(ROWS, "").replace('unit = "mm"\n', f'unit = "mm"\n{ROWS}')
+    assert refused(text) == said(
+        "`rows` must stand before [value]",
+        ", line 6: move it to the top: it is in [value] now",
+    )
+
+
+@pytest.mark.parametrize(
+    ("part", "what", "where"),
+    [
+        (TITLE, "`title` is missing", ': write title = "..."'),
+        (EDITION, "`edition` is missing", ': write edition = "..."'),
+        (CLAUSE, "`clause` is missing", ': write clause = "..."'),
+        (ROWS, "`rows` is missing", ": write rows = [[place, value], ...] before [[axis]]"),
+        (
+            GOOD[GOOD.index("[[axis]]") :],
+            "[[axis]] is missing",
+            ": an axis is what a value is looked up by",
+        ),
+        (
+            'name = "material group"\n',
+            "`name` is missing in [[axis]]",
+            ', line 17: write name = "..."',
+        ),
+    ],
+)
+def test_missing(part: str, what: str, where: str) -> None:
+    """What a table needs and does not have is said to be missing."""
+    assert refused(changed(part, "")) == said(what, where)
+
+
+@pytest.mark.parametrize(
+    ("written", "what"),
+    [("3", "`edition` is 3, expected a text"), ('" "', "`edition` is empty")],
+)
+def test_source_that_is_no_text(written: str, what: str) -> None:
+    """Title, edition and clause are texts that say something."""
+    assert refused(changed('"IEC 60664-1"', written)) == said(what, ", line 2")
+
+
+def test_order_shown_in_the_reader() -> None:
+    """The table shown in the docstring of the reader is read as it stands there."""
+    assert reader.__doc__ is not None
+    _, *parts, _ = reader.__doc__.split("\n\n")
+    table = read_table("shown", "\n\n".join(parts).encode())
+    assert [row.verified for row in table.rows] == [False, False]
