@@ -13,7 +13,7 @@ from calcdoc.analysis.tape import Op, Tape
 from calcdoc.analysis.working import Working
 from calcdoc.frozen import Frozen
 from calcdoc.model.model import Compared, Discharge, Judged, Model, Root
-from calcdoc.text.nodes import Binary, Group, Negate, Node
+from calcdoc.text.nodes import Binary, Group, Name, Negate, Node
 
 SAFE_VOLTAGE: Final = Fraction(60)
 """Volts a stored charge may keep: 60 V d.c., the residual voltage of IEC 60204-1 (6.2.4)."""
@@ -41,6 +41,8 @@ class Check(Frozen, frozen=True):
     second: int
     difference: int
     """First less second; as a share of the second where a share is allowed."""
+    share: Binary | None
+    """That share as a formula: the origin of its instruction; the author does not write it."""
 
 
 class Sides(Frozen, frozen=True):
@@ -202,6 +204,7 @@ def _side(  # noqa: PLR0913  (a comparison and where it stands)
     value_at, limit_at = working.node(value), working.node(limit)
     pair = (limit_at, value_at) if relation[0] == "<" else (value_at, limit_at)
     slack = working.builder.add(Op.SUB, *pair)
+    working.origins.setdefault(slack, value)
     requirement = _less_margin(working, judged, slack, limit_at)
     return Side(value_at, limit_at, requirement, relation, value, limit, element)
 
@@ -214,7 +217,10 @@ def _less_margin(working: Working, judged: Judged, slack: int, limit: int) -> in
     asked = working.constant(margin.value.nominal * margin.value.unit.factor)
     if margin.is_share:
         asked = add(Op.MUL, asked, add(Op.ABS, limit))
-    return add(Op.SUB, slack, asked)
+    less = add(Op.SUB, slack, asked)
+    for at in (asked, less):
+        working.origins.setdefault(at, working.origins[slack])
+    return less
 
 
 def _turned(operator: str) -> str:
@@ -227,10 +233,15 @@ def _crosscheck(working: Working, compared: Compared) -> Check:
     working.owner = statement.id.key
     first, second = working.node(statement.first), working.node(statement.second)
     difference = working.builder.add(Op.SUB, first, second)
-    if statement.allowed:
-        size = working.builder.add(Op.ABS, second)
-        difference = working.builder.add(Op.DIV, difference, size)
-    return Check(first, second, difference)
+    working.origins.setdefault(difference, statement.first)
+    if statement.allowed is None:
+        return Check(first, second, difference, None)
+    size = working.builder.add(Op.ABS, second)
+    difference = working.builder.add(Op.DIV, difference, size)
+    span = statement.first.span.to(statement.second.span)
+    share = Binary("/", statement.first, statement.second, span, span)
+    working.origins.setdefault(difference, share)
+    return Check(first, second, difference, share)
 
 
 def _discharge(working: Working, discharge: Discharge) -> int | None:
@@ -241,4 +252,8 @@ def _discharge(working: Working, discharge: Discharge) -> int | None:
     safe = working.constant(SAFE_VOLTAGE)
     start = add(Op.MAX, add(Op.ABS, variables[discharge.voltage]), safe)
     constant = add(Op.MUL, variables[discharge.resistance], variables[discharge.capacitance])
-    return add(Op.MUL, constant, add(Op.LN, add(Op.DIV, start, safe)))
+    time = add(Op.MUL, constant, add(Op.LN, add(Op.DIV, start, safe)))
+    store = discharge.statement.symbols[0]
+    for at in (constant, time):
+        working.origins.setdefault(at, Name(store.name, store.span))
+    return time

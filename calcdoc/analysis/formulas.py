@@ -52,8 +52,12 @@ class Formulas:
 
     def node(self, node: Node) -> int:
         """The instruction of an expression."""
+        begin = len(self.builder)
         at = self._node(node)
         self.origins.setdefault(at, node)
+        if isinstance(node, Call):  # what min, max, sum and rss are folded from
+            for step in range(begin, at):
+                self.origins.setdefault(step, node)
         return at
 
     def _node(self, node: Node) -> int:

@@ -107,6 +107,10 @@ class TapeBuilder:
         index = {instruction: at for at, instruction in enumerate(tape.instructions)}
         return cls(tape.n_inputs, list(tape.instructions), index)
 
+    def __len__(self) -> int:
+        """How many instructions there are."""
+        return len(self._instructions)
+
     def add(self, op: Op, *args: int, value: Fraction | float | Implicit | None = None) -> int:
         """Index of the instruction, new or already there."""
         if op is Op.MUL and args[0] == args[1]:

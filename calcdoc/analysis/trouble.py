@@ -7,18 +7,19 @@ import numpy as np
 
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.compile import Compiled
-from calcdoc.analysis.domains import JUMP, NO_CHANGE, SEVERAL
+from calcdoc.analysis.domains import JUMP, NO_CHANGE, POLE, SEVERAL
 from calcdoc.analysis.hazards import Hazard, hazards
 from calcdoc.analysis.points import FloatArray
 from calcdoc.model.model import Model, Variable
 from calcdoc.problems import Finding, error
-from calcdoc.text.nodes import Binary, Call, Group, Node
+from calcdoc.text.nodes import Binary, Call, Group, Negate, Node
 from calcdoc.text.scan import shown
 from calcdoc.text.unparse import unparse
 from calcdoc.units import Dimension, Unit
 from calcdoc.units.choose import choose_unit
 
 _GUARD: Final = "narrow the band, or leave the case out with if(condition, a, b)"
+_SHARE: Final = "{piece} becomes zero {where}, and nothing has a share of zero"
 _CODES: Final[Mapping[str, tuple[str, str, str]]] = {
     "division by zero": (
         "division-by-zero", "the divisor {piece} becomes zero {where}", _GUARD),
@@ -66,6 +67,7 @@ class _Teller:
 
     def __init__(self, compiled: Compiled, model: Model) -> None:
         self.compiled, self.model = compiled, model
+        self.shares = [each.share for each in compiled.checks if each.share]
         self.of_root = {at: key for key, at in compiled.roots.items()}
 
     def finding(self, hazard: Hazard, *, at_nominal: bool) -> Finding:
@@ -75,7 +77,10 @@ class _Teller:
         if hazard.kind not in _CODES:
             return self._root(hazard, where, label)
         code, message, advice = _CODES[hazard.kind]
-        piece = _piece(self._origin(hazard), hazard.kind)
+        origin = self._origin(hazard)
+        piece = _piece(origin, hazard.kind)
+        if hazard.kind == POLE and any(origin is share for share in self.shares):
+            message, advice = _SHARE, _share_advice(origin)
         if hazard.inner:
             where = f"between the ends of the bracket, {where}"
         return error(
@@ -152,6 +157,16 @@ class _Teller:
             if key in variables and point[column] != nominal[column]
         ]
         return ", ".join(moved[:6]) or "the nominal values"
+
+
+def _share_advice(share: Node) -> str:
+    """How to compare with a side that may be zero."""
+    assert isinstance(share, Binary)
+    right = share.right
+    is_sum = isinstance(right, Negate) or (isinstance(right, Binary) and right.op in "+-")
+    second = f"({unparse(right)})" if is_sum else unparse(right)
+    difference = f"{unparse(share.left)} - {second}"
+    return f"limit abs({difference}) in a criterion, as a value with its unit instead of a share"
 
 
 def _piece(node: Node, kind: str) -> Node:
