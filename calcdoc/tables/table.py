@@ -1,5 +1,6 @@
 """A table and how it is read: which row an argument means, or all rows a range touches."""
 
+from collections.abc import Iterable
 from fractions import Fraction
 from itertools import pairwise
 from typing import Final
@@ -11,6 +12,9 @@ EXACT: Final = "exact"
 NEXT_HIGHER: Final = "next higher"
 LINEAR: Final = "linear"
 RULES: Final = (EXACT, NEXT_HIGHER, LINEAR)
+_POINT: Final = Fraction(1, 10**9)
+"""Share of an axis up to which a range is a point that rounding has widened."""
+_MOST_SHOWN: Final = 8
 
 
 class Axis(Frozen, frozen=True):
@@ -94,14 +98,14 @@ def _corners(table: Table, arguments: tuple[Range | str, ...]) -> list[tuple[Fra
 
 def _stops(table: Table, number: int, axis: Axis, argument: Range) -> list[Fraction | str]:
     """The ends of a range and every row of the axis that lies in it."""
-    low, _, high = argument
-    inside = {row.at[number] for row in table.rows}
-    between = sorted(at for at in inside if isinstance(at, Fraction) and low < at < high)
-    if axis.rule == EXACT and low != high:
-        # A range on an exact axis may stand on any of its rows.
-        return [
-            at for at in sorted(inside, key=str) if isinstance(at, Fraction) and low <= at <= high
-        ]
+    low, nominal, high = argument
+    rows = {each for row in table.rows if isinstance(each := row.at[number], Fraction)}
+    if axis.rule == EXACT:
+        # Between its rows an exact axis says nothing, so only a point can stand on it.
+        if high - low > _POINT * max(abs(each) for each in (*rows, low, high)):
+            raise OutsideAxis(number, _no_band(axis, rows, low, high))
+        return [nominal]
+    between = sorted(at for at in rows if low < at < high)
     return [*dict.fromkeys([low, *between, high])]
 
 
@@ -147,11 +151,28 @@ def _between(
 
 
 def _outside(rows: tuple[Row, ...], number: int, axis: Axis, at: Fraction | str) -> str:
-    shown = [each if isinstance(each, str) else f"{float(each):.6g}" for each in
-             dict.fromkeys(row.at[number] for row in rows)]  # fmt: skip
-    unit = f" {axis.unit.text}" if axis.unit and axis.unit.words else ""
     if isinstance(at, str) or axis.rule == EXACT:
-        listed = ", ".join(shown[:8]) + (", ..." if len(shown) > 8 else "")  # noqa: PLR2004
-        return f"{axis.name} has the rows {listed}{unit}"
+        return f"{axis.name} has the rows {_listed(axis, (row.at[number] for row in rows))}"
     numbers = sorted(Fraction(each.at[number]) for each in rows)
-    return f"{axis.name} goes from {float(numbers[0]):.6g} to {float(numbers[-1]):.6g}{unit}"
+    return f"{axis.name} goes from {_shown(numbers[0])} to {_shown(numbers[-1])}{_unit(axis)}"
+
+
+def _no_band(axis: Axis, rows: Iterable[Fraction], low: Fraction, high: Fraction) -> str:
+    return (
+        f"{axis.name} is exact: it takes one of the rows {_listed(axis, sorted(rows))}, not all"
+        f" from {_shown(low)} to {_shown(high)}{_unit(axis)}"
+    )
+
+
+def _listed(axis: Axis, places: Iterable[Fraction | str]) -> str:
+    shown = [_shown(each) for each in dict.fromkeys(places)]
+    more = ", ..." if len(shown) > _MOST_SHOWN else ""
+    return ", ".join(shown[:_MOST_SHOWN]) + more + _unit(axis)
+
+
+def _shown(place: Fraction | str) -> str:
+    return place if isinstance(place, str) else f"{float(place):.6g}"
+
+
+def _unit(axis: Axis) -> str:
+    return f" {axis.unit.text}" if axis.unit and axis.unit.words else ""

@@ -1,9 +1,13 @@
 """Table files: what is wrong with one is said with the file, the line and what to do."""
 
+from pathlib import Path
+
 import pytest
 
+from calcdoc import pipeline
 from calcdoc.tables import reader
 from calcdoc.tables.reader import TableTrouble, read_table
+from tests.helpers.checking import TITLE as BLOCK
 
 GOOD = """\
 title = "Creepage distances"
@@ -277,3 +281,88 @@ def test_order_shown_in_the_reader() -> None:
     _, *parts, _ = reader.__doc__.split("\n\n")
     table = read_table("shown", "\n\n".join(parts).encode())
     assert [row.verified for row in table.rows] == [False, False]
+
+
+EXACT = """\
+title = "Loss"
+edition = "issue 2"
+clause = "table 1"
+rows = [[0, 1.0], [10, 2.0], [20, 4.0]]
+
+[value]
+unit = "W"
+
+[[axis]]
+name = "supply"
+unit = "V"
+"""
+
+
+def evaluated(folder: Path, given: str, line: str, table: str = EXACT) -> pipeline.Evaluated:
+    """A design of one input and one derived line, with the table `lin` beside it."""
+    (folder / "tables").mkdir()
+    (folder / "tables" / "lin.toml").write_text(table)
+    path = folder / "lamp.md"
+    path.write_text(f"{BLOCK}\n```inputs\n{given}\n```\n```derive\n{line}\n```\n")
+    return pipeline.evaluate(pipeline.read(path))
+
+
+def problems(found: pipeline.Evaluated) -> str:
+    """All its findings as they are printed, without the folder."""
+    return found.problems().replace(str(Path(found.design.source.path).parent) + "/", "")
+
+
+@pytest.mark.parametrize(
+    ("given", "low", "high"),
+    [
+        ("V = 10 V ± 10 V", "0", "20"),
+        ("V = 10 V ± 1 %", "9.9", "10.1"),
+        ("V = 11 .. 12 .. 13 V", "11", "13"),
+    ],
+)
+def test_band_on_an_exact_axis(tmp_path: Path, given: str, low: str, high: str) -> None:
+    """A band on an exact axis is refused, also when its ends stand on rows."""
+    assert problems(evaluated(tmp_path, given, 'P = lookup("lin", V)')) == (
+        "lamp.md:11:19: error[outside-axis]: `V` lies outside of the table `lin`\n"
+        '   |\n11 | P = lookup("lin", V)\n   |                   ^\n'
+        "help: supply is exact: it takes one of the rows 0, 10, 20 V,"
+        f" not all from {low} to {high} V"
+    )
+
+
+@pytest.mark.parametrize(
+    ("given", "argument", "value"),
+    [
+        ("V = 10 V", "V", 2.0),
+        ("V = 10 .. 10 .. 10 V", "V", 2.0),
+        ("V = 10 V", "sqrt(V)^2*(1/3 + 1/3 + 1/3)", 2.0),
+        ("V = 10 V", "2*V", 4.0),
+        ("V = 10 V", "0.1*V - 1 V", 1.0),
+    ],
+)
+def test_point_on_an_exact_axis(tmp_path: Path, given: str, argument: str, value: float) -> None:
+    """A point on a row of an exact axis is looked up, also one that is computed."""
+    found = evaluated(tmp_path, given, f'P = lookup("lin", {argument})')
+    assert problems(found) == ""
+    assert found.evaluation is not None
+    (looked,) = found.evaluation.looked
+    assert [looked.found.least, looked.found.nominal, looked.found.greatest] == [value] * 3
+
+
+def test_point_beside_the_rows(tmp_path: Path) -> None:
+    """A point between the rows of an exact axis is refused with the rows there are."""
+    assert problems(evaluated(tmp_path, "V = 10 V", 'P = lookup("lin", 1.5*V)')) == (
+        "lamp.md:11:19: error[outside-axis]: `1.5*V` lies outside of the table `lin`\n"
+        '   |\n11 | P = lookup("lin", 1.5*V)\n   |                   ^^^^^\n'
+        "help: supply has the rows 0, 10, 20 V"
+    )
+
+
+def test_fault_stands_at_the_look_up(tmp_path: Path) -> None:
+    """A fault of the table's file stands at the look-up, with the file and the line."""
+    table = EXACT.replace("unit =", "unti =", 1)
+    assert problems(evaluated(tmp_path, "V = 10 V", 'P = lookup("lin", V)', table)) == (
+        "lamp.md:11:12: error[table]: the table `lin` cannot be read: there is no key `unti` in"
+        " [value]\nin tables/lin.toml, line 7: did you mean `unit`?\n"
+        '   |\n11 | P = lookup("lin", V)\n   |            ^^^^^'
+    )
