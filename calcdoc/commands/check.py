@@ -1,30 +1,23 @@
 """``calcdoc check``: evaluate and print the verdict table and every problem."""
 
+from typing import Final
+
 import click
 
+from calcdoc.commands.checked import Checked, check_file
 from calcdoc.commands.table import verdict_table
-from calcdoc.errors import CalcdocError
-from calcdoc.frozen import Frozen
-from calcdoc.pipeline import Evaluated, evaluate, read, record
-from calcdoc.problems.views import as_data, in_order
-from calcdoc.records.record import SCHEMA, Record
+from calcdoc.problems.views import as_data
+from calcdoc.records.record import SCHEMA
 from calcdoc.records.store import to_json
 
-PASSES, FAILS, TEXT_HAS_ERRORS, WORLD_IS_WRONG = 0, 1, 2, 3
-
-
-class Checked(Frozen, frozen=True):
-    """One file: what came out of it, and what to say about it."""
-
-    status: int
-    evaluated: Evaluated | None
-    record: Record | None
-    trouble: str = ""
+FORMATS: Final = ("text", "json", "junit", "sarif")
+MANY: Final = 3
+"""From so many files on, processes are started and work side by side."""
 
 
 @click.command()
 @click.argument("files", nargs=-1, required=True, metavar="FILE...")
-@click.option("--format", "form", type=click.Choice(["text", "json"]), default="text",
+@click.option("--format", "form", type=click.Choice(FORMATS), default="text",
               help="What to print on standard output.")  # fmt: skip
 def check(files: tuple[str, ...], form: str) -> int:
     """Evaluate designs and print verdicts and problems.
@@ -32,62 +25,60 @@ def check(files: tuple[str, ...], form: str) -> int:
     Exit status 0 when everything passes, 1 when a criterion fails or is not decided, 2 when a text
     has errors, 3 when a file cannot be read.
     """
-    checked = [check_file(name) for name in files]
+    checked = _all_checked(files)
     for each in checked:
         _say_problems(each)
-    if form == "json":
-        _print_json(checked)
-    else:
-        _print_text(checked)
+    click.echo(_shown(checked, form), nl=False)
     return max(each.status for each in checked)
 
 
-def check_file(name: str) -> Checked:
-    """Read and evaluate one file; trouble with the file is said, not raised."""
-    try:
-        evaluated = evaluate(read(name))
-    except CalcdocError as trouble:
-        return Checked(WORLD_IS_WRONG, None, None, str(trouble))
-    if not evaluated.ok:
-        return Checked(TEXT_HAS_ERRORS, evaluated, None)
-    made = record(evaluated)
-    return Checked(status_of(made), evaluated, made)
+def _all_checked(files: tuple[str, ...]) -> list[Checked]:
+    if len(files) < MANY:
+        return [check_file(name) for name in files]
+    from calcdoc.commands.many import check_many  # noqa: PLC0415  (a quick check needs none of it)
 
-
-def status_of(made: Record) -> int:
-    """0 when every criterion passes, or is not for calculation, and cross-checks agree; else 1."""
-    differs = any(not each.agrees for each in made.crosschecks)
-    return FAILS if made.verdict.failed or made.verdict.undecided or differs else PASSES
+    return check_many(files)
 
 
 def _say_problems(checked: Checked) -> None:
     if checked.trouble:
         click.echo(f"calcdoc: {checked.trouble}", err=True)
-    if checked.evaluated and checked.evaluated.findings:
-        click.echo(checked.evaluated.problems(), err=True)
+    if checked.problems:
+        click.echo(checked.problems, err=True)
 
 
-def _print_text(checked: list[Checked]) -> None:
-    shown = [verdict_table(each.record) for each in checked if each.record]
-    if shown:
-        click.echo("\n\n".join(shown))
+def _shown(checked: list[Checked], form: str) -> str | bytes:
+    """What goes to standard output; XML names its encoding, so it goes as bytes."""
+    if form == "json":
+        return _json(checked)
+    if form == "junit":
+        from calcdoc.commands.junit import junit  # noqa: PLC0415  (loads the XML library)
+
+        return junit(checked)
+    if form == "sarif":
+        from calcdoc.commands.sarif import sarif  # noqa: PLC0415  (only when asked for)
+
+        return sarif(checked)
+    tables = [verdict_table(each.record) for each in checked if each.record]
+    return "\n\n".join(tables) + "\n" if tables else ""
 
 
-def _print_json(checked: list[Checked]) -> None:
+def _json(checked: list[Checked]) -> str:
     """One object, or a list for several files; a file that cannot be read has none."""
-    objects = [_object(each) for each in checked if each.evaluated]
-    if objects:
-        click.echo(to_json(objects[0] if len(checked) == 1 else objects).decode(), nl=False)
+    objects = [_object(each) for each in checked if each.source]
+    if not objects:
+        return ""
+    return to_json(objects[0] if len(checked) == 1 else objects).decode()
 
 
 def _object(checked: Checked) -> object:
     if checked.record is not None:
         return checked.record
-    assert checked.evaluated is not None
-    source = checked.evaluated.design.source
+    source = checked.source
+    assert source is not None
     sources = {source.path: source}
     return {
         "schema": SCHEMA,
         "source": {"name": source.path.rpartition("/")[2], "sha256": source.sha256, "files": []},
-        "problems": [as_data(each, sources) for each in in_order(checked.evaluated.findings)],
+        "problems": [as_data(each, sources) for each in checked.findings],
     }

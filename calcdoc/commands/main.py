@@ -47,18 +47,8 @@ def run(arguments: Sequence[str]) -> int:
         sys.stderr.close()
         return 0
     except Exception as trouble:  # noqa: BLE001  (a fault of ours must not look like one of theirs)
-        click.echo(_our_fault(trouble), err=True)
+        from calcdoc.commands.faults import our_fault  # noqa: PLC0415  (seldom needed)
+
+        click.echo(f"calcdoc: {our_fault(trouble)}", err=True)
         return WORLD_IS_WRONG
     return int(status or 0)
-
-
-def _our_fault(trouble: Exception) -> str:
-    from traceback import extract_tb  # noqa: PLC0415
-
-    at = extract_tb(trouble.__traceback__)[-1]
-    place = f"{at.filename.rpartition('calcdoc')[2].lstrip('/')}:{at.lineno}"
-    return (
-        f"calcdoc: internal-error in {place}: {type(trouble).__name__}: {trouble}\n"
-        f"This is a fault of calcdoc {__version__}, not of your text. Please send us this"
-        " line with the text that led to it."
-    )

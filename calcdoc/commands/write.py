@@ -2,7 +2,7 @@
 
 import click
 
-from calcdoc.commands.check import TEXT_HAS_ERRORS, WORLD_IS_WRONG
+from calcdoc.commands.checked import TEXT_HAS_ERRORS, WORLD_IS_WRONG
 from calcdoc.errors import CalcdocError
 from calcdoc.pipeline import FORMS, Evaluated, evaluate, file_stem, read, record
 from calcdoc.pipeline import write as write_record

@@ -1,0 +1,75 @@
+"""One file checked: everything that is said about it, in a form that goes between processes."""
+
+from collections.abc import Mapping
+
+from calcdoc.errors import CalcdocError
+from calcdoc.frozen import Frozen
+from calcdoc.pipeline import Evaluated, evaluate, read, record
+from calcdoc.problems import Finding
+from calcdoc.records.record import Record
+from calcdoc.source import SourceFile, Span
+from calcdoc.text.statements import Uncalculated
+
+PASSES, FAILS, TEXT_HAS_ERRORS, WORLD_IS_WRONG = 0, 1, 2, 3
+
+
+class Checked(Frozen, frozen=True):
+    """One file: what came out of it, and what to say about it."""
+
+    name: str
+    """As the user named it."""
+    status: int
+    trouble: str = ""
+    """Why it could not be read or computed; then there is nothing else."""
+    source: SourceFile | None = None
+    findings: tuple[Finding, ...] = ()
+    """In the order of the text."""
+    problems: str = ""
+    """The findings in full."""
+    record: Record | None = None
+    """None when the text has errors."""
+    places: Mapping[str, Span] = {}
+    """Ids of criteria and cross-checks to where they stand."""
+
+
+def check_file(name: str) -> Checked:
+    """Read and evaluate one file; trouble with it, even a fault of ours, is said, not raised."""
+    try:
+        evaluated = evaluate(read(name))
+        return _checked(name, evaluated)
+    except CalcdocError as trouble:
+        return Checked(name, WORLD_IS_WRONG, str(trouble))
+    except Exception as trouble:  # noqa: BLE001  (the other files are still to be reported)
+        from calcdoc.commands.faults import our_fault  # noqa: PLC0415  (seldom needed)
+
+        return Checked(name, WORLD_IS_WRONG, f"{name}: {our_fault(trouble)}")
+
+
+def status_of(made: Record) -> int:
+    """0 when every criterion passes, or is not for calculation, and cross-checks agree; else 1."""
+    differs = any(not each.agrees for each in made.crosschecks)
+    return FAILS if made.verdict.failed or made.verdict.undecided or differs else PASSES
+
+
+def _checked(name: str, evaluated: Evaluated) -> Checked:
+    made = record(evaluated) if evaluated.ok else None
+    return Checked(
+        name,
+        status_of(made) if made else TEXT_HAS_ERRORS,
+        source=evaluated.design.source,
+        findings=evaluated.findings,
+        problems=evaluated.problems(),
+        record=made,
+        places=_places(evaluated),
+    )
+
+
+def _places(evaluated: Evaluated) -> dict[str, Span]:
+    if evaluated.evaluation is None:
+        return {}
+    model = evaluated.evaluation.model
+    statements = [
+        each if isinstance(each, Uncalculated) else each.statement
+        for each in (*model.criteria, *model.crosschecks)
+    ]
+    return {each.id.name: each.span for each in statements}

@@ -1,0 +1,48 @@
+"""A criterion or a cross-check in one line, for the formats that other tools read."""
+
+from typing import Final
+
+from calcdoc.records.record import Criterion, Crosscheck
+from calcdoc.records.wording import sentence, typeset
+
+SIGNS: Final = {"<=": "≤", ">=": "≥", "<": "<", ">": ">"}
+
+
+def named(entry: Criterion | Crosscheck) -> str:
+    """Id and description, or what stands there when it is not described."""
+    return f"{entry.id}: {entry.description or stated(entry)}"
+
+
+def stated(entry: Criterion | Crosscheck) -> str:
+    """The inequality, the text of a test, or the comparison, as written."""
+    if isinstance(entry, Criterion):
+        return entry.text
+    return f"{entry.first} {entry.form} {entry.second}"
+
+
+def criterion_said(criterion: Criterion) -> str:
+    """Value, limit, margin, the combination that governs, and what there is to remark."""
+    said = (
+        f"value {typeset(criterion.value_text)}, limit {SIGNS[criterion.relation]}"
+        f" {typeset(criterion.limit_text)}, margin {typeset(criterion.margin_text)}"
+        f"{_at(criterion.governing)}"
+    )
+    remarks = [sentence(each) for each in (criterion.remark, criterion.reason) if each]
+    if criterion.unverified:
+        remarks.append(f"on unverified values: {', '.join(criterion.unverified)}")
+    return "; ".join((said, *remarks))
+
+
+def crosscheck_said(crosscheck: Crosscheck) -> str:
+    """Both sides, the worst difference, what is allowed, and where."""
+    allowed = f", allowed {typeset(crosscheck.allowed_text)}" if crosscheck.allowed_text else ""
+    return (
+        f"{stated(crosscheck)}: {typeset(crosscheck.first_text)} and"
+        f" {typeset(crosscheck.second_text)} at nominal, worst difference"
+        f" {typeset(crosscheck.difference_text)}{allowed}{_at(crosscheck.at)}"
+    )
+
+
+def _at(combination: dict[str, str]) -> str:
+    at = ", ".join(f"{symbol} = {typeset(text)}" for symbol, text in combination.items())
+    return f", at {at}" if at else ""
