@@ -22,9 +22,11 @@ from calcdoc.analysis.evaluation import (
     Stand,
 )
 from calcdoc.analysis.extremes import Extreme, Proof, Question, extremes
+from calcdoc.analysis.looking_up import moves_apart
 from calcdoc.analysis.points import FloatArray, evaluate_points
 from calcdoc.analysis.putting_back import put_back, running_away
 from calcdoc.analysis.trouble import troubles
+from calcdoc.frozen import replace
 from calcdoc.model.model import Compared, Judged, Model
 from calcdoc.problems import Finding, Mistake
 from calcdoc.text.statements import Inequality
@@ -34,6 +36,7 @@ EQUAL: Final = 1e-12
 SLIGHTLY: Final = 1e-9
 """Relative gap between what was attained and what is proven that is no reason to doubt."""
 _DECLARED: Final = -1
+_WORST_FIRST: Final = (Outcome.FAIL, Outcome.NOT_DECIDED, Outcome.PASS)
 
 
 def evaluate_model(model: Model) -> tuple[Evaluation | None, tuple[Finding, ...]]:
@@ -113,7 +116,12 @@ class _Evaluator:
         ]
         checks = [self._ask_both(each.difference, whole) for each in compiled.checks]
         times = [None if at is None else self._ask(at, True, whole) for at in compiled.discharges]
-        self.answers = extremes(compiled.tape, self.questions)
+        self.answers = tuple(
+            replace(each, proof=_weaker(each.proof, Proof.BOUNDED))
+            if moves_apart(compiled.looked, each.matters)
+            else each
+            for each in extremes(compiled.tape, self.questions)
+        )
         back = put_back(compiled, self.model, self._points())
         self.back, self.away = back, running_away(self.model, back)
         nominal = evaluate_points(compiled.tape, whole.nominal[:, None])[:, 0]
@@ -223,16 +231,17 @@ class _Evaluator:
         sides: tuple[Side, ...],
         column: Mapping[int, FloatArray],
     ) -> Judgement:
-        at = min(asked, key=lambda each: self.answers[each].value)
-        side, extreme, computed = sides[asked.index(at)], self.answers[at], column[at]
-        row = _row(side, extreme, computed)
-        tolerance = EQUAL * max(abs(row.value), abs(row.limit))
-        equal = abs(extreme.value) <= tolerance
-        away = sorted({key for each in judged.depends_on for key in self.away[each]})
-        rows = (
+        rows = tuple(
             _row(each, self.answers[number], column[number])
             for each, number in zip(sides, asked, strict=True)
         )
+        requirements = [self.answers[number].value for number in asked]
+        which = _governing(judged, rows, requirements)
+        at, side, row = asked[which], sides[which], rows[which]
+        extreme, computed = self.answers[at], column[at]
+        tolerance = EQUAL * max(abs(row.value), abs(row.limit))
+        equal = abs(extreme.value) <= tolerance
+        away = sorted({key for each in judged.depends_on for key in self.away[each]})
         return Judgement(
             judged, side, row.value, row.limit, row.slack,
             0.0 if equal else extreme.value, equal,
@@ -240,7 +249,7 @@ class _Evaluator:
             {**self._combination(extreme), **self._set_by(judged.statement, extreme)},
             self._named(judged, side, computed),
             extreme.proof, extreme.bound,
-            tuple(rows) if judged.statement.clauses.index else (),
+            rows,
             tuple(away),
         )  # fmt: skip
 
@@ -295,6 +304,22 @@ class _Evaluator:
         if at is None:
             return Discharged(voltage, None, {})
         return Discharged(voltage, self.answers[at].value, self._combination(self.answers[at]))
+
+
+def _governing(judged: Judged, rows: tuple[Row, ...], requirements: list[float]) -> int:
+    """The limit nearest to being broken: the worst verdict first, then the least distance.
+
+    Elements of a series have limits of their own size, so shares of the limit compare them.
+    """
+    by_share = bool(judged.statement.clauses.index) and all(
+        row.limit != 0 and not judged.typed.weight for row in rows
+    )
+
+    def distance(at: int) -> tuple[int, float]:
+        size = abs(rows[at].limit) if by_share else 1.0
+        return _WORST_FIRST.index(rows[at].outcome), requirements[at] / size
+
+    return min(range(len(rows)), key=distance)
 
 
 def _row(side: Side, extreme: Extreme, computed: FloatArray) -> Row:

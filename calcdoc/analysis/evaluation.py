@@ -57,7 +57,7 @@ class Outcome(Enum):
 
 
 class Row(Frozen, frozen=True):
-    """One element of a criterion over a series, at the point that governs it."""
+    """One limit of a criterion, for one element of a series, at the point that governs it."""
 
     element: int
     value: float
@@ -88,7 +88,7 @@ class Judgement(Frozen, frozen=True):
     bound: float
     """Proven: the requirement is nowhere below this."""
     rows: tuple[Row, ...]
-    """For a criterion over a series, one for each element."""
+    """Each limit at the point that governs it: both sides, and every element of a series."""
     away: tuple[str, ...]
     """Keys of settled quantities it rests on whose loop gain may reach one: then it fails, or is
     not decided."""

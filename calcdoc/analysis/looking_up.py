@@ -1,11 +1,14 @@
 """Arguments of look-ups as ranges on the axes of a table."""
 
+from collections.abc import Iterable
 from fractions import Fraction
 from typing import TYPE_CHECKING, Final
 
+import numpy as np
+
 from calcdoc.analysis.extremes import Question, extremes
-from calcdoc.analysis.points import evaluate_points
-from calcdoc.analysis.tape import Op
+from calcdoc.analysis.points import BoolArray, evaluate_points
+from calcdoc.analysis.tape import Op, Tape
 from calcdoc.frozen import Frozen
 from calcdoc.tables.table import Axis, Found, Range, Table
 
@@ -24,11 +27,46 @@ class LookedUp(Frozen, frozen=True):
     table: Table
     found: Found
     column: int | None
+    moved_by: frozenset[int] = frozenset()
+    """Columns the arguments depend on. The column moves without them, so a result in which both
+    count is bounded, but need not be attained."""
 
     @property
     def key(self) -> str:
         """What the column is known by in combinations."""
         return f"@{self.column}"
+
+
+def reached(tape: Tape, at: int) -> frozenset[int]:
+    """Columns that an instruction can depend on."""
+    columns: set[int] = set()
+    seen: set[int] = set()
+    waiting = [at]
+    while waiting:
+        step = waiting.pop()
+        if step in seen:
+            continue
+        seen.add(step)
+        instruction = tape.instructions[step]
+        if isinstance(instruction.value, int) and instruction.op is Op.INPUT:
+            columns.add(instruction.value)
+        waiting.extend(instruction.args)
+    return frozenset(columns)
+
+
+def moves_apart(looked: Iterable[LookedUp], matters: BoolArray) -> bool:
+    """Whether a look-up counts together with what it is looked up by, or with another such one.
+
+    Then the combination that was found may not exist: a look-up moves in a column of its own.
+    """
+    moving = [each for each in looked if each.column is not None and matters[each.column]]
+    owned = {each.column for each in moving}
+    seen = {int(at) for at in np.flatnonzero(matters)} - owned
+    for each in moving:
+        if each.moved_by & seen:
+            return True
+        seen |= each.moved_by
+    return False
 
 
 def argument_range(working: "Working", at: int, axis: Axis) -> Range:

@@ -2,10 +2,12 @@
 
 from collections.abc import Mapping
 
+import numpy as np
+
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.choice import choose
 from calcdoc.analysis.formulas import Formulas
-from calcdoc.analysis.looking_up import LookedUp, argument_range, snapped
+from calcdoc.analysis.looking_up import LookedUp, argument_range, reached, snapped
 from calcdoc.analysis.tape import Implicit, Op
 from calcdoc.model.model import Model, Root, Solved, Variable
 from calcdoc.problems import Finding, Mistake, error
@@ -79,8 +81,19 @@ class Working(Formulas):
         column = self.builder.n_inputs
         self.builder.n_inputs += 1
         self.box = self.box.with_column(float(least), float(nominal), float(greatest))
-        self.looked.append(LookedUp(self.owner, table, found, column))
+        self.looked.append(LookedUp(self.owner, table, found, column, self._moving(arguments[1:])))
         return self.builder.add(Op.INPUT, value=column)
+
+    def _moving(self, arguments: tuple[Node, ...]) -> frozenset[int]:
+        """Columns that arguments of a table depend on, through tables looked up before."""
+        nodes = [self.node(each) for each in arguments if not isinstance(each, Text)]
+        tape = self.builder.tape()
+        wide = {int(at) for at in np.flatnonzero(self.box.low < self.box.high)}
+        columns = {column for each in nodes for column in reached(tape, each)}
+        behind = {
+            column for each in self.looked if each.column in columns for column in each.moved_by
+        }
+        return frozenset((columns | behind) & wide)
 
     def _solved(self, solved: Solved) -> None:
         """All unknowns of a line at once: the combination of roots that is left."""

@@ -6,7 +6,7 @@ from html import escape
 from calcdoc.page import typeset
 from calcdoc.page.markup import band_bar, margin_bar, verdict
 from calcdoc.page.measure import measure, text_width
-from calcdoc.page.pieces import ROOM, is_formula, read
+from calcdoc.page.pieces import ROOM, read
 from calcdoc.page.view import View
 from calcdoc.records.pictures import RELATIONS, equation, symbol
 from calcdoc.records.record import Assumption, Criterion, Quantity
@@ -46,7 +46,7 @@ def criterion_line(view: View, criterion: Criterion) -> str:
         f' <span class="cl">{view.clauses(criterion.clauses)}</span>' if criterion.clauses else ""
     )
     work = ""
-    if is_formula(criterion.text):
+    if criterion.relation:
         work = f'<div class="eq">{view.math(criterion.text)}{clauses}</div>'
     return (
         f'<div class="wl cr" id="c-{escape(criterion.id)}">'
@@ -73,7 +73,7 @@ def _rows(criterion: Criterion) -> str:
 
 def subject(criterion: Criterion) -> str:
     """What a criterion is about, in words; empty when only its inequality says it."""
-    if is_formula(criterion.text):
+    if criterion.relation:
         return criterion.description
     if criterion.verdict == "not applicable" and criterion.description:
         return criterion.description

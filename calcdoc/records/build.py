@@ -75,7 +75,7 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
         hazards=hazards(evaluation),
         cautions=cautions(evaluation, register, body),
         references=references(model, naming),
-        methods=method_statement(lines, title.digits),
+        methods=method_statement(lines, title.digits, looked_up=bool(evaluation.looked)),
         figures=(),
         notices=unsourced(model),
         problems=tuple(_problem(evaluation, each) for each in in_order(made.findings)),

@@ -71,7 +71,7 @@ def _calculated(numbers: Numbers, naming: Naming, judgement: Judgement) -> r.Cri
     unit = _unit(numbers, judgement)
     value, limit = unit.from_si(judgement.value), unit.from_si(judgement.limit)
     shown, bound = apart(stored(value), stored(limit), numbers.digits)
-    share = _share(judgement)
+    share = _share(judgement, judgement)
     return r.Criterion(
         id=statement.id.name,
         line=naming.lines[statement.id.key],
@@ -86,9 +86,11 @@ def _calculated(numbers: Numbers, naming: Naming, judgement: Judgement) -> r.Cri
         verdict=judgement.outcome.value,
         accepted=None,
         case="normal",
-        governing=numbers.combination(judgement.governing),
+        governing=_element(judgement) | numbers.combination(judgement.governing),
         by_case={},
-        rows=tuple(_row(numbers, judgement, unit, row) for row in judgement.rows),
+        rows=tuple(_row(numbers, judgement, unit, row) for row in judgement.rows)
+        if statement.clauses.index
+        else (),
         interval=None,
         standard_error=None,
         unverified=unverified(numbers.evaluation, judgement.judged),
@@ -105,12 +107,17 @@ def _calculated(numbers: Numbers, naming: Naming, judgement: Judgement) -> r.Cri
     )
 
 
+def _element(judgement: Judgement) -> dict[str, str]:
+    """The element that governs a criterion over a series, as in ``n 9``."""
+    index, element = judgement.judged.statement.clauses.index, judgement.side.element
+    return {} if index is None else {index.name.name: str(element)}
+
+
 def _row(numbers: Numbers, judgement: Judgement, unit: Unit, row: Row) -> r.CriterionRow:
     """One element of a criterion over a series."""
     value, limit = stored(unit.from_si(row.value)), stored(unit.from_si(row.limit))
     shown, bound = apart(value, limit, numbers.digits)
-    plain_share = row.limit != 0 and not judgement.judged.typed.weight
-    share = row.slack / abs(row.limit) if plain_share else None
+    share = _share(judgement, row)
     return r.CriterionRow(
         index=row.element,
         value=value,
@@ -158,11 +165,11 @@ def _bare(tree: Node) -> Node:
     return tree
 
 
-def _share(judgement: Judgement) -> float | None:
+def _share(judgement: Judgement, at: Judgement | Row) -> float | None:
     """Margin as a share of the limit; None where the limit is zero or a temperature."""
-    if judgement.limit == 0 or judgement.judged.typed.weight:
+    if at.limit == 0 or judgement.judged.typed.weight:
         return None
-    return judgement.slack / abs(judgement.limit)
+    return at.slack / abs(at.limit)
 
 
 def _substitution(numbers: Numbers, judgement: Judgement) -> str:
@@ -206,7 +213,16 @@ def _remark(judgement: Judgement, unit: Unit, share: float | None) -> str:
         return f"short by {short}{of_limit}"
     if judgement.equal:
         return "equal to the limit with its margin" if margin else "equal to the limit"
-    return ""
+    return _other_side(judgement, share)
+
+
+def _other_side(judgement: Judgement, share: float | None) -> str:
+    """The side farther away says its margin when that is the smaller share of its limit."""
+    if share is None or judgement.judged.statement.clauses.index:
+        return ""
+    others = [_share(judgement, row) for row in judgement.rows]
+    least = min((each for each in others if each is not None), default=share)
+    return f"to the other limit {downward(least * _PER_CENT)} %" if least < share else ""
 
 
 def _reason(numbers: Numbers, judgement: Judgement, unit: Unit) -> str:

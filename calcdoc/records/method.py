@@ -6,12 +6,14 @@ from calcdoc.records import record as r
 from calcdoc.records.wording import counted, typeset
 
 
-def method_statement(lines: tuple[r.Quantity, ...], digits: int) -> tuple[str, ...]:
+def method_statement(
+    lines: tuple[r.Quantity, ...], digits: int, *, looked_up: bool
+) -> tuple[str, ...]:
     """What a reviewer must know of the computation, in the order it was done."""
-    return tuple(_paragraphs(lines, digits))
+    return tuple(_paragraphs(lines, digits, looked_up))
 
 
-def _paragraphs(lines: tuple[r.Quantity, ...], digits: int) -> Iterator[str]:
+def _paragraphs(lines: tuple[r.Quantity, ...], digits: int, looked_up: bool) -> Iterator[str]:
     yield (
         "Units and dimensions of every formula were checked before any number was computed; the"
         " computation runs in coherent SI units and nothing is rounded on the way."
@@ -42,6 +44,12 @@ def _paragraphs(lines: tuple[r.Quantity, ...], digits: int) -> Iterator[str]:
             f"Of the bands of {many} {exact} are exact (attained, and nothing in the band lies"
             f" beyond), {bounded} are attained and proven to within a share of {typeset('1e-9')},"
             f" {searched} were searched and are not proven."
+        )
+    if looked_up:
+        yield (
+            "A value looked up moves over all rows that its argument reaches, apart from the"
+            " argument. Where both count, as in a product of the two, the band holds every value"
+            " but its ends need not be attained: it is then counted as bounded at best."
         )
     yield (
         "A criterion is judged at the combination where limit less value is least, both sides"

@@ -8,10 +8,12 @@ import re
 from fractions import Fraction
 from typing import Final
 
+from calcdoc.frozen import replace
 from calcdoc.problems import Mistake, error
 from calcdoc.text.names import CLAUSE_WORDS, FUNCTIONS, LETTER, MARK
 from calcdoc.text.nodes import Number, Quantity, UnitText, UnitWord
 from calcdoc.text.scan import Scanner, shown
+from calcdoc.text.unparse import unit_text
 from calcdoc.units import Unit, known_word, nearest_word, unit_of
 
 NUMBER: Final = re.compile(r"[0-9]+(?:\.[0-9]+)?(?:[eE]([+-]?[0-9]+))?")
@@ -158,6 +160,7 @@ def _unit(scanner: Scanner, start: int, *, first_joint: str) -> UnitText:
                 )
             )
     unit = UnitText(tuple(words), scanner.span(start, scanner.at))
+    _refuse_ambiguous(unit)
     if not Fraction(1, _FACTOR_MOST) < resolve(unit).factor < _FACTOR_MOST:
         raise Mistake(
             error(
@@ -168,6 +171,30 @@ def _unit(scanner: Scanner, start: int, *, first_joint: str) -> UnitText:
             )
         )
     return unit
+
+
+def _refuse_ambiguous(unit: UnitText) -> None:
+    """``W/m²·K``: whether what follows ``·`` is divided by as well, nobody can tell."""
+    joints = [word.joint for word in unit.words]
+    if "/" not in joints:
+        return
+    at = next((n for n, joint in enumerate(joints) if joint == "·" and n > joints.index("/")), None)
+    if at is None:
+        return
+    words = unit.words
+    rest = tuple(replace(each, joint="/") for each in words[at:])
+    first, *more = (each for each in words if each.joint != "/")
+    below = (each for each in words if each.joint == "/")
+    divided = unit_text(UnitText((*words[:at], *rest), unit.span))
+    multiplied = unit_text(UnitText((replace(first, joint=""), *more, *below), unit.span))
+    raise Mistake(
+        error(
+            "two-readings",
+            f"`{unit_text(unit)}` has two readings: it multiplies after it divides",
+            unit.span,
+            help=f"write {divided} or {multiplied}",
+        )
+    )
 
 
 def _joins(text: str, word: re.Match[str]) -> bool:

@@ -6,6 +6,7 @@ from typing import Final
 from hypothesis import strategies as st
 from hypothesis.strategies import SearchStrategy
 
+from calcdoc.frozen import replace
 from calcdoc.source import Span
 from calcdoc.text.names import FUNCTIONS
 from calcdoc.text.nodes import (
@@ -42,7 +43,7 @@ UNIT_WORDS: Final = ("V", "mA", "µF", "uF", "kΩ", "ohm", "s", "min", "K", "°C
 
 
 def units() -> SearchStrategy[UnitText]:
-    """Units of one to four words with small exponents."""
+    """Units of one to four words with small exponents; what divides stands after what does not."""
     exponents = st.sampled_from((1, 1, 1, 2, -1, 3, -2))
     first = st.builds(
         UnitWord,
@@ -54,9 +55,13 @@ def units() -> SearchStrategy[UnitText]:
     more = st.builds(
         UnitWord, st.sampled_from(UNIT_WORDS), exponents, st.sampled_from("·/"), st.just(HERE)
     )
-    return st.builds(
-        lambda head, rest: UnitText((head, *rest), HERE), first, st.lists(more, max_size=3)
-    )
+    return st.builds(_unit_text, first, st.lists(more, max_size=3))
+
+
+def _unit_text(head: UnitWord, rest: list[UnitWord]) -> UnitText:
+    if head.joint == "/":
+        rest = [replace(each, joint="/") for each in rest]
+    return UnitText((head, *sorted(rest, key=lambda each: each.joint == "/")), HERE)
 
 
 def _binary(op: str, left: Node, right: Node) -> Node:

@@ -72,7 +72,7 @@ FORMULAS: list[tuple[str, Node]] = [
     ("1 V·s/m^2", quantity("1", ("", "V", 1), ("·", "s", 1), ("/", "m", 2))),
     ("1 m²·K⁻¹", quantity("1", ("", "m", 2), ("·", "K", -1))),
     ("50 1/h", quantity("50", ("/", "h", 1))),
-    ("50 1/h^2·m", quantity("50", ("/", "h", 2), ("·", "m", 1))),
+    ("50 1/h^2/m", quantity("50", ("/", "h", 2), ("/", "m", 1))),
     ("50*1/h", binary(binary(Number("50", HERE), "*", Number("1", HERE)), "/", name("h"))),
     ("3 min", quantity("3", ("", "min", 1))),
     ("3*min(x)", binary(Number("3", HERE), "*", Call("min", (name("x"),), HERE, HERE))),

@@ -10,7 +10,7 @@ TEXTS = [
     "sqrt(2)*V_line - 2*V_D",
     "60 s/(R*C)",
     "-(a + b)^-2",
-    "3 V/m^2·K^-1",
+    "3 V·K^-1/m^2",
     "50 1/h",
     "if(a < b and not c >= d or e > f, 1, min(2, x))",
     "1 <= x <= 3",
