@@ -1,5 +1,6 @@
 """Table files: what is wrong with one is said with the file, the line and what to do."""
 
+import re
 from pathlib import Path
 
 import pytest
@@ -366,3 +367,23 @@ def test_fault_stands_at_the_look_up(tmp_path: Path) -> None:
         " [value]\nin tables/lin.toml, line 7: did you mean `unit`?\n"
         '   |\n11 | P = lookup("lin", V)\n   |            ^^^^^'
     )
+
+
+def test_example_of_the_readme(tmp_path: Path) -> None:
+    """The README's table and design give what stands below them, with the mark on the verdict."""
+    text = (Path(__file__).parents[2] / "README.md").read_text()
+    section = text[text.index("## Tables\n") :]
+    toml = re.search(r"^```toml\n(.*?)^```$", section, re.MULTILINE | re.DOTALL)
+    shown = re.search(r"^````markdown\n(.*?)^````$", section, re.MULTILINE | re.DOTALL)
+    assert toml is not None
+    assert shown is not None
+    (tmp_path / "tables").mkdir()
+    (tmp_path / "tables" / "spacing.toml").write_text(toml[1])
+    path = tmp_path / "lamp.md"
+    path.write_text(shown[1])
+    record = pipeline.record(pipeline.evaluate(pipeline.read(path)))
+    (d_min,) = (each for each in record.quantities if each.symbol == "d_min")
+    assert (d_min.least, d_min.nominal, d_min.greatest) == (1.0, 1.0, 1.3)
+    (r1,) = record.criteria
+    assert (r1.verdict, r1.value_text, r1.limit_text) == ("pass", "1.400 mm", "1.300 mm")
+    assert r1.unverified == ("table spacing (Spacings on the board, issue 3, table 2)",)
