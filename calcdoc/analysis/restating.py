@@ -1,5 +1,6 @@
 """Results in terms of chosen quantities, and how they answer to each of them."""
 
+import math
 from collections.abc import Collection, Mapping
 
 import numpy as np
@@ -10,7 +11,7 @@ from calcdoc.analysis.points import evaluate_points
 from calcdoc.analysis.tape import Op
 from calcdoc.frozen import Frozen
 from calcdoc.model.model import Model, Root
-from calcdoc.model.symbolic import Blocked, Failure, derivative, eliminate, simplified
+from calcdoc.model.symbolic import Blocked, Failure, derivative, eliminate, mentions, simplified
 from calcdoc.problems import Mistake, error
 from calcdoc.source import Span
 from calcdoc.text.nodes import Node
@@ -47,8 +48,18 @@ def restated(known: Known, statement: RestateStatement) -> Restated:
     formulas = known.formulas()
     _check_derived(formulas, statement.symbol)
     tree = _eliminated(known, formulas[key], formulas, keep, statement.symbol, statement.span)
-    point = _Point(known, tree, [])
-    return Restated(statement, tree, point.nominal, known.bands[key].nominal)
+    value = _Point(known, tree, []).nominal
+    if not math.isfinite(value):
+        raise Mistake(
+            error(
+                "restate",
+                f"{shown(statement.symbol.name)} in these quantities cannot be computed at the"
+                " nominal values",
+                statement.span,
+                help="keep other quantities; something is divided by zero that was not before",
+            )
+        )
+    return Restated(statement, tree, value, known.bands[key].nominal)
 
 
 def sensitive(known: Known, statement: SensitivityStatement) -> Sensitive:
@@ -62,17 +73,53 @@ def sensitive(known: Known, statement: SensitivityStatement) -> Sensitive:
     inputs = [label.key for label in statement.inputs]
     formulas = known.formulas()
     _check_derived(formulas, statement.symbol)
+    _check_others(statement)
     depends = _resting_on(known.model, inputs)
     moved = {key: tree for key, tree in formulas.items() if key in depends}
     keep = (known.model.variables.keys() - depends) | set(inputs)
     key = statement.symbol.key
     tree = _eliminated(known, formulas[key], moved, keep, statement.symbol, statement.span)
-    rows = [_answer(known, simplified(tree), label) for label in statement.inputs]
+    tree = simplified(tree)
+    rows = [_answer(known, tree, statement, label) for label in statement.inputs]
     rows.sort(key=lambda row: -max(abs(row.low), abs(row.high)))
     return Sensitive(statement, tuple(rows))
 
 
-def _answer(known: Known, tree: Node, label: Label) -> Answer:
+def _check_others(statement: SensitivityStatement) -> None:
+    """A quantity answers to others, not to itself."""
+    for label in statement.inputs:
+        if label.key == statement.symbol.key:
+            raise Mistake(
+                error(
+                    "restate",
+                    f"{shown(label.name)} is asked how it answers to itself",
+                    label.span,
+                    help="name quantities that it depends on",
+                )
+            )
+
+
+def _check_dependence(
+    known: Known, tree: Node, statement: SensitivityStatement, label: Label
+) -> None:
+    if mentions(tree, label.key):
+        return
+    name, other = shown(statement.symbol.name), shown(label.name)
+    behind = _resting_on(known.model, [label.key])
+    held = ", ".join(shown(each.name) for each in statement.inputs if each.key in behind)
+    while_held = f"while {held} is held " if held else ""
+    raise Mistake(
+        error(
+            "restate",
+            f"{while_held}{name} does not depend on {other}",
+            label.span,
+            help="leave it out",
+        )
+    )
+
+
+def _answer(known: Known, tree: Node, statement: SensitivityStatement, label: Label) -> Answer:
+    _check_dependence(known, tree, statement, label)
     slope = derivative(tree, label.key)
     if isinstance(slope, Failure):
         raise Mistake(
@@ -87,7 +134,28 @@ def _answer(known: Known, tree: Node, label: Label) -> Answer:
     value = _Point(known, slope, []).nominal
     whole = _Point(known, tree, [label.key])
     low, high = (whole.at(end) - whole.nominal for end in (band.least, band.greatest))
-    return Answer(label.key, slope, value, 0.01 * band.nominal * value, low, high)
+    per_cent = 0.01 * band.nominal * value
+    if not all(map(math.isfinite, (value, per_cent))):
+        raise Mistake(
+            error(
+                "restate",
+                f"{shown(statement.symbol.name)} has no derivative by {shown(label.name)} at the"
+                " nominal values",
+                label.span,
+                help="leave it out, or choose a nominal value off the kink or the pole",
+            )
+        )
+    if not all(map(math.isfinite, (low, high))):
+        raise Mistake(
+            error(
+                "restate",
+                f"{shown(statement.symbol.name)} cannot be computed at the ends of"
+                f" {shown(label.name)} with all others at nominal",
+                label.span,
+                help="leave it out, or narrow its band",
+            )
+        )
+    return Answer(label.key, slope, value, per_cent, low, high)
 
 
 class _Point:

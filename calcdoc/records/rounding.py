@@ -5,6 +5,7 @@ Rules R1 to R7 of the house: one stage only, sign symmetric, ties decided on the
 safe direction.
 """
 
+import math
 from decimal import ROUND_CEILING, ROUND_FLOOR, ROUND_HALF_EVEN, ROUND_HALF_UP, Context, Decimal
 from fractions import Fraction
 from typing import Final
@@ -110,7 +111,13 @@ def _one_way(value: float, digits: int, rounding: str) -> str:
 
 
 def stored(value: float) -> float:
-    """A number as it is stored: 12 significant digits, no negative zero."""
+    """A number as it is stored: 12 significant digits, no negative zero.
+
+    Raises:
+        ValueError: for what is no number; no record may hold it.
+    """
+    if not math.isfinite(value):
+        raise ValueError(value)
     return float(f"{value:.{STORED}g}") + 0.0
 
 

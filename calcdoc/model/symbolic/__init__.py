@@ -39,6 +39,7 @@ __all__ = [
     "derivative",
     "eliminate",
     "is_identity",
+    "mentions",
     "simplified",
     "solve",
 ]
