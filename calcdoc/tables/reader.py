@@ -21,7 +21,6 @@ text = true
 What belongs to the table stands before the first section: TOML gives what follows to the section.
 """
 
-import math
 import re
 import tomllib
 from collections.abc import Mapping
@@ -46,6 +45,7 @@ _AXIS_KEYS: Final = ("name", "unit", "rule", "text")
 _VALUE_KEYS: Final = ("unit",)
 _IN: Final = {"axis": " in [[axis]]", "value": " in [value]"}
 MOST_ROWS: Final = 5000
+_GREATEST: Final = 1e300
 _TOML_PLACE: Final = re.compile(r" \(at (?:line ([0-9]+), column [0-9]+|end of document)\)$")
 
 
@@ -129,6 +129,8 @@ class _Reader:
                 said = said[: place.start()]
                 line = int(place[1] or line)
             self.wrong(f"it is not TOML: {said[:1].lower()}{said[1:]}", line=line)
+        except ValueError:
+            self.wrong("a number in it is too long")
 
     def known(
         self, found: Mapping[str, object], keys: tuple[str, ...], section: Section = TOP
@@ -274,12 +276,10 @@ class _Reader:
         return self._number(found, line)
 
     def _number(self, found: object, line: int | None) -> Fraction:
-        if (
-            isinstance(found, bool)
-            or not isinstance(found, int | float)
-            or not math.isfinite(found)
-        ):
+        if isinstance(found, bool) or not isinstance(found, int | float):
             self.wrong(f"{_said(found)} is no number", line=line)
+        if not abs(found) <= _GREATEST:
+            self.wrong(f"{_said(found)} is no number to compute with", line=line)
         return Fraction(repr(found))
 
 
@@ -291,4 +291,4 @@ def _said(found: object) -> str:
         return str(found).lower()
     if isinstance(found, list | dict):
         return "a list" if isinstance(found, list) else "a table"
-    return str(found)
+    return shown(str(found))[1:-1]

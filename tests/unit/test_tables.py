@@ -69,6 +69,7 @@ def test_good_table() -> None:
             said("it is not UTF-8", ", line 2: save the file as UTF-8"),
         ),
         (f"a = {'[' * 5000}", said("it is nested too deeply", "")),
+        (changed("[250,", f"[{'9' * 5000},"), said("a number in it is too long", "")),
     ],
 )
 def test_file_that_is_no_toml(text: str | bytes, message: str) -> None:
@@ -88,7 +89,11 @@ def test_file_that_is_no_toml(text: str | bytes, message: str) -> None:
             "on the axis material group stand texts, not 3", ", line 6"
         )),
         ("[250,", "[true,", said("true is no number", ", line 6")),
-        ("[250,", "[inf,", said("inf is no number", ", line 6")),
+        ("[250,", "[inf,", said("inf is no number to compute with", ", line 6")),
+        ("[250,", "[nan,", said("nan is no number to compute with", ", line 6")),
+        ("[250,", f"[1{'0' * 301},", said(
+            f"1{'0' * 38}… is no number to compute with", ", line 6"
+        )),
         ("[250,", "[200,", said("row 2 stands at the same place as row 1", ", line 6")),
         ('unit = "V"', "unit = 3", said("a unit is a text", ", line 14")),
         ('unit = "V"', 'unit = "°C"', said(
