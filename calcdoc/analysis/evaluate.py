@@ -47,7 +47,9 @@ def evaluate_model(model: Model) -> tuple[Evaluation | None, tuple[Finding, ...]
         return None, (mistake.finding,)
     boxes = _boxes(compiled, model)
     wanted = [_targets(compiled, at) for at in boxes]
-    found = troubles(compiled, model, list(boxes.values()), wanted)
+    judged = _judged(model)
+    setters = [None if at == _DECLARED else judged[at].statement for at in boxes]
+    found = troubles(compiled, model, list(boxes.values()), wanted, setters)
     if found:
         return None, found
     try:

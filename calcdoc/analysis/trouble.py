@@ -10,10 +10,12 @@ from calcdoc.analysis.compile import Compiled
 from calcdoc.analysis.domains import JUMP, NO_CHANGE, POLE, SEVERAL
 from calcdoc.analysis.hazards import Hazard, hazards
 from calcdoc.analysis.points import FloatArray
+from calcdoc.frozen import replace
 from calcdoc.model.model import Model, Variable
-from calcdoc.problems import Finding, error
+from calcdoc.problems import Finding, Place, error
 from calcdoc.text.nodes import Binary, Call, Group, Negate, Node
 from calcdoc.text.scan import shown
+from calcdoc.text.statements import Inequality
 from calcdoc.text.unparse import unparse
 from calcdoc.units import Dimension, Unit
 from calcdoc.units.choose import choose_unit
@@ -43,7 +45,11 @@ _CODES: Final[Mapping[str, tuple[str, str, str]]] = {
 
 
 def troubles(
-    compiled: Compiled, model: Model, boxes: Sequence[Box], targets: Sequence[Sequence[int]]
+    compiled: Compiled,
+    model: Model,
+    boxes: Sequence[Box],
+    targets: Sequence[Sequence[int]],
+    setters: Sequence[Inequality | None],
 ) -> tuple[Finding, ...]:
     """Everything that cannot be computed at nominal or within a box, once each.
 
@@ -52,13 +58,15 @@ def troubles(
         model: For names and units in the messages.
         boxes: Ranges of the input columns.
         targets: For each box the instructions that must be computable in it.
+        setters: For each box the criterion at whose operating point it stands, if any.
     """
     teller = _Teller(compiled, model)
     found: dict[int, Finding] = {}
-    for box, wanted in zip(boxes, targets, strict=True):
+    for box, wanted, setter in zip(boxes, targets, setters, strict=True):
         for hazard in hazards(compiled.tape, wanted, box.low, box.nominal, box.high):
             at_nominal = bool(np.all(hazard.point == box.nominal))
-            found.setdefault(hazard.instruction, teller.finding(hazard, at_nominal=at_nominal))
+            finding = teller.finding(hazard, setter, at_nominal=at_nominal)
+            found.setdefault(hazard.instruction, finding)
     return tuple(found.values())
 
 
@@ -70,10 +78,23 @@ class _Teller:
         self.shares = [each.share for each in compiled.checks if each.share]
         self.of_root = {at: key for key, at in compiled.roots.items()}
 
-    def finding(self, hazard: Hazard, *, at_nominal: bool) -> Finding:
+    def finding(self, hazard: Hazard, setter: Inequality | None, *, at_nominal: bool) -> Finding:
         """The finding for a hazard."""
+        at = f"at {self._combination(hazard.point)}"
         where = "at the nominal values" if at_nominal else "within the band"
-        label = "" if at_nominal else f"at {self._combination(hazard.point)}"
+        if setter is None:
+            return self._found(hazard, where, "" if at_nominal else at)
+        name = shown(setter.id.name)
+        sets = f"at the values that criterion {name} sets"
+        where = sets if at_nominal else f"{where} {sets}"
+        finding = self._found(hazard, where, at)
+        advice = finding.help.replace("narrow the band", f"set other values in {name}")
+        point = setter.clauses.at[0]
+        first, last = point.symbol.span, setter.clauses.at[-1].given.span
+        related = (*finding.related, Place(first.to(last), "set here"))
+        return replace(finding, help=advice, related=related)
+
+    def _found(self, hazard: Hazard, where: str, label: str) -> Finding:
         if hazard.kind not in _CODES:
             return self._root(hazard, where, label)
         code, message, advice = _CODES[hazard.kind]

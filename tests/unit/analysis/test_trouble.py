@@ -72,3 +72,32 @@ def test_too_large_between(word: str, line: str, piece: str, shown: str) -> None
     )
     assert found[3].split("at")[0].strip(" |") == "^" * len(piece)
     assert found[-1] == "help: check the exponent and the units"
+
+
+DIVISOR = "error[division-by-zero]: the divisor `{}` becomes zero"
+NEGATIVE = "error[out-of-domain]: the square root is taken of a negative value of `{}`"
+
+
+@pytest.mark.parametrize(
+    ("formula", "piece", "what", "point", "at"),
+    [
+        ("1/p", "p", DIVISOR, "p = 0", "p = 0"),
+        ("sqrt(p)", "p", NEGATIVE, "k = 1, p = -1", "p = -1"),
+        ("1/(p - k)", "p - k", f"{DIVISOR} within the band", "p = 1.2", "k = 1.2, p = 1.2"),
+    ],
+)
+def test_at_an_operating_point(formula: str, piece: str, what: str, point: str, at: str) -> None:
+    """What fails at the values that a criterion sets names the criterion and shows the values."""
+    criterion = f"R4: z <= 3 at {point}"
+    found = said(inputs="p = 4 ± 1", derive=f"z = {formula}", criteria=criterion)
+    column = formula.index(piece) + 5
+    assert found == [
+        f"lamp.md:15:{column}: {what.format(piece)} at the values that criterion `R4` sets",
+        "   |",
+        f"15 | z = {formula}",
+        f"   | {' ' * (column - 1)}{'^' * len(piece)} at {at}",
+        "   --> lamp.md:18:15",
+        f"18 | {criterion}",
+        f"   | {' ' * 14}{'-' * len(point)} set here",
+        "help: set other values in `R4`, or leave the case out with if(condition, a, b)",
+    ]
