@@ -57,4 +57,6 @@ def _bottom(record: Record) -> list[str]:
     if tests:
         said.append(f"{counted(len(tests), 'criterion', 'criteria')} not calculated:"
                     f" {', '.join(tests)}")  # fmt: skip
+    unverified = dict.fromkeys(name for each in record.quantities for name in each.unverified)
+    said += [f"values not verified: {name}" for name in unverified]
     return [*said, *record.notices]

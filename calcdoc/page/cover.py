@@ -129,7 +129,8 @@ def _open(view: View) -> str:
     waiting = [each for each in record.assumptions if each.state == "open"]
     tests = [each for each in record.criteria if each.verdict in NOT_COMPUTED]
     accepted = [each for each in record.criteria if each.accepted]
-    unverified = dict.fromkeys(name for each in record.criteria for name in each.unverified)
+    resting = (*record.criteria, *record.quantities)
+    unverified = dict.fromkeys(name for each in resting for name in each.unverified)
     answers = [
         ("Open assumptions", [_assumption(view, each.id) for each in waiting]),
         ("Open tests", [_test(view, each) for each in tests]),

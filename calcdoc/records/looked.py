@@ -1,6 +1,7 @@
 """Tables that were looked up: the rows that were used, and what is not verified yet."""
 
 from collections.abc import Iterable
+from collections.abc import Set as AbstractSet
 
 from calcdoc.analysis.evaluation import Evaluation
 from calcdoc.analysis.looking_up import LookedUp
@@ -25,7 +26,8 @@ def looked_up(evaluation: Evaluation, owner: str) -> tuple[str, ...]:
 
 def _sentence(found: list[LookedUp]) -> str:
     table = found[0].table
-    rows = tuple(dict.fromkeys(row for each in found for row in each.found.rows))
+    used = {row for each in found for row in each.found.rows}
+    rows = [row for row in table.rows if row in used]
     shown = [_row(table, row) for row in rows]
     if len(shown) > _MOST:
         shown = [*shown[:2], "...", shown[-1]]
@@ -35,7 +37,8 @@ def _sentence(found: list[LookedUp]) -> str:
 
 def _row(table: Table, row: Row) -> str:
     at = ", ".join(_place(axis, place) for axis, place in zip(table.axes, row.at, strict=True))
-    return f"{at}: {with_unit(trimmed(row.value, 6), table.unit)}"
+    mark = "" if row.verified else " (not verified)"
+    return f"{at}: {with_unit(trimmed(row.value, 6), table.unit)}{mark}"
 
 
 def _place(axis: Axis, place: object) -> str:
@@ -47,6 +50,11 @@ def _place(axis: Axis, place: object) -> str:
 def unverified(evaluation: Evaluation, judged: Judged) -> tuple[str, ...]:
     """The tables with unverified rows that a criterion rests on, through all steps."""
     owners = {judged.statement.id.key, *_reached(evaluation, judged.depends_on)}
+    return unverified_in(evaluation, owners)
+
+
+def unverified_in(evaluation: Evaluation, owners: AbstractSet[str]) -> tuple[str, ...]:
+    """The tables of which one of these lines uses a row that is not verified."""
     return tuple(
         dict.fromkeys(
             f"table {each.table.name} ({each.table.source})"

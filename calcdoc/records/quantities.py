@@ -10,7 +10,7 @@ from calcdoc.model.constant import constant_value
 from calcdoc.model.model import Model, Variable
 from calcdoc.records import record as r
 from calcdoc.records.carried import units_carried
-from calcdoc.records.looked import looked_up
+from calcdoc.records.looked import looked_up, unverified_in
 from calcdoc.records.naming import Naming
 from calcdoc.records.rounding import significant, stored
 from calcdoc.records.substitute import substituted
@@ -133,6 +133,7 @@ def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantit
         greatest_text=shown.greatest_text,
         varies=shown.varies,
         from_relation=", ".join(_relations(numbers, variable)),
+        unverified=unverified_in(numbers.evaluation, {variable.key}),
         notes=(
             *shown.notes,
             *_runaway(numbers, variable),

@@ -293,6 +293,8 @@ class Quantity(Plain, frozen=True):
     varies: bool
     from_relation: str
     """Names of the relations it was solved from, as in ``charge``; else empty."""
+    unverified: tuple[str, ...]
+    """Tables of which this line itself uses a row that is not verified."""
     notes: tuple[str, ...]
     """Sentences for the reader: the extreme lies inside the band, the nominal is the middle, ..."""
 

@@ -84,6 +84,7 @@ def quantity(**values: object) -> r.Quantity:
         "greatest_text": "",
         "varies": False,
         "from_relation": "",
+        "unverified": (),
         "notes": (),
     }
     quiet.update(values)
