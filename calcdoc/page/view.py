@@ -27,10 +27,6 @@ NAME = re.compile(r"[^\W\d_][^\W_]*(?:\.[^\W\d_][^\W_]*)?(?:_\w+)|[\u0370-\u03ff
 WORD = re.compile(r"(?<![^ (])[^\W\d_]\w*(?:\.[^\W\d_]\w*)?")
 """What may be a symbol in the language: not behind a number and its no-break space."""
 TAG = re.compile(r"(<[^>]*>)")
-FIRST = re.compile(r"[a-z]+(?=[ ,;:.]|$)|[a-z]{2,}(?=-)")
-"""A first word that may get a capital, unless it is a symbol or a unit."""
-SMALL = frozenset({"rms"})
-"""Abbreviations that are written small wherever they stand."""
 FINE = 13.0
 """On a screen formulas are cut into pieces of this width, in em, to fit the narrowest."""
 KEY = re.compile(r"\[([^\[\]]+)\]")
@@ -169,11 +165,7 @@ class View:
 
     def opening(self, text: str) -> str:
         """The author's words where they stand as a line of their own: with a capital."""
-        first = FIRST.match(text)
-        small = not first or first[0] in SMALL or fold(first[0]) in self._links
-        if small or wording.is_unit(text[: first.end() if first else 0]):
-            return self.words(text)
-        return self.words(text[0].upper() + text[1:])
+        return self.words(wording.opened(text, self._links))
 
     def _named(self, found: re.Match[str]) -> str:
         return self.symbol(found[0]) if fold(found[0]) in self._links else found[0]

@@ -7,6 +7,7 @@ from collections.abc import Callable
 from calcdoc.frozen import Frozen
 from calcdoc.records import record as r
 from calcdoc.records.naming import Naming, keys_of
+from calcdoc.records.wording import opened
 from calcdoc.text import prose
 from calcdoc.text.statements import (
     CrosscheckStatement,
@@ -138,12 +139,21 @@ class _Body:
             case prose.Rule():
                 return (r.Rule(),)
             case prose.CautionBlock(signal, inner):
-                return (r.CautionBox(signal=signal, blocks=self._all(inner)),)
+                return (r.CautionBox(signal=signal, blocks=self._opened(self._all(inner))),)
             case prose.Statements(_, statements):
                 return tuple(line for each in statements for line in _lines(each, self.naming))
 
     def _all(self, body: tuple[prose.Block, ...]) -> tuple[r.Block, ...]:
         return tuple(each for block in body for each in self.block(block))
+
+    def _opened(self, body: tuple[r.Block, ...]) -> tuple[r.Block, ...]:
+        """The text of a caution with a capital, as descriptions have one."""
+        match body:
+            case (r.Paragraph(inline=(r.Words(text=text), *others)), *more):
+                first = r.Words(text=opened(text, self.naming.lines))
+                return (r.Paragraph(inline=(first, *others)), *more)
+            case _:
+                return body
 
     def _cells(self, row: tuple[tuple[prose.Inline, ...], ...]) -> tuple[tuple[r.Inline, ...], ...]:
         return tuple(inline(cell, self.fill) for cell in row)

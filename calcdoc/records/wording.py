@@ -5,6 +5,7 @@ line, for texts of the record and for attributes of a page, and applied to numbe
 """
 
 import re
+from collections.abc import Container
 from functools import lru_cache
 from typing import Final
 
@@ -14,6 +15,7 @@ from calcdoc.records.shapes import NO_BREAK as NO_BREAK  # noqa: PLC0414  for te
 from calcdoc.records.values import exact_limit, given_nominal, with_unit
 from calcdoc.text.formula import parse_text
 from calcdoc.text.given import Given, Style
+from calcdoc.text.names import fold
 from calcdoc.text.nodes import Quantity
 from calcdoc.units import Unit
 
@@ -28,6 +30,10 @@ _WORD: Final = re.compile(r"[^\s,;:()]+")
 _FACTOR: Final = re.compile(r"([-\u2212]?[0-9][^\s,]*(?: [^\s,±]+)?) (?:±|\+/-) ([0-9][0-9.]* %)")
 _RANGE: Final = re.compile(r" ?\.\. ?(?=-?[0-9])")
 _PLUS_MINUS: Final = re.compile(r"± (?=[0-9])")
+_FIRST: Final = re.compile(r"[a-z]+(?=[ ,;:.'\u2019!?/\n]|$)|[a-z]{2,}(?=-)")
+"""A first word that may get a capital, unless it is a symbol or a unit."""
+_SMALL: Final = frozenset({"rms"})
+"""Abbreviations that are written small wherever they stand."""
 
 
 @lru_cache(maxsize=4096)
@@ -85,6 +91,20 @@ def clauses(text: str) -> str:
     times = f"{NO_BREAK}×{NO_BREAK}(1{NO_BREAK}±{NO_BREAK}"
     text = _FACTOR.sub(lambda found: f"{found[1]}{times}{found[2]})", text)
     return sentence(_RANGE.sub(" to ", text))
+
+
+def opened(text: str, symbols: Container[str]) -> str:
+    """The text with a capital, unless it begins with a symbol (by key) or a unit.
+
+    >>> opened("mind the step", ())
+    'Mind the step'
+    >>> opened("mA are enough", ())
+    'mA are enough'
+    """
+    first = _FIRST.match(text)
+    if not first or first[0] in _SMALL or fold(first[0]) in symbols or is_unit(first[0]):
+        return text
+    return text[0].upper() + text[1:]
 
 
 @lru_cache(maxsize=1024)

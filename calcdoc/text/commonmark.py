@@ -216,9 +216,7 @@ class _InlinePlaces:
         for line in self.content.split("\n"):
             self.starts.append(at)
             written = self.source.line(number)
-            column = written.rfind(line)
-            if column < 0:  # the first letter of a caution is made a capital
-                column = max(0, written.rfind(line[1:]) - 1)
+            column = max(0, written.rfind(line))
             self.places.append(self.source.line_start(number) + column)
             at += len(line) + 1
             number += 1

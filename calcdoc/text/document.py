@@ -14,7 +14,7 @@ from calcdoc.text.criteria import criterion
 from calcdoc.text.names import SYMBOL, fold
 from calcdoc.text.passage import Passage
 from calcdoc.text.rules import RULES
-from calcdoc.text.scan import not_yet
+from calcdoc.text.scan import not_yet, shown
 from calcdoc.text.statements import Statement
 from calcdoc.text.titleblock import TitleBlock, title_block
 
@@ -35,6 +35,10 @@ _DEEP_FENCE: Final = re.compile(
 _DEFINED_BEFORE: Final = re.compile(r"=|\|| from ")
 _UNIT: Final = re.compile(r"\[[^\]]*\]")
 _SIGNAL: Final = re.compile(r"\s*(danger|warning|caution|notice)\b[ \t]*[:.]?[ \t]*", re.IGNORECASE)
+
+_WORD_BEFORE_COLON: Final = re.compile(r"\s*[*_]*(?P<word>[A-Za-z]+)[*_]*[ \t]*:")
+_STEM: Final = 4
+"""Letters of a signal word that are enough to mean it: warn, dang, caut, noti."""
 
 
 class Document(Frozen, frozen=True):
@@ -327,7 +331,6 @@ class _Reader:
         text = "\n".join(fence.lines)
         found = _SIGNAL.match(text)
         rest = text[found.end() :] if found else text
-        rest = _capital(rest)
         if not rest.strip():
             self.findings.append(
                 error(
@@ -338,12 +341,32 @@ class _Reader:
                 )
             )
             return None
+        if found is None and (meant := _WORD_BEFORE_COLON.match(text)) is not None:
+            self._check_signal(fence, meant)
         signal = found[1].lower() if found else "caution"
         first = self.source.position(fence.opening.start)[0] + 1
         skipped = text[: len(text) - len(rest)].count("\n")
         blocks, findings = read_prose(self.source, rest, first + skipped, self._no_fence)
         self.findings += findings
         return prose.CautionBlock(signal, blocks, fence.opening)
+
+    def _check_signal(self, fence: Fence, found: re.Match[str]) -> None:
+        """A word near to a signal word would lower what it warns of without a word."""
+        written = found["word"]
+        if (signal := _like_a_signal(written.lower())) is None:
+            return
+        number = self.source.position(fence.opening.start)[0] + 1
+        number += found.string.count("\n", 0, found.start("word"))
+        start = self.source.line_start(number) + self.source.line(number).index(written)
+        self.findings.append(
+            error(
+                "syntax",
+                f"expected {', '.join(SIGNALS[:-1])} or {SIGNALS[-1]} before the colon, found"
+                f" {shown(found[0].strip().removesuffix(':').rstrip())}",
+                self.source.span(start, start + len(written)),
+                help=f"did you mean `{signal}:`?",
+            )
+        )
 
     def _no_fence(self, fence: Fence) -> prose.Block:
         return prose.Listing("\n".join(fence.lines))
@@ -371,9 +394,16 @@ def _defined(text: str) -> frozenset[str]:
     return frozenset(fold(name) for name in SYMBOL.findall(_UNIT.sub(" ", head)))
 
 
-def _capital(text: str) -> str:
-    """The text with a capital where it begins with a plain letter; µ and ß have none."""
-    return text[:1].upper() + text[1:] if "a" <= text[:1] <= "z" else text
+def _like_a_signal(word: str) -> str | None:
+    """The signal word that is meant by another one, or by itself between marks."""
+    return next(
+        (
+            signal
+            for signal in SIGNALS
+            if _one_edit(word, signal) or word.startswith(signal[:_STEM])
+        ),
+        None,
+    )
 
 
 def _one_edit(word: str, other: str) -> bool:

@@ -2,6 +2,7 @@
 
 import pytest
 
+from tests.helpers.checking import TITLE, rendered
 from tests.helpers.design import Worked, worked
 
 GIVEN = "V = {voltage}\nC = 10 µF\nR = 1 MΩ"
@@ -43,3 +44,59 @@ def test_stored_charge_that_is_safe(voltage: str) -> None:
 def test_supply_of_either_sign(voltage: str) -> None:
     """A supply that reaches more than fifty volts of either sign is dangerous."""
     assert dangers(hazard(voltage, "supply V")) == ["Mains voltage can kill"]
+
+
+@pytest.mark.parametrize(
+    ("written", "printed"),
+    [
+        ("danger: mA are enough to kill", "mA are enough to kill"),
+        ("danger: h and min of waiting", "h and min of waiting"),
+        ("danger: a stored charge", "A stored charge"),
+        ("danger: don't touch", "Don't touch"),
+        ("danger: k is a factor", "k is a factor"),
+        ("danger:\n\nmind the step", "Mind the step"),
+        ("danger: {k:value} too many", "2 too many"),
+    ],
+)
+def test_capital_of_a_caution(written: str, printed: str) -> None:
+    """A caution begins with a capital, unless it begins with a unit or a symbol."""
+    found = worked(inputs="k = 2", caution=written).record
+    assert [each.text for each in found.cautions if each.origin == "author"] == [printed]
+
+
+@pytest.mark.parametrize(
+    ("first", "word", "signal"),
+    [
+        ("warn: hot", "warn", "warning"),
+        ("Warnings: hot", "Warnings", "warning"),
+        ("wanring : hot", "wanring", "warning"),
+        ("Dangerous: hot", "Dangerous", "danger"),
+        ("dagner: hot", "dagner", "danger"),
+        ("cautious: hot", "cautious", "caution"),
+        ("notic: hot", "notic", "notice"),
+        ("**Warning:** hot", "Warning", "warning"),
+    ],
+)
+def test_word_near_a_signal_word(first: str, word: str, signal: str) -> None:
+    """A word near to a signal word and a colon is refused, not lowered to a caution."""
+    found = rendered(f"{TITLE}```caution\n{first}\n```\n").splitlines()
+    column = first.index(word)
+    said = first.split(":", maxsplit=1)[0].rstrip()
+    assert found[0] == (
+        f"lamp.md:7:{column + 1}: error[syntax]: expected danger, warning, caution or notice before"
+        f" the colon, found `{said}`"
+    )
+    assert found[1:] == [
+        "  |",
+        f"7 | {first}",
+        f"  | {' ' * column}{'^' * len(word)}",
+        f"help: did you mean `{signal}:`?",
+    ]
+
+
+@pytest.mark.parametrize(
+    "first", ["wiring: hot", "Note: hot", "fire: hot", "warn of it", "0 V: on"]
+)
+def test_word_that_is_no_signal(first: str) -> None:
+    """Other words before a colon belong to the text."""
+    assert rendered(f"{TITLE}```caution\n{first}\n```\n") == ""
