@@ -129,8 +129,9 @@ def _open(view: View) -> str:
     waiting = [each for each in record.assumptions if each.state == "open"]
     tests = [each for each in record.criteria if each.verdict in NOT_COMPUTED]
     accepted = [each for each in record.criteria if each.accepted]
-    resting = (*record.criteria, *record.quantities)
-    unverified = dict.fromkeys(name for each in resting for name in each.unverified)
+    resting = [each.unverified for each in record.criteria]
+    used = [each.unverified for each in record.quantities]
+    unverified = dict.fromkeys(name for each in (*resting, *used) for name in each)
     answers = [
         ("Open assumptions", [_assumption(view, each.id) for each in waiting]),
         ("Open tests", [_test(view, each) for each in tests]),

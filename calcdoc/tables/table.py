@@ -101,10 +101,12 @@ def _stops(table: Table, number: int, axis: Axis, argument: Range) -> list[Fract
     low, nominal, high = argument
     rows = {each for row in table.rows if isinstance(each := row.at[number], Fraction)}
     if axis.rule == EXACT:
-        # Between its rows an exact axis says nothing, so only a point can stand on it.
-        if high - low > _POINT * max(abs(each) for each in (*rows, low, high)):
-            raise OutsideAxis(number, _no_band(axis, rows, low, high))
-        return [nominal]
+        if high - low <= _POINT * max(abs(each) for each in (*rows, low, high)):
+            return [nominal]
+        # Between its rows an exact axis says nothing, so a range goes from row to row.
+        if not {low, nominal, high} <= rows:
+            raise OutsideAxis(number, _off_rows(axis, rows, low, high))
+        return [*sorted(each for each in rows if low <= each <= high)]
     between = sorted(at for at in rows if low < at < high)
     return [*dict.fromkeys([low, *between, high])]
 
@@ -157,10 +159,11 @@ def _outside(rows: tuple[Row, ...], number: int, axis: Axis, at: Fraction | str)
     return f"{axis.name} goes from {_shown(numbers[0])} to {_shown(numbers[-1])}{_unit(axis)}"
 
 
-def _no_band(axis: Axis, rows: Iterable[Fraction], low: Fraction, high: Fraction) -> str:
+def _off_rows(axis: Axis, rows: Iterable[Fraction], low: Fraction, high: Fraction) -> str:
     return (
-        f"{axis.name} is exact: it takes one of the rows {_listed(axis, sorted(rows))}, not all"
-        f" from {_shown(low)} to {_shown(high)}{_unit(axis)}"
+        f"{axis.name} is exact: the ends and the nominal value of a range must stand on the rows"
+        f" {_listed(axis, sorted(rows))}; this one goes from {_shown(low)} to {_shown(high)}"
+        f"{_unit(axis)}"
     )
 
 

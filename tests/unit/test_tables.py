@@ -321,19 +321,28 @@ def problems(found: pipeline.Evaluated) -> str:
 @pytest.mark.parametrize(
     ("given", "low", "high"),
     [
-        ("V = 10 V ± 10 V", "0", "20"),
+        ("V = 10 V ± 9 V", "1", "19"),
+        ("V = 0 .. 15 .. 20 V", "0", "20"),
         ("V = 10 V ± 1 %", "9.9", "10.1"),
         ("V = 11 .. 12 .. 13 V", "11", "13"),
     ],
 )
 def test_band_on_an_exact_axis(tmp_path: Path, given: str, low: str, high: str) -> None:
-    """A band on an exact axis is refused, also when its ends stand on rows."""
+    """A band on an exact axis is refused when an end or its middle stands on no row."""
     assert problems(evaluated(tmp_path, given, 'P = lookup("lin", V)')) == (
         "lamp.md:11:19: error[outside-axis]: `V` lies outside of the table `lin`\n"
         '   |\n11 | P = lookup("lin", V)\n   |                   ^\n'
-        "help: supply is exact: it takes one of the rows 0, 10, 20 V,"
-        f" not all from {low} to {high} V"
+        "help: supply is exact: the ends and the nominal value of a range must stand on the rows"
+        f" 0, 10, 20 V; this one goes from {low} to {high} V"
     )
+
+
+def test_band_from_row_to_row(tmp_path: Path) -> None:
+    """A band whose ends and middle stand on rows takes all rows in between."""
+    found = evaluated(tmp_path, "V = 10 V ± 10 V", 'P = lookup("lin", V)')
+    assert found.evaluation is not None
+    (looked,) = found.evaluation.looked
+    assert [looked.found.least, looked.found.nominal, looked.found.greatest] == [1, 2, 4]
 
 
 @pytest.mark.parametrize(
