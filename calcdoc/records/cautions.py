@@ -113,20 +113,18 @@ def _stored(evaluation: Evaluation, discharge: Discharge, discharged: Discharged
     symbol = {key: each.symbol for key, each in evaluation.model.variables.items()}
     store = symbol[discharge.capacitance]
     start = typeset(f"{upward(discharged.greatest_voltage, 3)} V")
-    rest = (
-        " The LED string stops conducting below its own voltage and does not discharge it."
-        " Wait, then measure, before touching."
-    )
+    rest = " The LED string stops conducting below its own voltage and does not discharge it."
     if discharge.resistance is None or discharged.seconds is None:
         return (
             f"Stored charge: {store} has no discharge path and keeps up to {start} after"
-            f" disconnection.{rest}"
+            f" disconnection.{rest} Waiting does not help: discharge it through a resistor, then"
+            " measure, before touching."
         )
     time = typeset(f"{upward(discharged.seconds, 3)} s")
     return (
         f"Stored charge: after disconnection {store} falls from up to {start} to {typeset('60 V')}"
         f" through {symbol[discharge.resistance]} in at most {time} over all tolerances; with an"
-        f" open bleed resistor it stays charged.{rest}"
+        f" open bleed resistor it stays charged.{rest} Wait, then measure, before touching."
     )
 
 

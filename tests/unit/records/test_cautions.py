@@ -40,6 +40,28 @@ def test_stored_charge_that_is_safe(voltage: str) -> None:
     assert dangers(found) == []
 
 
+@pytest.mark.parametrize(
+    ("line", "result", "advice"),
+    [
+        (
+            "stored C at V",
+            "no discharge path",
+            "Waiting does not help: discharge it through a resistor, then measure, before touching",
+        ),
+        ("stored C at V through R", "17.1 s", "Wait, then measure, before touching"),
+    ],
+)
+def test_what_to_do_about_a_stored_charge(line: str, result: str, advice: str) -> None:
+    """Waiting is advised only where there is a discharge path; else a resistor."""
+    found = hazard("300 V ± 10 %", line).record
+    assert [each.result for each in found.hazards] == [result]
+    (danger,) = (each.text for each in found.cautions if each.text.startswith("Stored charge"))
+    assert danger.endswith(
+        f". The LED string stops conducting below its own voltage and does not discharge it."
+        f" {advice}."
+    )
+
+
 @pytest.mark.parametrize("voltage", ["-46 V ± 10 %", "46 V ± 10 %"])
 def test_supply_of_either_sign(voltage: str) -> None:
     """A supply that reaches more than fifty volts of either sign is dangerous."""
