@@ -20,6 +20,7 @@ from calcdoc.errors import CalcdocError
 from calcdoc.folder import Folder, read_bytes, write_whole
 from calcdoc.frozen import Frozen
 from calcdoc.model.build import build
+from calcdoc.model.judging import outside_band
 from calcdoc.model.model import Model
 from calcdoc.problems import Finding, error
 from calcdoc.problems.views import full, has_errors, in_order
@@ -118,7 +119,7 @@ def evaluate(design: Design) -> Evaluated:
         return Evaluated(design, None, design.findings)
     evaluation, findings = evaluate_model(design.model)
     if evaluation is not None:
-        findings += hazard_warning(evaluation)
+        findings += (*hazard_warning(evaluation), *outside_band(design.model))
     return Evaluated(design, evaluation, in_order((*design.findings, *findings)))
 
 

@@ -3,11 +3,12 @@
 from collections.abc import Mapping
 
 from calcdoc.model import series
-from calcdoc.model.model import Compared, Discharge, Judged, Typed, Variable
+from calcdoc.model.model import Compared, Discharge, Judged, Model, Typed, Variable
 from calcdoc.model.namespace import Namespace, direct_uses
 from calcdoc.model.quantities import typed_as
 from calcdoc.model.typing import Checker, Unknown
-from calcdoc.problems import Finding, Mistake, Place, error
+from calcdoc.problems import Finding, Mistake, Place, error, warning
+from calcdoc.text.given import Given
 from calcdoc.text.nodes import Node
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
@@ -21,6 +22,31 @@ from calcdoc.units import Dimension
 from calcdoc.units.dimension import CURRENT, TIME, VOLTAGE
 
 CAPACITANCE = CURRENT * TIME / VOLTAGE
+
+
+def outside_band(model: Model) -> tuple[Finding, ...]:
+    """Operating points that reach beyond the band a quantity was declared with: maybe a slip."""
+    return tuple(
+        _beyond(point, given)
+        for judged in model.criteria
+        if isinstance(judged, Judged)
+        for point in judged.statement.clauses.at
+        if (given := model.variables[point.symbol.key].given) is not None
+        and given.varies
+        and not given.si[0] <= point.given.si[0] <= point.given.si[-1] <= given.si[-1]
+    )
+
+
+def _beyond(point: PointValue, given: Given) -> Finding:
+    least, greatest = (given.unit.from_si(given.si[end]) for end in (0, -1))
+    unit = f" {given.unit.text}" if given.unit.text else ""
+    return warning(
+        "outside-band",
+        f"`{point.symbol.name}` is declared from {least:.6g}{unit} to {greatest:.6g}{unit},"
+        " this point lies outside",
+        point.given.span,
+        help="correct it, or say in the description why the criterion looks beyond the band",
+    )
 
 
 class Judging:

@@ -16,6 +16,7 @@ from calcdoc.text.scan import Scanner, not_yet
 from calcdoc.text.statements import Clauses, Inequality, Label, Margin, PointValue, Uncalculated
 
 _UNCALCULATED: Final = re.compile(r"(by test|by inspection|not applicable)\s*:\s*")
+_NEARLY: Final = re.compile(r"(by|not)\s+[a-z]+(?=\s*(:|$))")
 _ANY_OF: Final = re.compile(r"any of\b")
 _ACCEPT: Final = re.compile(r"accept\s+[A-Za-z]")
 _COMPARE: Final = re.compile(r"<=|>=|<|>")
@@ -40,6 +41,16 @@ def criterion(statement: Passage) -> Inequality | Uncalculated:
         if not text:
             scanner.refuse(f"what `{found[1]}` is about")
         return Uncalculated(name, found[1], text, plain(description), basis(source), first.whole)
+    if found := scanner.look(_NEARLY):
+        raise Mistake(
+            error(
+                "criterion-form",
+                f"expected `by test:`, `by inspection:` or `not applicable:`, found"
+                f" `{found[0].strip()}`",
+                scanner.span(*found.span()),
+                help="write the words, a colon and what it is about, as in by test: temperatures",
+            )
+        )
     if found := scanner.look(_ANY_OF):
         raise Mistake(not_yet("`any of`", scanner.span(*found.span())))
     operands, operators = _inequality(scanner)

@@ -2,6 +2,7 @@
 
 from calcdoc.analysis.evaluate import evaluate_model
 from calcdoc.model.build import build
+from calcdoc.model.judging import outside_band
 from calcdoc.problems import Finding
 from calcdoc.problems.views import full, has_errors, in_order
 from calcdoc.source import SourceFile
@@ -18,7 +19,8 @@ def findings_of(text: str, path: str = "lamp.md") -> tuple[Finding, ...]:
         model, more = build(document)
         findings += more
         if model is not None and not has_errors(findings):
-            findings += evaluate_model(model)[1]
+            evaluation, trouble = evaluate_model(model)
+            findings += trouble if evaluation is None else outside_band(model)
     return in_order(findings)
 
 
