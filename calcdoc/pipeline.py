@@ -95,7 +95,8 @@ def read(path: str | os.PathLike[str]) -> Design:
     """
     name = os.fspath(path)
     data = read_bytes(Path(name), name)
-    source, findings = _decoded(name, data)
+    # A name that is no UTF-8 cannot stand in a record as it is.
+    source, findings = _decoded(os.fsencode(name).decode("utf-8", "replace"), data)
     if findings:
         return Design(source, data, None, findings)
     document, findings = read_document(source)

@@ -14,8 +14,8 @@ from calcdoc.folder import write_whole
 def new(name: str) -> int:
     """Start a design text NAME.md that checks clean."""
     path = Path(name if name.endswith(".md") else f"{name}.md")
-    stem = path.stem
-    if not stem.strip(".") or any(ord(c) < ord(" ") for c in name):
+    stem = path.name.removesuffix(".md")
+    if not stem.strip(". ") or any(ord(c) < ord(" ") for c in name):
         raise FileTrouble(f"'{name}' is no file name")
     if path.exists():
         raise FileTrouble(f"{path} is there already; choose another name")

@@ -22,6 +22,8 @@ def _row(criterion: Criterion) -> Row:
     what = criterion.description or criterion.text
     if criterion.value is None:
         return (criterion.id, criterion.verdict, "", "", "", "", criterion.text)
+    if "margin" in criterion.clauses:
+        what += f" {typeset(criterion.clauses)}"
     at = ", ".join(f"{symbol} {typeset(text)}" for symbol, text in criterion.governing.items())
     return (
         criterion.id,

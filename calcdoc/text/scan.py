@@ -14,6 +14,7 @@ from calcdoc.source import Span
 from calcdoc.text.names import LETTER, MARK
 from calcdoc.text.passage import Passage
 
+_FAMILIAR: Final = re.compile(rf"[{LETTER}]")
 _BLANKS: Final = re.compile(r"[ \n]*")
 _PIECE: Final = rf"(?s)[{LETTER}][{LETTER}{MARK}0-9_]*|[0-9][0-9.]*|."
 """What stands here, for a mistake; compiled when there is one."""
@@ -138,5 +139,7 @@ def shown(text: str) -> str:
         name = "a tab" if text == "\t" else unicodedata.name(text, "a character").lower()
         return name if text == "\t" else f"a {name.removeprefix('a ')} (U+{ord(text):04X})"
     flat = " ".join(text.split()) or repr(text)[1:-1]
+    if len(text) == 1 and text.isalpha() and not _FAMILIAR.match(text):
+        return f"`{text}` ({unicodedata.name(text, 'a letter').lower()}, U+{ord(text):04X})"
     flat = "".join(each if each.isprintable() else "\ufffd" for each in flat)
     return f"`{flat if len(flat) <= SHOWN_MOST else flat[: SHOWN_MOST - 1] + '…'}`"

@@ -1,6 +1,7 @@
 """What the commands print and how they leave."""
 
 import json
+import os
 import re
 from pathlib import Path
 
@@ -147,6 +148,37 @@ def test_new_design_checks_clean(shell: Shell) -> None:
         3,
         "calcdoc: lamp.md is there already; choose another name\n",
     )
+
+
+@pytest.mark.parametrize("name", ["", ".md", "..", " "])
+def test_new_without_a_name(shell: Shell, name: str) -> None:
+    """A design needs a name of its own; nothing hidden is written."""
+    said = shell("new", name)
+    assert (said.status, said.err) == (3, f"calcdoc: '{name}' is no file name\n")
+    assert list(shell.folder.iterdir()) == []
+
+
+def test_margin_asked_for_is_said(shell: Shell) -> None:
+    """The terminal says which margin was asked for beside the one there is."""
+    lines = (
+        "```inputs\nT_a = 80 °C\n```\n```criteria\nR1: T_a <= 90 °C with margin 15 K | air\n```\n"
+    )
+    said = shell("check", shell.put("lamp.md", TITLE + lines))
+    assert said.out.splitlines()[2] == (
+        "  R1  fail  80.00\u00a0°C  ≤  90.00\u00a0°C  margin 10\u00a0K  air with margin 15 K"
+    )
+
+
+def test_name_that_is_no_utf8(shell: Shell) -> None:
+    """A file whose name is no UTF-8 is checked; its name is shown as far as it can be."""
+    name = os.fsdecode(b"l\xff.md")
+    try:
+        shell.put(name, TITLE + "\n```derive\nx = y\n```\n")
+    except OSError:
+        pytest.skip("the file system takes no such name")
+    said = shell("check", "--format", "json", name)
+    assert said.status == 2
+    assert json.loads(said.out)["problems"][0]["file"] == "l\ufffd.md"
 
 
 def test_write_then_read_back(shell: Shell) -> None:
