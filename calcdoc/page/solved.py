@@ -108,7 +108,7 @@ def agreement(check: Crosscheck) -> str:
     words = verdict("agrees") if check.agrees else verdict("differs")
     if not check.difference_text:
         return words
-    shown = f"{words}, greatest difference {typeset.quantity(check.difference_text)}"
+    shown = f"{words}, worst difference {typeset.quantity(check.difference_text)}"
     allowed = typeset.quantity(check.allowed_text)
     return f"{shown}, allowed {allowed}" if allowed else shown
 
