@@ -57,16 +57,20 @@ def page(name: str) -> str:
 
 def sheets(name: str, folder: Path, *options: str) -> list[str]:
     """The text of each sheet of a design, as poppler reads it."""
-    tool = shutil.which("pdftotext")
-    if tool is None:
-        pytest.skip("pdftotext (Debian package poppler-utils) is not installed")
     path = folder / f"{name}.pdf"
     if not path.exists():
         text = design_of(name).read_bytes()
         path.write_bytes(pdf(record(name), text, NO_DATA, issued=ISSUED))
+    return pdf_text(path, *options).split("\f")[:-1]
+
+
+def pdf_text(path: Path, *options: str) -> str:
+    """The text of a PDF as poppler reads it."""
+    tool = shutil.which("pdftotext")
+    if tool is None:
+        pytest.skip("pdftotext (Debian package poppler-utils) is not installed")
     command = [tool, *options, str(path), "-"]
-    found = subprocess.run(command, check=True, capture_output=True, text=True)  # noqa: S603
-    return found.stdout.split("\f")[:-1]
+    return subprocess.run(command, check=True, capture_output=True, text=True).stdout  # noqa: S603
 
 
 class _Words(HTMLParser):

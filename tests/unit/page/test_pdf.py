@@ -1,8 +1,6 @@
 """The sheets of the sample record."""
 
 import io
-import shutil
-import subprocess
 import sys
 from datetime import UTC, datetime
 from pathlib import Path
@@ -12,6 +10,7 @@ import pytest
 
 from calcdoc.errors import MissingLibrary
 from calcdoc.page.pdf import pdf, sheet_html
+from tests.helpers.pages import pdf_text
 from tests.helpers.sample_record import DATA, TEXT, sample
 
 ISSUED = datetime(2026, 11, 20, tzinfo=UTC)
@@ -34,16 +33,7 @@ def written() -> bytes:
 def text(written: bytes, tmp_path_factory: pytest.TempPathFactory) -> str:
     path = tmp_path_factory.mktemp("pdf") / "record.pdf"
     path.write_bytes(written)
-    return extracted(path)
-
-
-def extracted(path: Path) -> str:
-    """The text of a PDF as poppler reads it."""
-    tool = shutil.which("pdftotext")
-    if tool is None:
-        pytest.skip("pdftotext is not installed")
-    command = [tool, "-layout", str(path), "-"]
-    return subprocess.run(command, check=True, capture_output=True, text=True).stdout  # noqa: S603
+    return pdf_text(path, "-layout")
 
 
 def test_no_mathml_reaches_the_sheets() -> None:
@@ -108,7 +98,7 @@ def test_draft_is_marked_on_every_sheet(tmp_path: Path) -> None:
     """The word stands on each sheet, and the boxes say that nothing can be signed."""
     path = tmp_path / "draft.pdf"
     path.write_bytes(pdf(sample(status="draft", paper="letter"), TEXT, DATA, issued=ISSUED))
-    sheets = extracted(path).split("\f")[:-1]
+    sheets = pdf_text(path, "-layout").split("\f")[:-1]
     assert sheets
     assert all("DRAFT" in sheet for sheet in sheets)
     assert "".join(sheets).count("draft: cannot be signed") == 3
