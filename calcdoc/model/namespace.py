@@ -8,7 +8,7 @@ from calcdoc.problems import Finding, Place, error
 from calcdoc.text.document import Document
 from calcdoc.text.given import Given
 from calcdoc.text.names import fold, nearest, taken_as
-from calcdoc.text.nodes import Node, Quantity, UnitText, names, walk
+from calcdoc.text.nodes import Name, Node, Quantity, UnitText, names, walk
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
     CrosscheckStatement,
@@ -199,6 +199,10 @@ def _used(statement: Statement) -> Iterator[Label]:
     match statement:
         case HazardStatement():
             yield from statement.symbols
+        case GivenStatement():
+            like = statement.given.parts.like
+            if like and isinstance(like.count, Name):
+                yield Label(like.count.name, like.count.span)
         case Inequality():
             yield from (point.symbol for point in statement.clauses.at)
         case SettleStatement():

@@ -28,7 +28,7 @@ from calcdoc.text.statements import (
 from calcdoc.text.statements import (
     Unknown as Sought,
 )
-from calcdoc.units import Unit
+from calcdoc.units import ONE, Unit
 
 
 def weight(unit: Unit) -> Fraction:
@@ -87,6 +87,8 @@ class Quantities:
                 self.types[key] = variable.typed
         for key in self.settled:
             self._check_loop(key)
+        for variable in tuple(self.variables.values()):
+            self._check_count(variable)
 
     def _variable(
         self, key: str, statement: GivenStatement | Definition | SolvedStatement
@@ -176,6 +178,27 @@ class Quantities:
                 self.findings.append(
                     _bracket_mismatch(self.settled[key].bracket, variable.typed, found, variable)
                 )
+
+    def _check_count(self, variable: Variable) -> None:
+        """``each of n``: n is a given plain number, whole and at least one."""
+        like = variable.given.parts.like if variable.given else None
+        if like is None or not isinstance(like.count, Name):
+            return
+        count = self.variables.get(fold(like.count.name))
+        given = count.given if count else None
+        whole = given and given.nominal.denominator == 1 and given.nominal >= 1
+        if count is None:
+            return
+        if given is None or given.varies or count.typed.dimension != ONE or not whole:
+            self.findings.append(
+                error(
+                    "tolerance",
+                    f"{shown(like.count.name)} is no fixed number of parts",
+                    like.count.span,
+                    related=(Place(count.label.span, "defined here"),),
+                    help="name an input that is a whole number",
+                )
+            )
 
     # --- solved lines --------------------------------------------------------------------------
 

@@ -1,6 +1,7 @@
 """Acceptance criteria: an inequality with clauses, or a verdict that is not calculated."""
 
 import re
+from fractions import Fraction
 from typing import Final
 
 from calcdoc.frozen import replace
@@ -8,12 +9,13 @@ from calcdoc.problems import Mistake, error
 from calcdoc.text.cells import basis, columns, label, labelled, plain
 from calcdoc.text.derivation import index_set
 from calcdoc.text.formula import formula
-from calcdoc.text.given import given
+from calcdoc.text.given import given, no_makeup
 from calcdoc.text.literal import resolve
 from calcdoc.text.nodes import Node
 from calcdoc.text.passage import Passage
 from calcdoc.text.scan import Scanner, not_yet
 from calcdoc.text.statements import Clauses, Inequality, Label, Margin, PointValue, Uncalculated
+from calcdoc.units import ONE
 
 _UNCALCULATED: Final = re.compile(r"(by test|by inspection|not applicable)\s*:\s*")
 _NEARLY: Final = re.compile(r"(by|not)\s+[a-z]+(?=\s*(:|$))")
@@ -128,15 +130,30 @@ def _clause(scanner: Scanner, clauses: Clauses, word: str, start: int) -> Clause
         found = scanner.take(_METHOD)
         if found is None:
             scanner.refuse("`extremes`, `root sum square` or `sampling`")
-        if found[1] != "extremes":
-            raise Mistake(not_yet(f"`by {found[1]}`", scanner.span(*found.span())))
-        return clauses
+        share = _share(scanner) if found[1] == "sampling" else None
+        return replace(clauses, by=found[1], share=share)
     if word == "with":
         scanner.expect(_MARGIN, "`margin` after `with`")
         return replace(clauses, margin=_margin(scanner))
     if scanner.take(_NOMINAL):
         return replace(clauses, at_nominal=True)
     return replace(clauses, at=_point(scanner))
+
+
+def _share(scanner: Scanner) -> Fraction:
+    """``"sampling" share``, a share of the draws in per cent, or 0.997 as a plain number."""
+    value = given(scanner)
+    share = value.unit.to_si(value.nominal)
+    if value.varies or value.unit.dimension != ONE or not 0 < share < 1:
+        raise Mistake(
+            error(
+                "criterion-form",
+                "sampling asks for a share of the draws between 0 % and 100 %",
+                value.span,
+                help="write by sampling 99.7 %",
+            )
+        )
+    return share
 
 
 def _margin(scanner: Scanner) -> Margin:
@@ -162,5 +179,6 @@ def _point(scanner: Scanner) -> tuple[PointValue, ...]:
         symbol: Label = label(scanner, "`nominal`, or a symbol with its value")
         scanner.expect(_EQUALS, "`=`")
         values.append(PointValue(symbol, given(scanner)))
+        no_makeup(scanner)
         if scanner.take(_COMMA) is None:
             return tuple(values)

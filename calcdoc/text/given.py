@@ -13,8 +13,8 @@ from calcdoc.frozen import Frozen
 from calcdoc.problems import Mistake, error
 from calcdoc.source import Span
 from calcdoc.text import literal
-from calcdoc.text.nodes import Quantity, UnitText
-from calcdoc.text.scan import Scanner, not_yet
+from calcdoc.text.nodes import Name, Number, Quantity, UnitText
+from calcdoc.text.scan import Scanner
 from calcdoc.text.unparse import unit_text
 from calcdoc.units import ONE, PLAIN, Unit
 
@@ -22,7 +22,7 @@ _SIGN: Final = re.compile(r"[+-]")
 _PLUS_MINUS: Final = re.compile(r"±|\+/-")
 _RANGE: Final = re.compile(r"\.\.")
 _LARGEST: Final = 10**300
-_LATER: Final = re.compile(r"(as|bias|each)\b")
+MAKEUP_WORD: Final = re.compile(r"(as|bias|each)\b")
 
 
 class Style(Enum):
@@ -34,6 +34,40 @@ class Style(Enum):
     UNEQUAL = "unequal"  # -20 % +50 %
     LIMITS = "limits"  # three values
     RANGE = "range"  # two values; the nominal is the middle
+
+
+class Bias(Frozen, frozen=True):
+    """A part of a tolerance that is not random: it stands at its worse end in every method."""
+
+    low: Fraction
+    high: Fraction
+    """Changes of the value, in its unit."""
+    text: str
+    """As written: ``-12 % .. 0 % (temperature)``."""
+
+
+class Like(Frozen, frozen=True):
+    """Like parts that vary on their own; the symbol means their mean."""
+
+    count: Name | Number
+    shared: Fraction
+    """The share of the band that they have in common."""
+
+
+class MakeUp(Frozen, frozen=True):
+    """What a tolerance is made of, for parts."""
+
+    shape: str
+    """``rectangular``, ``triangular`` or ``normal``."""
+    k: Fraction | None
+    """How many standard deviations the limits of a normal part stand for."""
+    assumed: bool
+    """Whether the author left the distribution open."""
+    low: Fraction
+    high: Fraction
+    """The limits of the random part alone, in the unit of the value."""
+    biases: tuple[Bias, ...] = ()
+    like: Like | None = None
 
 
 class Given(Frozen, frozen=True):
@@ -51,6 +85,13 @@ class Given(Frozen, frozen=True):
     units: tuple[UnitText, ...]
     """Every unit as written; a joined word may be mistaken for a symbol."""
     span: Span
+    makeup: MakeUp | None = None
+    """None where only the band is stated: then it is one random part, assumed rectangular."""
+
+    @property
+    def parts(self) -> MakeUp:
+        """What the tolerance is made of, also when only the band is stated."""
+        return self.makeup or MakeUp("rectangular", None, True, self.least, self.greatest)
 
     @property
     def si(self) -> tuple[float, float, float]:
@@ -66,7 +107,7 @@ class Given(Frozen, frozen=True):
         return self.least < self.greatest
 
 
-class _Part(Frozen, frozen=True):
+class Part(Frozen, frozen=True):
     """A signed number, with a unit or without."""
 
     value: Fraction
@@ -77,11 +118,11 @@ class _Part(Frozen, frozen=True):
 
 def given(scanner: Scanner) -> Given:
     """``given = part [".." part [".." part]] | part tolerance``"""
-    first = _signed(scanner)
+    first = signed(scanner)
     if scanner.take(_RANGE):
-        parts = [first, _signed(scanner)]
+        parts = [first, signed(scanner)]
         if scanner.take(_RANGE):
-            parts.append(_signed(scanner))
+            parts.append(signed(scanner))
         value = _limits(parts)
     else:
         value = _with_tolerance(scanner, first)
@@ -94,18 +135,24 @@ def given(scanner: Scanner) -> Given:
                 help="values stay under a one with 300 zeros in SI units",
             )
         )
-    if later := scanner.look(_LATER):
-        raise Mistake(
-            not_yet(
-                f"`{later.group()}`",
-                scanner.span(*later.span()),
-                "state the band alone: ± 10 %, -20 % +50 %, or limits a .. b",
-            )
-        )
     return value
 
 
-def _signed(scanner: Scanner) -> _Part:
+def no_makeup(scanner: Scanner) -> None:
+    """Refuse a make-up where only a band can stand."""
+    if found := scanner.look(MAKEUP_WORD):
+        raise Mistake(
+            error(
+                "tolerance",
+                f"`{found.group()}` is stated where the part itself is given",
+                scanner.span(*found.span()),
+                help="write only the band here",
+            )
+        )
+
+
+def signed(scanner: Scanner) -> Part:
+    """``part = ["+" | "-"] quantity``"""
     sign = scanner.take(_SIGN)
     if sign is None and not scanner.look(literal.NUMBER):
         scanner.refuse("a value with its unit, as in 230 V")
@@ -116,24 +163,24 @@ def _signed(scanner: Scanner) -> _Part:
     unit = node.unit if isinstance(node, Quantity) else None
     value = Fraction(node.digits)
     digits = f"-{node.digits}" if minus else node.digits
-    return _Part(-value if minus else value, digits, unit, scanner.span(start, scanner.at))
+    return Part(-value if minus else value, digits, unit, scanner.span(start, scanner.at))
 
 
-def _unit(part: _Part) -> Unit:
+def _unit(part: Part) -> Unit:
     return literal.resolve(part.unit) if part.unit else PLAIN
 
 
-def _with_tolerance(scanner: Scanner, first: _Part) -> Given:
+def _with_tolerance(scanner: Scanner, first: Part) -> Given:
     """``tolerance = ("±" | "+/-") part | sign part sign part``"""
     if found := scanner.take(_PLUS_MINUS):
-        part = _signed(scanner)
+        part = signed(scanner)
         if part.value <= 0 or scanner.passage.text[found.end() :].lstrip()[:1] in ("+", "-"):
             _refuse(
                 "a tolerance after ± is more than zero and has no sign",
                 part.span,
                 "write ± 10 %, or -20 % +50 % for unequal parts",
             )
-        change = _change(first, part)
+        change = change_of(first, part)
         return _value(
             first,
             (first.value - change, first.value + change),
@@ -141,11 +188,11 @@ def _with_tolerance(scanner: Scanner, first: _Part) -> Given:
             (part,),
         )
     if scanner.look(_SIGN):
-        parts = [_signed(scanner)]
+        parts = [signed(scanner)]
         if scanner.look(_SIGN) is None:
             scanner.refuse("the other part of the tolerance, as in -20 % +50 %")
-        parts.append(_signed(scanner))
-        changes = sorted(_change(first, part) for part in parts)
+        parts.append(signed(scanner))
+        changes = sorted(change_of(first, part) for part in parts)
         spread = tuple(sorted(parts, key=lambda part: part.value))
         return _value(
             first, (first.value + changes[0], first.value + changes[1]), Style.UNEQUAL, spread
@@ -153,12 +200,12 @@ def _with_tolerance(scanner: Scanner, first: _Part) -> Given:
     return _value(first, (first.value, first.value), Style.FIXED, ())
 
 
-def _is_share(part: _Part) -> bool:
+def _is_share(part: Part) -> bool:
     """Whether a tolerance is a share of the value (per cent or ppm)."""
     return part.unit is not None and [w.word for w in part.unit.words] in (["%"], ["ppm"])
 
 
-def _change(first: _Part, part: _Part) -> Fraction:
+def change_of(first: Part, part: Part) -> Fraction:
     """The change a part of a tolerance makes, in the unit of the value."""
     unit = _unit(first)
     span = first.span.to(part.span)
@@ -199,7 +246,7 @@ def _change(first: _Part, part: _Part) -> Fraction:
 
 
 def _value(
-    first: _Part, limits: tuple[Fraction, Fraction], style: Style, parts: tuple[_Part, ...]
+    first: Part, limits: tuple[Fraction, Fraction], style: Style, parts: tuple[Part, ...]
 ) -> Given:
     least, greatest = limits
     span = first.span.to(parts[-1].span) if parts else first.span
@@ -224,7 +271,7 @@ def _value(
     )
 
 
-def _limits(parts: list[_Part]) -> Given:
+def _limits(parts: list[Part]) -> Given:
     """Two or three values; a unit may follow each, all equal, or the last only."""
     span = parts[0].span.to(parts[-1].span)
     unit_part = parts[-1]
@@ -272,7 +319,7 @@ def _decimal(value: Fraction) -> str:
     return f"-{body}" if value < 0 else body
 
 
-def _shown(part: _Part) -> str:
+def _shown(part: Part) -> str:
     return f"{part.digits} {unit_text(part.unit)}" if part.unit else part.digits
 
 

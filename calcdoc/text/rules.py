@@ -9,6 +9,7 @@ from calcdoc.text.cells import basis, columns, label, labelled, plain, state
 from calcdoc.text.crosschecks import crosscheck
 from calcdoc.text.derivation import derivation
 from calcdoc.text.given import given
+from calcdoc.text.makeup import with_makeup
 from calcdoc.text.names import SYMBOL
 from calcdoc.text.passage import Passage
 from calcdoc.text.scan import Scanner, not_yet
@@ -60,7 +61,16 @@ def _given(  # noqa: PLR0913  (the parts of a statement)
     scanner.expect(_EQUALS, "`=`")
     if scanner.look(re.compile('"')):
         raise Mistake(not_yet("a text value", scanner.span(scanner.at, scanner.at + 1)))
-    value = given(scanner)
+    value = with_makeup(scanner, given(scanner))
+    if kind is Kind.CONDITION and value.makeup is not None:
+        raise Mistake(
+            error(
+                "tolerance",
+                "a condition is not random, so it has a band alone",
+                value.span,
+                help="the design must hold at all of it; state parts in inputs",
+            )
+        )
     if not scanner.ended:
         scanner.refuse("a tolerance or the end of the statement (a given value is no formula)")
     text = " ".join(scanner.passage.text[begin:].split())

@@ -1,6 +1,7 @@
 """Statements as written: one frozen type for each kind of line of a block."""
 
 from enum import Enum
+from fractions import Fraction
 
 from calcdoc.frozen import Frozen
 from calcdoc.source import Span
@@ -191,6 +192,9 @@ class Clauses(Frozen, frozen=True):
     """How an inequality is judged."""
 
     by: str = "extremes"
+    """``extremes``, ``root sum square`` or ``sampling``."""
+    share: Fraction | None = None
+    """For sampling, the share of draws that must meet the limit."""
     at: tuple[PointValue, ...] = ()
     at_nominal: bool = False
     margin: Margin | None = None
