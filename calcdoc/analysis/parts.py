@@ -95,7 +95,7 @@ def base_point(parts: Sequence[Part], governing: FloatArray) -> FloatArray:
 
 
 def stream(seed: int, key: str) -> np.random.Generator:
-    """A stream of its own for each input, keyed by seed and symbol: edits elsewhere do not move it."""
+    """A stream of its own for each input, keyed by seed and symbol."""
     word = hashlib.sha256(f"{seed}:{key}".encode()).digest()
     return np.random.Generator(np.random.PCG64(int.from_bytes(word[:16], "big")))
 

@@ -1,7 +1,7 @@
-"""Root sum square and sampling: parts vary on their own, conditions and biases stand at their worst.
+"""Root sum square and sampling: parts vary on their own, the rest stands at its worst.
 
-Both start from the combination that governs a criterion at the extremes, and neither says more than
-the extremes do: a result is never beyond them.
+Both start from the combination that governs a criterion at the extremes, and neither says more
+than the extremes do: a result is never beyond them.
 """
 
 from typing import Final

@@ -10,6 +10,7 @@ from calcdoc.text.names import fold, nearest
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
     Basis,
+    FigureStatement,
     HazardStatement,
     ReferenceStatement,
     RestateStatement,
@@ -53,7 +54,13 @@ def check_references(document: Document, _: Namespace) -> list[Finding]:
 
 
 def _bases(statements: tuple[Statement, ...]) -> Iterator[Basis]:
-    without = HazardStatement | ReferenceStatement | RestateStatement | SensitivityStatement
+    without = (
+        HazardStatement
+        | ReferenceStatement
+        | RestateStatement
+        | SensitivityStatement
+        | FigureStatement
+    )
     for each in statements:
         if not isinstance(each, without):
             yield each.basis

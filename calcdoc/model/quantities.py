@@ -14,6 +14,7 @@ from calcdoc.problems import Finding, Mistake, Place, error
 from calcdoc.source import Span
 from calcdoc.tables.table import Table
 from calcdoc.text.given import Given
+from calcdoc.text.names import fold
 from calcdoc.text.nodes import Name
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (

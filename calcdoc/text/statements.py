@@ -188,6 +188,15 @@ class Margin(Frozen, frozen=True):
     span: Span
 
 
+class Scope(Frozen, frozen=True):
+    """``in every case``, ``in every fault`` or ``in dim, one LED shorted``."""
+
+    every: str
+    """``case``, ``fault``, or empty when the cases are named."""
+    names: tuple[Label, ...]
+    span: Span
+
+
 class Clauses(Frozen, frozen=True):
     """How an inequality is judged."""
 
@@ -197,6 +206,10 @@ class Clauses(Frozen, frozen=True):
     """For sampling, the share of draws that must meet the limit."""
     at: tuple[PointValue, ...] = ()
     at_nominal: bool = False
+    scope: Scope | None = None
+    """None for the normal case and every mode."""
+    when: Node | None = None
+    """The condition under which the limit counts."""
     margin: Margin | None = None
     index: Index | None = None
     text: str = ""
@@ -224,6 +237,92 @@ class Uncalculated(Frozen, frozen=True):
     """What is tested, or why it does not apply."""
     description: str
     basis: Basis
+    span: Span
+
+
+class AnyOf(Frozen, frozen=True):
+    """``H0: any of H1, H2, H3``: one of several routes is enough."""
+
+    id: Label
+    members: tuple[Label, ...]
+    text: str
+    """``any of H1, H2, H3``"""
+    description: str
+    basis: Basis
+    span: Span
+
+
+class Acceptance(Frozen, frozen=True):
+    """``accept R3 in dim | reason | [DEV-3] until 2027-06-30``: a failure that is lived with."""
+
+    criterion: Label
+    cases: tuple[Label, ...]
+    """Empty: in whatever case it fails."""
+    reason: str
+    basis: Basis
+    until: str
+    """The last day it holds, as YYYY-MM-DD."""
+    until_span: Span
+    text: str
+    span: Span
+
+
+class Change(Frozen, frozen=True):
+    """One change of a case: a value with its band, or a formula of the normal values."""
+
+    symbol: Label
+    given: Given | None
+    formula: Node | None
+    """Exactly one of the two is there."""
+    text: str
+    """As written: ``n_LED = n_LED - 1``."""
+
+
+class CaseStatement(Frozen, frozen=True):
+    """``fault one LED shorted: n_LED = n_LED - 1 | single fault``: named changes of inputs."""
+
+    kind: str
+    """``mode`` or ``fault``."""
+    name: Label
+    changes: tuple[Change, ...]
+    description: str
+    basis: Basis
+    text: str
+    span: Span
+
+
+class Measurement(Frozen, frozen=True):
+    """``K3: measured P_m = 4.61 W ± 1.5 % against P_in at V_line = 230.2 V, T_a = 24 °C``."""
+
+    id: Label
+    symbol: Label
+    """What the measured value is called; it cannot be used in formulas."""
+    given: Given
+    """With the uncertainty of the instrument as its band."""
+    second: Node
+    at: tuple[PointValue, ...]
+    """The conditions of the measurement."""
+    description: str
+    basis: Basis
+    text: str
+    span: Span
+
+
+class FigureStatement(Frozen, frozen=True):
+    """``curve V_min against C_res from 4.7 µF to 22 µF with 240 V | caption``."""
+
+    kind: str
+    """``curve``, ``spread``, ``sensitivities`` or ``margins``."""
+    symbol: Label | None
+    """What is drawn; None for margins."""
+    against: Label | None
+    low: Given | None
+    high: Given | None
+    """For a curve: the input along the abscissa, and from where to where."""
+    limit: Node | None
+    """A line to compare with, in a curve or a spread."""
+    caption: str
+    text: str
     span: Span
 
 
@@ -258,7 +357,11 @@ Statement = (
     | CrosscheckStatement
     | Inequality
     | Uncalculated
+    | AnyOf
+    | Acceptance
+    | CaseStatement
+    | Measurement
+    | FigureStatement
     | HazardStatement
     | ReferenceStatement
 )
-Criterion = Inequality | Uncalculated

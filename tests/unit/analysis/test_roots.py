@@ -5,7 +5,7 @@ from math import exp, log, pi
 
 import numpy as np
 import pytest
-from scipy.optimize import brentq, fixed_point  # type: ignore[import-untyped]
+from scipy.optimize import brentq, fixed_point
 
 from calcdoc.analysis.bracket import (
     all_roots,

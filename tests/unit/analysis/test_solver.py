@@ -5,7 +5,7 @@ from collections.abc import Callable
 import numpy as np
 import pytest
 from numpy.random import Generator
-from scipy.optimize import brentq  # type: ignore[import-untyped]
+from scipy.optimize import brentq
 
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.solver import IntArray, solve
