@@ -8,10 +8,11 @@ from typing import Final
 
 import numpy as np
 
-from calcdoc.analysis.compile import Compiled, Side
+from calcdoc.analysis.compile import Compiled
 from calcdoc.analysis.parts import Part, base_point, draw, stream
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import Program, plain
+from calcdoc.analysis.sides import Side
 from calcdoc.frozen import Frozen
 
 CHUNK: Final = 40_000

@@ -10,6 +10,7 @@ from calcdoc.analysis.compile import Compiled
 from calcdoc.analysis.domains import JUMP, NO_CHANGE, POLE, SEVERAL
 from calcdoc.analysis.hazards import Hazard, hazards
 from calcdoc.analysis.points import FloatArray
+from calcdoc.analysis.tape import needed
 from calcdoc.frozen import replace
 from calcdoc.model.model import Model, Variable
 from calcdoc.problems import Finding, Place, error
@@ -70,13 +71,44 @@ def troubles(
     return tuple(found.values())
 
 
+def out_of_reach(
+    compiled: Compiled, model: Model, box: Box, targets: Sequence[int], setter: Inequality | None
+) -> Mapping[int, Finding]:
+    """The targets that cannot be computed somewhere in a box, with the reason for each.
+
+    Args:
+        compiled: The tape and its origins.
+        model: For names and units in the reasons.
+        box: Ranges of the input columns.
+        targets: Instructions.
+        setter: The criterion at whose operating point the box stands, if any.
+    """
+    found = hazards(compiled.tape, targets, box.low, box.nominal, box.high) if targets else ()
+    if not found:
+        return {}
+    teller = _Teller(compiled, model)
+    reasons = {
+        each.instruction: teller.finding(
+            each, setter, at_nominal=bool(np.all(each.point == box.nominal))
+        )
+        for each in found
+    }
+    return {
+        target: next(reasons[at] for at in used if at in reasons)
+        for target in targets
+        if reasons.keys() & set(used := needed(compiled.tape, (target,)))
+    }
+
+
 class _Teller:
     """Says what a hazard is in the words and at the place of the author's text."""
 
     def __init__(self, compiled: Compiled, model: Model) -> None:
         self.compiled, self.model = compiled, model
         self.shares = [each.share for each in compiled.checks if each.share]
-        self.of_root = {at: key for key, at in compiled.roots.items()}
+        self.of_root = {
+            at: key for case in compiled.cases.values() for key, at in case.roots.items()
+        }
 
     def finding(self, hazard: Hazard, setter: Inequality | None, *, at_nominal: bool) -> Finding:
         """The finding for a hazard."""
@@ -173,9 +205,9 @@ class _Teller:
         """``V_line = 207 V, C = 8 µF``: the inputs that do not stand at nominal."""
         nominal, variables = self.compiled.box.nominal, self.model.variables
         moved = [
-            _value(variables[key], float(point[column]))
+            _value(variables[name], float(point[column]))
             for key, column in self.compiled.columns.items()
-            if key in variables and point[column] != nominal[column]
+            if (name := key.partition("@")[0]) in variables and point[column] != nominal[column]
         ]
         return ", ".join(moved[:6]) or "the nominal values"
 

@@ -2,6 +2,7 @@
 
 from collections.abc import Mapping
 from fractions import Fraction
+from typing import Final
 
 from calcdoc.frozen import Frozen
 from calcdoc.tables.table import Table
@@ -10,6 +11,7 @@ from calcdoc.text.given import Given
 from calcdoc.text.nodes import Node
 from calcdoc.text.statements import (
     Basis,
+    CaseStatement,
     CrosscheckStatement,
     GivenStatement,
     HazardStatement,
@@ -24,6 +26,9 @@ from calcdoc.text.statements import (
     Uncalculated,
 )
 from calcdoc.units import Dimension, Unit
+
+NORMAL: Final = "normal"
+"""The name of the case in which nothing is changed."""
 
 
 class Typed(Frozen, frozen=True):
@@ -116,12 +121,25 @@ class Relation(Frozen, frozen=True):
     names: tuple[str, ...]
 
 
+class Case(Frozen, frozen=True):
+    """Named changes of inputs and conditions; the normal case has none."""
+
+    name: str
+    kind: str
+    """``mode`` or ``fault``."""
+    changes: Mapping[str, Given | Node]
+    """Key of what is changed to its new value, or to a formula of the normal values."""
+    statement: CaseStatement
+
+
 class Judged(Frozen, frozen=True):
     """A criterion that is calculated, with the kind of quantity it compares."""
 
     statement: Inequality
     typed: Typed
     depends_on: tuple[str, ...]
+    cases: tuple[str, ...] = (NORMAL,)
+    """Names of the cases it is judged in, in order."""
 
 
 class Compared(Frozen, frozen=True):
@@ -159,3 +177,5 @@ class Model(Frozen, frozen=True):
     hazards: tuple[HazardStatement, ...]
     discharges: tuple[Discharge, ...]
     references: tuple[ReferenceStatement, ...]
+    cases: tuple[Case, ...] = ()
+    """Besides the normal one, in the author's order."""

@@ -305,6 +305,7 @@ class CriterionCase(Plain, frozen=True):
     value: float | None
     limit: float | None
     margin: float | None
+    margin_abs: float | None
     verdict: str
 
 
