@@ -1,7 +1,7 @@
 """Criteria with value, limit, margin and verdict at their governing point."""
 
 from calcdoc.analysis.evaluation import Judgement, Outcome, Row
-from calcdoc.model.model import Judged, Typed
+from calcdoc.model.model import Chosen, Judged, Typed
 from calcdoc.records import record as r
 from calcdoc.records.looked import unverified
 from calcdoc.records.naming import Naming
@@ -28,6 +28,7 @@ def criteria(numbers: Numbers, naming: Naming) -> tuple[r.Criterion, ...]:
         if isinstance(each, Judged)
         else _uncalculated(naming, each)
         for each in numbers.model.criteria
+        if not isinstance(each, Chosen)
     )
 
 
