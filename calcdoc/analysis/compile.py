@@ -10,12 +10,20 @@ import numpy as np
 
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.looking_up import LookedUp
-from calcdoc.analysis.sides import Check, Side, criterion_sides, crosscheck_sides, discharge_time
+from calcdoc.analysis.sides import (
+    Check,
+    Side,
+    criterion_sides,
+    crosscheck_sides,
+    discharge_time,
+    measured_against,
+)
 from calcdoc.analysis.tape import Tape
 from calcdoc.analysis.working import InCase, Working
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import NORMAL, Judged, Model, Root
+from calcdoc.model.model import Judged, Model, Root
 from calcdoc.problems import Finding, Mistake
+from calcdoc.text.cases import NORMAL
 from calcdoc.text.nodes import Node
 
 
@@ -40,6 +48,8 @@ class Compiled(Frozen, frozen=True):
     limits: tuple[Mapping[str, Limits | Finding], ...]
     """For every calculated criterion, by case, its limits, or why there are none."""
     checks: tuple[Check, ...]
+    measured: tuple[int, ...]
+    """For every measurement what it is compared with."""
     discharges: Mapping[str, Mapping[int, int]]
     """By case, for every stored charge by its number that has a discharge path and can be computed,
     the instruction of its time to a safe voltage, in seconds."""
@@ -88,6 +98,7 @@ def compile_model(model: Model) -> Compiled:
     limits = tuple(_in_its_cases(working, each, cases) for each in judged)
     working.enter(normal)
     checks = tuple(crosscheck_sides(working, each) for each in model.crosschecks)
+    measured = tuple(measured_against(working, each) for each in model.measurements)
     discharges = {name: _discharges(working, case) for name, case in cases.items()}
     return Compiled(
         tape=working.builder.tape(),
@@ -96,6 +107,7 @@ def compile_model(model: Model) -> Compiled:
         cases=cases,
         limits=limits,
         checks=checks,
+        measured=measured,
         discharges=discharges,
         looked=tuple(working.looked),
         origins=working.origins,
@@ -105,12 +117,9 @@ def compile_model(model: Model) -> Compiled:
 
 def _columns(model: Model) -> dict[str, int]:
     """A column for every given quantity that varies or that an operating point sets."""
-    set_by_points = {
-        point.symbol.key
-        for each in model.criteria
-        if isinstance(each, Judged)
-        for point in each.statement.clauses.at
-    }
+    points = [each.statement.clauses.at for each in model.criteria if isinstance(each, Judged)]
+    points += [each.statement.at for each in model.measurements]
+    set_by_points = {point.symbol.key for each in points for point in each}
     keys = [
         key
         for key, variable in model.variables.items()

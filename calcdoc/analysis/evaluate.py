@@ -9,6 +9,7 @@ from calcdoc.analysis import judging
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.compile import Compiled, Limits, compile_model
 from calcdoc.analysis.evaluation import (
+    AgainstMeasured,
     Band,
     CaseBands,
     Combination,
@@ -31,14 +32,17 @@ from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import plain
 from calcdoc.analysis.putting_back import put_back, running_away
 from calcdoc.analysis.sides import Check, Side
-from calcdoc.analysis.trouble import out_of_reach, troubles
+from calcdoc.analysis.trouble import Setter, out_of_reach, troubles
 from calcdoc.analysis.working import InCase
-from calcdoc.frozen import replace
-from calcdoc.model.model import NORMAL, Compared, Discharge, Judged, Model
+from calcdoc.frozen import Frozen, replace
+from calcdoc.model.model import Compared, Discharge, Judged, Measured, Model
 from calcdoc.problems import Finding, Mistake
-from calcdoc.text.statements import Inequality
+from calcdoc.text.cases import NORMAL
+from calcdoc.text.statements import Inequality, PointValue
 
-_DECLARED: Final = -1
+Key = tuple[str, int]
+"""``criterion`` or ``measurement`` with its number, or the declared band."""
+_DECLARED: Final[Key] = ("declared", 0)
 Ends = tuple[int, int]
 """Numbers of the two questions for a band."""
 
@@ -52,46 +56,67 @@ def evaluate_model(model: Model) -> tuple[Evaluation | None, tuple[Finding, ...]
         compiled = compile_model(model)
     except Mistake as mistake:
         return None, (mistake.finding,)
-    boxes = _boxes(compiled, model)
-    wanted = [_targets(compiled, at) for at in boxes]
-    judged = _judged(model)
-    setters = [None if at == _DECLARED else judged[at].statement for at in boxes]
-    found = troubles(compiled, model, list(boxes.values()), wanted, setters)
+    settings = _settings(compiled, model)
+    found = troubles(
+        compiled,
+        model,
+        [each.box for each in settings.values()],
+        [_targets(compiled, key) for key in settings],
+        [each.setter for each in settings.values()],
+    )
     if found:
         return None, found
     try:
-        return _Evaluator(compiled, model, boxes).run(), ()
+        return _Evaluator(compiled, model, settings).run(), ()
     except Mistake as mistake:
         return None, (mistake.finding,)
 
 
-def _boxes(compiled: Compiled, model: Model) -> dict[int, Box]:
-    """The band as declared, and one box for each criterion at an operating point, by number."""
-    boxes = {_DECLARED: compiled.box}
+class Setting(Frozen, frozen=True):
+    """A box of the input columns, and who sets values in it."""
+
+    box: Box
+    setter: Setter | None
+
+
+def _settings(compiled: Compiled, model: Model) -> dict[Key, Setting]:
+    """The band as declared, and a box for each criterion or measurement with values of its own."""
+    settings: dict[Key, Setting] = {_DECLARED: Setting(compiled.box, None)}
     for at, judged in enumerate(_judged(model)):
-        points = judged.statement.clauses.at
-        if not points:
-            continue
-        box = compiled.box
-        low, nominal, high = box.low.copy(), box.nominal.copy(), box.high.copy()
-        for point in points:
-            column = compiled.columns[point.symbol.key]
-            low[column], nominal[column], high[column] = point.given.si
-        boxes[at] = Box(low, nominal, high)
-    return boxes
+        if points := judged.statement.clauses.at:
+            setter = Setter("criterion", judged.statement.id.name, points)
+            settings["criterion", at] = Setting(_set(compiled, points), setter)
+    for at, measured in enumerate(model.measurements):
+        setter = Setter("measurement", measured.statement.id.name, measured.statement.at)
+        box = _set(compiled, setter.points)
+        settings["measurement", at] = Setting(box, setter if setter.points else None)
+    return settings
+
+
+def _set(compiled: Compiled, points: tuple[PointValue, ...]) -> Box:
+    """The declared box with some values set."""
+    box = compiled.box
+    low, nominal, high = box.low.copy(), box.nominal.copy(), box.high.copy()
+    for point in points:
+        column = compiled.columns[point.symbol.key]
+        low[column], nominal[column], high[column] = point.given.si
+    return Box(low, nominal, high)
 
 
 def _judged(model: Model) -> list[Judged]:
     return [each for each in model.criteria if isinstance(each, Judged)]
 
 
-def _targets(compiled: Compiled, criterion: int) -> list[int]:
-    """What must be computable in a box: everything normal in the declared one, else the criterion.
+def _targets(compiled: Compiled, key: Key) -> list[int]:
+    """What must be computable in a box: in the declared one everything that is normal.
 
     A criterion that is judged in other cases only need not be computable in the normal one.
     """
-    if criterion != _DECLARED:
-        return [side.target for side in _normal_sides(compiled.limits[criterion])]
+    kind, at = key
+    if kind == "criterion":
+        return [side.target for side in _normal_sides(compiled.limits[at])]
+    if kind == "measurement":
+        return [compiled.measured[at]]
     sides = [side.target for each in compiled.limits for side in _normal_sides(each)]
     checks = [check.difference for check in compiled.checks]
     times = compiled.discharges[NORMAL].values()
@@ -107,8 +132,9 @@ def _normal_sides(in_case: Mapping[str, Limits | Finding]) -> tuple[Side, ...]:
 class _Evaluator:
     """Asks all questions at once and reads the answers off in order."""
 
-    def __init__(self, compiled: Compiled, model: Model, boxes: dict[int, Box]) -> None:
-        self.compiled, self.model, self.boxes = compiled, model, boxes
+    def __init__(self, compiled: Compiled, model: Model, settings: Mapping[Key, Setting]) -> None:
+        self.compiled, self.model, self.settings = compiled, model, settings
+        self.declared = settings[_DECLARED].box
         self.keys = {column: key for key, column in compiled.columns.items()}
         self.questions: list[Question] = []
         self.answers: tuple[Extreme, ...] = ()
@@ -121,7 +147,7 @@ class _Evaluator:
 
     def run(self) -> Evaluation:
         """All bands, conclusions, cross-checks and discharge times."""
-        compiled, whole = self.compiled, self.boxes[_DECLARED]
+        compiled, whole = self.compiled, self.declared
         self._set_ceilings()
         asked_bands = {
             key: self._ask_both(at, whole)
@@ -135,6 +161,10 @@ class _Evaluator:
         cases = [_CaseAsked(self, case) for case in compiled.cases.values() if case.changes]
         heard = self._hearings()
         checks = [self._ask_both(each.difference, whole) for each in compiled.checks]
+        measured = [
+            self._ask_both(at, self.settings["measurement", number].box)
+            for number, at in enumerate(compiled.measured)
+        ]
         times = self._ask_times(cases)
         self._answer()
         nominal = self._values(whole.nominal[:, None])[:, 0]
@@ -161,6 +191,12 @@ class _Evaluator:
                 self._crosscheck(compared, check, nominal, asked)
                 for compared, check, asked in zip(
                     self.model.crosschecks, compiled.checks, checks, strict=True
+                )
+            ),
+            tuple(
+                self._measured(number, each, asked)
+                for number, (each, asked) in enumerate(
+                    zip(self.model.measurements, measured, strict=True)
                 )
             ),
             compiled.chosen,
@@ -191,7 +227,7 @@ class _Evaluator:
         for (_, side), most in zip(sides, extremes(self.compiled.tape, questions), strict=True):
             size = most.bound if np.isfinite(most.bound) else np.finfo(float).max / 4
             assert side.ceiling is not None
-            for box in self.boxes.values():
+            for box in (each.box for each in self.settings.values()):
                 for ends in (box.low, box.nominal, box.high):
                     ends[side.ceiling] = size + abs(size) + 1e-300
 
@@ -211,7 +247,8 @@ class _Evaluator:
         known, sides = limits.case, limits.sides
         box = self._box(number)
         if case != NORMAL:
-            setter = judged.statement if number in self.boxes else None
+            own = self.settings.get(("criterion", number))
+            setter = own.setter if own else None
             targets = [side.target for side in sides]
             for reason in out_of_reach(self.compiled, self.model, box, targets, setter).values():
                 return Unjudged(judged, case, Outcome.NOT_DECIDED, _said(reason))
@@ -220,7 +257,7 @@ class _Evaluator:
 
     def _ask_times(self, cases: list["_CaseAsked"]) -> dict[tuple[str, int], int]:
         """The greatest time to a safe voltage, by case and number of the stored charge."""
-        whole = self.boxes[_DECLARED]
+        whole = self.declared
         broken = {NORMAL: set[int](), **{each.case.name: each.out_of_reach for each in cases}}
         return {
             (name, number): self._ask(at, True, whole)
@@ -231,7 +268,8 @@ class _Evaluator:
 
     def _box(self, criterion: int) -> Box:
         """The box a criterion is judged over."""
-        box = self.boxes.get(criterion, self.boxes[_DECLARED])
+        own = self.settings.get(("criterion", criterion))
+        box = own.box if own else self.declared
         nominal = _judged(self.model)[criterion].statement.clauses.at_nominal
         return box.at_nominal if nominal else box
 
@@ -272,7 +310,7 @@ class _Evaluator:
 
     def _points(self) -> FloatArray:
         """The nominal point and every point that was found, shape (n_columns, n_points)."""
-        points = [self.boxes[_DECLARED].nominal, *(each.point for each in self.answers)]
+        points = [self.declared.nominal, *(each.point for each in self.answers)]
         # Many questions end at one point. (np.unique would load all of NumPy's masked arrays.)
         return np.stack(list({each.tobytes(): each for each in points}.values()), axis=1)
 
@@ -294,7 +332,7 @@ class _Evaluator:
 
     def ask_both(self, target: int) -> Ends:
         """Ask for the band of an instruction over the declared box."""
-        return self._ask_both(target, self.boxes[_DECLARED])
+        return self._ask_both(target, self.declared)
 
     def _given_band(self, key: str) -> Band:
         """A given quantity is at its own limits: nothing to search."""
@@ -427,6 +465,25 @@ class _Evaluator:
             compared, first, second, worst.value, agrees, self._combination(worst), worst.proof
         )
 
+    def _measured(self, number: int, measured: Measured, asked: Ends) -> AgainstMeasured:
+        """Agreement when the difference is within the root sum square of both bands.
+
+        Of each band the side counts that faces the other value.
+        """
+        low, high = (self.answers[at] for at in asked)
+        box, at = self.settings["measurement", number].box, self.compiled.measured[number]
+        second = float(plain(self.compiled.tape, (at,)).evaluate(box.nominal[:, None])[-1, 0])
+        least, first, greatest = measured.statement.given.si
+        own, other = (first - least, high.value - second)
+        if first < second:
+            own, other = greatest - first, second - low.value
+        allowed = float(np.hypot(own, max(other, 0.0)))
+        agrees = abs(first - second) <= allowed + EQUAL * max(abs(first), abs(second))
+        return AgainstMeasured(
+            measured, first, second, first - second, allowed, agrees,
+            low.value, high.value, _weaker(low.proof, high.proof),
+        )  # fmt: skip
+
     def _discharged(
         self,
         number: int,
@@ -477,7 +534,7 @@ class _CaseAsked:
         series = {k: at for k, at in case.series.items() if at != normal.series[k]}
         targets = [*single.values(), *(at for each in series.values() for at in each.values())]
         targets += evaluator.compiled.discharges[case.name].values()
-        reasons = out_of_reach(evaluator.compiled, evaluator.model, evaluator.boxes[_DECLARED],
+        reasons = out_of_reach(evaluator.compiled, evaluator.model, evaluator.declared,
                                targets, None)  # fmt: skip
         self.out_of_reach = set(reasons)
         self.broken = {key: _said(each) for key, each in case.broken.items()}

@@ -7,7 +7,7 @@ from calcdoc.analysis.extremes import Proof
 from calcdoc.analysis.looking_up import LookedUp
 from calcdoc.analysis.sides import Side
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import Compared, Judged, Model, Root
+from calcdoc.model.model import Compared, Judged, Measured, Model, Root
 from calcdoc.text.nodes import Node
 from calcdoc.text.statements import RestateStatement, SensitivityStatement
 
@@ -135,6 +135,25 @@ class Crosschecked(Frozen, frozen=True):
     proof: Proof
 
 
+class AgainstMeasured(Frozen, frozen=True):
+    """A measured value against what is computed at the conditions of the measurement."""
+
+    measured: Measured
+    first: float
+    """Measured."""
+    second: float
+    """Computed, with every part at nominal."""
+    difference: float
+    """First less second."""
+    allowed: float
+    """Root sum square of both bands, each on the side that faces the other value."""
+    agrees: bool
+    low: float
+    high: float
+    """The band of the computed value at those conditions."""
+    proof: Proof
+
+
 class Gain(Frozen, frozen=True):
     """The greatest share of a small change that comes back through a settled loop."""
 
@@ -236,6 +255,7 @@ class Evaluation(Frozen, frozen=True):
     conclusions: tuple[Conclusion, ...]
     """One for each calculated criterion, in order."""
     crosschecks: tuple[Crosschecked, ...]
+    measurements: tuple[AgainstMeasured, ...]
     chosen: Mapping[str, Root]
     """Key of every solved quantity to the root that was left."""
     put_back: Mapping[str, PutBack]

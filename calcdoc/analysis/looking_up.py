@@ -10,8 +10,8 @@ from calcdoc.analysis.extremes import Question, extremes
 from calcdoc.analysis.points import BoolArray, evaluate_points
 from calcdoc.analysis.tape import Op, Tape
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import NORMAL
 from calcdoc.tables.table import Axis, Found, Range, Table
+from calcdoc.text.cases import NORMAL
 
 if TYPE_CHECKING:
     from calcdoc.analysis.working import Working

@@ -8,7 +8,7 @@ from calcdoc.analysis.formulas import is_constant
 from calcdoc.analysis.tape import Op
 from calcdoc.analysis.working import Working
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import Compared, Discharge, Judged
+from calcdoc.model.model import Compared, Discharge, Judged, Measured
 from calcdoc.text.nodes import Binary, Name, Node
 
 SAFE_VOLTAGE: Final = Fraction(60)
@@ -138,6 +138,12 @@ def crosscheck_sides(working: Working, compared: Compared) -> Check:
     share = Binary("/", statement.first, statement.second, span, span)
     working.origins.setdefault(difference, share)
     return Check(first, second, difference, share)
+
+
+def measured_against(working: Working, measured: Measured) -> int:
+    """What a measured value is compared with."""
+    working.owner = measured.statement.id.key
+    return working.node(measured.statement.second)
 
 
 def discharge_time(working: Working, discharge: Discharge, resistance: str) -> int:

@@ -10,9 +10,10 @@ from calcdoc.analysis.formulas import Formulas
 from calcdoc.analysis.looking_up import LookedUp, argument_range, reached, snapped
 from calcdoc.analysis.tape import Implicit, Op
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import NORMAL, Model, Root, Solved, Variable
+from calcdoc.model.model import Model, Root, Solved, Variable
 from calcdoc.problems import Finding, Mistake, error
 from calcdoc.tables.table import OutsideAxis, Table, look_up
+from calcdoc.text.cases import NORMAL
 from calcdoc.text.given import Given
 from calcdoc.text.nodes import Binary, Group, Name, Negate, Node, Text
 from calcdoc.text.scan import shown

@@ -2,7 +2,6 @@
 
 from collections.abc import Mapping
 from fractions import Fraction
-from typing import Final
 
 from calcdoc.frozen import Frozen
 from calcdoc.tables.table import Table
@@ -10,6 +9,8 @@ from calcdoc.text.document import Document
 from calcdoc.text.given import Given
 from calcdoc.text.nodes import Node
 from calcdoc.text.statements import (
+    Acceptance,
+    AnyOf,
     Basis,
     CaseStatement,
     CrosscheckStatement,
@@ -18,6 +19,7 @@ from calcdoc.text.statements import (
     Index,
     Inequality,
     Label,
+    Measurement,
     ReferenceStatement,
     RelationStatement,
     RestateStatement,
@@ -26,9 +28,6 @@ from calcdoc.text.statements import (
     Uncalculated,
 )
 from calcdoc.units import Dimension, Unit
-
-NORMAL: Final = "normal"
-"""The name of the case in which nothing is changed."""
 
 
 class Typed(Frozen, frozen=True):
@@ -121,31 +120,64 @@ class Relation(Frozen, frozen=True):
     names: tuple[str, ...]
 
 
-class Case(Frozen, frozen=True):
-    """Named changes of inputs and conditions; the normal case has none."""
-
-    name: str
-    kind: str
-    """``mode`` or ``fault``."""
-    changes: Mapping[str, Given | Node]
-    """Key of what is changed to its new value, or to a formula of the normal values."""
-    statement: CaseStatement
-
-
 class Judged(Frozen, frozen=True):
     """A criterion that is calculated, with the kind of quantity it compares."""
 
     statement: Inequality
     typed: Typed
     depends_on: tuple[str, ...]
-    cases: tuple[str, ...] = (NORMAL,)
-    """Names of the cases it is judged in, in order."""
+    """Keys of what its sides and its ``when`` name."""
+    cases: tuple[str, ...]
+    """Names of the cases it is judged in: ``normal`` first, the others in the author's order."""
+
+
+class Chosen(Frozen, frozen=True):
+    """``any of H1, H2``: one of several criteria is enough."""
+
+    statement: AnyOf
+    members: tuple[str, ...]
+    """Keys of the criteria, each once, in the author's order."""
+
+
+Criterion = Judged | Uncalculated | Chosen
+
+
+class Accepted(Frozen, frozen=True):
+    """A failure that is accepted until a day."""
+
+    statement: Acceptance
+    criterion: str
+    """Key of the criterion, which is calculated."""
+    cases: tuple[str, ...]
+    """Names of the cases in which its failure is accepted; empty for all of them."""
+
+
+class Case(Frozen, frozen=True):
+    """A mode or a fault; the case ``normal`` changes nothing and has none."""
+
+    key: str
+    """Blanks collapsed, accents composed; names are compared by it."""
+    name: str
+    """The same, as it is shown."""
+    kind: str
+    """``mode`` or ``fault``."""
+    statement: CaseStatement
+    changes: Mapping[str, Given | Node]
+    """Key of a given quantity to its value in this case, or to a formula of normal values."""
 
 
 class Compared(Frozen, frozen=True):
     """A cross-check between two ways to one quantity."""
 
     statement: CrosscheckStatement
+    typed: Typed
+    depends_on: tuple[str, ...]
+
+
+class Measured(Frozen, frozen=True):
+    """A measured value and what it is compared with."""
+
+    statement: Measurement
     typed: Typed
     depends_on: tuple[str, ...]
 
@@ -169,13 +201,16 @@ class Model(Frozen, frozen=True):
     order: tuple[str, ...]
     """Keys such that each comes after those it depends on."""
     relations: Mapping[str, Relation]
-    criteria: tuple[Judged | Uncalculated, ...]
+    cases: tuple[Case, ...]
+    """Modes and faults in the author's order; ``normal`` is not among them."""
+    criteria: tuple[Criterion, ...]
+    acceptances: tuple[Accepted, ...]
     crosschecks: tuple[Compared, ...]
+    measurements: tuple[Measured, ...]
+    """Cross-checks with a measured value; ``statement.span`` says where they stand among them."""
     restated: tuple[RestateStatement, ...]
     sensitivities: tuple[SensitivityStatement, ...]
     sentences: tuple[SentenceStatement, ...]
     hazards: tuple[HazardStatement, ...]
     discharges: tuple[Discharge, ...]
     references: tuple[ReferenceStatement, ...]
-    cases: tuple[Case, ...] = ()
-    """Besides the normal one, in the author's order."""

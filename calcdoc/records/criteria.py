@@ -2,18 +2,21 @@
 
 from calcdoc.analysis.evaluation import Conclusion, Judgement, Outcome, Row, Unjudged
 from calcdoc.frozen import replace
-from calcdoc.model.model import NORMAL, Judged, Typed
+from calcdoc.model.accepting import key_of
+from calcdoc.model.model import Judged, Typed
 from calcdoc.records import record as r
+from calcdoc.records.accepting import accepted, routes
 from calcdoc.records.looked import unverified
 from calcdoc.records.naming import Naming
-from calcdoc.records.quantities import Numbers
+from calcdoc.records.numbers import Numbers
 from calcdoc.records.rounding import apart, downward, stored
 from calcdoc.records.substitute import substituted
 from calcdoc.records.values import difference, with_unit
 from calcdoc.text import literal
+from calcdoc.text.cases import NORMAL
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Element, Group, Name, Node, Quantity
-from calcdoc.text.statements import Inequality, Uncalculated
+from calcdoc.text.statements import AnyOf, Inequality, Uncalculated
 from calcdoc.text.unparse import unparse
 from calcdoc.units import PLAIN, Unit
 from calcdoc.units.choose import choose_unit
@@ -24,12 +27,16 @@ _PER_CENT = 100
 def criteria(numbers: Numbers, naming: Naming) -> tuple[r.Criterion, ...]:
     """Every criterion of the record, in the author's order."""
     conclusions = {each.judged.statement.id.key: each for each in numbers.evaluation.conclusions}
-    return tuple(
-        _calculated(numbers, naming, conclusions[each.statement.id.key])
-        if isinstance(each, Judged)
-        else _uncalculated(naming, each)
-        for each in numbers.model.criteria
-    )
+    made: dict[str, r.Criterion] = {}
+    for each in numbers.model.criteria:
+        if isinstance(each, Judged):
+            key = each.statement.id.key
+            made[key] = _calculated(numbers, naming, conclusions[key])
+        elif isinstance(each, Uncalculated):
+            made[each.id.key] = _uncalculated(naming, each)
+    made |= routes(numbers.model, made, lambda statement: _blank(naming, statement))
+    made |= accepted(numbers.model, made)
+    return tuple(made[key_of(each)] for each in numbers.model.criteria)
 
 
 def _uncalculated(naming: Naming, statement: Uncalculated) -> r.Criterion:
@@ -43,7 +50,7 @@ def _uncalculated(naming: Naming, statement: Uncalculated) -> r.Criterion:
     )
 
 
-def _blank(naming: Naming, statement: Inequality | Uncalculated) -> r.Criterion:
+def _blank(naming: Naming, statement: Inequality | Uncalculated | AnyOf) -> r.Criterion:
     """A criterion of which nothing is computed."""
     return r.Criterion(
         id=statement.id.name,
@@ -61,6 +68,7 @@ def _blank(naming: Naming, statement: Inequality | Uncalculated) -> r.Criterion:
         case="",
         governing={},
         by_case={},
+        route_of="",
         rows=(),
         interval=None,
         standard_error=None,
@@ -113,7 +121,13 @@ def _in_case(judgement: Judgement | Unjudged, unit: Unit) -> r.CriterionCase:
     """A criterion in one case, in the unit of the criterion."""
     if isinstance(judgement, Unjudged):
         return r.CriterionCase(
-            value=None, limit=None, margin=None, margin_abs=None, verdict=judgement.outcome.value
+            value=None,
+            limit=None,
+            margin=None,
+            margin_abs=None,
+            verdict=judgement.outcome.value,
+            margin_text="",
+            accepted=None,
         )
     share = _share(judgement, judgement)
     return r.CriterionCase(
@@ -122,6 +136,8 @@ def _in_case(judgement: Judgement | Unjudged, unit: Unit) -> r.CriterionCase:
         margin=None if share is None else stored(share),
         margin_abs=stored(unit.difference_from_si(judgement.slack)),
         verdict=judgement.outcome.value,
+        margin_text=_margin_text(judgement, unit, share),
+        accepted=None,
     )
 
 
