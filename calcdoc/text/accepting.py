@@ -18,7 +18,7 @@ ACCEPT_COLUMNS: Final = ("accept", "reason", "basis")
 _COMMA: Final = re.compile(r",")
 _IN: Final = re.compile(r"in\b")
 _EVERY: Final = re.compile(r"every\b")
-_UNTIL: Final = re.compile(r"(?:^|(?<=[ \n]))until\b[ \n]*(.*)\Z", re.DOTALL)
+_UNTIL: Final = re.compile(r"(?:^|(?<=[ \n]))until\b[ \n]*")
 _DATE: Final = re.compile(r"[0-9]{4}-[0-9]{2}-[0-9]{2}")
 
 
@@ -53,6 +53,15 @@ def acceptance(statement: Passage) -> Acceptance:
         if scanner.look(_EVERY):
             scanner.refuse("the name of a case (for all of them leave `in` out)")
         cases = case_names(scanner, "the name of a case")
+    if not cases and scanner.look(_COMMA):
+        raise Mistake(
+            error(
+                "acceptance",
+                "an acceptance is about one criterion",
+                scanner.span(scanner.at, len(first.text)),
+                help="write a line for each",
+            )
+        )
     if not scanner.ended:
         scanner.refuse("`in` and the names of cases, or the end of the column")
     if not reason.text:
@@ -74,7 +83,7 @@ def acceptance(statement: Passage) -> Acceptance:
 
 def _until(cell: Passage, first: Passage) -> tuple[Passage, Passage]:
     """The basis without its end, and the last day an acceptance holds."""
-    found = _UNTIL.search(cell.text)
+    *_, found = (None, *_UNTIL.finditer(cell.text))
     if found is None:
         raise Mistake(
             error(
@@ -84,7 +93,7 @@ def _until(cell: Passage, first: Passage) -> tuple[Passage, Passage]:
                 help="write until and the last day at the end of the basis: until 2027-06-30",
             )
         )
-    day = cell.part(found.start(1), found.end(1))
+    day = cell.part(found.end(), len(cell.text))
     if not _DATE.fullmatch(day.text) or not _exists(day.text):
         raise Mistake(
             error(

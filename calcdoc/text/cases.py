@@ -4,7 +4,7 @@ import re
 import unicodedata
 from typing import Final
 
-from calcdoc.problems import Mistake, error
+from calcdoc.problems import Finding, Mistake, error
 from calcdoc.text.cells import basis, columns, label, plain
 from calcdoc.text.formula import LONGEST, formula
 from calcdoc.text.given import MAKEUP_WORD, Given, Style, given
@@ -21,7 +21,7 @@ CLAUSE_STARTS: Final = ("by", "at", "in", "with", "for", "when")
 """Words that begin a clause of a criterion, and so end what stands before them."""
 CASE_COLUMNS: Final = ("case", "description", "basis")
 _MOST_CHANGES: Final = 100
-_KIND: Final = re.compile(r"(mode|fault)(?![^ \n])")
+_KIND: Final = re.compile(r"(mode|fault)(?![^ \n:])")
 _NAME: Final = re.compile(r"[^:]*")
 _COLON: Final = re.compile(r":")
 _EQUALS: Final = re.compile(r"=(?!=)")
@@ -31,7 +31,7 @@ _SEPARATES: Final = re.compile(r'[,|{"]')
 _MARK: Final = re.compile(r'"[^"]*"|[(),\[\]]')
 _COMMA: Final = re.compile(r",")
 _EVERY: Final = re.compile(r"every(?![^ \n,])")
-_EVERY_WHAT: Final = re.compile(r"(case|fault)(?![^ \n])")
+_EVERY_WHAT: Final = re.compile(r"(case|fault)(?![^ \n,])")
 _WORD: Final = re.compile(r"\s*([^\s,]+)")
 _VALUE: Final = re.compile(r"[+-]?[ \n]*[0-9]")
 _BAND: Final = re.compile(r"±|\+/-|\.\.")
@@ -124,9 +124,20 @@ def scope(scanner: Scanner) -> Scope:
         what = scanner.take(_EVERY_WHAT)
         if what is None:
             scanner.refuse("`case` or `fault` after `every`")
+        if scanner.look(_COMMA):
+            raise Mistake(_alone(scanner, start))
         return Scope(what[1], (), scanner.span(start, scanner.at))
     names = case_names(scanner, "the name of a case, `normal`, `every case` or `every fault`")
     return Scope("", names, scanner.span(start, scanner.at))
+
+
+def _alone(scanner: Scanner, start: int) -> Finding:
+    return error(
+        "case-form",
+        "`every case` and `every fault` stand alone",
+        scanner.span(start, scanner.at),
+        help="name single cases, or leave the names out",
+    )
 
 
 def case_names(scanner: Scanner, wanted: str) -> tuple[Label, ...]:
@@ -139,6 +150,8 @@ def case_names(scanner: Scanner, wanted: str) -> tuple[Label, ...]:
 
 def _listed_name(scanner: Scanner, wanted: str) -> Label:
     words: list[re.Match[str]] = []
+    if found := scanner.take(_EVERY):
+        raise Mistake(_alone(scanner, found.start()))
     while (word := scanner.look(_WORD)) and word[1] not in CLAUSE_STARTS:
         if word[1] in CLAUSE_WORDS:
             raise Mistake(

@@ -29,6 +29,7 @@ from calcdoc.units import ONE
 
 _UNCALCULATED: Final = re.compile(r"(by test|by inspection|not applicable)\s*:\s*")
 _NEARLY: Final = re.compile(r"(by|not)\s+[a-z]+(?=\s*(:|$))")
+_DIGIT: Final = re.compile(r"[0-9]")
 _COMPARE: Final = re.compile(r"<=|>=|<|>")
 _NOMINAL: Final = re.compile(r"nominal\b")
 _CLAUSE: Final = re.compile(rf"({'|'.join(CLAUSE_STARTS)})\b")
@@ -156,6 +157,8 @@ def _when(scanner: Scanner) -> Node:
 
 def _share(scanner: Scanner) -> Fraction:
     """``"sampling" share``, a share of the draws in per cent, or 0.997 as a plain number."""
+    if not scanner.look(_DIGIT):
+        scanner.refuse("the share of draws that must meet it, as in by sampling 99.7 %")
     value = given(scanner)
     share = value.unit.to_si(value.nominal)
     if value.varies or value.unit.dimension != ONE or not 0 < share < 1:
