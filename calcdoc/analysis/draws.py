@@ -35,7 +35,7 @@ class Setting(Frozen, frozen=True):
     draws: int
     seed: int
     quasi_random: bool = False
-    chunk: int = 16_384
+    chunk: int = 8_192
     """Points computed at once, a power of two: memory does not grow with the draws."""
 
     @property

@@ -152,7 +152,7 @@ class _Move(Frozen, frozen=True):
             return Effect(self.part.key, None, change, worse)
         change = self.part.limits[self.slope < 0.0]
         effect = -max(-self.slope * change, 0.0)
-        return Effect(self.part.key, self.slope, change, effect if effect else 0.0)
+        return Effect(self.part.key, self.slope, change, effect or 0.0)
 
     @property
     def linear(self) -> float:
