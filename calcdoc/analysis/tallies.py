@@ -50,6 +50,7 @@ class Tail:
         self._values = _NOTHING
         self._waiting: list[FloatArray] = []
         self._n_waiting = 0
+        self._sorted = True
         self._edge = np.inf
 
     def add(self, values: FloatArray) -> None:
@@ -68,12 +69,13 @@ class Tail:
             values.partition(self.kept - 1)
             values = values[: self.kept].copy()
             self._edge = float(values[-1])
-        self._values = values
+        self._values, self._sorted = values, False
 
     def at(self, place: int) -> float:
         """The value at a place counted from zero, least first; it must be one of those kept."""
-        if self._waiting:
+        if self._waiting or not self._sorted:
             self._settle()
             self._values.sort()
+            self._sorted = True
         sign, rank = (1.0, place) if self.least else (-1.0, self.draws - 1 - place)
         return sign * float(self._values[rank])

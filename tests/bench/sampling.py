@@ -80,7 +80,9 @@ def by_hand_demo(draws: int) -> tuple[float, float]:
     at_end = v_pk * np.cos(theta)
 
     def left(t: Array) -> Array:
-        return v_pk * np.cos(omega * t) - (at_end - i_reg / c_res * (t_half - t - theta / omega))
+        falling = at_end - i_reg / c_res * (t_half - t - theta / omega)
+        between: Array = v_pk * np.cos(omega * t) - falling
+        return between
 
     before, after = np.full(draws, 1.2e-3), np.full(draws, 1.4e-3)
     at_before, at_after = left(before), left(after)
