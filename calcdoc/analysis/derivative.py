@@ -73,7 +73,7 @@ def _chain(builder: TapeBuilder, at: int, step: Instruction, moves: list[Derivat
     total: Derivative = None
     for place, move in enumerate(moves):
         if move is not None:
-            slope = _slope(builder, at, step, place)
+            slope = local_slope(builder, at, step, place)
             if slope is not None:
                 part = _times(builder, slope, move)
                 total = part if total is None else builder.add(Op.ADD, total, part)
@@ -88,7 +88,7 @@ def _times(builder: TapeBuilder, a: int, b: int) -> int:
     return a if b == one else builder.add(Op.MUL, a, b)
 
 
-def _slope(builder: TapeBuilder, at: int, step: Instruction, place: int) -> Derivative:
+def local_slope(builder: TapeBuilder, at: int, step: Instruction, place: int) -> Derivative:
     """Derivative of an instruction by its argument at ``place``."""
     if step.op is Op.ROOT:
         return root_slope(builder, at, place)

@@ -1,22 +1,39 @@
-"""Parts as they vary: random limits, biases and like parts, one row for each input column."""
+"""Parts as they vary: random limits, biases and like parts, one for each input column."""
 
-import hashlib
-from collections.abc import Sequence
+from collections.abc import Mapping
+from math import hypot, sqrt
 
-import numpy as np
-
-from calcdoc.analysis.compile import Compiled
-from calcdoc.analysis.points import FloatArray
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import Model, Variable
+from calcdoc.model.model import Model
+from calcdoc.text.given import Given
 from calcdoc.text.names import fold
-from calcdoc.text.nodes import Name
+from calcdoc.text.nodes import Name, Number
+
+
+class Variate(Frozen, frozen=True):
+    """What is drawn for a part: equal for all parts that are drawn alike.
+
+    The unit of a normal part is its standard deviation, of others the width of the band: those
+    lie between 0 (the least value) and 1.
+    """
+
+    stream: str
+    """Key of the stream: the symbol alone."""
+    shape: str
+    mode: float
+    """Where a triangle has its top, between 0 and 1; 0 for other shapes."""
+    count: int
+    """How many like parts are drawn for each mean; 1 for normal parts, whose mean is normal."""
+    shared: float
 
 
 class Part(Frozen, frozen=True):
-    """One input column whose parts vary at random; values in coherent SI."""
+    """One input column that varies; values in coherent SI."""
 
     key: str
+    """Of the column."""
+    stream: str
+    """Of the stream of random numbers: the symbol, so that every case sees the same draws."""
     column: int
     nominal: float
     low: float
@@ -27,93 +44,121 @@ class Part(Frozen, frozen=True):
     """Changes by all biases together at their ends."""
     shape: str
     k: float
+    """How many standard deviations the limits of a normal part stand for; 0 for other shapes."""
     count: int
     """How many like parts vary on their own; the column is their mean."""
     shared: float
     """The share of the band they have in common."""
 
     @property
-    def independent(self) -> float:
-        """The share of a like part's band that is left in the mean of all of them."""
-        return float(np.hypot(self.shared, (1 - self.shared) / np.sqrt(self.count)))
+    def reduction(self) -> float:
+        """What share of a like part's deviation is left in the mean of all of them."""
+        return hypot(self.shared, (1.0 - self.shared) / sqrt(self.count))
+
+    @property
+    def is_random(self) -> bool:
+        """Whether there is anything to draw; else it has biases alone."""
+        return self.low < self.high
+
+    @property
+    def deviation(self) -> float:
+        """The standard deviation of the column."""
+        low, high = self.low - self.nominal, self.high - self.nominal
+        if self.shape == "normal":
+            return high / self.k * self.reduction
+        if self.shape == "triangular":
+            return sqrt((low**2 + high**2 - low * high) / 18.0) * self.reduction
+        return (high - low) / sqrt(12.0) * self.reduction
+
+    @property
+    def limits(self) -> tuple[float, float]:
+        """Changes from nominal at the limits of the mean of the like parts.
+
+        Where the limits are unequal their middle is off nominal for all like parts together: the
+        mean of many comes closer to that middle, not to nominal.
+        """
+        low, high = self.low - self.nominal, self.high - self.nominal
+        middle, half = (low + high) / 2.0, (high - low) / 2.0 * self.reduction
+        return (low, high) if self.reduction == 1.0 else (middle - half, middle + half)
+
+    @property
+    def variate(self) -> Variate:
+        """What is drawn for it."""
+        if self.shape == "normal":
+            return Variate(self.stream, self.shape, 0.0, 1, 0.0)
+        mode = 0.0
+        if self.shape == "triangular":
+            mode = (self.nominal - self.low) / (self.high - self.low)
+        return Variate(self.stream, self.shape, mode, self.count, self.shared)
+
+    @property
+    def placed(self) -> tuple[float, float]:
+        """Offset from nominal and scale: the deviation is offset + scale * variate."""
+        if self.shape == "normal":
+            return 0.0, self.deviation
+        return self.low - self.nominal, self.high - self.low
 
 
-def random_parts(compiled: Compiled, model: Model) -> tuple[Part, ...]:
-    """Every column that is a part and not a condition or a look-up."""
-    found = []
-    for key, column in compiled.columns.items():
-        variable = model.variables.get(key)
-        if variable is None or variable.kind == "condition" or variable.given is None:
-            continue
-        found.append(_part(model, variable, column))
-    return tuple(found)
+def random_parts(
+    columns: Mapping[str, int], model: Model, counts: Mapping[str, int] | None = None
+) -> tuple[Part, ...]:
+    """Every column that is an input or an assumption and varies.
 
+    Conditions and look-ups are not random.
 
-def _part(model: Model, variable: Variable, column: int) -> Part:
-    given = variable.given
-    assert given is not None
-    made, unit = given.parts, given.unit
-    count = 1
-    if made.like is not None:
-        counted = made.like.count
-        if isinstance(counted, Name):
-            number = model.variables[fold(counted.name)].given
-            assert number is not None
-            count = int(number.nominal)
-        else:
-            count = int(counted.digits)
-    scale = unit.factor
-    return Part(
-        variable.key,
-        column,
-        float(unit.to_si(given.nominal)),
-        float(unit.to_si(made.low)),
-        float(unit.to_si(made.high)),
-        float(sum(bias.low for bias in made.biases) * scale),
-        float(sum(bias.high for bias in made.biases) * scale),
-        made.shape,
-        float(made.k or 0),
-        count,
-        float(made.like.shared) if made.like else 0.0,
+    Args:
+        columns: Key to input column.
+        model: The model; a column whose key is not among its variables is no part.
+        counts: By the key of the symbol that counts them, numbers of like parts that differ from
+            the given ones (in a case).
+    """
+    return tuple(
+        part_of(key, column, variable.given, counted(variable.given, model, counts or {}))
+        for key, column in columns.items()
+        if (variable := model.variables.get(key)) is not None
+        and variable.kind != "condition"
+        and variable.given is not None
+        and variable.given.varies
     )
 
 
-def base_point(parts: Sequence[Part], governing: FloatArray) -> FloatArray:
-    """Conditions where they govern, parts at nominal with their biases at the worse end.
+def part_of(key: str, column: int, given: Given, count: int = 1) -> Part:
+    """The part in a column.
 
     Args:
-        parts: The columns that vary at random.
-        governing: Shape (n_columns,): the combination that governs at the extremes.
+        key: Of the column: the key of a symbol, or ``KEY@CASE`` for its value in a case.
+        column: The input column.
+        given: The value with its make-up.
+        count: How many like parts there are, where it says ``each of``.
     """
-    point = governing.copy()
-    for part in parts:
-        worse_high = governing[part.column] > part.nominal
-        point[part.column] = part.nominal + (part.bias_high if worse_high else part.bias_low)
-        if governing[part.column] == part.nominal:
-            point[part.column] = part.nominal
-    return point
+    made, unit = given.parts, given.unit
+    return Part(
+        key=key,
+        stream=key.partition("@")[0],
+        column=column,
+        nominal=float(unit.to_si(given.nominal)),
+        low=float(unit.to_si(made.low)),
+        high=float(unit.to_si(made.high)),
+        bias_low=float(sum(bias.low for bias in made.biases) * unit.factor),
+        bias_high=float(sum(bias.high for bias in made.biases) * unit.factor),
+        shape=made.shape,
+        k=float(made.k or 0),
+        count=count if made.like else 1,
+        shared=float(made.like.shared) if made.like else 0.0,
+    )
 
 
-def stream(seed: int, key: str) -> np.random.Generator:
-    """A stream of its own for each input, keyed by seed and symbol."""
-    word = hashlib.sha256(f"{seed}:{key}".encode()).digest()
-    return np.random.Generator(np.random.PCG64(int.from_bytes(word[:16], "big")))
-
-
-def draw(part: Part, generator: np.random.Generator, count: int) -> FloatArray:
-    """Deviations of a part from its nominal value, shape (count,), biases left out."""
-    if part.count == 1:
-        return _deviations(part, generator, count)
-    common = _deviations(part, generator, count)
-    own = _deviations(part, generator, count * part.count).reshape(count, part.count)
-    mean: FloatArray = part.shared * common + (1 - part.shared) * own.mean(axis=1)
-    return mean
-
-
-def _deviations(part: Part, generator: np.random.Generator, count: int) -> FloatArray:
-    low, high = part.low - part.nominal, part.high - part.nominal
-    if part.shape == "normal":
-        return generator.normal(0.0, high / part.k, count)
-    if part.shape == "triangular" and low < high:
-        return generator.triangular(low, 0.0, high, count)
-    return generator.uniform(low, high, count)
+def counted(given: Given, model: Model, counts: Mapping[str, int]) -> int:
+    """How many like parts a given value stands for."""
+    like = given.parts.like
+    if like is None:
+        return 1
+    if isinstance(like.count, Number):
+        return int(like.count.digits)
+    assert isinstance(like.count, Name)
+    key = fold(like.count.name)
+    if key in counts:
+        return counts[key]
+    number = model.variables[key].given
+    assert number is not None
+    return int(number.nominal)

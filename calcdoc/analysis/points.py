@@ -24,7 +24,7 @@ __all__ = [
 
 BoolArray = NDArray[np.bool_]
 
-_ONE: Final[Mapping[Op, Callable[..., FloatArray]]] = {
+ONE: Final[Mapping[Op, Callable[..., FloatArray]]] = {
     Op.NEG: np.negative,
     Op.SQRT: np.sqrt,
     Op.EXP: np.exp,
@@ -40,7 +40,7 @@ _ONE: Final[Mapping[Op, Callable[..., FloatArray]]] = {
     Op.FLOOR: np.floor,
     Op.CEIL: np.ceil,
 }
-_TWO: Final[Mapping[Op, Callable[..., FloatArray]]] = {
+TWO: Final[Mapping[Op, Callable[..., FloatArray]]] = {
     Op.ADD: np.add,
     Op.SUB: np.subtract,
     Op.MUL: np.multiply,
@@ -93,10 +93,10 @@ def compile_steps(tape: Tape) -> tuple[Step, ...]:
 
 def _step(instruction: Instruction) -> Step:
     op, args, value = instruction.op, instruction.args, instruction.value
-    if (two := _TWO.get(op)) is not None:
+    if (two := TWO.get(op)) is not None:
         a, b = args
         return lambda values, _inputs, out: two(values[a], values[b], out=out)
-    if (one := _ONE.get(op)) is not None:
+    if (one := ONE.get(op)) is not None:
         (a,) = args
         return lambda values, _inputs, out: one(values[a], out=out)
     if op is Op.IF:

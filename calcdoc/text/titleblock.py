@@ -4,7 +4,7 @@ import re
 import tomllib
 from collections.abc import Mapping
 from datetime import date
-from typing import Final
+from typing import Any, Final
 
 from calcdoc.frozen import Frozen, Working
 from calcdoc.problems import Finding, error
@@ -41,6 +41,8 @@ class TitleBlock(Frozen, frozen=True):
     history: tuple[Revision, ...] = ()
     draws: int | None = None
     seed: int | None = None
+    sequence: str = "random"
+    """Of the draws: ``random`` or ``quasi-random``."""
     span: Span = Span("", 0, 0)
 
 
@@ -51,6 +53,10 @@ _KEYS: Final = (*_TEXTS, *_CHOICES, "date", "digits", "people", "history", "samp
 _PEOPLE: Final = ("prepared", "checked", "approved")
 _ROW: Final = ("revision", "date", "reason")
 _DIGITS: Final = range(2, 10)
+_LARGEST_SEED: Final = 10**18 - 1
+_SEQUENCES: Final = ("random", "quasi-random")
+MOST_DRAWS: Final = 10_000_000
+"""More draws would take minutes and tell little more: the bounds shrink with their root."""
 _TOML_PLACE: Final = re.compile(r" \(at line ([0-9]+), column ([0-9]+)\)$| \(at end of document\)$")
 
 Table = Mapping[str, object]
@@ -128,6 +134,15 @@ def title_block(passage: Passage, opening: Span) -> tuple[TitleBlock | None, lis
         table = tomllib.loads(passage.text)
     except tomllib.TOMLDecodeError as trouble:
         return None, [_not_toml(passage, str(trouble))]
+    except ValueError:  # TOML's own limit is 19 digits, Python's 4300
+        return None, [
+            error(
+                "document-toml",
+                "a whole number of the title block is too long",
+                passage.whole,
+                help="write at most 18 digits",
+            )
+        ]
     except RecursionError:
         return None, [error("document-toml", "the title block is nested too deeply", passage.whole)]
     reader = _Reader(passage, [])
@@ -156,9 +171,8 @@ def _block(reader: _Reader, table: Table) -> TitleBlock:
     digits = reader.whole_number(table, "digits", _DIGITS.start)
     if digits is not None and digits not in _DIGITS:
         reader.wrong("digits", f"`digits` must be at most {_DIGITS.stop - 1}", "")
-    people, sampling = reader.table(table, "people"), reader.table(table, "sampling")
+    people = reader.table(table, "people")
     reader.known(people, _PEOPLE, "people.")
-    reader.known(sampling, ("draws", "seed"), "sampling.")
     return TitleBlock(
         **texts,
         **choices,
@@ -166,10 +180,24 @@ def _block(reader: _Reader, table: Table) -> TitleBlock:
         digits=digits or 4,
         **{role: reader.text(people, role, "people.") for role in _PEOPLE},
         history=_history(reader, table),
-        draws=reader.whole_number(sampling, "draws", 1, "sampling."),
-        seed=reader.whole_number(sampling, "seed", 0, "sampling."),
+        **_sampling(reader, reader.table(table, "sampling")),
         span=reader.passage.whole,
     )
+
+
+def _sampling(reader: _Reader, sampling: Table) -> dict[str, Any]:
+    """How criteria are sampled."""
+    reader.known(sampling, ("draws", "seed", "sequence"), "sampling.")
+    draws = reader.whole_number(sampling, "draws", 1, "sampling.")
+    if draws is not None and draws > MOST_DRAWS:
+        reader.wrong("draws", f"`sampling.draws` must be at most {MOST_DRAWS:_}", "")
+    seed = reader.whole_number(sampling, "seed", 0, "sampling.")
+    if seed is not None and seed > _LARGEST_SEED:
+        reader.wrong("seed", "`sampling.seed` must have at most 18 digits", "")
+    sequence = reader.text(sampling, "sequence", "sampling.") or _SEQUENCES[0]
+    if sequence not in _SEQUENCES:
+        reader.wrong("sequence", f"`sampling.sequence` must be one of: {', '.join(_SEQUENCES)}", "")
+    return {"draws": draws, "seed": seed, "sequence": sequence}
 
 
 def _history(reader: _Reader, table: Table) -> tuple[Revision, ...]:

@@ -28,6 +28,7 @@ from calcdoc import pipeline  # noqa: E402
 from calcdoc.page.html import html  # noqa: E402
 from calcdoc.page.pdf import pdf, sheet_html  # noqa: E402
 from calcdoc.records.store import to_json  # noqa: E402
+from tests.bench import sampling  # noqa: E402
 from tests.bench.designs import CLOSED, DEMO, DROP, MEAN, repeated, toleranced  # noqa: E402
 
 CHECK = ("-c", "from calcdoc.commands import main; main()", "check")
@@ -44,10 +45,11 @@ class Setting:
     documents: int
     copies: int
     quantities: int
+    draws: int
 
 
-FULL = Setting(processes=15, documents=5, copies=4, quantities=60)
-QUICK = Setting(processes=1, documents=1, copies=1, quantities=10)
+FULL = Setting(processes=15, documents=5, copies=4, quantities=60, draws=1_000_000)
+QUICK = Setting(processes=1, documents=1, copies=1, quantities=10, draws=10_000)
 
 
 @dataclass(frozen=True)
@@ -134,6 +136,8 @@ def rows(setting: Setting) -> Iterator[Row]:
         yield pdf_row(setting, Path(name))
         yield from line_rows(setting, Path(name))
         yield extremes_row(setting, Path(name))
+    yield from sampling_rows(setting)
+    yield memory_row(setting)
 
 
 def check_row(setting: Setting, cache: str, what: str, path: Path, imports: str) -> Row:
@@ -199,6 +203,27 @@ def extremes_row(setting: Setting, folder: Path) -> Row:
         timed(lambda: pipeline.evaluate(read)),
         timed(lambda: design(text, folder)),
     )
+
+
+def sampling_rows(setting: Setting) -> Iterator[Row]:
+    """A criterion by sampling against NumPy by hand, drawing included."""
+    for name, path, by_hand in sampling.WAYS:
+        made = sampling.ready(path)
+        yield paired(
+            f"sampling of {name} : NumPy by hand",
+            "<= 1.3",
+            setting.documents,
+            timed(partial(sampling.sample, *made, setting.draws)),
+            timed(partial(by_hand, setting.draws)),
+        )
+
+
+def memory_row(setting: Setting) -> Row:
+    """The peak memory of a process that samples, in MB, against 400 MB."""
+    command = [sys.executable, "-m", "tests.bench.sampling", str(CLOSED), str(setting.draws)]
+    done = subprocess.run(command, check=True, capture_output=True, text=True, cwd=ROOT)  # noqa: S603
+    peak = float(done.stdout) / 1024
+    return Row("memory of sampling in MB : 400 MB", peak / 1e3, 0.4, peak / 400, "<= 1.0")
 
 
 def main() -> None:

@@ -3,9 +3,12 @@
 import re
 import subprocess
 import sys
+from collections.abc import Callable
 from pathlib import Path
 
 import pytest
+
+from tests.bench import sampling
 
 
 @pytest.mark.slow
@@ -29,6 +32,22 @@ def test_benchmark_prints_every_row() -> None:
         "10 x the lines, most to be searched",
         "10 x the lines, most to be searched",
         "extremes of 10 quantities",
+        "sampling of closed-form design",
+        "sampling of the demo, with a loop and a root",
+        "memory of sampling in MB",
     ]
     assert [match and match[3] for match in found][:3] == ["<= 1.5", "<= 1.5", "<= 1.25"]
     assert all(match and float(match[2]) > 0 for match in found)
+
+
+@pytest.mark.parametrize(("path", "by_hand"), [each[1:] for each in sampling.WAYS])
+def test_what_is_compared_is_the_same(
+    path: Path, by_hand: Callable[[int], tuple[float, float]]
+) -> None:
+    """By hand and by calcdoc the same quantile comes out, to its standard error."""
+    (spread,) = sampling.sample(*sampling.ready(path), 200_000).spreads
+    assert spread.quantile is not None
+    assert spread.standard_error is not None
+    _, quantile = by_hand(200_000)
+    assert 0 < spread.standard_error < 0.1
+    assert abs(quantile - spread.quantile) < 6 * spread.standard_error

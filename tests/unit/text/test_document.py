@@ -29,6 +29,18 @@ def test_title_block() -> None:
     title = read("").title
     assert (title.number, title.title, title.revision) == ("T-1", "Trial", "A")
     assert (title.status, title.paper, title.digits, title.language) == ("draft", "A4", 4, "en")
+    assert (title.draws, title.seed, title.sequence) == (None, None, "random")
+
+
+def test_sampling_in_the_title_block() -> None:
+    """Draws, seed and sequence are read from a table of their own."""
+    table = 'draws = 20_000\nseed = 7\nsequence = "quasi-random"'
+    text = TITLE.replace('"A"\n', f'"A"\n\n[sampling]\n{table}\n')
+    document, findings = read_document(SourceFile("lamp.md", text))
+    assert findings == ()
+    assert document is not None
+    title = document.title
+    assert (title.draws, title.seed, title.sequence) == (20_000, 7, "quasi-random")
 
 
 def test_every_kind_of_statement() -> None:
@@ -161,3 +173,16 @@ def test_prose_tree() -> None:
     span = picture.span
     assert document.source.text[span.start : span.end] == "p.png"
     assert (forced, words) == (prose.Break(), prose.Words("end"))
+
+
+def test_a_number_of_thousands_of_digits() -> None:
+    """A number no computer reads is refused, not crashed on."""
+    text = TITLE.replace('"A"\n', f'"A"\n\n[sampling]\nseed = {"9" * 5000}\n')
+    _, findings = read_document(SourceFile("lamp.md", text))
+    assert [(each.code, each.message, each.help) for each in findings] == [
+        (
+            "document-toml",
+            "a whole number of the title block is too long",
+            "write at most 18 digits",
+        )
+    ]
