@@ -184,7 +184,7 @@ def _operation(step: Instruction, args: Sequence[Value], out: FloatArray) -> Cal
     """The call of one instruction, element by element."""
     operation = TWO.get(step.op) or ONE.get(step.op)
     if operation is not None:
-        return partial(operation, *args, out)
+        return partial(operation, *args, out=out)
     if step.op is Op.NOT:
         return partial(np.subtract, 1.0, args[0], out)
     if step.op is Op.IF:

@@ -171,7 +171,7 @@ def _block(reader: _Reader, table: Table) -> TitleBlock:
     digits = reader.whole_number(table, "digits", _DIGITS.start)
     if digits is not None and digits not in _DIGITS:
         reader.wrong("digits", f"`digits` must be at most {_DIGITS.stop - 1}", "")
-    people = reader.table(table, "people")
+    people, sampling = reader.table(table, "people"), _sampling(reader, table)
     reader.known(people, _PEOPLE, "people.")
     return TitleBlock(
         **texts,
@@ -180,13 +180,16 @@ def _block(reader: _Reader, table: Table) -> TitleBlock:
         digits=digits or 4,
         **{role: reader.text(people, role, "people.") for role in _PEOPLE},
         history=_history(reader, table),
-        **_sampling(reader, reader.table(table, "sampling")),
+        draws=sampling["draws"],
+        seed=sampling["seed"],
+        sequence=sampling["sequence"],
         span=reader.passage.whole,
     )
 
 
-def _sampling(reader: _Reader, sampling: Table) -> dict[str, Any]:
+def _sampling(reader: _Reader, table: Table) -> dict[str, Any]:
     """How criteria are sampled."""
+    sampling = reader.table(table, "sampling")
     reader.known(sampling, ("draws", "seed", "sequence"), "sampling.")
     draws = reader.whole_number(sampling, "draws", 1, "sampling.")
     if draws is not None and draws > MOST_DRAWS:
