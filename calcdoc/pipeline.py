@@ -19,6 +19,7 @@ from calcdoc.beside import Beside, read_beside
 from calcdoc.errors import CalcdocError
 from calcdoc.folder import Folder, read_bytes, write_whole
 from calcdoc.frozen import Frozen
+from calcdoc.model.accepting import expired
 from calcdoc.model.build import build
 from calcdoc.model.judging import outside_band
 from calcdoc.model.model import Model
@@ -120,7 +121,11 @@ def evaluate(design: Design) -> Evaluated:
         return Evaluated(design, None, design.findings)
     evaluation, findings = evaluate_model(design.model)
     if evaluation is not None:
-        findings += (*hazard_warning(evaluation), *outside_band(design.model))
+        findings += (
+            *hazard_warning(evaluation),
+            *outside_band(design.model),
+            *expired(design.model),
+        )
     return Evaluated(design, evaluation, in_order((*design.findings, *findings)))
 
 

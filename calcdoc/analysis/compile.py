@@ -1,56 +1,37 @@
-"""From the checked model to one tape in coherent SI units."""
+"""From the checked model to one tape in coherent SI units, with every case beside the normal one.
+
+Equal operations share one instruction, so a case costs only what it changes, and a part that
+stays is the same column in every case.
+"""
 
 from collections.abc import Mapping
-from fractions import Fraction
-from typing import Final
 
 import numpy as np
 
 from calcdoc.analysis.box import Box
-from calcdoc.analysis.formulas import is_constant
 from calcdoc.analysis.looking_up import LookedUp
-from calcdoc.analysis.tape import Op, Tape
-from calcdoc.analysis.working import Working
+from calcdoc.analysis.sides import (
+    Check,
+    Side,
+    criterion_sides,
+    crosscheck_sides,
+    discharge_time,
+    measured_against,
+)
+from calcdoc.analysis.tape import Tape
+from calcdoc.analysis.working import InCase, Working
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import Compared, Discharge, Judged, Model, Root
-from calcdoc.text.nodes import Binary, Group, Name, Negate, Node
-
-SAFE_VOLTAGE: Final = Fraction(60)
-"""Volts a stored charge may keep: 60 V d.c., the residual voltage of IEC 60204-1 (6.2.4)."""
-
-
-class Side(Frozen, frozen=True):
-    """One limit of a criterion, as instructions of the tape."""
-
-    value: int
-    limit: int
-    requirement: int
-    """Limit less value, counted so that it must not be negative, less the margin asked for."""
-    relation: str
-    """Between value and limit, value first."""
-    value_tree: Node
-    limit_tree: Node
-    element: int | None
-    """The element of the series it is about, for a criterion over a series."""
+from calcdoc.model.model import Judged, Model, Root
+from calcdoc.problems import Finding, Mistake
+from calcdoc.text.cases import NORMAL
+from calcdoc.text.nodes import Node
 
 
-class Check(Frozen, frozen=True):
-    """A cross-check as instructions: its sides, and what must not be negative."""
+class Limits(Frozen, frozen=True):
+    """The limits of a criterion in one case, for every element, and what its names mean there."""
 
-    first: int
-    second: int
-    difference: int
-    """First less second; as a share of the second where a share is allowed."""
-    share: Binary | None
-    """That share as a formula: the origin of its instruction; the author does not write it."""
-
-
-class Sides(Frozen, frozen=True):
-    """Both sides of a relation as instructions, and the terms they are sums of."""
-
-    left: int
-    right: int
-    terms: tuple[int, ...]
+    case: InCase
+    sides: tuple[Side, ...]
 
 
 class Compiled(Frozen, frozen=True):
@@ -58,24 +39,20 @@ class Compiled(Frozen, frozen=True):
 
     tape: Tape
     columns: Mapping[str, int]
-    """Key of a given quantity that varies, or that an operating point sets, to its column."""
-    variables: Mapping[str, int]
-    """Key of every quantity that is no series to its instruction."""
-    series: Mapping[str, Mapping[int, int]]
-    """Key of every series to the instructions of its elements."""
+    """Key of a given quantity that varies, or that an operating point sets, to its column. A value
+    that a case changes has the key ``V_line@dim``, a look-up ``@7``."""
     box: Box
     """The band as declared."""
-    sides: tuple[tuple[Side, ...], ...]
-    """For every calculated criterion its limits, for every element."""
+    cases: Mapping[str, InCase]
+    """Every case by name, the normal one first."""
+    limits: tuple[Mapping[str, Limits | Finding], ...]
+    """For every calculated criterion, by case, its limits, or why there are none."""
     checks: tuple[Check, ...]
-    discharges: tuple[int | None, ...]
-    """For every stored charge the instruction of its time to a safe voltage, in seconds."""
-    chosen: Mapping[str, Root]
-    """Key of every solved quantity to the root that was left."""
-    roots: Mapping[str, int]
-    """Key of every quantity found numerically to its instruction."""
-    relations: Mapping[str, Sides]
-    """Key of every solved or settled quantity to the sides of its relation, put together."""
+    measured: tuple[int, ...]
+    """For every measurement what it is compared with."""
+    discharges: Mapping[str, Mapping[int, int]]
+    """By case, for every stored charge by its number that has a discharge path and can be computed,
+    the instruction of its time to a safe voltage, in seconds."""
     looked: tuple[LookedUp, ...]
     """Every look-up of a table."""
     origins: Mapping[int, Node]
@@ -83,36 +60,55 @@ class Compiled(Frozen, frozen=True):
     inside: Mapping[int, Mapping[int, Node]]
     """The same for the residual of every root, by the instruction of the root."""
 
+    @property
+    def normal(self) -> InCase:
+        """The case in which nothing is changed."""
+        return self.cases[NORMAL]
+
+    @property
+    def variables(self) -> Mapping[str, int]:
+        """Key of every quantity that is no series to its instruction in the normal case."""
+        return self.normal.variables
+
+    @property
+    def series(self) -> Mapping[str, Mapping[int, int]]:
+        """Key of every series to the instructions of its elements in the normal case."""
+        return self.normal.series
+
+    @property
+    def chosen(self) -> Mapping[str, Root]:
+        """Key of every solved quantity to the root that was left."""
+        return self.normal.chosen
+
 
 def compile_model(model: Model) -> Compiled:
     """Put every quantity, criterion, cross-check and discharge of a model on one tape.
 
     Raises:
-        Mistake: when a solved quantity has several roots over the band, or none.
+        Mistake: when a solved quantity has several roots over the band, or none, in the normal
+            case. In another case this is kept as the reason why nothing is decided.
     """
     columns = _columns(model)
     low, nominal, high = np.array([_si(model, key) for key in columns]).reshape(-1, 3).T
     working = Working(model, columns, Box(low, nominal, high))
-    for key in model.order:
-        working.variable(model.variables[key])
+    normal = working.normal()
+    cases = {NORMAL: normal}
+    cases |= {case.name: working.changed(case.name, case.changes) for case in model.cases}
     judged = [each for each in model.criteria if isinstance(each, Judged)]
-    sides = tuple(_criterion(working, each) for each in judged)
-    checks = tuple(_crosscheck(working, each) for each in model.crosschecks)
-    discharges = tuple(_discharge(working, each) for each in model.discharges)
-    relations = _relations(working, model)
-    moving = {each.key: each.column for each in working.looked if each.column is not None}
+    limits = tuple(_in_its_cases(working, each, cases) for each in judged)
+    working.enter(normal)
+    checks = tuple(crosscheck_sides(working, each) for each in model.crosschecks)
+    measured = tuple(measured_against(working, each) for each in model.measurements)
+    discharges = {name: _discharges(working, case) for name, case in cases.items()}
     return Compiled(
         tape=working.builder.tape(),
-        columns={**columns, **moving},
-        variables=working.variables,
-        series=working.series,
+        columns=working.columns,
         box=working.box,
-        sides=sides,
+        cases=cases,
+        limits=limits,
         checks=checks,
+        measured=measured,
         discharges=discharges,
-        chosen=working.chosen,
-        roots=working.roots,
-        relations=relations,
         looked=tuple(working.looked),
         origins=working.origins,
         inside=working.inside,
@@ -121,12 +117,9 @@ def compile_model(model: Model) -> Compiled:
 
 def _columns(model: Model) -> dict[str, int]:
     """A column for every given quantity that varies or that an operating point sets."""
-    set_by_points = {
-        point.symbol.key
-        for each in model.criteria
-        if isinstance(each, Judged)
-        for point in each.statement.clauses.at
-    }
+    points = [each.statement.clauses.at for each in model.criteria if isinstance(each, Judged)]
+    points += [each.statement.at for each in model.measurements]
+    set_by_points = {point.symbol.key for each in points for point in each}
     keys = [
         key
         for key, variable in model.variables.items()
@@ -141,119 +134,41 @@ def _si(model: Model, key: str) -> tuple[float, float, float]:
     return given.si
 
 
-def _relations(working: Working, model: Model) -> dict[str, Sides]:
-    """Both sides of what each solved quantity was solved from, with the solutions in place."""
-    sides = {}
-    for key, variable in model.variables.items():
-        if variable.implicit is not None:
-            pair = (variable.implicit.left, variable.implicit.right)
-        elif variable.solved is not None:
-            at = variable.solved.unknowns.index(key)
-            statement = model.relations[variable.solved.relations[at]].statement
-            pair = (statement.left, statement.right)
-        else:
-            continue
-        left, right = (working.node(side) for side in pair)
-        terms = tuple(working.node(term) for side in pair for term in _terms(side))
-        sides[key] = Sides(left, right, terms)
-    return sides
+def _in_its_cases(
+    working: Working, judged: Judged, cases: Mapping[str, InCase]
+) -> dict[str, Limits | Finding]:
+    """The limits of a criterion in every case it is judged in.
+
+    An operating point that the criterion states holds in every case, also where the case changes
+    that quantity.
+    """
+    stated = {point.symbol.key for point in judged.statement.clauses.at}
+    found: dict[str, Limits | Finding] = {}
+    for name in judged.cases:
+        case = cases[name]
+        if stated & case.changes.keys():
+            kept = {key: each for key, each in case.changes.items() if key not in stated}
+            case = working.changed(name, kept)
+        broken = next((case.broken[key] for key in judged.depends_on if key in case.broken), None)
+        found[name] = broken or _limits(working, judged, case)
+    return found
 
 
-def _terms(node: Node) -> list[Node]:
-    """What a side is a sum of."""
-    match node:
-        case Group(inner) | Negate(inner):
-            return _terms(inner)
-        case Binary("+" | "-", left, right):
-            return [*_terms(left), *_terms(right)]
-        case _:
-            return [node]
+def _limits(working: Working, judged: Judged, case: InCase) -> Limits | Finding:
+    working.enter(case)
+    try:
+        return Limits(case, criterion_sides(working, judged))
+    except Mistake as mistake:
+        if case.name == NORMAL:
+            raise
+        return mistake.finding
 
 
-def _criterion(working: Working, judged: Judged) -> tuple[Side, ...]:
-    """The limits of a criterion, for every element when it is judged over a series."""
-    working.owner = judged.statement.id.key
-    index = judged.statement.clauses.index
-    if index is None:
-        return _limits(working, judged, None)
-    found: list[Side] = []
-    for element in index.values:
-        working.running, working.element = {index.name.key: element}, element
-        found += _limits(working, judged, element)
-    working.running, working.element = {}, None
-    return tuple(found)
-
-
-def _limits(working: Working, judged: Judged, element: int | None) -> tuple[Side, ...]:
-    """The one limit, or the lower one before the upper one."""
-    trees, operators = judged.statement.operands, judged.statement.operators
-    pairs: tuple[tuple[Node, Node, str], ...]
-    if len(trees) == 3:  # noqa: PLR2004  (two limits)
-        low, value, high = trees
-        pairs = ((value, low, _turned(operators[0])), (value, high, operators[1]))
-    else:
-        left, right = trees
-        turned = is_constant(left) and not is_constant(right)
-        pairs = ((right, left, _turned(operators[0])) if turned else (left, right, operators[0]),)
-    return tuple(_side(working, judged, *each, element) for each in pairs)
-
-
-def _side(  # noqa: PLR0913  (a comparison and where it stands)
-    working: Working, judged: Judged, value: Node, limit: Node, relation: str, element: int | None
-) -> Side:
-    value_at, limit_at = working.node(value), working.node(limit)
-    pair = (limit_at, value_at) if relation[0] == "<" else (value_at, limit_at)
-    slack = working.builder.add(Op.SUB, *pair)
-    working.origins.setdefault(slack, value)
-    requirement = _less_margin(working, judged, slack, limit_at)
-    return Side(value_at, limit_at, requirement, relation, value, limit, element)
-
-
-def _less_margin(working: Working, judged: Judged, slack: int, limit: int) -> int:
-    margin = judged.statement.clauses.margin
-    if margin is None:
-        return slack
-    add = working.builder.add
-    asked = working.constant(margin.value.nominal * margin.value.unit.factor)
-    if margin.is_share:
-        asked = add(Op.MUL, asked, add(Op.ABS, limit))
-    less = add(Op.SUB, slack, asked)
-    for at in (asked, less):
-        working.origins.setdefault(at, working.origins[slack])
-    return less
-
-
-def _turned(operator: str) -> str:
-    """The same comparison read from the other side."""
-    return operator.replace("<", "\0").replace(">", "<").replace("\0", ">")
-
-
-def _crosscheck(working: Working, compared: Compared) -> Check:
-    statement = compared.statement
-    working.owner = statement.id.key
-    first, second = working.node(statement.first), working.node(statement.second)
-    difference = working.builder.add(Op.SUB, first, second)
-    working.origins.setdefault(difference, statement.first)
-    if statement.allowed is None:
-        return Check(first, second, difference, None)
-    size = working.builder.add(Op.ABS, second)
-    difference = working.builder.add(Op.DIV, difference, size)
-    span = statement.first.span.to(statement.second.span)
-    share = Binary("/", statement.first, statement.second, span, span)
-    working.origins.setdefault(difference, share)
-    return Check(first, second, difference, share)
-
-
-def _discharge(working: Working, discharge: Discharge) -> int | None:
-    """Seconds until a stored charge is down to a safe voltage; None without a bleed."""
-    if discharge.resistance is None:
-        return None
-    add, variables = working.builder.add, working.variables
-    safe = working.constant(SAFE_VOLTAGE)
-    start = add(Op.MAX, add(Op.ABS, variables[discharge.voltage]), safe)
-    constant = add(Op.MUL, variables[discharge.resistance], variables[discharge.capacitance])
-    time = add(Op.MUL, constant, add(Op.LN, add(Op.DIV, start, safe)))
-    store = discharge.statement.symbols[0]
-    for at in (constant, time):
-        working.origins.setdefault(at, Name(store.name, store.span))
-    return time
+def _discharges(working: Working, case: InCase) -> dict[int, int]:
+    working.enter(case)
+    return {
+        number: discharge_time(working, each, each.resistance)
+        for number, each in enumerate(working.model.discharges)
+        if each.resistance is not None
+        and not case.broken.keys() & {each.capacitance, each.voltage, each.resistance}
+    }

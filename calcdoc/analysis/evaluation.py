@@ -3,11 +3,11 @@
 from collections.abc import Mapping
 from enum import Enum
 
-from calcdoc.analysis.compile import Side
 from calcdoc.analysis.extremes import Proof
 from calcdoc.analysis.looking_up import LookedUp
+from calcdoc.analysis.sides import Side
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import Compared, Judged, Model, Root
+from calcdoc.model.model import Compared, Judged, Measured, Model, Root
 from calcdoc.text.nodes import Node
 from calcdoc.text.statements import RestateStatement, SensitivityStatement
 
@@ -54,6 +54,7 @@ class Outcome(Enum):
     PASS = "pass"  # noqa: S105  (a verdict, not a password)
     FAIL = "fail"
     NOT_DECIDED = "not decided"
+    NOT_APPLICABLE = "not applicable"
 
 
 class Row(Frozen, frozen=True):
@@ -67,9 +68,10 @@ class Row(Frozen, frozen=True):
 
 
 class Judgement(Frozen, frozen=True):
-    """A criterion at its governing point: where limit less value is least."""
+    """A criterion in one case, at its governing point: where limit less value is least."""
 
     judged: Judged
+    case: str
     side: Side
     """The limit that governs; the nearer one when there are two."""
     value: float
@@ -94,6 +96,30 @@ class Judgement(Frozen, frozen=True):
     not decided."""
 
 
+class Unjudged(Frozen, frozen=True):
+    """A criterion in one case in which there is nothing to compare."""
+
+    judged: Judged
+    case: str
+    outcome: Outcome
+    reason: str
+
+
+class Conclusion(Frozen, frozen=True):
+    """A criterion over all the cases it is judged in."""
+
+    judged: Judged
+    in_case: Mapping[str, Judgement | Unjudged]
+    """By case, in order."""
+    governing: Judgement | Unjudged
+    """The worst outcome, and of those the one with the least requirement."""
+
+    @property
+    def outcome(self) -> Outcome:
+        """How it came out over all its cases."""
+        return self.governing.outcome
+
+
 class Crosschecked(Frozen, frozen=True):
     """A cross-check at nominal and over all bands."""
 
@@ -106,6 +132,25 @@ class Crosschecked(Frozen, frozen=True):
     or as a share of the second where a share is allowed."""
     agrees: bool
     combination: Combination
+    proof: Proof
+
+
+class AgainstMeasured(Frozen, frozen=True):
+    """A measured value against what is computed at the conditions of the measurement."""
+
+    measured: Measured
+    first: float
+    """Measured."""
+    second: float
+    """Computed, with every part at nominal."""
+    difference: float
+    """First less second."""
+    allowed: float
+    """Root sum square of both bands, each on the side that faces the other value."""
+    agrees: bool
+    low: float
+    high: float
+    """The band of the computed value at those conditions."""
     proof: Proof
 
 
@@ -171,12 +216,30 @@ class Sensitive(Frozen, frozen=True):
 
 
 class Discharged(Frozen, frozen=True):
-    """A stored charge: its greatest voltage of either sign, and the greatest time to 60 V."""
+    """A stored charge: its greatest voltage of either sign, and the greatest time to 60 V.
+
+    Both over all tolerances, and over all cases that can be computed.
+    """
 
     greatest_voltage: float
     seconds: float | None
     """None without a bleed resistor: the charge stays."""
     combination: Combination
+    case: str
+    """The case with the greatest time."""
+    unknown: tuple[str, ...]
+    """Cases in which voltage or time could not be computed."""
+
+
+class CaseBands(Frozen, frozen=True):
+    """The quantities that one case moves."""
+
+    bands: Mapping[str, Band]
+    """By key."""
+    series: Mapping[str, Mapping[int, Band]]
+    """By key and index."""
+    broken: Mapping[str, str]
+    """Key of every quantity that cannot be computed in this case, with the reason."""
 
 
 class Evaluation(Frozen, frozen=True):
@@ -187,9 +250,12 @@ class Evaluation(Frozen, frozen=True):
     """By key."""
     series: Mapping[str, Mapping[int, Band]]
     """By key and index."""
-    judgements: tuple[Judgement, ...]
+    cases: Mapping[str, CaseBands]
+    """By name, every case but the normal one."""
+    conclusions: tuple[Conclusion, ...]
     """One for each calculated criterion, in order."""
     crosschecks: tuple[Crosschecked, ...]
+    measurements: tuple[AgainstMeasured, ...]
     chosen: Mapping[str, Root]
     """Key of every solved quantity to the root that was left."""
     put_back: Mapping[str, PutBack]

@@ -11,6 +11,7 @@ from calcdoc.analysis.points import BoolArray, evaluate_points
 from calcdoc.analysis.tape import Op, Tape
 from calcdoc.frozen import Frozen
 from calcdoc.tables.table import Axis, Found, Range, Table
+from calcdoc.text.cases import NORMAL
 
 if TYPE_CHECKING:
     from calcdoc.analysis.working import Working
@@ -30,6 +31,7 @@ class LookedUp(Frozen, frozen=True):
     moved_by: frozenset[int] = frozenset()
     """Columns the arguments depend on. The column moves without them, so a result in which both
     count is bounded, but need not be attained."""
+    case: str = NORMAL
 
     @property
     def key(self) -> str:

@@ -10,44 +10,59 @@ from calcdoc.analysis.compile import Compiled
 from calcdoc.analysis.derivative import loop_slope
 from calcdoc.analysis.evaluation import Gain, PutBack
 from calcdoc.analysis.extremes import Question, extremes
-from calcdoc.analysis.points import FloatArray, evaluate_points
+from calcdoc.analysis.points import FloatArray
+from calcdoc.analysis.program import plain
 from calcdoc.analysis.tape import TapeBuilder
+from calcdoc.analysis.working import InCase
 from calcdoc.model.model import Model, Variable
-from calcdoc.problems import Finding, Mistake, error
+from calcdoc.problems import Finding, error
 from calcdoc.text.scan import shown
 
 CLOSE: Final = 1e-9
 """Share of the largest term that may be left when a solution is put back."""
 
 
-def put_back(compiled: Compiled, model: Model, points: FloatArray) -> Mapping[str, PutBack]:
-    """What is left of every relation when its solution is put back.
+def put_back(
+    compiled: Compiled, model: Model, case: InCase, points: FloatArray
+) -> Mapping[str, PutBack | Finding]:
+    """What is left of the relations that a case moves when their solutions are put back.
 
     Args:
         compiled: The tape with both sides of each relation.
         model: For names.
+        case: The case; the normal one moves all relations.
         points: Shape (n_columns, n_points): nominal and all governing points.
 
-    Raises:
-        Mistake: when a solution does not satisfy its relation.
+    Returns:
+        For each solved or settled quantity what is left, or what to say when it does not satisfy
+        its relation.
     """
-    if not compiled.relations:
+    if not case.relations:
         return {}
-    values = evaluate_points(compiled.tape, points)
-    found = {}
-    for key, sides in compiled.relations.items():
-        size = np.max(np.abs(values[list(sides.terms)]), axis=0)
-        left = np.abs(values[sides.left] - values[sides.right])
-        with np.errstate(divide="ignore", invalid="ignore"):
-            residual = float(np.max(np.where(left > 0, left / size, 0.0)))
-        variable = model.variables[key]
-        proven = variable.solved is not None and variable.solved.proven
-        if not residual <= CLOSE and not proven:
-            raise Mistake(_not_satisfied(variable, residual))
-        is_loop = variable.implicit is not None and variable.implicit.is_loop
-        gain = _gain(compiled, compiled.roots[key], compiled.box) if is_loop else None
-        found[key] = PutBack(residual, proven, gain)
-    return found
+    rows = {at for each in case.relations.values() for at in (each.left, each.right, *each.terms)}
+    part = plain(compiled.tape, rows)
+    values = part.evaluate(points)
+    return {
+        key: _put_back(compiled, model.variables[key], case, values[
+            [part.row[at] for at in (sides.left, sides.right, *sides.terms)]
+        ])
+        for key, sides in case.relations.items()
+    }  # fmt: skip
+
+
+def _put_back(
+    compiled: Compiled, variable: Variable, case: InCase, values: FloatArray
+) -> PutBack | Finding:
+    """Compare both sides; ``values`` has them first, then their terms, shape (n, n_points)."""
+    left, size = np.abs(values[0] - values[1]), np.max(np.abs(values[2:]), axis=0)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        residual = float(np.max(np.where(left > 0, left / size, 0.0)))
+    proven = variable.solved is not None and variable.solved.proven
+    if not residual <= CLOSE and not proven:
+        return _not_satisfied(variable, residual)
+    is_loop = variable.implicit is not None and variable.implicit.is_loop
+    gain = _gain(compiled, case.roots[variable.key], compiled.box) if is_loop else None
+    return PutBack(residual, proven, gain)
 
 
 def _gain(compiled: Compiled, root: int, box: Box) -> Gain:

@@ -10,12 +10,13 @@ from calcdoc.analysis.compile import Compiled
 from calcdoc.analysis.domains import JUMP, NO_CHANGE, POLE, SEVERAL
 from calcdoc.analysis.hazards import Hazard, hazards
 from calcdoc.analysis.points import FloatArray
-from calcdoc.frozen import replace
+from calcdoc.analysis.tape import needed
+from calcdoc.frozen import Frozen, replace
 from calcdoc.model.model import Model, Variable
 from calcdoc.problems import Finding, Place, error
 from calcdoc.text.nodes import Binary, Call, Group, Negate, Node
 from calcdoc.text.scan import shown
-from calcdoc.text.statements import Inequality
+from calcdoc.text.statements import PointValue
 from calcdoc.text.unparse import unparse
 from calcdoc.units import Dimension, Unit
 from calcdoc.units.choose import choose_unit
@@ -44,12 +45,21 @@ _CODES: Final[Mapping[str, tuple[str, str, str]]] = {
 }  # fmt: skip
 
 
+class Setter(Frozen, frozen=True):
+    """A criterion or measurement that sets values of its own."""
+
+    what: str
+    """``criterion`` or ``measurement``."""
+    name: str
+    points: tuple[PointValue, ...]
+
+
 def troubles(
     compiled: Compiled,
     model: Model,
     boxes: Sequence[Box],
     targets: Sequence[Sequence[int]],
-    setters: Sequence[Inequality | None],
+    setters: Sequence[Setter | None],
 ) -> tuple[Finding, ...]:
     """Everything that cannot be computed at nominal or within a box, once each.
 
@@ -58,7 +68,7 @@ def troubles(
         model: For names and units in the messages.
         boxes: Ranges of the input columns.
         targets: For each box the instructions that must be computable in it.
-        setters: For each box the criterion at whose operating point it stands, if any.
+        setters: For each box who sets its values, if any.
     """
     teller = _Teller(compiled, model)
     found: dict[int, Finding] = {}
@@ -70,27 +80,57 @@ def troubles(
     return tuple(found.values())
 
 
+def out_of_reach(
+    compiled: Compiled, model: Model, box: Box, targets: Sequence[int], setter: Setter | None
+) -> Mapping[int, Finding]:
+    """The targets that cannot be computed somewhere in a box, with the reason for each.
+
+    Args:
+        compiled: The tape and its origins.
+        model: For names and units in the reasons.
+        box: Ranges of the input columns.
+        targets: Instructions.
+        setter: Who sets the values of the box, if any.
+    """
+    found = hazards(compiled.tape, targets, box.low, box.nominal, box.high) if targets else ()
+    if not found:
+        return {}
+    teller = _Teller(compiled, model)
+    reasons = {
+        each.instruction: teller.finding(
+            each, setter, at_nominal=bool(np.all(each.point == box.nominal))
+        )
+        for each in found
+    }
+    return {
+        target: next(reasons[at] for at in used if at in reasons)
+        for target in targets
+        if reasons.keys() & set(used := needed(compiled.tape, (target,)))
+    }
+
+
 class _Teller:
     """Says what a hazard is in the words and at the place of the author's text."""
 
     def __init__(self, compiled: Compiled, model: Model) -> None:
         self.compiled, self.model = compiled, model
         self.shares = [each.share for each in compiled.checks if each.share]
-        self.of_root = {at: key for key, at in compiled.roots.items()}
+        self.of_root = {
+            at: key for case in compiled.cases.values() for key, at in case.roots.items()
+        }
 
-    def finding(self, hazard: Hazard, setter: Inequality | None, *, at_nominal: bool) -> Finding:
+    def finding(self, hazard: Hazard, setter: Setter | None, *, at_nominal: bool) -> Finding:
         """The finding for a hazard."""
         at = f"at {self._combination(hazard.point)}"
         where = "at the nominal values" if at_nominal else "within the band"
         if setter is None:
             return self._found(hazard, where, "" if at_nominal else at)
-        name = shown(setter.id.name)
-        sets = f"at the values that criterion {name} sets"
+        name = shown(setter.name)
+        sets = f"at the values that {setter.what} {name} sets"
         where = sets if at_nominal else f"{where} {sets}"
         finding = self._found(hazard, where, at)
         advice = finding.help.replace("narrow the band", f"set other values in {name}")
-        point = setter.clauses.at[0]
-        first, last = point.symbol.span, setter.clauses.at[-1].given.span
+        first, last = setter.points[0].symbol.span, setter.points[-1].given.span
         related = (*finding.related, Place(first.to(last), "set here"))
         return replace(finding, help=advice, related=related)
 
@@ -173,9 +213,9 @@ class _Teller:
         """``V_line = 207 V, C = 8 µF``: the inputs that do not stand at nominal."""
         nominal, variables = self.compiled.box.nominal, self.model.variables
         moved = [
-            _value(variables[key], float(point[column]))
+            _value(variables[name], float(point[column]))
             for key, column in self.compiled.columns.items()
-            if key in variables and point[column] != nominal[column]
+            if (name := key.partition("@")[0]) in variables and point[column] != nominal[column]
         ]
         return ", ".join(moved[:6]) or "the nominal values"
 

@@ -1,6 +1,6 @@
 """The quantities of a model as instructions, in order of computation."""
 
-from collections.abc import Mapping
+from collections.abc import Container, Iterable, Mapping
 
 import numpy as np
 
@@ -9,28 +9,153 @@ from calcdoc.analysis.choice import choose
 from calcdoc.analysis.formulas import Formulas
 from calcdoc.analysis.looking_up import LookedUp, argument_range, reached, snapped
 from calcdoc.analysis.tape import Implicit, Op
+from calcdoc.frozen import Frozen
 from calcdoc.model.model import Model, Root, Solved, Variable
 from calcdoc.problems import Finding, Mistake, error
 from calcdoc.tables.table import OutsideAxis, Table, look_up
+from calcdoc.text.cases import NORMAL
 from calcdoc.text.given import Given
-from calcdoc.text.nodes import Name, Node, Text
+from calcdoc.text.nodes import Binary, Group, Name, Negate, Node, Text
 from calcdoc.text.scan import shown
 from calcdoc.text.unparse import unparse
 
 
+class Sides(Frozen, frozen=True):
+    """Both sides of a relation as instructions, and the terms they are sums of."""
+
+    left: int
+    right: int
+    terms: tuple[int, ...]
+
+
+class InCase(Frozen, frozen=True):
+    """The instructions of every quantity in one case."""
+
+    name: str
+    changes: Mapping[str, Given | Node]
+    """What the case changes, by key; nothing in the normal case."""
+    variables: Mapping[str, int]
+    """Key of every quantity that is no series to its instruction."""
+    series: Mapping[str, Mapping[int, int]]
+    """Key of every series to the instructions of its elements."""
+    chosen: Mapping[str, Root]
+    """Key of every solved quantity to the root that was left."""
+    roots: Mapping[str, int]
+    """Key of every quantity found numerically to its instruction."""
+    relations: Mapping[str, Sides]
+    """Key of every solved or settled quantity that the case moves to the sides of its relation."""
+    broken: Mapping[str, Finding]
+    """Key of every quantity that cannot be computed in this case, with the reason."""
+
+
 class Working(Formulas):
-    """Adds the quantities of a model in order of computation."""
+    """Adds the quantities of a model in order of computation, case by case."""
 
     def __init__(self, model: Model, columns: Mapping[str, int], box: Box) -> None:
         super().__init__(len(columns))
-        self.model, self.columns, self.box = model, columns, box
+        self.model, self.columns, self.box = model, dict(columns), box
+        self.case = NORMAL
         self.chosen: dict[str, Root] = {}
         self.roots: dict[str, int] = {}
+        self.whole: InCase | None = None
+        """The normal case, once it is there."""
         self.inside: dict[int, dict[int, Node]] = {}
         """Instruction of a root to the origins of its residual's instructions."""
         self.looked: list[LookedUp] = []
         self.owner = ""
         """Key of the quantity, criterion or cross-check that is compiled now."""
+
+    def normal(self) -> InCase:
+        """Add every quantity as it is given.
+
+        Raises:
+            Mistake: when a solved quantity has several roots over the band, or none.
+        """
+        for key in self.model.order:
+            self.variable(self.model.variables[key])
+        self.whole = self._case({}, self.model.variables, {})
+        return self.whole
+
+    def changed(self, name: str, changes: Mapping[str, Given | Node]) -> InCase:
+        """Add what is different in a case; its changes are formulas of the normal values."""
+        normal = self.whole
+        assert normal is not None
+        if not changes:
+            return normal
+        self.enter(normal)
+        new = {key: self._change(name, key, change) for key, change in changes.items()}
+        moved = set(changes)
+        for key in self.model.order:
+            if moved.intersection(self.model.variables[key].depends_on):
+                moved.add(key)
+        self._start(name, normal, moved)
+        self.variables.update(new)
+        broken: dict[str, Finding] = {}
+        for key in self.model.order:
+            if key in moved and key not in changes:
+                self._try(self.model.variables[key], broken)
+        return self._case(changes, moved - changes.keys() - broken.keys(), broken)
+
+    def enter(self, case: InCase) -> None:
+        """Let names mean what they mean in a case."""
+        self._start(case.name, case, ())
+
+    def new_column(self, low: float, nominal: float, high: float, key: str = "") -> int:
+        """One more input column, known by a key when combinations may name it."""
+        column = self.builder.n_inputs
+        self.builder.n_inputs += 1
+        self.box = self.box.with_column(low, nominal, high)
+        if key:
+            self.columns[key] = column
+        return column
+
+    def _start(self, name: str, case: InCase, without: Container[str]) -> None:
+        """Take over everything of a case but some quantities."""
+        self.case = name
+        self.variables = {key: at for key, at in case.variables.items() if key not in without}
+        self.series = {key: dict(at) for key, at in case.series.items() if key not in without}
+        self.chosen = {key: root for key, root in case.chosen.items() if key not in without}
+        self.roots = {key: at for key, at in case.roots.items() if key not in without}
+
+    def _case(
+        self,
+        changes: Mapping[str, Given | Node],
+        keys: Iterable[str],
+        broken: Mapping[str, Finding],
+    ) -> InCase:
+        relations = {key: sides for key in keys if (sides := self._relation(key)) is not None}
+        return InCase(
+            self.case,
+            changes,
+            self.variables,
+            self.series,
+            self.chosen,
+            self.roots,
+            relations,
+            broken,
+        )
+
+    def _change(self, name: str, key: str, change: Given | Node) -> int:
+        """The new value of a quantity: a formula of normal values, a constant, or a column."""
+        if not isinstance(change, Given):
+            return self.node(change)
+        if not change.varies:
+            return self.constant(change.unit.to_si(change.nominal))
+        column = self.columns.get(f"{key}@{name}")
+        if column is None:
+            column = self.new_column(*change.si, key=f"{key}@{name}")
+        return self.builder.add(Op.INPUT, value=column)
+
+    def _try(self, variable: Variable, broken: dict[str, Finding]) -> None:
+        """Add a quantity; what rests on one that cannot be computed cannot be computed either."""
+        reason = next((broken[key] for key in variable.depends_on if key in broken), None)
+        if reason is None:
+            try:
+                self.variable(variable)
+            except Mistake as mistake:
+                reason = mistake.finding
+        if reason is not None:
+            broken[variable.key] = reason
 
     def variable(self, variable: Variable) -> None:
         """Add one quantity; what it rests on was added before.
@@ -76,12 +201,13 @@ class Working(Formulas):
             each * table.unit.factor for each in (found.least, found.nominal, found.greatest)
         )
         if least == greatest:
-            self.looked.append(LookedUp(self.owner, table, found, None))
+            self.looked.append(LookedUp(self.owner, table, found, None, case=self.case))
             return self.constant(nominal)
-        column = self.builder.n_inputs
-        self.builder.n_inputs += 1
-        self.box = self.box.with_column(float(least), float(nominal), float(greatest))
-        self.looked.append(LookedUp(self.owner, table, found, column, self._moving(arguments[1:])))
+        moving = self._moving(arguments[1:])
+        column = self.new_column(float(least), float(nominal), float(greatest))
+        looked = LookedUp(self.owner, table, found, column, moving, self.case)
+        self.columns[looked.key] = column
+        self.looked.append(looked)
         return self.builder.add(Op.INPUT, value=column)
 
     def _moving(self, arguments: tuple[Node, ...]) -> frozenset[int]:
@@ -103,6 +229,21 @@ class Working(Formulas):
         for key, root in zip(solved.unknowns, solved.combinations[at], strict=True):
             self.chosen[key] = root
             self.variables[key] = self.node(root.tree)
+
+    def _relation(self, key: str) -> Sides | None:
+        """Both sides of what a quantity was solved from, with the solution in place."""
+        variable = self.model.variables[key]
+        if variable.implicit is not None:
+            pair = (variable.implicit.left, variable.implicit.right)
+        elif variable.solved is not None:
+            at = variable.solved.unknowns.index(key)
+            statement = self.model.relations[variable.solved.relations[at]].statement
+            pair = (statement.left, statement.right)
+        else:
+            return None
+        left, right = (self.node(side) for side in pair)
+        terms = tuple(self.node(term) for side in pair for term in _terms(side))
+        return Sides(left, right, terms)
 
     def _implicit(self, variable: Variable) -> int:
         """A root between two values, with a residual tape of its own."""
@@ -133,6 +274,17 @@ class Working(Formulas):
         self.inside[at] = inner.origins
         self.origins.setdefault(at, Name(variable.symbol, variable.label.span))
         return at
+
+
+def _terms(node: Node) -> list[Node]:
+    """What a side is a sum of."""
+    match node:
+        case Group(inner) | Negate(inner):
+            return _terms(inner)
+        case Binary("+" | "-", left, right):
+            return [*_terms(left), *_terms(right)]
+        case _:
+            return [node]
 
 
 def _outside(table: Table, argument: Node, outside: OutsideAxis) -> Finding:

@@ -4,7 +4,7 @@ from typing import Final
 
 import click
 
-from calcdoc.commands.checked import Checked, check_file
+from calcdoc.commands.checked import Checked, check_file, status_of
 from calcdoc.commands.table import verdict_table
 from calcdoc.problems.views import as_data
 from calcdoc.records.record import SCHEMA
@@ -19,7 +19,9 @@ MANY: Final = 3
 @click.argument("files", nargs=-1, required=True, metavar="FILE...")
 @click.option("--format", "form", type=click.Choice(FORMATS), default="text",
               help="What to print on standard output.")  # fmt: skip
-def check(files: tuple[str, ...], form: str) -> int:
+@click.option("--accepted", is_flag=True,
+              help="Let failures that the text accepts count as passing.")  # fmt: skip
+def check(files: tuple[str, ...], form: str, accepted: bool) -> int:
     """Evaluate designs and print verdicts and problems.
 
     Exit status 0 when everything passes, 1 when a criterion fails or is not decided, 2 when a text
@@ -29,7 +31,13 @@ def check(files: tuple[str, ...], form: str) -> int:
     for each in checked:
         _say_problems(each)
     click.echo(_shown(checked, form), nl=False)
-    return max(each.status for each in checked)
+    return max(_status(each, accepted=accepted) for each in checked)
+
+
+def _status(checked: Checked, *, accepted: bool) -> int:
+    if checked.record is None:
+        return checked.status
+    return status_of(checked.record, accepted=accepted)
 
 
 def _all_checked(files: tuple[str, ...]) -> list[Checked]:

@@ -45,10 +45,17 @@ def check_file(name: str) -> Checked:
         return Checked(name, WORLD_IS_WRONG, f"{name}: {our_fault(trouble)}")
 
 
-def status_of(made: Record) -> int:
-    """0 when every criterion passes, or is not for calculation, and cross-checks agree; else 1."""
+def status_of(made: Record, *, accepted: bool = False) -> int:
+    """0 when every criterion passes, or is not for calculation, and cross-checks agree; else 1.
+
+    Args:
+        made: The record.
+        accepted: Whether a failure that is accepted counts as passing.
+    """
+    tally = made.verdict
+    failed = tally.failed - tally.accepted if accepted else tally.failed
     differs = any(not each.agrees for each in made.crosschecks)
-    return FAILS if made.verdict.failed or made.verdict.undecided or differs else PASSES
+    return FAILS if failed or tally.undecided or differs else PASSES
 
 
 def _checked(name: str, evaluated: Evaluated) -> Checked:
@@ -70,6 +77,6 @@ def _places(evaluated: Evaluated) -> dict[str, Span]:
     model = evaluated.evaluation.model
     statements = [
         each if isinstance(each, Uncalculated) else each.statement
-        for each in (*model.criteria, *model.crosschecks)
+        for each in (*model.criteria, *model.crosschecks, *model.measurements)
     ]
     return {each.id.name: each.span for each in statements}

@@ -6,6 +6,8 @@
                       fails and what is not known
     by test, by inspection, not applicable
                       skipped: nothing was computed
+    one of several routes
+                      a case with its numbers; what counts is the criterion that names the routes
     a text with errors, a file that cannot be read
                       one case ``text`` or ``file`` with an error for each finding
 
@@ -79,10 +81,9 @@ def _case(suite: Element, record: Record, entry: Criterion | Crosscheck) -> Elem
 
 
 def _criterion(case: Element, criterion: Criterion) -> None:
-    element = _ELEMENTS.get(criterion.verdict)
-    if criterion.value is None:
-        _say(case, element or "skipped", criterion.verdict,
-             f"{criterion.verdict}: {criterion.text}")  # fmt: skip
+    element = None if criterion.route_of else _ELEMENTS.get(criterion.verdict)
+    if criterion.value is None and element:
+        _say(case, element, criterion.verdict, f"{criterion.verdict}: {criterion_said(criterion)}")
         return
     said = criterion_said(criterion)
     if element is None:

@@ -126,10 +126,20 @@ def _criteria(
     criteria: Iterable[Criterion], places: Mapping[str, Span], where: "_Where"
 ) -> Iterable[_Data]:
     for criterion in criteria:
-        if criterion.verdict in _OF_VERDICT:
+        if criterion.verdict in _OF_VERDICT and not criterion.route_of:
             rule, level = _OF_VERDICT[criterion.verdict]
             said = f"{named(criterion)}: {criterion.verdict}: {criterion_said(criterion)}"
-            yield _result(rule, level, said, where.location(places[criterion.id]))
+            result = _result(rule, level, said, where.location(places[criterion.id]))
+            yield (
+                {**result, "suppressions": _suppressed(criterion.accepted)}
+                if (criterion.accepted)
+                else result
+            )
+
+
+def _suppressed(accepted: str) -> list[_Data]:
+    """An accepted failure, as those who read such logs expect it."""
+    return [{"kind": "inSource", "status": "accepted", "justification": accepted}]
 
 
 def _finding(finding: Finding, where: "_Where") -> _Data:

@@ -2,6 +2,7 @@
 
 from calcdoc.records.record import Criterion, Record
 from calcdoc.records.wording import counted, typeset
+from calcdoc.text.cases import NORMAL
 
 _SIGNS = {"<=": "≤", ">=": "≥", "<": "<", ">": ">"}
 Row = tuple[str, ...]
@@ -20,20 +21,36 @@ def verdict_table(record: Record) -> str:
 
 def _row(criterion: Criterion) -> Row:
     what = criterion.description or criterion.text
+    if criterion.value is None and criterion.method in ("test", "inspection", "none"):
+        return (criterion.id, _verdict(criterion), "", "", "", "", criterion.text)
     if criterion.value is None:
-        return (criterion.id, criterion.verdict, "", "", "", "", criterion.text)
+        return (criterion.id, _verdict(criterion), "", "", "", "", what)
     if "margin" in criterion.clauses:
         what += f" {typeset(criterion.clauses)}"
     at = ", ".join(f"{symbol} {typeset(text)}" for symbol, text in criterion.governing.items())
+    where = "; ".join(filter(None, (_case(criterion), f"at {at}" if at else "")))
     return (
         criterion.id,
-        criterion.verdict,
+        _verdict(criterion),
         typeset(criterion.value_text),
         _SIGNS[criterion.relation],
         typeset(criterion.limit_text),
         f"margin {typeset(criterion.margin_text)}",
-        f"{what}{f' (at {at})' if at else ''}",
+        f"{what}{f' ({where})' if where else ''}",
     )
+
+
+def _case(criterion: Criterion) -> str:
+    return f"in {criterion.case}" if criterion.case not in ("", NORMAL) else ""
+
+
+def _verdict(criterion: Criterion) -> str:
+    """The verdict in words; an accepted failure stays a failure."""
+    if criterion.accepted:
+        return f"{criterion.verdict}, accepted"
+    if criterion.route_of:
+        return f"({criterion.verdict})"
+    return criterion.verdict
 
 
 def _aligned(rows: list[Row]) -> list[str]:
@@ -52,6 +69,12 @@ def _bottom(record: Record) -> list[str]:
     """The bottom line, then what is open."""
     said = [record.verdict.bottom_line]
     said += [f"{each.id}: {each.reason}" for each in record.criteria if each.reason]
+    said += [f"{each.id}: {each.accepted}" for each in record.criteria if each.accepted]
+    said += [
+        f"{each.id} differs by {typeset(each.difference_text)}"
+        for each in record.crosschecks
+        if not each.agrees
+    ]
     open_ones = [each.id or each.symbol for each in record.assumptions if each.state == "open"]
     if open_ones:
         said.append(f"{counted(len(open_ones), 'open assumption')}: {', '.join(open_ones)}")

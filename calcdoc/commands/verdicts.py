@@ -4,6 +4,7 @@ from typing import Final
 
 from calcdoc.records.record import Criterion, Crosscheck
 from calcdoc.records.wording import sentence, typeset
+from calcdoc.text.cases import NORMAL
 
 SIGNS: Final = {"<=": "≤", ">=": "≥", "<": "<", ">": ">"}
 
@@ -22,20 +23,33 @@ def stated(entry: Criterion | Crosscheck) -> str:
 
 def criterion_said(criterion: Criterion) -> str:
     """Value, limit, margin, the combination that governs, and what there is to remark."""
-    said = (
-        f"value {typeset(criterion.value_text)}, limit {SIGNS[criterion.relation]}"
-        f" {typeset(criterion.limit_text)}, margin {typeset(criterion.margin_text)}"
-        f"{_at(criterion.governing)}"
-    )
     remarks = [sentence(each) for each in (criterion.remark, criterion.reason) if each]
+    if criterion.value is not None:
+        case = f", in {criterion.case}" if criterion.case != NORMAL else ""
+        remarks[:0] = [
+            f"value {typeset(criterion.value_text)}, limit {SIGNS[criterion.relation]}"
+            f" {typeset(criterion.limit_text)}, margin {typeset(criterion.margin_text)}"
+            f"{case}{_at(criterion.governing)}"
+        ]
     if criterion.unverified:
         remarks.append(f"on unverified values: {', '.join(criterion.unverified)}")
-    return "; ".join((said, *remarks))
+    if criterion.accepted:
+        remarks.append(f"accepted: {criterion.accepted}")
+    if criterion.route_of:
+        remarks.append(f"one of the routes of {criterion.route_of}")
+    return "; ".join(remarks or [criterion.text])
 
 
 def crosscheck_said(crosscheck: Crosscheck) -> str:
     """Both sides, the worst difference, what is allowed, and where."""
     allowed = f", allowed {typeset(crosscheck.allowed_text)}" if crosscheck.allowed_text else ""
+    if crosscheck.first_band:
+        band = f" ({typeset(crosscheck.second_band)})" if crosscheck.second_band else ""
+        return (
+            f"{stated(crosscheck)}: {crosscheck.first_band} measured,"
+            f" {typeset(crosscheck.second_text)}{band} computed, difference"
+            f" {typeset(crosscheck.difference_text)}{allowed}{_at(crosscheck.at)}"
+        )
     return (
         f"{stated(crosscheck)}: {typeset(crosscheck.first_text)} and"
         f" {typeset(crosscheck.second_text)} at nominal, worst difference"

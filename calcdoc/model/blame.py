@@ -3,12 +3,13 @@
 from collections.abc import Mapping
 from typing import NoReturn
 
-from calcdoc.model.model import Typed
+from calcdoc.model.model import Typed, Variable
 from calcdoc.problems import Mistake, Place, error
 from calcdoc.source import Span
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Binary, Group, Name, Node, Quantity, walk
 from calcdoc.text.scan import shown
+from calcdoc.text.statements import Label
 from calcdoc.text.unparse import unparse
 from calcdoc.units import ONE
 from calcdoc.units.dimension import TEMPERATURE
@@ -60,6 +61,35 @@ def defined(node: Node, typed: Typed, places: Places) -> tuple[Place, ...]:
     if not isinstance(node, Name) or fold(node.name) not in places:
         return ()
     return (Place(places[fold(node.name)], f"{node.name} is {typed.dimension.in_words()}"),)
+
+
+def other_kind(symbol: Label, target: Variable, typed: Typed) -> None:
+    """Refuse a value of another kind than the given quantity that it is for."""
+    if target.typed == typed:
+        return
+    related = (Place(target.label.span, "defined here"),)
+    one, other = target.typed.dimension.in_words(), typed.dimension.in_words()
+    if one != other:
+        raise Mistake(
+            error(
+                "unit-mismatch",
+                f"{shown(symbol.name)} is {one}, the value here is {other}",
+                symbol.span,
+                related=related,
+            )
+        )
+    one, other = "a temperature in °C", "a difference in K"
+    if typed.weight:
+        one, other = other, one
+    raise Mistake(
+        error(
+            "temperature",
+            f"{shown(symbol.name)} is {one}, the value here is {other}",
+            symbol.span,
+            related=related,
+            help="write it on the same scale",
+        )
+    )
 
 
 def weight(node: Node, known: Mapping[int, Typed]) -> NoReturn:

@@ -2,10 +2,21 @@
 
 from collections.abc import Mapping
 
+from calcdoc.frozen import Working
 from calcdoc.model import namespace
+from calcdoc.model.accepting import Accepting, check_once, criteria_of, key_of
+from calcdoc.model.cases import Stated, build_cases, stated
 from calcdoc.model.citations import CHECKS
 from calcdoc.model.judging import Judging, discharge
-from calcdoc.model.model import Compared, Judged, Model, Relation
+from calcdoc.model.model import (
+    Accepted,
+    Case,
+    Compared,
+    Criterion,
+    Measured,
+    Model,
+    Relation,
+)
 from calcdoc.model.namespace import Namespace, direct_uses
 from calcdoc.model.quantities import Quantities
 from calcdoc.model.typing import Unknown
@@ -15,15 +26,19 @@ from calcdoc.problems.views import has_errors
 from calcdoc.tables.table import Table
 from calcdoc.text.document import Document
 from calcdoc.text.statements import (
+    Acceptance,
+    AnyOf,
     CrosscheckStatement,
     HazardStatement,
     Inequality,
+    Measurement,
     ReferenceStatement,
     RelationStatement,
     RestateStatement,
     SensitivityStatement,
     SentenceStatement,
     SettleStatement,
+    Statement,
     Uncalculated,
 )
 
@@ -50,46 +65,76 @@ def build(
     rests, found = find_uses(space, relations, settled)
     quantities = Quantities(space, rests, relations, settled, tables)
     quantities.run()
-    judged, compared, more = _judge(document, space, quantities)
-    findings += [*found, *quantities.findings, *more]
+    known, twice = stated(document)
+    cases, wrong = build_cases(known, quantities.checker, quantities.variables)
+    quantities.check_counts(cases)
+    judged = _judge(document, space, quantities, known)
+    findings += [*found, *quantities.findings, *twice, *wrong, *judged.findings]
     for each in CHECKS:
         findings += each(document, space)
     # A table that could not be read leaves lines untyped; whoever read it reports that.
     if has_errors(findings) or len(quantities.variables) < len(space.quantities):
         return None, tuple(findings)
-    stated = {
+    relations_of = {
         key: Relation(key, each, direct_uses((each.left, each.right), space))
         for key, each in relations.items()
     }
-    made = _model(document, tables, quantities, rests, stated, judged, compared)
+    made = _model(document, tables, quantities, rests, relations_of, cases, judged)
     return made, tuple(findings)
 
 
+class _Judgements(Working):
+    """What is judged and compared, in the author's order."""
+
+    judging: Judging
+    accepting: Accepting
+    criteria: list[Criterion]
+    accepted: list[Accepted]
+    compared: list[Compared]
+    measured: list[Measured]
+    findings: list[Finding]
+
+    def take(self, statement: Statement) -> None:
+        """Check one statement and keep what it says."""
+        match statement:
+            case Inequality():
+                self.criteria.append(self.judging.criterion(statement))
+            case Uncalculated():
+                self.criteria.append(statement)
+            case AnyOf():
+                self.criteria.append(self.accepting.chosen(statement))
+            case CrosscheckStatement():
+                self.compared.append(self.judging.crosscheck(statement))
+            case Measurement():
+                self.measured.append(self.judging.measurement(statement))
+            case HazardStatement():
+                self.findings += self.judging.hazard(statement)
+            case _:
+                pass
+
+    def accept(self, statement: Statement) -> None:
+        """Check an acceptance, when all criteria are known."""
+        if isinstance(statement, Acceptance):
+            by_key = {key_of(each): each for each in self.criteria}
+            self.accepted.append(self.accepting.accepted(statement, by_key))
+
+
 def _judge(
-    document: Document, space: Namespace, quantities: Quantities
-) -> tuple[list[Judged | Uncalculated], list[Compared], list[Finding]]:
-    judging = Judging(space, quantities.checker, quantities.variables)
-    criteria: list[Judged | Uncalculated] = []
-    compared: list[Compared] = []
-    findings: list[Finding] = []
-    for statement in document.statements:
-        try:
-            match statement:
-                case Inequality():
-                    criteria.append(judging.criterion(statement))
-                case Uncalculated():
-                    criteria.append(statement)
-                case CrosscheckStatement():
-                    compared.append(judging.crosscheck(statement))
-                case HazardStatement():
-                    findings += judging.hazard(statement)
-                case _:
-                    pass
-        except Mistake as mistake:
-            findings.append(mistake.finding)
-        except Unknown:
-            pass
-    return criteria, compared, findings
+    document: Document, space: Namespace, quantities: Quantities, known: Stated
+) -> _Judgements:
+    judging = Judging(space, quantities.checker, quantities.variables, known)
+    accepting = Accepting(space, criteria_of(document.statements), known)
+    found = _Judgements(judging, accepting, [], [], [], [], [])
+    for check in (found.take, found.accept):
+        for statement in document.statements:
+            try:
+                check(statement)
+            except Mistake as mistake:
+                found.findings.append(mistake.finding)
+            except Unknown:
+                pass
+    found.findings += check_once(found.accepted)
+    return found
 
 
 def _model(  # noqa: PLR0913  (the parts of a model)
@@ -98,8 +143,8 @@ def _model(  # noqa: PLR0913  (the parts of a model)
     quantities: Quantities,
     rests: Rests,
     relations: dict[str, Relation],
-    criteria: list[Judged | Uncalculated],
-    compared: list[Compared],
+    cases: tuple[Case, ...],
+    judged: _Judgements,
 ) -> Model:
     given = document.statements
     hazards = tuple(each for each in given if isinstance(each, HazardStatement))
@@ -109,8 +154,11 @@ def _model(  # noqa: PLR0913  (the parts of a model)
         {key: quantities.variables[key] for key in quantities.space.quantities},
         rests.order,
         relations,
-        tuple(criteria),
-        tuple(compared),
+        cases,
+        tuple(judged.criteria),
+        tuple(judged.accepted),
+        tuple(judged.compared),
+        tuple(judged.measured),
         tuple(each for each in given if isinstance(each, RestateStatement)),
         tuple(each for each in given if isinstance(each, SensitivityStatement)),
         tuple(each for each in given if isinstance(each, SentenceStatement)),

@@ -3,7 +3,7 @@
 from collections.abc import Callable, Iterator
 from typing import Final
 
-from calcdoc.model.namespace import Namespace
+from calcdoc.model.namespace import MEASURED, Namespace
 from calcdoc.problems import Finding, Place, error
 from calcdoc.text.document import Document, mentions
 from calcdoc.text.names import fold, nearest
@@ -82,6 +82,16 @@ def check_mentions(document: Document, space: Namespace) -> list[Finding]:
                     f"{shown(mention.name)} is a criterion, it has no {mention.form}",
                     mention.span,
                     help=f"write {{{mention.name}}}",
+                )
+            )
+            continue
+        if space.ids.get(key) == MEASURED:
+            findings.append(
+                error(
+                    "unknown-name",
+                    f"{shown(mention.name)} is a measured value, prose names what is calculated",
+                    mention.span,
+                    help="write its number, or name what it is compared with",
                 )
             )
             continue

@@ -2,20 +2,30 @@
 
 from collections.abc import Mapping
 
-from calcdoc.model import series
-from calcdoc.model.model import Compared, Discharge, Judged, Model, Typed, Variable
+from calcdoc.model import blame, series
+from calcdoc.model.cases import Stated, judged_in
+from calcdoc.model.model import (
+    Compared,
+    Discharge,
+    Judged,
+    Measured,
+    Model,
+    Typed,
+    Variable,
+)
 from calcdoc.model.namespace import Namespace, direct_uses
 from calcdoc.model.quantities import typed_as
 from calcdoc.model.typing import Checker, Unknown
 from calcdoc.problems import Finding, Mistake, Place, error, warning
 from calcdoc.text.given import Given
-from calcdoc.text.nodes import Node
+from calcdoc.text.nodes import Comparison, Node, walk
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
     CrosscheckStatement,
     HazardStatement,
     Index,
     Inequality,
+    Measurement,
     PointValue,
 )
 from calcdoc.units import Dimension
@@ -26,18 +36,21 @@ CAPACITANCE = CURRENT * TIME / VOLTAGE
 
 def outside_band(model: Model) -> tuple[Finding, ...]:
     """Operating points that reach beyond the band a quantity was declared with: maybe a slip."""
+    judged = [each for each in model.criteria if isinstance(each, Judged)]
+    points = [
+        *((point, "criterion") for each in judged for point in each.statement.clauses.at),
+        *((point, "measurement") for each in model.measurements for point in each.statement.at),
+    ]
     return tuple(
-        _beyond(point, given)
-        for judged in model.criteria
-        if isinstance(judged, Judged)
-        for point in judged.statement.clauses.at
+        _beyond(point, given, what)
+        for point, what in points
         if (given := model.variables[point.symbol.key].given) is not None
         and given.varies
         and not given.si[0] <= point.given.si[0] <= point.given.si[-1] <= given.si[-1]
     )
 
 
-def _beyond(point: PointValue, given: Given) -> Finding:
+def _beyond(point: PointValue, given: Given, what: str) -> Finding:
     least, greatest = (given.unit.from_si(given.si[end]) for end in (0, -1))
     unit = f" {given.unit.text}" if given.unit.text else ""
     return warning(
@@ -45,7 +58,7 @@ def _beyond(point: PointValue, given: Given) -> Finding:
         f"`{point.symbol.name}` is declared from {least:.6g}{unit} to {greatest:.6g}{unit},"
         " this point lies outside",
         point.given.span,
-        help="correct it, or say in the description why the criterion looks beyond the band",
+        help=f"correct it, or say in the description why the {what} looks beyond the band",
     )
 
 
@@ -53,9 +66,14 @@ class Judging:
     """Checks what stands on typed quantities."""
 
     def __init__(
-        self, space: Namespace, checker: Checker, variables: Mapping[str, Variable]
+        self,
+        space: Namespace,
+        checker: Checker,
+        variables: Mapping[str, Variable],
+        cases: Stated,
     ) -> None:
         self.space, self.checker, self.variables = space, checker, variables
+        self.cases = cases
 
     def criterion(self, statement: Inequality) -> Judged:
         """A calculated criterion.
@@ -64,15 +82,21 @@ class Judging:
             Mistake: at the smallest wrong piece.
             Unknown: when it rests on a line that is wrong itself.
         """
-        index = statement.clauses.index
+        clauses = statement.clauses
+        index, trees = clauses.index, list(statement.operands)
         typed = self.checker.comparison(statement.operands, index)
         self._check_series(statement.operands, index)
+        if clauses.when is not None:
+            trees.append(clauses.when)
+            self.checker.condition(clauses.when, index)
+            for each in walk(clauses.when):
+                if isinstance(each, Comparison):
+                    self._check_series(each.operands, index)
         self._check_margin(statement, typed)
-        for point in statement.clauses.at:
-            self._check_point(point)
-        _check_once(statement.clauses.at)
+        self._check_points(clauses.at)
+        cases = judged_in(clauses.scope, self.cases)
         running = {index.name.key} if index else set()
-        return Judged(statement, typed, direct_uses(statement.operands, self.space, running))
+        return Judged(statement, typed, direct_uses(trees, self.space, running), cases)
 
     def crosscheck(self, statement: CrosscheckStatement) -> Compared:
         """A cross-check; raises as :meth:`criterion` does."""
@@ -89,6 +113,33 @@ class Judging:
                 )
             )
         return Compared(statement, typed, direct_uses(sides, self.space))
+
+    def measurement(self, statement: Measurement) -> Measured:
+        """A cross-check with a measured value; raises as :meth:`criterion` does."""
+        typed = self.checker.quantity(statement.second)
+        self._check_series((statement.second,), None)
+        measured = typed_as(statement.given.unit)
+        if measured.dimension != typed.dimension:
+            raise Mistake(
+                error(
+                    "unit-mismatch",
+                    f"cannot compare {measured.dimension.in_words()} with"
+                    f" {typed.dimension.in_words()}",
+                    statement.given.span.to(statement.second.span),
+                    related=blame.defined(statement.second, typed, self.checker.places),
+                )
+            )
+        if measured != typed:
+            raise Mistake(
+                error(
+                    "temperature",
+                    "cannot compare a temperature with a difference of temperatures",
+                    statement.given.span.to(statement.second.span),
+                    help="a temperature is in °C, a difference in K",
+                )
+            )
+        self._check_points(statement.at)
+        return Measured(statement, typed, direct_uses((statement.second,), self.space))
 
     def _check_series(self, sides: tuple[Node, ...], index: Index | None) -> None:
         """A whole series is judged element by element."""
@@ -128,31 +179,25 @@ class Judging:
                 )
             )
 
-    def _check_point(self, point: PointValue) -> None:
-        symbol, typed = point.symbol, typed_as(point.given.unit)
-        target = self.variables.get(symbol.key)
-        if target is None:
-            raise Unknown
-        if target.given is None:
-            raise Mistake(
-                error(
-                    "operating-point",
-                    f"{shown(symbol.name)} is derived, an operating"
-                    " point sets conditions and inputs",
-                    symbol.span,
-                    related=(Place(target.label.span, "derived here"),),
+    def _check_points(self, points: tuple[PointValue, ...]) -> None:
+        """An operating point sets given quantities, each once and to a value of its kind."""
+        for point in points:
+            symbol = point.symbol
+            target = self.variables.get(symbol.key)
+            if target is None:
+                raise Unknown
+            if target.given is None:
+                raise Mistake(
+                    error(
+                        "operating-point",
+                        f"{shown(symbol.name)} is derived, an operating"
+                        " point sets conditions and inputs",
+                        symbol.span,
+                        related=(Place(target.label.span, "derived here"),),
+                    )
                 )
-            )
-        if target.typed != typed:
-            raise Mistake(
-                error(
-                    "unit-mismatch",
-                    f"{shown(symbol.name)} is {target.typed.dimension.in_words()}, the value"
-                    f" here is {typed.dimension.in_words()}",
-                    symbol.span,
-                    related=(Place(target.label.span, "defined here"),),
-                )
-            )
+            blame.other_kind(symbol, target, typed_as(point.given.unit))
+        _check_once(points)
 
     def hazard(self, statement: HazardStatement) -> list[Finding]:
         """What is wrong with the symbols of a hazard."""

@@ -9,13 +9,17 @@ from calcdoc.text.document import Document
 from calcdoc.text.given import Given
 from calcdoc.text.nodes import Node
 from calcdoc.text.statements import (
+    Acceptance,
+    AnyOf,
     Basis,
+    CaseStatement,
     CrosscheckStatement,
     GivenStatement,
     HazardStatement,
     Index,
     Inequality,
     Label,
+    Measurement,
     ReferenceStatement,
     RelationStatement,
     RestateStatement,
@@ -122,12 +126,58 @@ class Judged(Frozen, frozen=True):
     statement: Inequality
     typed: Typed
     depends_on: tuple[str, ...]
+    """Keys of what its sides and its ``when`` name."""
+    cases: tuple[str, ...]
+    """Names of the cases it is judged in: ``normal`` first, the others in the author's order."""
+
+
+class Chosen(Frozen, frozen=True):
+    """``any of H1, H2``: one of several criteria is enough."""
+
+    statement: AnyOf
+    members: tuple[str, ...]
+    """Keys of the criteria, each once, in the author's order."""
+
+
+Criterion = Judged | Uncalculated | Chosen
+
+
+class Accepted(Frozen, frozen=True):
+    """A failure that is accepted until a day."""
+
+    statement: Acceptance
+    criterion: str
+    """Key of the criterion, which is calculated."""
+    cases: tuple[str, ...]
+    """Names of the cases in which its failure is accepted; empty for all of them."""
+
+
+class Case(Frozen, frozen=True):
+    """A mode or a fault; the case ``normal`` changes nothing and has none."""
+
+    key: str
+    """Blanks collapsed, accents composed; names are compared by it."""
+    name: str
+    """The same, as it is shown."""
+    kind: str
+    """``mode`` or ``fault``."""
+    statement: CaseStatement
+    changes: Mapping[str, Given | Node]
+    """Key of a given quantity to its value in this case, or to a formula of normal values."""
 
 
 class Compared(Frozen, frozen=True):
     """A cross-check between two ways to one quantity."""
 
     statement: CrosscheckStatement
+    typed: Typed
+    depends_on: tuple[str, ...]
+
+
+class Measured(Frozen, frozen=True):
+    """A measured value and what it is compared with."""
+
+    statement: Measurement
     typed: Typed
     depends_on: tuple[str, ...]
 
@@ -151,8 +201,13 @@ class Model(Frozen, frozen=True):
     order: tuple[str, ...]
     """Keys such that each comes after those it depends on."""
     relations: Mapping[str, Relation]
-    criteria: tuple[Judged | Uncalculated, ...]
+    cases: tuple[Case, ...]
+    """Modes and faults in the author's order; ``normal`` is not among them."""
+    criteria: tuple[Criterion, ...]
+    acceptances: tuple[Accepted, ...]
     crosschecks: tuple[Compared, ...]
+    measurements: tuple[Measured, ...]
+    """Cross-checks with a measured value; ``statement.span`` says where they stand among them."""
     restated: tuple[RestateStatement, ...]
     sensitivities: tuple[SensitivityStatement, ...]
     sentences: tuple[SentenceStatement, ...]

@@ -1,6 +1,7 @@
 """One namespace for a whole document: symbols and ids, each defined once, all known."""
 
 from collections.abc import Collection, Iterable, Iterator, Mapping
+from typing import Final
 
 from calcdoc.frozen import Frozen
 from calcdoc.model.constants import CONSTANTS
@@ -11,6 +12,8 @@ from calcdoc.text.names import fold, nearest, taken_as
 from calcdoc.text.nodes import Name, Node, Quantity, UnitText, names, walk
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
+    AnyOf,
+    CaseStatement,
     CrosscheckStatement,
     Definition,
     GivenStatement,
@@ -18,6 +21,8 @@ from calcdoc.text.statements import (
     Index,
     Inequality,
     Label,
+    Measurement,
+    PointValue,
     RelationStatement,
     RestateStatement,
     SensitivityStatement,
@@ -31,6 +36,8 @@ from calcdoc.text.unparse import unit_text
 from calcdoc.units import known_word
 
 Valued = GivenStatement | Definition | SolvedStatement
+MEASURED: Final = "measured value"
+"""What the symbol of a measurement is; formulas rest on the design alone."""
 
 
 class Namespace(Frozen, frozen=True):
@@ -103,14 +110,17 @@ def _labels(statements: Iterable[Statement]) -> Iterator[tuple[Statement, Label,
                 yield each, each.id, "assumption"
             case CrosscheckStatement():
                 yield each, each.id, "cross-check"
-            case Inequality() | Uncalculated():
+            case Inequality() | Uncalculated() | AnyOf():
                 yield each, each.id, "criterion"
+            case Measurement():
+                yield each, each.id, "cross-check"
+                yield each, each.symbol, MEASURED
             case _:
                 pass
 
 
 def _advice(what: str) -> str:
-    if what == "symbol":
+    if what in ("symbol", MEASURED):
         return "give one of them another subscript, or remove it"
     return (
         "symbols and the ids of criteria and assumptions share one set of names; choose another id"
@@ -174,6 +184,13 @@ def _unknown_relations(
 
 def _unknown(label: Label, space: Namespace, own: set[str]) -> Finding:
     """What to say of an unknown name; ``own`` is what its line defines, which is no advice."""
+    if space.ids.get(label.key) == MEASURED:
+        return error(
+            "unknown-symbol",
+            f"{shown(label.name)} is a measured value, it cannot be used in formulas",
+            label.span,
+            help="a design is calculated from its inputs; state the value there if it is one",
+        )
     if label.key in space.labels:
         return error(
             "unknown-symbol",
@@ -196,15 +213,15 @@ def _used(statement: Statement) -> Iterator[Label]:
     for tree in trees(statement):
         for name in names(tree):
             yield Label(name.name, name.span)
+    for given in _givens(statement):
+        yield from _counts(given)
     match statement:
         case HazardStatement():
             yield from statement.symbols
-        case GivenStatement():
-            like = statement.given.parts.like
-            if like and isinstance(like.count, Name):
-                yield Label(like.count.name, like.count.span)
-        case Inequality():
-            yield from (point.symbol for point in statement.clauses.at)
+        case CaseStatement():
+            yield from (change.symbol for change in statement.changes)
+        case Inequality() | Measurement():
+            yield from (point.symbol for point in _points(statement))
         case SettleStatement():
             yield statement.symbol
         case RestateStatement():
@@ -215,13 +232,29 @@ def _used(statement: Statement) -> Iterator[Label]:
             pass
 
 
+def _points(statement: Inequality | Measurement) -> tuple[PointValue, ...]:
+    return statement.clauses.at if isinstance(statement, Inequality) else statement.at
+
+
+def _counts(given: Given) -> Iterator[Label]:
+    """The symbol that says how many like parts there are."""
+    like = given.parts.like
+    if like and isinstance(like.count, Name):
+        yield Label(like.count.name, like.count.span)
+
+
 def trees(statement: Statement) -> tuple[Node, ...]:
     """The formulas of a statement."""
     match statement:
         case Definition():
             return (statement.formula,)
         case Inequality():
-            return statement.operands
+            when = statement.clauses.when
+            return statement.operands if when is None else (*statement.operands, when)
+        case CaseStatement():
+            return tuple(each.formula for each in statement.changes if each.formula is not None)
+        case Measurement():
+            return (statement.second,)
         case RelationStatement():
             return (statement.left, statement.right)
         case SolvedStatement():
@@ -271,18 +304,27 @@ def _units(statement: Statement) -> Iterator[tuple[str, UnitText]]:
         for node in walk(tree):
             if isinstance(node, Quantity):
                 yield node.digits, node.unit
-    given: list[Given] = []
-    if isinstance(statement, GivenStatement):
-        given.append(statement.given)
-    if isinstance(statement, SolvedStatement | SettleStatement) and statement.bracket:
-        given.append(statement.bracket)
-    if isinstance(statement, Inequality):
-        given += [point.given for point in statement.clauses.at]
-        if statement.clauses.margin:
-            given.append(statement.clauses.margin.value)
-    for each in given:
+    for each in _givens(statement):
         for unit in each.units:
             yield "", unit
+
+
+def _givens(statement: Statement) -> tuple[Given, ...]:
+    """The values with a band of a statement, where no formula can stand."""
+    match statement:
+        case GivenStatement():
+            return (statement.given,)
+        case SolvedStatement(bracket=bracket) | SettleStatement(bracket=bracket):
+            return (bracket,) if bracket else ()
+        case CaseStatement():
+            return tuple(each.given for each in statement.changes if each.given is not None)
+        case Inequality():
+            margin = (statement.clauses.margin.value,) if statement.clauses.margin else ()
+            return (*(point.given for point in _points(statement)), *margin)
+        case Measurement():
+            return (statement.given, *(point.given for point in _points(statement)))
+        case _:
+            return ()
 
 
 def direct_uses(

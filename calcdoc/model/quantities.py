@@ -6,7 +6,7 @@ from fractions import Fraction
 from calcdoc.frozen import replace
 from calcdoc.model import series
 from calcdoc.model.constant import constant_value
-from calcdoc.model.model import Implicit, Solved, Typed, Variable
+from calcdoc.model.model import Case, Implicit, Solved, Typed, Variable
 from calcdoc.model.namespace import Namespace
 from calcdoc.model.typing import Checker, Unknown
 from calcdoc.model.uses import Rests
@@ -88,8 +88,6 @@ class Quantities:
                 self.types[key] = variable.typed
         for key in self.settled:
             self._check_loop(key)
-        for variable in tuple(self.variables.values()):
-            self._check_count(variable)
 
     def _variable(
         self, key: str, statement: GivenStatement | Definition | SolvedStatement
@@ -180,22 +178,25 @@ class Quantities:
                     _bracket_mismatch(self.settled[key].bracket, variable.typed, found, variable)
                 )
 
-    def _check_count(self, variable: Variable) -> None:
-        """``each of n``: n is a given plain number, whole and at least one."""
-        like = variable.given.parts.like if variable.given else None
-        if like is None or not isinstance(like.count, Name):
-            return
-        count = self.variables.get(fold(like.count.name))
-        given = count.given if count else None
-        whole = given and given.nominal.denominator == 1 and given.nominal >= 1
+    def check_counts(self, cases: tuple[Case, ...]) -> None:
+        """``each of n``: n is a given plain number, whole and at least one, also in a case."""
+        stated = [each.given for each in self.variables.values() if each.given is not None]
+        changed = [each for case in cases for each in case.changes.values()]
+        for given in (*stated, *(each for each in changed if isinstance(each, Given))):
+            like = given.parts.like
+            if like is not None and isinstance(like.count, Name):
+                self._check_count(like.count)
+
+    def _check_count(self, name: Name) -> None:
+        count = self.variables.get(fold(name.name))
         if count is None:
             return
-        if given is None or given.varies or count.typed.dimension != ONE or not whole:
+        if not _is_count(count.given):
             self.findings.append(
                 error(
                     "tolerance",
-                    f"{shown(like.count.name)} is no fixed number of parts",
-                    like.count.span,
+                    f"{shown(name.name)} is no fixed number of parts",
+                    name.span,
                     related=(Place(count.label.span, "defined here"),),
                     help="name an input that is a whole number",
                 )
@@ -265,6 +266,17 @@ class Quantities:
             return
         self.types[key] = typed
         self.checker.condition(statement.where)
+
+
+def _is_count(given: Given | None) -> bool:
+    """Whether a value is a fixed, whole, plain number of at least one."""
+    return (
+        given is not None
+        and not given.varies
+        and given.unit.dimension == ONE
+        and given.nominal.denominator == 1
+        and given.nominal >= 1
+    )
 
 
 def _given(key: str, statement: GivenStatement) -> Variable:

@@ -247,7 +247,7 @@ class Checker:
                 raise Unknown
             return found
         if name == "if":
-            self.condition(arguments[0])
+            self.condition(arguments[0], self._running)
             return self._alike(node, arguments[1:])
         if name in _SAME:
             typed = self._alike(node, arguments)
@@ -308,14 +308,14 @@ class Checker:
                 )
             )
 
-    def condition(self, node: Node) -> None:
+    def condition(self, node: Node, running: Index | None = None) -> None:
         """Check a condition: comparisons joined by ``and``, ``or``, ``not``."""
         match node:
             case Comparison(operands):
-                self.comparison(operands)
+                self.comparison(operands, running)
             case Logic() | Not() | Group():
                 for each in children(node):
-                    self.condition(each)
+                    self.condition(each, running)
             case _:
                 raise Mistake(
                     error(

@@ -5,6 +5,7 @@ from itertools import accumulate
 from typing import Final
 
 from calcdoc.page import typeset
+from calcdoc.page.incase import case_tables
 from calcdoc.page.lines import assumed, remark, subject
 from calcdoc.page.markup import Column, margin_bar, table, verdict
 from calcdoc.page.measure import SCRIPT, text_width
@@ -76,7 +77,11 @@ def _verdicts(view: View) -> str:
     if not view.record.criteria:
         return head
     rows = (_verdict_row(view, each) for each in view.record.criteria)
-    return head + table("verdicts", "Each criterion with its verdict", VERDICTS, rows)
+    return (
+        head
+        + table("verdicts", "Each criterion with its verdict", VERDICTS, rows)
+        + case_tables(view)
+    )
 
 
 def _verdict_row(view: View, criterion: Criterion) -> tuple[str, ...]:

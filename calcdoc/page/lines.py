@@ -9,7 +9,7 @@ from calcdoc.page.measure import measure, text_width
 from calcdoc.page.pieces import ROOM, read
 from calcdoc.page.view import View
 from calcdoc.records.pictures import RELATIONS, equation, symbol
-from calcdoc.records.record import Assumption, Criterion, Quantity
+from calcdoc.records.record import Assumption, CaseValues, Criterion, Quantity
 from calcdoc.records.shapes import Glyphs, Picture, Row
 from calcdoc.records.wording import typeset as typeset_text
 
@@ -294,18 +294,24 @@ def _band(_view: View, quantity: Quantity) -> str:
 
 
 def _cases(view: View, quantity: Quantity) -> str:
-    """The values in the cases that change it."""
-    digits, unit = view.record.document.digits, quantity.unit
-    shown = []
-    for name, values in quantity.by_case.items():
-        text = f"{escape(name)}: {typeset.in_unit(values.nominal, unit, digits)}"
-        if values.least != values.greatest:
-            least, greatest = (
-                typeset.in_unit(end, unit, digits) for end in (values.least, values.greatest)
-            )
-            text += f", {least} to {greatest}"
-        shown.append(text)
-    return f'<p class="band">in {"; in ".join(shown)}</p>' if shown else ""
+    """The values in the cases that change it, one line each."""
+    return "".join(
+        f'<p class="band"><span class="cl">in {escape(name)}:</span>'
+        f" {_in_case(view, quantity, values)}</p>"
+        for name, values in quantity.by_case.items()
+    )
+
+
+def _in_case(view: View, quantity: Quantity, values: CaseValues) -> str:
+    if values.reason:
+        return f"not computed, {view.sentence(values.reason)}"
+    if values.text:
+        return typeset.sentence(values.text)
+    unit = quantity.unit
+    return "; ".join(
+        f'<span class="nb">{at}: {typeset.in_unit(value, unit, _digits(view))}</span>'
+        for at, value in zip(quantity.index or (), _listed(values.nominal or []), strict=False)
+    )
 
 
 # --- the right margin -------------------------------------------------------------------------

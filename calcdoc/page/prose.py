@@ -3,7 +3,7 @@
 from collections.abc import Iterable
 from html import escape
 
-from calcdoc.page import lines, solved, typeset
+from calcdoc.page import incase, lines, solved, typeset
 from calcdoc.page.markup import verdict
 from calcdoc.page.view import View
 from calcdoc.records import record as r
@@ -50,6 +50,7 @@ Line = (
     | r.RelationLine
     | r.RestatedLine
     | r.SensitivityLine
+    | r.CaseLine
     | r.CrosscheckLine
     | r.SentenceLine
 )
@@ -68,6 +69,8 @@ def _line(view: View, item: Line) -> str:
             return solved.restated_line(view, view.restated[line])
         case r.SensitivityLine(line):
             return solved.sensitivity_line(view, view.sensitivities[line])
+        case r.CaseLine(name):
+            return incase.case_line(view, view.cases[name])
         case r.CrosscheckLine(name):
             return solved.crosscheck_line(view, view.crosschecks[name])
         case r.SentenceLine(name):

@@ -11,6 +11,7 @@ from calcdoc.records import wording
 from calcdoc.records.pictures import symbol
 from calcdoc.records.record import (
     Assumption,
+    Case,
     Criterion,
     Crosscheck,
     Quantity,
@@ -113,6 +114,11 @@ class View:
     def sensitivities(self) -> dict[str, Sensitivity]:
         """Sensitivities by line."""
         return {each.line: each for each in self.record.sensitivities}
+
+    @cached_property
+    def cases(self) -> dict[str, Case]:
+        """Cases by name."""
+        return {each.name: each for each in self.record.cases}
 
     @cached_property
     def crosschecks(self) -> dict[str, Crosscheck]:

@@ -10,10 +10,13 @@ from calcdoc.records.naming import Naming, keys_of
 from calcdoc.records.wording import opened
 from calcdoc.text import prose
 from calcdoc.text.statements import (
+    AnyOf,
+    CaseStatement,
     CrosscheckStatement,
     Definition,
     GivenStatement,
     Inequality,
+    Measurement,
     RelationStatement,
     RestateStatement,
     SensitivityStatement,
@@ -190,11 +193,13 @@ def _lines(statement: Statement, naming: Naming) -> tuple[r.Block, ...]:
             return (r.RestatedLine(line=naming.lines[keys_of(statement)[0]]),)
         case SensitivityStatement():
             return (r.SensitivityLine(line=naming.lines[keys_of(statement)[0]]),)
-        case CrosscheckStatement():
+        case CaseStatement():
+            return (r.CaseLine(name=statement.name.name),)
+        case CrosscheckStatement() | Measurement():
             return (r.CrosscheckLine(id=statement.id.name),)
         case SentenceStatement():
             return (r.SentenceLine(id=statement.id.name),)
-        case Inequality() | Uncalculated():
+        case Inequality() | Uncalculated() | AnyOf():
             return (r.CriterionLine(id=statement.id.name),)
         case _:
             return ()

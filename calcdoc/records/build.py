@@ -8,12 +8,14 @@ from calcdoc.problems import Finding
 from calcdoc.problems.views import as_data, in_order
 from calcdoc.records import body as prose_body
 from calcdoc.records import record as r
+from calcdoc.records.cases import cases
 from calcdoc.records.cautions import cautions, hazards
 from calcdoc.records.checks import crosschecks, relations
 from calcdoc.records.criteria import criteria
 from calcdoc.records.method import method_statement
 from calcdoc.records.naming import name_lines
-from calcdoc.records.quantities import Numbers, quantities
+from calcdoc.records.numbers import Numbers
+from calcdoc.records.quantities import quantities
 from calcdoc.records.registers import assumptions, references, tally, unsourced
 from calcdoc.records.restating import restated, sensitivities
 from calcdoc.source import digest
@@ -64,7 +66,7 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
         source=_source(evaluation, made),
         tool=made.tool,
         sampling=None,
-        cases=("normal",),
+        cases=cases(numbers, naming),
         quantities=lines,
         relations=relations(numbers, naming),
         restated=restated(numbers, naming),

@@ -13,6 +13,7 @@ from calcdoc.records import record as r
 from calcdoc.records.body import caution_text
 from calcdoc.records.rounding import upward
 from calcdoc.records.wording import counted, typeset
+from calcdoc.text.cases import NORMAL
 from calcdoc.text.names import fold
 from calcdoc.units.dimension import VOLTAGE
 
@@ -97,7 +98,9 @@ def _of_hazards(evaluation: Evaluation) -> Iterator[r.Caution]:
         yield _danger(MAINS)
     kinds = [each.kind for each in evaluation.model.hazards]
     supplies = [each for each in evaluation.model.hazards if each.kind == "supply"]
-    bands = [evaluation.bands[fold(each.symbols[0].name)] for each in supplies]
+    keys = {fold(each.symbols[0].name) for each in supplies}
+    everywhere = [evaluation.bands, *(case.bands for case in evaluation.cases.values())]
+    bands = [bands[key] for bands in everywhere for key in keys & bands.keys()]
     if any(band.magnitude > TOUCH_VOLTAGE for band in bands):
         yield _danger(MAINS)
     elif "not isolated" in kinds:
@@ -121,10 +124,15 @@ def _stored(evaluation: Evaluation, discharge: Discharge, discharged: Discharged
             " measure, before touching."
         )
     time = typeset(f"{upward(discharged.seconds, 3)} s")
+    over = "tolerances and cases" if evaluation.model.cases else "tolerances"
+    worst = f", in the case {discharged.case}" if discharged.case != NORMAL else ""
+    unknown = ""
+    if discharged.unknown:
+        unknown = f" It could not be computed in {', '.join(discharged.unknown)}."
     return (
         f"Stored charge: after disconnection {store} falls from up to {start} to {typeset('60 V')}"
-        f" through {symbol[discharge.resistance]} in at most {time} over all tolerances; with an"
-        f" open bleed resistor it stays charged.{rest} Wait, then measure, before touching."
+        f" through {symbol[discharge.resistance]} in at most {time} over all {over}{worst}; with an"
+        f" open bleed resistor it stays charged.{unknown}{rest} Wait, then measure, before touching."
     )
 
 

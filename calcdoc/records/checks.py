@@ -1,12 +1,13 @@
 """Cross-checks and relations as the record shows them."""
 
-from calcdoc.analysis.evaluation import Crosschecked
+from calcdoc.analysis.evaluation import AgainstMeasured, Crosschecked
 from calcdoc.model.model import Relation
 from calcdoc.records import record as r
 from calcdoc.records.naming import Naming
-from calcdoc.records.quantities import Numbers
+from calcdoc.records.numbers import Numbers
 from calcdoc.records.rounding import significant, stored
-from calcdoc.records.values import computed, difference, with_unit
+from calcdoc.records.values import computed, difference, given_nominal, with_unit
+from calcdoc.records.wording import band_in_words
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Group, Name, Node
 from calcdoc.text.unparse import unparse
@@ -18,8 +19,12 @@ _DIGITS = 3
 
 
 def crosschecks(numbers: Numbers, naming: Naming) -> tuple[r.Crosscheck, ...]:
-    """Every cross-check of the record, in the author's order."""
-    return tuple(_crosscheck(numbers, naming, each) for each in numbers.evaluation.crosschecks)
+    """Every cross-check of the record, measurements among them, in the author's order."""
+    made = [(each.compared.statement.span.start, _crosscheck(numbers, naming, each))
+            for each in numbers.evaluation.crosschecks]  # fmt: skip
+    made += [(each.measured.statement.span.start, _measurement(numbers, naming, each))
+             for each in numbers.evaluation.measurements]  # fmt: skip
+    return tuple(check for _, check in sorted(made, key=lambda pair: pair[0]))
 
 
 def _crosscheck(numbers: Numbers, naming: Naming, done: Crosschecked) -> r.Crosscheck:
@@ -51,6 +56,41 @@ def _crosscheck(numbers: Numbers, naming: Naming, done: Crosschecked) -> r.Cross
         proof=done.proof.value,
         description=statement.description,
         basis=statement.basis.text,
+        first_band="",
+        second_band="",
+    )
+
+
+def _measurement(numbers: Numbers, naming: Naming, done: AgainstMeasured) -> r.Crosscheck:
+    """A measured value beside the computed one, in the unit it was measured in."""
+    statement = done.measured.statement
+    unit = statement.given.unit
+    points = {each.symbol.name: with_unit(each.given.digits, each.given.unit)
+              for each in statement.at}  # fmt: skip
+    band = ""
+    if done.low < done.high:
+        ends = (computed(each, unit, numbers.digits) for each in (done.low, done.high))
+        band = " to ".join(ends)
+    return r.Crosscheck(
+        id=statement.id.name,
+        first=statement.symbol.name,
+        second=unparse(statement.second),
+        unit="K" if unit.celsius else unit.text,
+        difference=stored(unit.difference_from_si(done.difference)),
+        allowed=stored(unit.difference_from_si(done.allowed)),
+        agrees=done.agrees,
+        line=naming.lines[statement.id.key],
+        form="measured against",
+        first_text=given_nominal(statement.given),
+        second_text=computed(done.second, unit, numbers.digits),
+        difference_text=difference(done.difference, unit, _DIGITS),
+        allowed_text=difference(done.allowed, unit, _DIGITS),
+        at=points,
+        proof=done.proof.value,
+        description=statement.description,
+        basis=statement.basis.text,
+        first_band=band_in_words(statement.given),
+        second_band=band,
     )
 
 

@@ -1,20 +1,24 @@
 """Criteria with value, limit, margin and verdict at their governing point."""
 
-from calcdoc.analysis.evaluation import Judgement, Outcome, Row
+from calcdoc.analysis.evaluation import Conclusion, Judgement, Outcome, Row, Unjudged
+from calcdoc.frozen import replace
+from calcdoc.model.accepting import key_of
 from calcdoc.model.model import Judged, Typed
 from calcdoc.records import record as r
+from calcdoc.records.accepting import accepted, routes
 from calcdoc.records.looked import unverified
 from calcdoc.records.naming import Naming
-from calcdoc.records.quantities import Numbers
+from calcdoc.records.numbers import Numbers
 from calcdoc.records.rounding import apart, downward, stored
 from calcdoc.records.substitute import substituted
 from calcdoc.records.values import difference, with_unit
 from calcdoc.text import literal
+from calcdoc.text.cases import NORMAL
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Element, Group, Name, Node, Quantity
-from calcdoc.text.statements import Inequality, Uncalculated
+from calcdoc.text.statements import AnyOf, Inequality, Uncalculated
 from calcdoc.text.unparse import unparse
-from calcdoc.units import Unit
+from calcdoc.units import PLAIN, Unit
 from calcdoc.units.choose import choose_unit
 
 _PER_CENT = 100
@@ -22,40 +26,56 @@ _PER_CENT = 100
 
 def criteria(numbers: Numbers, naming: Naming) -> tuple[r.Criterion, ...]:
     """Every criterion of the record, in the author's order."""
-    judgements = {each.judged.statement.id.key: each for each in numbers.evaluation.judgements}
-    return tuple(
-        _calculated(numbers, naming, judgements[each.statement.id.key])
-        if isinstance(each, Judged)
-        else _uncalculated(naming, each)
-        for each in numbers.model.criteria
-    )
+    conclusions = {each.judged.statement.id.key: each for each in numbers.evaluation.conclusions}
+    made: dict[str, r.Criterion] = {}
+    for each in numbers.model.criteria:
+        if isinstance(each, Judged):
+            key = each.statement.id.key
+            made[key] = _calculated(numbers, naming, conclusions[key])
+        elif isinstance(each, Uncalculated):
+            made[each.id.key] = _uncalculated(naming, each)
+    made |= routes(numbers.model, made, lambda statement: _blank(naming, statement))
+    made |= accepted(numbers.model, made)
+    return tuple(made[key_of(each)] for each in numbers.model.criteria)
 
 
 def _uncalculated(naming: Naming, statement: Uncalculated) -> r.Criterion:
     method = {"by test": "test", "by inspection": "inspection"}.get(statement.verdict, "none")
+    return replace(
+        _blank(naming, statement),
+        text=statement.text,
+        method=method,
+        verdict=statement.verdict,
+        reason=statement.text if method == "none" else "",
+    )
+
+
+def _blank(naming: Naming, statement: Inequality | Uncalculated | AnyOf) -> r.Criterion:
+    """A criterion of which nothing is computed."""
     return r.Criterion(
         id=statement.id.name,
         line=naming.lines[statement.id.key],
-        text=statement.text,
-        method=method,
+        text="",
+        method="",
         value=None,
         limit=None,
         unit="",
         relation="",
         margin=None,
         margin_abs=None,
-        verdict=statement.verdict,
+        verdict="",
         accepted=None,
         case="",
         governing={},
         by_case={},
+        route_of="",
         rows=(),
         interval=None,
         standard_error=None,
         unverified=(),
         description=statement.description,
         basis=statement.basis.text,
-        reason=statement.text if method == "none" else "",
+        reason="",
         clauses="",
         substitution="",
         value_text="",
@@ -66,38 +86,80 @@ def _uncalculated(naming: Naming, statement: Uncalculated) -> r.Criterion:
     )
 
 
-def _calculated(numbers: Numbers, naming: Naming, judgement: Judgement) -> r.Criterion:
-    statement = judgement.judged.statement
-    unit = _unit(numbers, judgement)
-    value, limit = unit.from_si(judgement.value), unit.from_si(judgement.limit)
-    shown, bound = apart(stored(value), stored(limit), numbers.digits)
-    share = _share(judgement, judgement)
-    return r.Criterion(
-        id=statement.id.name,
-        line=naming.lines[statement.id.key],
+def _calculated(numbers: Numbers, naming: Naming, conclusion: Conclusion) -> r.Criterion:
+    statement, governing = conclusion.judged.statement, conclusion.governing
+    judged = [each for each in conclusion.in_case.values() if isinstance(each, Judgement)]
+    unit = (
+        _unit(numbers, governing if isinstance(governing, Judgement) else judged[0])
+        if judged
+        else PLAIN
+    )
+    made = replace(
+        _blank(naming, statement),
         text=_inequality(statement),
         method=_method(statement),
-        value=stored(value),
-        limit=stored(limit),
         unit=unit.text,
-        relation=judgement.side.relation,
+        verdict=conclusion.outcome.value,
+        case=governing.case,
+        by_case={name: _in_case(each, unit) for name, each in conclusion.in_case.items()},
+        unverified=unverified(numbers.evaluation, conclusion.judged),
+        clauses=statement.clauses.text,
+    )
+    if isinstance(governing, Unjudged):
+        return replace(made, reason=_in_words(governing))
+    return _with_numbers(numbers, made, governing, unit)
+
+
+def _in_words(unjudged: Unjudged) -> str:
+    """Why there is nothing to compare, and where."""
+    if unjudged.case == NORMAL:
+        return unjudged.reason
+    return f"in {unjudged.case}: {unjudged.reason}"
+
+
+def _in_case(judgement: Judgement | Unjudged, unit: Unit) -> r.CriterionCase:
+    """A criterion in one case, in the unit of the criterion."""
+    if isinstance(judgement, Unjudged):
+        return r.CriterionCase(
+            value=None,
+            limit=None,
+            margin=None,
+            margin_abs=None,
+            verdict=judgement.outcome.value,
+            margin_text="",
+            accepted=None,
+        )
+    share = _share(judgement, judgement)
+    return r.CriterionCase(
+        value=stored(unit.from_si(judgement.value)),
+        limit=stored(unit.from_si(judgement.limit)),
         margin=None if share is None else stored(share),
         margin_abs=stored(unit.difference_from_si(judgement.slack)),
         verdict=judgement.outcome.value,
+        margin_text=_margin_text(judgement, unit, share),
         accepted=None,
-        case="normal",
+    )
+
+
+def _with_numbers(
+    numbers: Numbers, made: r.Criterion, judgement: Judgement, unit: Unit
+) -> r.Criterion:
+    """The criterion with the numbers of its governing point."""
+    value, limit = stored(unit.from_si(judgement.value)), stored(unit.from_si(judgement.limit))
+    shown, bound = apart(value, limit, numbers.digits)
+    share = _share(judgement, judgement)
+    return replace(
+        made,
+        value=value,
+        limit=limit,
+        relation=judgement.side.relation,
+        margin=None if share is None else stored(share),
+        margin_abs=stored(unit.difference_from_si(judgement.slack)),
         governing=_element(judgement) | numbers.combination(judgement.governing),
-        by_case={},
         rows=tuple(_row(numbers, judgement, unit, row) for row in judgement.rows)
-        if statement.clauses.index
+        if judgement.judged.statement.clauses.index
         else (),
-        interval=None,
-        standard_error=None,
-        unverified=unverified(numbers.evaluation, judgement.judged),
-        description=statement.description,
-        basis=statement.basis.text,
         reason=_reason(numbers, judgement, unit),
-        clauses=statement.clauses.text,
         substitution=_substitution(numbers, judgement),
         value_text=with_unit(shown, unit),
         limit_text=with_unit(bound, unit),

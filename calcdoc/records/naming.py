@@ -4,13 +4,16 @@ from collections.abc import Iterator, Mapping
 from typing import TypeGuard
 
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import Compared, Judged, Model
+from calcdoc.model.model import Compared, Judged, Measured, Model
 from calcdoc.text import prose
 from calcdoc.text.statements import (
+    AnyOf,
+    CaseStatement,
     CrosscheckStatement,
     Definition,
     GivenStatement,
     Inequality,
+    Measurement,
     RelationStatement,
     RestateStatement,
     SensitivityStatement,
@@ -27,10 +30,13 @@ Numbered = (
     | RelationStatement
     | RestateStatement
     | SensitivityStatement
+    | CaseStatement
     | CrosscheckStatement
+    | Measurement
     | SentenceStatement
     | Inequality
     | Uncalculated
+    | AnyOf
 )
 
 
@@ -102,8 +108,15 @@ def keys_of(statement: Numbered) -> tuple[str, ...]:
             return (statement.name.key,)
         case RestateStatement() | SensitivityStatement():
             return (f"line at {statement.span.start}",)
+        case CaseStatement():
+            return (case_key(statement.name.name),)
         case _:
             return (statement.id.key,)
+
+
+def case_key(name: str) -> str:
+    """What the line of a case is known by; cases have names apart from symbols and ids."""
+    return f"case {name}"
 
 
 def _uses(model: Model) -> dict[str, tuple[str, ...]]:
@@ -111,8 +124,8 @@ def _uses(model: Model) -> dict[str, tuple[str, ...]]:
     for variable in model.variables.values():
         for key in variable.depends_on:
             uses[key].append(variable.symbol)
-    for judged in (*model.criteria, *model.crosschecks):
-        if isinstance(judged, Judged | Compared):
+    for judged in (*model.criteria, *model.crosschecks, *model.measurements):
+        if isinstance(judged, Judged | Compared | Measured):
             for key in judged.depends_on:
                 uses[key].append(judged.statement.id.name)
     return {key: tuple(names) for key, names in uses.items()}
@@ -129,7 +142,7 @@ def rests_on(model: Model, naming: Naming, key: str) -> tuple[str, ...]:
     reached.add(key)
     ids = [
         each.statement.id.name
-        for each in (*model.criteria, *model.crosschecks)
-        if isinstance(each, Judged | Compared) and reached.intersection(each.depends_on)
+        for each in (*model.criteria, *model.crosschecks, *model.measurements)
+        if isinstance(each, Judged | Compared | Measured) and reached.intersection(each.depends_on)
     ]
     return (*lines, *ids)

@@ -1,97 +1,23 @@
 """Working lines: every quantity with formula, substitution, result, band and who uses it."""
 
-from collections.abc import Mapping
-from functools import cached_property
-
-from calcdoc.analysis.evaluation import Band, Combination, Evaluation
+from calcdoc.analysis.evaluation import Band, Combination
 from calcdoc.analysis.extremes import Proof
 from calcdoc.frozen import Frozen
-from calcdoc.model.constant import constant_value
-from calcdoc.model.model import Model, Variable
+from calcdoc.model.model import Variable
 from calcdoc.records import record as r
 from calcdoc.records.carried import units_carried
+from calcdoc.records.cases import in_cases
 from calcdoc.records.looked import looked_up, unverified_in
 from calcdoc.records.naming import Naming
+from calcdoc.records.numbers import Numbers
 from calcdoc.records.rounding import significant, stored
 from calcdoc.records.substitute import substituted
-from calcdoc.records.values import computed, exact_limit, given_nominal, stands_at, with_unit
+from calcdoc.records.values import computed, exact_limit, given_nominal, with_unit
 from calcdoc.records.wording import band_in_words, typeset
 from calcdoc.text.given import Given, Style
-from calcdoc.text.names import fold
-from calcdoc.text.nodes import Element, Name, Node
+from calcdoc.text.nodes import Node
 from calcdoc.text.unparse import unparse
 from calcdoc.units import PLAIN, Unit
-from calcdoc.units.choose import choose_unit
-
-
-class Numbers(Frozen, frozen=True, dict=True):
-    """An evaluation with the units and digits its numbers are shown in."""
-
-    evaluation: Evaluation
-    digits: int
-
-    @property
-    def model(self) -> Model:
-        """The model that was evaluated."""
-        return self.evaluation.model
-
-    @cached_property
-    def units(self) -> Mapping[str, Unit]:
-        """The unit of every quantity, by key."""
-        return {key: self._unit(variable) for key, variable in self.model.variables.items()}
-
-    @cached_property
-    def _stands(self) -> dict[tuple[str, float], str]:
-        """Inputs at a value, as text: all combinations hold the same few ends."""
-        return {}
-
-    def _unit(self, variable: Variable) -> Unit:
-        if variable.unit is not None:
-            return variable.unit
-        bands = self.evaluation.series.get(variable.key)
-        if bands is None:
-            band = self.evaluation.bands[variable.key]
-            size = band.nominal or max(abs(band.least), abs(band.greatest))
-        else:
-            size = max(abs(band.nominal) for band in bands.values())
-        return choose_unit(variable.typed.dimension, size, celsius=bool(variable.typed.weight))
-
-    def nominal(self, key: str) -> str:
-        """The nominal value as text: in the author's digits when it is given."""
-        given = self.model.variables[key].given
-        if given is not None:
-            return given_nominal(given)
-        return computed(self.evaluation.bands[key].nominal, self.units[key], self.digits)
-
-    def at(self, key: str, si: float) -> str:
-        """A value of a quantity other than the nominal one."""
-        given = self.model.variables[key].given
-        if given is None:
-            return computed(si, self.units[key], self.digits)
-        if (key, si) not in self._stands:
-            self._stands[key, si] = stands_at(given, si)
-        return self._stands[key, si]
-
-    def value_of(self, node: Name | Element) -> str | None:
-        """The nominal value of a symbol or element; None for a constant and a whole series."""
-        key = fold(node.name)
-        if isinstance(node, Name):
-            return self.nominal(key) if key in self.evaluation.bands else None
-        index = constant_value(node.index)
-        if index is None:
-            return None
-        band = self.evaluation.series[key][int(index)]
-        return computed(band.nominal, self.units[key], self.digits)
-
-    def combination(self, combination: Combination) -> dict[str, str]:
-        """Where inputs stand, by symbol, in the author's order."""
-        return dict(self._stand(key, stand.value) for key, stand in combination.items())
-
-    def _stand(self, key: str, si: float) -> tuple[str, str]:
-        if key in self.model.variables:
-            return self.model.variables[key].symbol, self.at(key, si)
-        looked = next(each for each in self.evaluation.looked if each.key == key)
-        return f'lookup("{looked.table.name}")', computed(si, looked.table.unit, self.digits)
 
 
 def quantities(numbers: Numbers, naming: Naming) -> tuple[r.Quantity, ...]:
@@ -124,7 +50,7 @@ def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantit
         used_by=naming.used_by[variable.key],
         description=variable.description,
         basis=variable.basis.text,
-        by_case={},
+        by_case=in_cases(numbers, variable.key),
         id=stated.id.name if stated and stated.id else "",
         state=stated.state if stated else "",
         units_carried=_carried(numbers, variable, formula),

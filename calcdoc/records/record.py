@@ -157,6 +157,12 @@ class SensitivityLine(Plain, frozen=True, tag_field="kind", tag="sensitivity"):
     line: str
 
 
+class CaseLine(Plain, frozen=True, tag_field="kind", tag="case"):
+    """Here stands a mode or a fault."""
+
+    name: str
+
+
 class CrosscheckLine(Plain, frozen=True, tag_field="kind", tag="crosscheck"):
     """Here stands a cross-check."""
 
@@ -189,6 +195,7 @@ Block = (
     | RelationLine
     | RestatedLine
     | SensitivityLine
+    | CaseLine
     | CrosscheckLine
     | SentenceLine
     | CautionBox
@@ -239,11 +246,15 @@ class Document(Plain, frozen=True):
 
 
 class CaseValues(Plain, frozen=True):
-    """A quantity in one case."""
+    """A quantity in one case that changes it, in its unit; null where it cannot be computed."""
 
-    nominal: float | None
-    least: float | None
-    greatest: float | None
+    nominal: float | list[float] | None
+    least: float | list[float] | None
+    greatest: float | list[float] | None
+    text: str
+    """The nominal value and, when it varies, its band; empty for a series."""
+    reason: str
+    """Why it cannot be computed."""
 
 
 class Quantity(Plain, frozen=True):
@@ -299,13 +310,45 @@ class Quantity(Plain, frozen=True):
     """Sentences for the reader: the extreme lies inside the band, the nominal is the middle, ..."""
 
 
+class CaseChange(Plain, frozen=True):
+    """What one case changes."""
+
+    symbol: str
+    text: str
+    """As written: ``n_LED = n_LED - 1``."""
+    formula: str
+    """The right side, when it is a formula of normal values; else empty."""
+    normal: str
+    """The nominal value otherwise."""
+    result: str
+    """The nominal value in this case."""
+    band: str
+    """Its band in this case, typeset; empty when it does not vary."""
+
+
+class Case(Plain, frozen=True):
+    """A case the design is judged in; ``normal`` changes nothing."""
+
+    name: str
+    kind: str
+    """``normal``, ``mode`` or ``fault``."""
+    line: str
+    changes: tuple[CaseChange, ...]
+    description: str
+    basis: str
+
+
 class CriterionCase(Plain, frozen=True):
     """A criterion in one case."""
 
     value: float | None
     limit: float | None
     margin: float | None
+    margin_abs: float | None
     verdict: str
+    margin_text: str
+    """As in ``8.2 %`` or ``4.1 K``; empty where there is nothing to compare."""
+    accepted: str | None
 
 
 class Criterion(Plain, frozen=True):
@@ -330,6 +373,8 @@ class Criterion(Plain, frozen=True):
     case: str
     governing: dict[str, str]
     by_case: dict[str, CriterionCase]
+    route_of: str
+    """The criterion of which this is one of several routes; then it counts through that one."""
     rows: tuple["CriterionRow", ...]
     interval: tuple[float, float] | None
     standard_error: float | None
@@ -383,17 +428,22 @@ class Crosscheck(Plain, frozen=True):
     # beyond the contract, for the pages
     line: str
     form: str
-    """``against``, ``not below`` or ``not above``."""
+    """``against``, ``not below``, ``not above`` or ``measured against``."""
     first_text: str
     second_text: str
     """Both sides at nominal."""
     difference_text: str
     allowed_text: str
     at: dict[str, str]
-    """The combination at which the difference is worst; empty at nominal."""
+    """The combination at which the difference is worst, empty at nominal; the conditions of a
+    measurement."""
     proof: str
     description: str
     basis: str
+    first_band: str
+    """Of a measurement: the band of the instrument, typeset, as in ``4.61 W × (1 ± 1.5 %)``."""
+    second_band: str
+    """Of a measurement: the band of the computed value at its conditions."""
 
 
 class Relation(Plain, frozen=True):
@@ -562,7 +612,7 @@ class Record(Plain, frozen=True):
     source: Source
     tool: Tool
     sampling: dict[str, int] | None
-    cases: tuple[str, ...]
+    cases: tuple[Case, ...]
     quantities: tuple[Quantity, ...]
     relations: tuple[Relation, ...]
     restated: tuple[Restated, ...]

@@ -5,14 +5,19 @@ from collections.abc import Iterator
 
 from calcdoc.model.model import Model, Variable
 from calcdoc.records import record as r
-from calcdoc.records.naming import Naming, rests_on
+from calcdoc.records.naming import Naming, case_key, rests_on
 from calcdoc.records.wording import counted
 from calcdoc.text.statements import (
+    Acceptance,
+    AnyOf,
     Basis,
+    CaseStatement,
+    CrosscheckStatement,
     Definition,
     GivenStatement,
     Inequality,
     Kind,
+    Measurement,
     SentenceStatement,
     Uncalculated,
 )
@@ -68,11 +73,35 @@ def _naming_it(model: Model, naming: Naming, name: str) -> Iterator[str]:
             found[naming.lines[key]] = None
             found.update(dict.fromkeys(rests_on(model, naming, key)))
         else:
-            found[statement.id.name] = None
+            found[_name(naming, statement)] = None
     yield from found
 
 
-Based = GivenStatement | Definition | SentenceStatement | Inequality | Uncalculated
+Based = (
+    GivenStatement
+    | Definition
+    | SentenceStatement
+    | Inequality
+    | Uncalculated
+    | AnyOf
+    | CrosscheckStatement
+    | Measurement
+    | CaseStatement
+    | Acceptance
+)
+
+
+def _name(naming: Naming, statement: Based) -> str:
+    """What a statement is called where it is listed: its line or its id."""
+    match statement:
+        case GivenStatement() | Definition():
+            return naming.lines[statement.symbol.key]
+        case CaseStatement():
+            return naming.lines[case_key(statement.name.name)]
+        case Acceptance():
+            return statement.criterion.name
+        case _:
+            return statement.id.name
 
 
 def _bases(model: Model) -> Iterator[tuple[Based, Basis]]:
@@ -85,10 +114,7 @@ def references(model: Model, naming: Naming) -> tuple[r.Reference, ...]:
     """References in the author's order with the lines and criteria that cite them."""
     cited: dict[str, list[str]] = {each.key: [] for each in model.references}
     for statement, basis in _bases(model):
-        if isinstance(statement, GivenStatement | Definition):
-            name = naming.lines[statement.symbol.key]
-        else:
-            name = statement.id.name
+        name = _name(naming, statement)
         for citation in basis.citations:
             if name not in cited[citation.key]:
                 cited[citation.key].append(name)
@@ -101,14 +127,15 @@ def references(model: Model, naming: Naming) -> tuple[r.Reference, ...]:
 
 def tally(criteria: tuple[r.Criterion, ...], register: tuple[r.Assumption, ...]) -> r.Tally:
     """How many criteria have which verdict, and what is open."""
+    counted_ones = [each for each in criteria if not each.route_of]
 
     def count(verdict: str) -> int:
-        return sum(each.verdict == verdict for each in criteria)
+        return sum(each.verdict == verdict for each in counted_ones)
 
     numbers = {
         "passed": count("pass"),
         "failed": count("fail"),
-        "accepted": sum(each.accepted is not None for each in criteria),
+        "accepted": sum(each.accepted is not None for each in counted_ones),
         "undecided": count("not decided"),
         "not_applicable": count("not applicable"),
         "by_test": count("by test"),
@@ -129,8 +156,20 @@ def _bottom_line(numbers: dict[str, int]) -> str:
         ("by_test", "by test"),
         ("by_inspection", "by inspection"),
     )
-    said = [f"{numbers[key]} {word}" for key, word in words if numbers[key]]
+    said = [
+        f"{numbers[key]} {word}{_accepted(numbers) if key == 'failed' else ''}"
+        for key, word in words
+        if numbers[key]
+    ]
     return ", ".join(said) or "no criteria"
+
+
+def _accepted(numbers: dict[str, int]) -> str:
+    """Accepted failures are failures, counted apart."""
+    if not numbers["accepted"]:
+        return ""
+    which = "accepted" if numbers["accepted"] == numbers["failed"] else "of them accepted"
+    return f" ({numbers['accepted']} {which})"
 
 
 def unsourced(model: Model) -> tuple[str, ...]:

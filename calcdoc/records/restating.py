@@ -4,7 +4,7 @@ from calcdoc.analysis.evaluation import Answer, Restated, Sensitive
 from calcdoc.model.model import Variable
 from calcdoc.records import record as r
 from calcdoc.records.naming import Naming, keys_of
-from calcdoc.records.quantities import Numbers
+from calcdoc.records.numbers import Numbers
 from calcdoc.records.rounding import significant, stored
 from calcdoc.records.substitute import substituted
 from calcdoc.records.values import computed, difference, with_unit

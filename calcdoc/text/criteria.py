@@ -6,37 +6,43 @@ from typing import Final
 
 from calcdoc.frozen import replace
 from calcdoc.problems import Mistake, error
-from calcdoc.text.cells import basis, columns, label, labelled, plain
+from calcdoc.text.accepting import ACCEPT, ANY_OF, acceptance, any_of
+from calcdoc.text.cases import CLAUSE_STARTS, scope
+from calcdoc.text.cells import basis, columns, labelled, plain
 from calcdoc.text.derivation import index_set
 from calcdoc.text.formula import formula
-from calcdoc.text.given import given, no_makeup
+from calcdoc.text.given import given
 from calcdoc.text.literal import resolve
 from calcdoc.text.nodes import Node
 from calcdoc.text.passage import Passage
-from calcdoc.text.scan import Scanner, not_yet
-from calcdoc.text.statements import Clauses, Inequality, Label, Margin, PointValue, Uncalculated
+from calcdoc.text.points import point
+from calcdoc.text.scan import Scanner
+from calcdoc.text.statements import (
+    Acceptance,
+    AnyOf,
+    Clauses,
+    Inequality,
+    Margin,
+    Uncalculated,
+)
 from calcdoc.units import ONE
 
 _UNCALCULATED: Final = re.compile(r"(by test|by inspection|not applicable)\s*:\s*")
 _NEARLY: Final = re.compile(r"(by|not)\s+[a-z]+(?=\s*(:|$))")
-_ANY_OF: Final = re.compile(r"any of\b")
-_ACCEPT: Final = re.compile(r"accept\s+[A-Za-z]")
+_DIGIT: Final = re.compile(r"[0-9]")
 _COMPARE: Final = re.compile(r"<=|>=|<|>")
-_COMMA: Final = re.compile(r",")
-_EQUALS: Final = re.compile(r"=(?!=)")
 _NOMINAL: Final = re.compile(r"nominal\b")
-_CLAUSE: Final = re.compile(r"(by|at|in|with|for|when)\b")
+_CLAUSE: Final = re.compile(rf"({'|'.join(CLAUSE_STARTS)})\b")
 _METHOD: Final = re.compile(r"(extremes|root sum square|sampling)\b")
 _MARGIN: Final = re.compile(r"margin\b")
-_LATER: Final = {word: f"the clause `{word}`" for word in ("in", "when")}
 CRITERION_COLUMNS: Final = ("criterion", "description", "basis")
 
 
-def criterion(statement: Passage) -> Inequality | Uncalculated:
-    """``ID ":" (inequality clause* | verdict ":" text) | description | basis``"""
+def criterion(statement: Passage) -> Inequality | Uncalculated | AnyOf | Acceptance:
+    """``ID ":" (inequality clause* | "any of" ids | verdict ":" text) | description | basis``"""
+    if ACCEPT.match(statement.text):
+        return acceptance(statement)
     first, description, source = columns(statement, CRITERION_COLUMNS)
-    if found := _ACCEPT.match(first.text):
-        raise Mistake(not_yet("an accepted failure", first.span(found.start(), found.end() - 1)))
     name, scanner = labelled(first, "the id of the criterion and a colon, as in R1:")
     if found := scanner.take(_UNCALCULATED):
         text = plain(first.part(found.end(), len(first.text)))
@@ -53,8 +59,8 @@ def criterion(statement: Passage) -> Inequality | Uncalculated:
                 help="write the words, a colon and what it is about, as in by test: temperatures",
             )
         )
-    if found := scanner.look(_ANY_OF):
-        raise Mistake(not_yet("`any of`", scanner.span(*found.span())))
+    if scanner.take(ANY_OF):
+        return any_of(scanner, name, plain(description), basis(source))
     operands, operators = _inequality(scanner)
     clauses = _clauses(scanner)
     return Inequality(
@@ -94,7 +100,7 @@ def _inequality(scanner: Scanner) -> tuple[tuple[Node, ...], tuple[str, ...]]:
 
 
 def _clauses(scanner: Scanner) -> Clauses:
-    """``clause = "by" method | "at" point | "with margin" quantity``, each once, in any order."""
+    """``clause = by | at | in | with | for | when``, each once, in any order."""
     clauses, seen = Clauses(), set()
     scanner.blanks()
     begin = scanner.at
@@ -102,7 +108,7 @@ def _clauses(scanner: Scanner) -> Clauses:
         found = scanner.take(_CLAUSE)
         if found is None:
             scanner.refuse(
-                "an operator, a clause (by, at, with margin) or the end of the criterion"
+                "an operator, a clause (by, at, in, when, with margin) or the end of the criterion"
             )
         word = found[1]
         if word in seen:
@@ -121,8 +127,10 @@ def _clauses(scanner: Scanner) -> Clauses:
 
 
 def _clause(scanner: Scanner, clauses: Clauses, word: str, start: int) -> Clauses:
-    if word in _LATER:
-        raise Mistake(not_yet(_LATER[word], scanner.span(start, scanner.at)))
+    if word == "in":
+        return replace(clauses, scope=scope(scanner))
+    if word == "when":
+        return replace(clauses, when=_when(scanner))
     if word == "for":
         scanner.at = start
         return replace(clauses, index=index_set(scanner, None))
@@ -137,11 +145,20 @@ def _clause(scanner: Scanner, clauses: Clauses, word: str, start: int) -> Clause
         return replace(clauses, margin=_margin(scanner))
     if scanner.take(_NOMINAL):
         return replace(clauses, at_nominal=True)
-    return replace(clauses, at=_point(scanner))
+    return replace(clauses, at=point(scanner, "`nominal`, or a symbol with its value"))
+
+
+def _when(scanner: Scanner) -> Node:
+    """``when = condition``, up to the next clause."""
+    if scanner.ended or scanner.look(_CLAUSE):
+        scanner.refuse("a condition, as in when P_in > 5 W")
+    return formula(scanner, conditions=True)
 
 
 def _share(scanner: Scanner) -> Fraction:
     """``"sampling" share``, a share of the draws in per cent, or 0.997 as a plain number."""
+    if not scanner.look(_DIGIT):
+        scanner.refuse("the share of draws that must meet it, as in by sampling 99.7 %")
     value = given(scanner)
     share = value.unit.to_si(value.nominal)
     if value.varies or value.unit.dimension != ONE or not 0 < share < 1:
@@ -170,15 +187,3 @@ def _margin(scanner: Scanner) -> Margin:
             )
         )
     return Margin(value, is_share, value.span)
-
-
-def _point(scanner: Scanner) -> tuple[PointValue, ...]:
-    """``point = SYMBOL "=" given ("," SYMBOL "=" given)*``"""
-    values: list[PointValue] = []
-    while True:
-        symbol: Label = label(scanner, "`nominal`, or a symbol with its value")
-        scanner.expect(_EQUALS, "`=`")
-        values.append(PointValue(symbol, given(scanner)))
-        no_makeup(scanner)
-        if scanner.take(_COMMA) is None:
-            return tuple(values)

@@ -1,29 +1,35 @@
-"""The rule of a `crosschecks` block: two independent ways to one quantity must agree."""
+"""The rules of a `crosschecks` block: two independent ways to one quantity must agree."""
 
 import re
 from typing import Final
 
 from calcdoc.problems import Mistake, error
-from calcdoc.text.cells import basis, columns, labelled, plain
+from calcdoc.text.cells import basis, columns, label, labelled, plain
 from calcdoc.text.formula import formula
-from calcdoc.text.given import Given, given
+from calcdoc.text.given import Given, given, no_makeup
+from calcdoc.text.names import LETTER
 from calcdoc.text.passage import Passage
-from calcdoc.text.scan import Scanner, not_yet
-from calcdoc.text.statements import CrosscheckStatement
+from calcdoc.text.points import point
+from calcdoc.text.scan import Scanner
+from calcdoc.text.statements import Basis, CrosscheckStatement, Label, Measurement
 
 _FORM: Final = re.compile(r"(against|not[ \n]+below|not[ \n]+above)\b")
 _WITHIN: Final = re.compile(r"within\b")
-_MEASURED: Final = re.compile(r"measured\b")
+_MEASURED: Final = re.compile(rf"measured[ \n]+(?=[{LETTER}])")
+_EQUALS: Final = re.compile(r"=(?!=)")
+_BRACKET: Final = re.compile(r"\[")
+_AGAINST: Final = re.compile(r"against\b")
+_AT: Final = re.compile(r"at\b")
 CROSSCHECK_COLUMNS: Final = ("cross-check", "description", "basis")
 
 
-def crosscheck(statement: Passage) -> CrosscheckStatement:
-    """``ID ":" sum ("against" sum "within" share | "not below" sum | "not above" sum)``"""
+def crosscheck(statement: Passage) -> CrosscheckStatement | Measurement:
+    """``ID ":" (measured | sum ("against" sum "within" share | bound sum))``"""
     first, description, source = columns(statement, CROSSCHECK_COLUMNS)
     name, scanner = labelled(first, "the id of the cross-check and a colon, as in K1:")
-    if found := scanner.look(_MEASURED):
-        raise Mistake(not_yet("`measured`", scanner.span(*found.span())))
     begin = scanner.at
+    if scanner.take(_MEASURED):
+        return _measurement(scanner, name, begin, plain(description), basis(source))
     left = formula(scanner)
     form = scanner.take(_FORM)
     if form is None:
@@ -54,3 +60,33 @@ def _allowed(scanner: Scanner) -> Given:
             )
         )
     return value
+
+
+def _measurement(
+    scanner: Scanner, name: Label, begin: int, description: str, source: Basis
+) -> Measurement:
+    """``"measured" SYMBOL "=" given "against" sum ["at" point]``, behind ``measured``."""
+    symbol = label(scanner, "what the measured value is called, as in measured P_m = 4.61 W ± 1 %")
+    if scanner.look(_BRACKET):
+        scanner.refuse("`=` (the unit of a value stands after its number)")
+    scanner.expect(_EQUALS, "`=`")
+    value = given(scanner)
+    no_makeup(scanner)
+    if not value.varies:
+        raise Mistake(
+            error(
+                "crosscheck-form",
+                "a measured value has an uncertainty",
+                value.span,
+                help="write how far the instrument may be off, as in ± 1.5 %",
+            )
+        )
+    scanner.expect(_AGAINST, "`against` and what was computed")
+    second = formula(scanner)
+    points = point(scanner, "a symbol with its value") if scanner.take(_AT) else ()
+    if not scanner.ended:
+        scanner.refuse("`at` and the conditions of the measurement, or the end")
+    text = " ".join(scanner.passage.text[begin:].split())
+    return Measurement(
+        name, symbol, value, second, points, description, source, text, scanner.passage.whole
+    )

@@ -25,7 +25,7 @@ _STATEMENT_RULES: Final[dict[str, Callable[[Passage], Statement]]] = {
     "criteria": criterion,
 }
 _OTHER_BLOCKS: Final = ("document", "caution")
-_COMING: Final = ("cases", "use", "figure", "takes", "gives")
+_COMING: Final = ("use", "figure", "takes", "gives")
 BLOCK_WORDS: Final = (*_OTHER_BLOCKS, *_STATEMENT_RULES, *_COMING)
 SIGNALS: Final = ("danger", "warning", "caution", "notice")
 _FENCE_LINE: Final = re.compile(r" {0,3}(?P<marks>`{3,}|~{3,}) *(?P<word>[a-z]+)(?: .*)?")

@@ -5,6 +5,7 @@
 """
 
 import re
+from collections.abc import Iterable
 from enum import Enum
 from fractions import Fraction
 from typing import Final, NoReturn
@@ -22,6 +23,10 @@ _SIGN: Final = re.compile(r"[+-]")
 _PLUS_MINUS: Final = re.compile(r"±|\+/-")
 _RANGE: Final = re.compile(r"\.\.")
 _LARGEST: Final = 10**300
+_INSTEAD: Final = (
+    "write the limits, as in 85 .. 90 .. 95 %",
+    "write the limits, as in 0.8 .. 0.9 .. 1.0",
+)
 MAKEUP_WORD: Final = re.compile(r"(as|bias|each)\b")
 
 
@@ -126,7 +131,13 @@ def given(scanner: Scanner) -> Given:
         value = _limits(parts)
     else:
         value = _with_tolerance(scanner, first)
-    if any(abs(value.unit.to_si(each)) >= _LARGEST for each in (value.least, value.greatest)):
+    check_size(value, (value.least, value.greatest))
+    return value
+
+
+def check_size(value: Given, ends: Iterable[Fraction]) -> None:
+    """Refuse a value that reaches beyond what floats can hold; ``ends`` are in its unit."""
+    if any(abs(value.unit.to_si(each)) >= _LARGEST for each in ends):
         raise Mistake(
             error(
                 "number-form",
@@ -135,7 +146,6 @@ def given(scanner: Scanner) -> Given:
                 help="values stay under a one with 300 zeros in SI units",
             )
         )
-    return value
 
 
 def no_makeup(scanner: Scanner) -> None:
@@ -205,16 +215,19 @@ def _is_share(part: Part) -> bool:
     return part.unit is not None and [w.word for w in part.unit.words] in (["%"], ["ppm"])
 
 
-def change_of(first: Part, part: Part) -> Fraction:
-    """The change a part of a tolerance makes, in the unit of the value."""
+def change_of(first: Part, part: Part, instead: tuple[str, str] = _INSTEAD) -> Fraction:
+    """The change a part of a tolerance makes, in the unit of the value.
+
+    ``instead`` says what to write for per cent of per cent, and for a unit on a plain number.
+    """
     unit = _unit(first)
     span = first.span.to(part.span)
     if _is_share(part):
         if _is_share(first):
             _refuse(
-                f"{_shown(first)} with a tolerance in per cent can be read in two ways",
+                f"{unparsed(first)} with a tolerance in per cent can be read in two ways",
                 span,
-                "write the limits, as in 85 .. 90 .. 95 %",
+                instead[0],
             )
         if unit.celsius:
             _refuse(
@@ -240,7 +253,7 @@ def change_of(first: Part, part: Part) -> Fraction:
         _refuse(
             "a plain number with a tolerance in another unit can be read in two ways",
             span,
-            "write the limits, as in 0.8 .. 0.9 .. 1.0",
+            instead[1],
         )
     return part.value * other.factor / unit.factor
 
@@ -319,7 +332,8 @@ def _decimal(value: Fraction) -> str:
     return f"-{body}" if value < 0 else body
 
 
-def _shown(part: Part) -> str:
+def unparsed(part: Part) -> str:
+    """A part as written."""
     return f"{part.digits} {unit_text(part.unit)}" if part.unit else part.digits
 
 

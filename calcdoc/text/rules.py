@@ -5,6 +5,7 @@ from collections.abc import Callable, Mapping
 from typing import Final
 
 from calcdoc.problems import Mistake, error
+from calcdoc.text.cases import case
 from calcdoc.text.cells import basis, columns, label, labelled, plain, state
 from calcdoc.text.crosschecks import crosscheck
 from calcdoc.text.derivation import derivation
@@ -154,6 +155,7 @@ RULES: Final[Mapping[str, Callable[[Passage], Statement]]] = {
     "assumptions": assumption,
     "derive": derivation,
     "crosschecks": crosscheck,
+    "cases": case,
     "hazards": hazard,
     "references": reference,
 }

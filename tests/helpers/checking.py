@@ -1,6 +1,7 @@
 """From a design text to its findings as people read them."""
 
 from calcdoc.analysis.evaluate import evaluate_model
+from calcdoc.model.accepting import expired
 from calcdoc.model.build import build
 from calcdoc.model.judging import outside_band
 from calcdoc.problems import Finding
@@ -20,7 +21,7 @@ def findings_of(text: str, path: str = "lamp.md") -> tuple[Finding, ...]:
         findings += more
         if model is not None and not has_errors(findings):
             evaluation, trouble = evaluate_model(model)
-            findings += trouble if evaluation is None else outside_band(model)
+            findings += trouble if evaluation is None else (*outside_band(model), *expired(model))
     return in_order(findings)
 
 

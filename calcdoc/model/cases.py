@@ -1,0 +1,218 @@
+"""Cases: what each mode and fault changes, and which cases a criterion is judged in."""
+
+from collections.abc import Collection, Iterator, Mapping
+from typing import Final
+
+from calcdoc.frozen import Frozen
+from calcdoc.model import blame, series
+from calcdoc.model.model import Case, Variable
+from calcdoc.model.quantities import typed_as
+from calcdoc.model.typing import Checker, Unknown
+from calcdoc.problems import Finding, Mistake, Place, error
+from calcdoc.text.cases import NORMAL
+from calcdoc.text.document import Document
+from calcdoc.text.given import Given
+from calcdoc.text.names import fold, nearest
+from calcdoc.text.nodes import Node
+from calcdoc.text.scan import shown
+from calcdoc.text.statements import CaseStatement, Change, Label, Scope
+
+MODE: Final = "mode"
+FAULT: Final = "fault"
+
+
+class Stated(Frozen, frozen=True):
+    """The cases of a document by name, in the author's order, before anything is typed."""
+
+    cases: Mapping[str, CaseStatement]
+    broken: Collection[str] = frozenset()
+    """Keys of words in lines that could not be read; a case may be among them."""
+
+    def of_kind(self, kind: str) -> tuple[str, ...]:
+        """The names of all modes or all faults."""
+        return tuple(name for name, each in self.cases.items() if each.kind == kind)
+
+    def in_order(self, names: Collection[str]) -> tuple[str, ...]:
+        """Names of cases with ``normal`` first, the others in the author's order."""
+        return tuple(each for each in (NORMAL, *self.cases) if each in names)
+
+
+def stated(document: Document) -> tuple[Stated, list[Finding]]:
+    """Every case by its name, and the names that are used twice."""
+    cases: dict[str, CaseStatement] = {}
+    findings = []
+    for each in document.statements:
+        if not isinstance(each, CaseStatement):
+            continue
+        first = cases.setdefault(each.name.name, each)
+        if first is not each:
+            findings.append(
+                error(
+                    "defined-twice",
+                    f"there are two cases {shown(each.name.name)}",
+                    each.name.span,
+                    related=(Place(first.name.span, "first here"),),
+                    help="give one of them another name",
+                )
+            )
+    return Stated(cases, document.broken), findings
+
+
+# --- which cases -------------------------------------------------------------------------------
+
+
+def judged_in(scope: Scope | None, known: Stated) -> tuple[str, ...]:
+    """The names of the cases a criterion is judged in.
+
+    Raises:
+        Mistake: when there is no such case, or when nothing would be checked.
+        Unknown: when the case may stand in a line that could not be read.
+    """
+    if scope is None:
+        return (NORMAL, *known.of_kind(MODE))
+    if not scope.every:
+        return named(scope.names, known)
+    faults = known.of_kind(FAULT)
+    found = faults if scope.every == "fault" else (NORMAL, *known.cases)
+    if not (faults if scope.every == "fault" else known.cases):
+        if scope.every in known.broken or MODE in known.broken:
+            raise Unknown
+        raise Mistake(
+            error(
+                "unknown-case",
+                f"there is no {scope.every}, so `every {scope.every}` checks nothing"
+                if scope.every == FAULT
+                else "there is no case besides `normal`, so `every case` checks nothing more",
+                scope.span,
+                help="state it in a `cases` block: fault one LED shorted: n_LED = n_LED - 1",
+            )
+        )
+    return found
+
+
+def named(labels: tuple[Label, ...], known: Stated) -> tuple[str, ...]:
+    """Cases by name, each once; raises as :func:`judged_in` does."""
+    found: dict[str, Label] = {}
+    for each in labels:
+        if each.name in found:
+            raise Mistake(
+                error(
+                    "unknown-case",
+                    f"the case {shown(each.name)} stands here twice",
+                    each.span,
+                    help="name each case once",
+                )
+            )
+        if each.name != NORMAL and each.name not in known.cases:
+            raise _unknown_case(each, known)
+        found[each.name] = each
+    return known.in_order(found)
+
+
+def _unknown_case(label: Label, known: Stated) -> Mistake | Unknown:
+    if all(fold(word) in known.broken for word in label.name.split()):
+        return Unknown()
+    near = nearest(label.name, (NORMAL, *known.cases))
+    advice = "state it in a `cases` block: fault one LED shorted: n_LED = n_LED - 1"
+    return Mistake(
+        error(
+            "unknown-case",
+            f"there is no case {shown(label.name)}",
+            label.span,
+            help=f"did you mean {near}?" if near else advice,
+        )
+    )
+
+
+# --- what they change --------------------------------------------------------------------------
+
+
+def build_cases(
+    known: Stated, checker: Checker, variables: Mapping[str, Variable]
+) -> tuple[tuple[Case, ...], list[Finding]]:
+    """Every case with its changes by key, and what is wrong with them."""
+    cases, findings = [], []
+    for name, statement in known.cases.items():
+        changes: dict[str, Given | Node] = {}
+        firsts: dict[str, Label] = {}
+        for change in statement.changes:
+            try:
+                changes[change.symbol.key] = _changed(change, firsts, checker, variables)
+            except Mistake as mistake:
+                findings.append(mistake.finding)
+            except Unknown:
+                pass
+        cases.append(Case(name, name, statement.kind, statement, changes))
+    return tuple(cases), findings
+
+
+def _changed(
+    change: Change,
+    firsts: dict[str, Label],
+    checker: Checker,
+    variables: Mapping[str, Variable],
+) -> Given | Node:
+    """What a quantity becomes: a value, or a formula of normal values."""
+    symbol = change.symbol
+    first = firsts.setdefault(symbol.key, symbol)
+    if first is not symbol:
+        raise Mistake(
+            error(
+                "case-form",
+                f"{shown(symbol.name)} is changed twice in this case",
+                symbol.span,
+                related=(Place(first.span, "first here"),),
+                help="keep one of them",
+            )
+        )
+    target = variables.get(symbol.key)
+    if target is None:
+        raise Unknown
+    if target.given is None:
+        raise Mistake(_not_given(symbol, target))
+    if change.given is not None:
+        _check_makeup(change.given, target)
+        blame.other_kind(symbol, target, typed_as(change.given.unit))
+        return change.given
+    assert change.formula is not None
+    typed = checker.quantity(change.formula)
+    if series.over(change.formula, checker.sets):
+        raise Mistake(
+            error(
+                "series-form",
+                f"{shown(symbol.name)} is one value, this is a whole series",
+                change.formula.span,
+                help="name one element, or take max(...)",
+            )
+        )
+    blame.other_kind(symbol, target, typed)
+    return change.formula
+
+
+def _not_given(symbol: Label, target: Variable) -> Finding:
+    what = "a series" if target.index else target.kind
+    return error(
+        "case-form",
+        f"{shown(symbol.name)} is {what}, a case changes conditions, inputs and assumptions",
+        symbol.span,
+        related=(Place(target.label.span, "defined here"),),
+        help="change what it follows from",
+    )
+
+
+def _check_makeup(given: Given, target: Variable) -> None:
+    if given.makeup is not None and target.kind == "condition":
+        raise Mistake(
+            error(
+                "tolerance",
+                "a condition is not random, so it has a band alone",
+                given.span,
+                related=(Place(target.label.span, "a condition"),),
+                help="the design must hold at all of it; state parts in inputs",
+            )
+        )
+
+
+def changed_givens(cases: tuple[Case, ...]) -> Iterator[Given]:
+    """Every value that stands in a case."""
+    return (each for case in cases for each in case.changes.values() if isinstance(each, Given))
