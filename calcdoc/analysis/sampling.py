@@ -37,6 +37,8 @@ class Asked(Frozen, frozen=True):
     """Size up to which it counts as zero."""
     governing: FloatArray
     """Shape (n_columns,): the combination that governs this limit at the extremes."""
+    when: int | None = None
+    """Instruction of a condition; where it does not hold, the limit is met."""
 
 
 class Job(Frozen, frozen=True):
@@ -46,8 +48,6 @@ class Job(Frozen, frozen=True):
     parts: tuple[Part, ...]
     share: Fraction
     """Of the draws that must meet it."""
-    when: int | None = None
-    """Instruction of a condition; where it does not hold, the criterion is met."""
 
 
 def sampled(
@@ -114,8 +114,8 @@ def _streams(
             points[key] = base
             wanted = targets.setdefault(key, {})
             wanted[asked.requirement] = None
-            if job.when is not None:
-                wanted[job.when] = None
+            if asked.when is not None:
+                wanted[asked.when] = None
     return {
         key: stream(tape, tuple(wanted), points[key], _sources(key[1], points[key], values), size)
         for key, wanted in targets.items()
@@ -151,7 +151,7 @@ def _limit(
     moves = [slopes[part.column] * part.deviation for part in job.parts if part.is_random]
     return Limit(
         found[asked.requirement],
-        None if job.when is None else found[job.when],
+        None if asked.when is None else found[asked.when],
         asked.strict,
         asked.equal,
         base,

@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 from calcdoc.analysis.base_point import base_point
-from calcdoc.analysis.parts import Part, part_of, random_parts
+from calcdoc.analysis.parts import Part, random_parts
 from calcdoc.analysis.program import plain
 from tests.helpers.random_parts import varied
 
@@ -38,10 +38,17 @@ def test_a_column_of_a_look_up_is_no_part() -> None:
 
 def test_a_column_of_a_case_has_the_stream_of_its_symbol() -> None:
     """The same draws in every case: the stream is keyed by the symbol alone."""
-    given = varied(inputs="R_b = 1 V ± 1 %", criteria="R1: R_b <= 2 V").model.variables["R_b"].given
-    assert given is not None
-    normal, hot = part_of("R_b", 0, given), part_of("R_b@hot", 5, given)
-    assert (hot.key, hot.stream, hot.column) == ("R_b@hot", "R_b", 5)
+    made = varied(
+        conditions="T = 5 K ± 10 %",
+        inputs="a = 1 V ± 1 %\nb = 1 V ± 1 %\nc = 1 V ± 1 %",
+        cases="mode hot: a = 3 V ± 4 %, T = 9 K ± 1 %, b = 2*b, c = 2 V",
+        criteria="R1: a + b + c + T*1 V/K <= 90 V",
+    )
+    assert [each.key for each in made.parts] == ["a", "b", "c", "a@hot"]
+    normal, *_, hot = made.parts
+    assert hot.stream == "a"
+    assert (hot.nominal, hot.low) == pytest.approx((3.0, 2.88))
+    assert hot.column == made.compiled.columns["a@hot"]
     assert normal.variate == hot.variate
 
 
@@ -92,7 +99,7 @@ def test_written_number_of_like_parts() -> None:
 def base(criterion: str, **blocks: str) -> dict[str, float]:
     """The base point of a criterion by symbol."""
     made = varied(criteria=f"R1: {criterion}", **blocks)
-    side = made.side()
+    side = made.sides()[0]
     program = plain(made.compiled.tape, [side.requirement])
     point = base_point(program, [side.requirement], made.parts, made.governing(side)[0])
     return dict(zip(made.compiled.columns, np.round(point, 12).tolist(), strict=True))
@@ -110,8 +117,8 @@ def test_conditions_govern_and_biases_stand_at_their_worse_end() -> None:
 
 def test_a_bias_turns_where_the_governing_side_misleads() -> None:
     """With the random part the product is worst high, with the bias alone it is worst low."""
-    found = base("(x - 0.9)^2 <= 1", inputs="x = 1.00 ± 0.5 bias -0.3 .. 0.1")
-    assert found == {"x": 0.7}
+    found = base("(x - 0.9)^2 <= 1", inputs="x = 1.00 -0.1 +0.5 bias -0.4 .. 0.1")
+    assert found == {"x": 0.6}
 
 
 def test_a_bias_on_one_side_only() -> None:
