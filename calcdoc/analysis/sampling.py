@@ -10,13 +10,14 @@ from fractions import Fraction
 import numpy as np
 
 from calcdoc.analysis.base_point import base_point
+from calcdoc.analysis.buffers import Pool, Source, Stream
 from calcdoc.analysis.counting import JobCount, Limit, Sampled, Spread
 from calcdoc.analysis.draws import Draws, Setting
 from calcdoc.analysis.gradient import gradient
 from calcdoc.analysis.parts import Part, Variate
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import plain
-from calcdoc.analysis.streaming import Source, Stream, stream
+from calcdoc.analysis.streaming import stream
 from calcdoc.analysis.tape import Tape
 from calcdoc.frozen import Frozen
 
@@ -106,6 +107,7 @@ def _streams(
     size: int,
 ) -> dict[_Key, Stream]:
     """One stream for all limits that vary around one base."""
+    pool = Pool(size)
     targets: dict[_Key, dict[int, None]] = {}
     points: dict[_Key, FloatArray] = {}
     for job, at in zip(jobs, bases, strict=True):
@@ -117,7 +119,7 @@ def _streams(
             if asked.when is not None:
                 wanted[asked.when] = None
     return {
-        key: stream(tape, tuple(wanted), points[key], _sources(key[1], points[key], values), size)
+        key: stream(tape, tuple(wanted), points[key], _sources(key[1], points[key], values), pool)
         for key, wanted in targets.items()
     }
 

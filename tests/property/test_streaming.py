@@ -3,8 +3,9 @@
 import numpy as np
 import pytest
 
+from calcdoc.analysis.buffers import Pool, Source
 from calcdoc.analysis.points import FloatArray, evaluate_points
-from calcdoc.analysis.streaming import Source, stream
+from calcdoc.analysis.streaming import stream
 from tests.helpers.tapes import Term, inputs
 from tests.property import test_extremes, test_roots
 
@@ -21,7 +22,7 @@ def check(term: Term, n_inputs: int, random: np.random.Generator, worst: float) 
         int(at): Source(np.zeros(SIZE), *((1.0, 0.0) if at % 2 else (0.4, base[at])))
         for at in moving
     }
-    bound = stream(tape, [term.at], base, sources, SIZE)
+    bound = stream(tape, [term.at], base, sources, Pool(SIZE))
     for _ in range(3):
         points = np.repeat(base[:, None], SIZE, axis=1)
         for at, source in sources.items():
