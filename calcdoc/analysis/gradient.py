@@ -7,7 +7,7 @@ import numpy as np
 from calcdoc.analysis.derivative import local_slope
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import plain
-from calcdoc.analysis.tape import Instruction, Op, Tape, TapeBuilder, needed
+from calcdoc.analysis.tape import Instruction, Op, Tape, TapeBuilder
 
 
 def gradient(tape: Tape, targets: Sequence[int], point: FloatArray) -> FloatArray:
@@ -22,7 +22,9 @@ def gradient(tape: Tape, targets: Sequence[int], point: FloatArray) -> FloatArra
         Shape (n_targets, n_inputs). At a kink the derivative of the side that is taken; not finite
         where there is none.
     """
-    order = needed(tape, targets)
+    part = plain(tape, targets)
+    tape, rows = part.tape, [part.row[target] for target in targets]
+    order = range(len(tape.instructions))
     builder = TapeBuilder.on(tape)
     slopes = {
         at: [local_slope(builder, at, step, place) for place in range(len(step.args))]
@@ -39,7 +41,7 @@ def gradient(tape: Tape, targets: Sequence[int], point: FloatArray) -> FloatArra
         else [0.0 if each is None else number[each] for each in slopes[at]]
         for at in order
     }
-    return np.stack([_backwards(tape, order, target, local) for target in targets])
+    return np.stack([_backwards(tape, order, row, local) for row in rows])
 
 
 _CHOICES = (Op.ABS, Op.MIN, Op.MAX, Op.IF)

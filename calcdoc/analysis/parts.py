@@ -107,19 +107,29 @@ def random_parts(
     Conditions and look-ups are not random.
 
     Args:
-        columns: Key to input column.
+        columns: Key to input column; ``V_ref@dim`` is the value of ``V_ref`` in the case ``dim``.
         model: The model; a column whose key is not among its variables is no part.
         counts: By the key of the symbol that counts them, numbers of like parts that differ from
             the given ones (in a case).
     """
-    return tuple(
-        part_of(key, column, variable.given, counted(variable.given, model, counts or {}))
-        for key, column in columns.items()
-        if (variable := model.variables.get(key)) is not None
-        and variable.kind != "condition"
-        and variable.given is not None
-        and variable.given.varies
-    )
+    found = []
+    for key, column in columns.items():
+        given = _given(key, model)
+        if given is not None and given.varies:
+            found.append(part_of(key, column, given, counted(given, model, counts or {})))
+    return tuple(found)
+
+
+def _given(key: str, model: Model) -> Given | None:
+    """The value in a column; None when it is a condition, or none that is given."""
+    symbol, _, name = key.partition("@")
+    variable = model.variables.get(symbol)
+    if variable is None or variable.kind == "condition":
+        return None
+    if not name:
+        return variable.given
+    changed = next((case.changes[symbol] for case in model.cases if case.name == name), None)
+    return changed if isinstance(changed, Given) else None
 
 
 def part_of(key: str, column: int, given: Given, count: int = 1) -> Part:

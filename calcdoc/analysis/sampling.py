@@ -10,13 +10,14 @@ from fractions import Fraction
 import numpy as np
 
 from calcdoc.analysis.base_point import base_point
+from calcdoc.analysis.buffers import Pool, Source, Stream
 from calcdoc.analysis.counting import JobCount, Limit, Sampled, Spread
 from calcdoc.analysis.draws import Draws, Setting
 from calcdoc.analysis.gradient import gradient
 from calcdoc.analysis.parts import Part, Variate
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import plain
-from calcdoc.analysis.streaming import Source, Stream, stream
+from calcdoc.analysis.streaming import stream
 from calcdoc.analysis.tape import Tape
 from calcdoc.frozen import Frozen
 
@@ -37,6 +38,8 @@ class Asked(Frozen, frozen=True):
     """Size up to which it counts as zero."""
     governing: FloatArray
     """Shape (n_columns,): the combination that governs this limit at the extremes."""
+    when: int | None = None
+    """Instruction of a condition; where it does not hold, the limit is met."""
 
 
 class Job(Frozen, frozen=True):
@@ -46,8 +49,6 @@ class Job(Frozen, frozen=True):
     parts: tuple[Part, ...]
     share: Fraction
     """Of the draws that must meet it."""
-    when: int | None = None
-    """Instruction of a condition; where it does not hold, the criterion is met."""
 
 
 def sampled(
@@ -106,6 +107,7 @@ def _streams(
     size: int,
 ) -> dict[_Key, Stream]:
     """One stream for all limits that vary around one base."""
+    pool = Pool(size)
     targets: dict[_Key, dict[int, None]] = {}
     points: dict[_Key, FloatArray] = {}
     for job, at in zip(jobs, bases, strict=True):
@@ -114,10 +116,10 @@ def _streams(
             points[key] = base
             wanted = targets.setdefault(key, {})
             wanted[asked.requirement] = None
-            if job.when is not None:
-                wanted[job.when] = None
+            if asked.when is not None:
+                wanted[asked.when] = None
     return {
-        key: stream(tape, tuple(wanted), points[key], _sources(key[1], points[key], values), size)
+        key: stream(tape, tuple(wanted), points[key], _sources(key[1], points[key], values), pool)
         for key, wanted in targets.items()
     }
 
@@ -151,7 +153,7 @@ def _limit(
     moves = [slopes[part.column] * part.deviation for part in job.parts if part.is_random]
     return Limit(
         found[asked.requirement],
-        None if job.when is None else found[job.when],
+        None if asked.when is None else found[asked.when],
         asked.strict,
         asked.equal,
         base,

@@ -5,54 +5,21 @@ stands still becomes its branch; what is left is bound to a few buffers that are
 soon as their value is no longer needed.
 """
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from fractions import Fraction
 from functools import partial
-from typing import Final
 
 import numpy as np
 
-from calcdoc.analysis.derivative import derivative
-from calcdoc.analysis.points import ONE, TWO, BoolArray, FloatArray, compile_steps, solved
+from calcdoc.analysis.buffers import Call, Pool, Source, Stream, Value
+from calcdoc.analysis.newton import Root
+from calcdoc.analysis.points import ONE, TWO, FloatArray
 from calcdoc.analysis.program import plain
-from calcdoc.analysis.tape import Implicit, Instruction, Op, Tape, TapeBuilder
-from calcdoc.frozen import Frozen
-
-Call = Callable[[], object]
-Value = FloatArray | float
-
-
-class Source(Frozen, frozen=True):
-    """Where a moving column comes from: offset + scale * values."""
-
-    values: FloatArray
-    """Shape (size,); filled anew by the owner before each run."""
-    scale: float = 1.0
-    offset: float = 0.0
-
-    @property
-    def is_plain(self) -> bool:
-        """Whether the values are used as they are."""
-        return self.scale == 1.0 and self.offset == 0.0
-
-
-class Stream(Frozen, frozen=True):
-    """Bound instructions: ``run`` fills the values of the targets from the sources."""
-
-    calls: tuple[Call, ...]
-    values: Mapping[int, Value]
-    """By target: an array (size,) that every run fills, or a number if it stands still."""
-    reads: set[int]
-    """The moving columns it uses."""
-
-    def run(self) -> None:
-        """Compute all targets; what cannot be computed is not finite."""
-        for call in self.calls:
-            call()
+from calcdoc.analysis.tape import Implicit, Instruction, Op, Tape
 
 
 def stream(
-    tape: Tape, targets: Sequence[int], base: FloatArray, sources: Mapping[int, Source], size: int
+    tape: Tape, targets: Sequence[int], base: FloatArray, sources: Mapping[int, Source], pool: Pool
 ) -> Stream:
     """Bind what some targets need.
 
@@ -62,11 +29,11 @@ def stream(
         base: Shape (n_inputs,): where the columns that do not move stand. Where the others stand
             here is where a root is sought first.
         sources: The moving columns.
-        size: How many points a run computes.
+        pool: Buffers for what is computed on the way; the targets keep theirs.
     """
     program = plain(tape, targets)
     at_base = program.evaluate(base[:, None])[:, 0]
-    binder = _Binder(program.tape.instructions, at_base, sources, size)
+    binder = _Binder(program.tape.instructions, at_base, sources, pool)
     found = binder.bind([program.row[target] for target in targets])
     return Stream(tuple(binder.calls), dict(zip(targets, found, strict=True)), binder.reads)
 
@@ -79,9 +46,9 @@ class _Binder:
         steps: Sequence[Instruction],
         at_base: FloatArray,
         sources: Mapping[int, Source],
-        size: int,
+        pool: Pool,
     ) -> None:
-        self.steps, self.at_base, self.sources, self.size = steps, at_base, sources, size
+        self.steps, self.at_base, self.sources, self.pool = steps, at_base, sources, pool
         self.calls: list[Call] = []
         self.reads: set[int] = set()
         self.branch: dict[int, int] = {}
@@ -89,7 +56,6 @@ class _Binder:
         self.users: dict[int, int] = {}
         """How many calls to come use a moving row."""
         self.bound: dict[int, FloatArray] = {}
-        self.free: list[FloatArray] = []
         self.moves = self._moving()
 
     def bind(self, targets: Sequence[int]) -> list[Value]:
@@ -145,13 +111,10 @@ class _Binder:
                 self.users[row] += 1  # the buffer is not ours
                 self.bound[row] = source.values
             else:
-                out = self.bound[row] = self._take()
+                out = self.bound[row] = self.pool.take()
                 self.calls.append(partial(np.multiply, source.values, source.scale, out))
                 self.calls.append(partial(np.add, out, source.offset, out))
         return self.bound[row]
-
-    def _take(self) -> FloatArray:
-        return self.free.pop() if self.free else np.zeros(self.size)
 
     def _release(self, rows: Sequence[int]) -> None:
         """One user less; a buffer without users is free."""
@@ -159,38 +122,43 @@ class _Binder:
             if self.moves[row]:
                 self.users[row] -= 1
                 if not self.users[row]:
-                    self.free.append(self.bound[row])
+                    self.pool.free.append(self.bound[row])
 
     def _call(self, row: int) -> None:
         step = self.steps[row]
         rows = [self._row(arg) for arg in step.args]
         args = [self._value(arg) for arg in rows]
         if step.op in (Op.IF, Op.ROOT):  # the result must not overwrite what is still read
-            out = self._take()
+            out = self.bound[row] = self.pool.take()
+            self.calls.append(self._slow(row, step, args, out))
             self._release(rows)
         else:
             self._release(rows)
-            out = self._take()
-        self.bound[row] = out
-        if step.op is Op.ROOT:
-            assert isinstance(step.value, Implicit)
-            start = self.at_base[[row, *step.args]]
-            self.calls.append(_Root(step.value, args, start, out))
-        else:
+            out = self.bound[row] = self.pool.take()
             self.calls.append(_operation(step, args, out))
+
+    def _bind(
+        self, tape: Tape, targets: Sequence[int], base: FloatArray, sources: Mapping[int, Source]
+    ) -> Stream:
+        return stream(tape, targets, base, sources, self.pool)
+
+    def _slow(self, row: int, step: Instruction, args: list[Value], out: FloatArray) -> Call:
+        """The call of an instruction that reads its arguments more than once."""
+        if isinstance(step.value, Implicit):
+            start = self.at_base[[row, *step.args]]
+            return Root(step.value, args, start, out, self._bind)
+        condition, yes, no = args
+        assert not isinstance(condition, float)
+        return partial(_choose, condition, yes, no, out)
 
 
 def _operation(step: Instruction, args: Sequence[Value], out: FloatArray) -> Call:
     """The call of one instruction, element by element."""
     operation = TWO.get(step.op) or ONE.get(step.op)
     if operation is not None:
-        return partial(operation, *args, out)
+        return partial(operation, *args, out=out)
     if step.op is Op.NOT:
         return partial(np.subtract, 1.0, args[0], out)
-    if step.op is Op.IF:
-        condition, yes, no = args
-        assert not isinstance(condition, float)
-        return partial(_choose, condition, yes, no, out)
     assert step.op is Op.POWER
     assert isinstance(step.value, Fraction | int)
     exponent = Fraction(step.value)
@@ -206,82 +174,3 @@ def _operation(step: Instruction, args: Sequence[Value], out: FloatArray) -> Cal
 def _choose(condition: FloatArray, yes: Value, no: Value, out: FloatArray) -> None:
     np.copyto(out, no)
     np.copyto(out, yes, where=condition != 0.0)
-
-
-NEWTON_STEPS: Final = 8
-CLOSE: Final = 1e-8
-"""A step of this share of the unknown is the last: the next one would be its square."""
-
-
-class _Root:
-    """Solves for an unknown by Newton's rule from the root at the base, all points together.
-
-    Points where that does not settle within the bracket, or where the residual does not change
-    its sign over the bracket, go to the solver that never leaves the bracket; it yields NaN where
-    there is no root.
-    """
-
-    def __init__(
-        self, implicit: Implicit, known: Sequence[Value], start: FloatArray, out: FloatArray
-    ) -> None:
-        self.implicit, self.known, self.start, self.out = implicit, known, start, out
-        self.low, self.high = float(implicit.low), float(implicit.high)
-        self.step, self.size = np.zeros_like(out), np.zeros_like(out)
-        builder = TapeBuilder.on(implicit.tape)
-        slope = derivative(builder, implicit.residual, builder.add(Op.INPUT, value=0))
-        self.slope = implicit.residual if slope is None else slope
-        self.at = self._bound(builder.tape(), [implicit.residual, self.slope], Source(out))
-        self.ends = [
-            self._bound(implicit.tape, [implicit.residual], end)
-            for end in (implicit.low, implicit.high)
-        ]
-        self.steps = compile_steps(implicit.tape)
-
-    def _bound(self, tape: Tape, targets: list[int], x: Source | Fraction | float) -> Stream:
-        """The residual where the unknown moves or stands still."""
-        moving = {
-            at: Source(each) for at, each in enumerate(self.known, 1) if not isinstance(each, float)
-        }
-        base = self.start.copy()
-        if isinstance(x, Source):
-            moving[0] = x
-        else:
-            base[0] = float(x)
-        return stream(tape, targets, base, moving, len(self.out))
-
-    def __call__(self) -> None:
-        """Fill ``out`` with roots."""
-        rest = ~(self._newton() & self._signs_change())
-        if rest.any():
-            known = [
-                np.full(len(self.out), each)[rest] if isinstance(each, float) else each[rest]
-                for each in self.known
-            ]
-            args = np.stack(known) if known else np.empty((0, int(rest.sum())))
-            self.out[rest] = solved(self.implicit, self.steps, args)
-
-    def _newton(self) -> BoolArray:
-        """Whether Newton's rule settled, for each point."""
-        residual, slope = (self.at.values[row] for row in (self.implicit.residual, self.slope))
-        x, step, size = self.out, self.step, self.size
-        x.fill(self.start[0])
-        settled: BoolArray = np.zeros(len(x), dtype=bool)
-        for _ in range(0 if residual is slope else NEWTON_STEPS):
-            self.at.run()
-            np.divide(residual, slope, step)
-            np.subtract(x, step, x)
-            np.abs(step, step)
-            np.abs(x, size)
-            np.multiply(size, CLOSE, size)
-            settled = step <= size
-            if settled.all():
-                break
-        return settled & (x >= self.low) & (x <= self.high)
-
-    def _signs_change(self) -> BoolArray:
-        """Whether the ends of the bracket have residuals of either sign, for each point."""
-        for end in self.ends:
-            end.run()
-        first, last = (np.sign(end.values[self.implicit.residual]) for end in self.ends)
-        changes: BoolArray = first * last <= 0.0
-        return changes

@@ -3,17 +3,17 @@
 from dataclasses import dataclass
 from fractions import Fraction
 
-import numpy as np
-
-from calcdoc.analysis.compile import Compiled, Side, compile_model
+from calcdoc.analysis.compile import Compiled, Limits, compile_model
 from calcdoc.analysis.extremes import Question, extremes
 from calcdoc.analysis.parts import Part, random_parts
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.root_sum_square import Combined, root_sum_square
 from calcdoc.analysis.sampling import Asked, Job, Sampled, Setting, sampled
+from calcdoc.analysis.sides import Side
 from calcdoc.model.build import build
 from calcdoc.model.model import Model
 from calcdoc.source import SourceFile
+from calcdoc.text.cases import NORMAL
 from calcdoc.text.document import read_document
 from tests.helpers.checking import TITLE
 
@@ -26,28 +26,36 @@ class Varied:
     compiled: Compiled
     parts: tuple[Part, ...]
 
-    def side(self, number: int = 0, which: int = 0) -> Side:
-        """A limit of a criterion."""
-        return self.compiled.sides[number][which]
+    def sides(self, number: int = 0, case: str = NORMAL) -> tuple[Side, ...]:
+        """The limits of a criterion."""
+        limits = self.compiled.limits[number][case]
+        assert isinstance(limits, Limits), limits
+        return limits.sides
 
     def governing(self, side: Side) -> tuple[FloatArray, float]:
         """The point of the least requirement, and that requirement."""
         box = self.compiled.box
-        asked = Question(side.requirement, False, box.low, box.nominal, box.high)
+        asked = Question(side.target, False, box.low, box.nominal, box.high)
         (found,) = extremes(self.compiled.tape, [asked])
         return found.point, found.value
 
     def combined(self, number: int = 0, which: int = 0) -> Combined:
         """A limit by root sum square."""
-        side = self.side(number, which)
+        side = self.sides(number)[which]
         point, worst = self.governing(side)
         return root_sum_square(self.compiled.tape, [side.requirement], self.parts, point, worst)
 
-    def job(self, number: int = 0, share: str = "0.975") -> Job:
+    def job(self, number: int = 0, share: str = "0.975", case: str = NORMAL) -> Job:
         """A criterion to be sampled with all its limits."""
         asked = tuple(
-            Asked(each.requirement, "=" not in each.relation, 1e-12, self.governing(each)[0])
-            for each in self.compiled.sides[number]
+            Asked(
+                each.requirement,
+                "=" not in each.relation,
+                1e-12,
+                self.governing(each)[0],
+                each.when,
+            )
+            for each in self.sides(number, case)
         )
         return Job(asked, self.parts, Fraction(share))
 
@@ -55,7 +63,7 @@ class Varied:
         self, share: str = "0.975", *, draws: int = 100_000, seed: int = 1, quasi: bool = False
     ) -> tuple[Sampled, ...]:
         """All criteria by sampling."""
-        jobs = [self.job(number, share) for number in range(len(self.compiled.sides))]
+        jobs = [self.job(number, share) for number in range(len(self.compiled.limits))]
         return sampled(self.compiled.tape, jobs, Setting(draws, seed, quasi))
 
 
@@ -69,13 +77,9 @@ def varied(**blocks: str) -> Varied:
 def varied_text(text: str) -> Varied:
     """Compile a whole design text."""
     document, findings = read_document(SourceFile("trial.md", text))
-    assert document is not None, findings
+    assert document is not None
     model, more = build(document)
-    assert model is not None, more
+    assert not findings + more
+    assert model is not None
     compiled = compile_model(model)
     return Varied(model, compiled, random_parts(compiled.columns, model))
-
-
-def share_of(values: FloatArray, share: float) -> float:
-    """A quantile by NumPy, for comparison."""
-    return float(np.quantile(values, share))
