@@ -12,7 +12,7 @@ from calcdoc.analysis.looking_up import LookedUp
 from calcdoc.analysis.tape import Op, Tape
 from calcdoc.analysis.working import Working
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import Compared, Discharge, Judged, Model, Root
+from calcdoc.model.model import Compared, Discharge, Judged, Model, Pictured, Root
 from calcdoc.text.nodes import Binary, Group, Name, Negate, Node
 
 SAFE_VOLTAGE: Final = Fraction(60)
@@ -43,6 +43,14 @@ class Check(Frozen, frozen=True):
     """First less second; as a share of the second where a share is allowed."""
     share: Binary | None
     """That share as a formula: the origin of its instruction; the author does not write it."""
+
+
+class Against(Frozen, frozen=True):
+    """The limit of a figure as instructions."""
+
+    limit: int
+    difference: int
+    """What is drawn less the limit."""
 
 
 class Sides(Frozen, frozen=True):
@@ -82,6 +90,8 @@ class Compiled(Frozen, frozen=True):
     """Instruction to the piece of formula it came from first."""
     inside: Mapping[int, Mapping[int, Node]]
     """The same for the residual of every root, by the instruction of the root."""
+    figures: tuple[Against | None, ...] = ()
+    """For every figure its limit; None where it has none."""
 
 
 def compile_model(model: Model) -> Compiled:
@@ -100,6 +110,7 @@ def compile_model(model: Model) -> Compiled:
     checks = tuple(_crosscheck(working, each) for each in model.crosschecks)
     discharges = tuple(_discharge(working, each) for each in model.discharges)
     relations = _relations(working, model)
+    figures = tuple(_against(working, each) for each in model.figures)
     moving = {each.key: each.column for each in working.looked if each.column is not None}
     return Compiled(
         tape=working.builder.tape(),
@@ -116,12 +127,14 @@ def compile_model(model: Model) -> Compiled:
         looked=tuple(working.looked),
         origins=working.origins,
         inside=working.inside,
+        figures=figures,
     )
 
 
 def _columns(model: Model) -> dict[str, int]:
-    """A column for every given quantity that varies or that an operating point sets."""
-    set_by_points = {
+    """A column for every given quantity that varies, or that a point or an axis sets."""
+    set_by_points = {each.statement.against.key for each in model.figures if each.statement.against}
+    set_by_points |= {
         point.symbol.key
         for each in model.criteria
         if isinstance(each, Judged)
@@ -242,6 +255,17 @@ def _crosscheck(working: Working, compared: Compared) -> Check:
     share = Binary("/", statement.first, statement.second, span, span)
     working.origins.setdefault(difference, share)
     return Check(first, second, difference, share)
+
+
+def _against(working: Working, pictured: Pictured) -> Against | None:
+    symbol, limit = pictured.statement.symbol, pictured.statement.limit
+    if symbol is None or limit is None:
+        return None
+    working.owner = symbol.key
+    at = working.node(limit)
+    difference = working.builder.add(Op.SUB, working.variables[symbol.key], at)
+    working.origins.setdefault(difference, limit)
+    return Against(at, difference)
 
 
 def _discharge(working: Working, discharge: Discharge) -> int | None:

@@ -53,9 +53,18 @@ def evaluate_model(model: Model) -> tuple[Evaluation | None, tuple[Finding, ...]
     if found:
         return None, found
     try:
-        return _Evaluator(compiled, model, boxes).run(), ()
+        return _drawn(compiled, _Evaluator(compiled, model, boxes).run()), ()
     except Mistake as mistake:
         return None, (mistake.finding,)
+
+
+def _drawn(compiled: Compiled, evaluation: Evaluation) -> Evaluation:
+    """The evaluation with its figures."""
+    if not evaluation.model.figures:
+        return evaluation
+    from calcdoc.analysis.picturing import with_figures  # noqa: PLC0415  (many designs have none)
+
+    return with_figures(compiled, evaluation)
 
 
 def _boxes(compiled: Compiled, model: Model) -> dict[int, Box]:

@@ -6,6 +6,7 @@ from enum import Enum
 from calcdoc.analysis.compile import Side
 from calcdoc.analysis.extremes import Proof
 from calcdoc.analysis.looking_up import LookedUp
+from calcdoc.analysis.pictured import Picture
 from calcdoc.frozen import Frozen
 from calcdoc.model.model import Compared, Judged, Model, Root
 from calcdoc.text.nodes import Node
@@ -198,3 +199,5 @@ class Evaluation(Frozen, frozen=True):
     looked: tuple[LookedUp, ...]
     restated: tuple[Restated, ...]
     sensitive: tuple[Sensitive, ...]
+    figures: tuple[Picture, ...] = ()
+    """In the author's order."""

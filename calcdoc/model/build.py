@@ -2,11 +2,13 @@
 
 from collections.abc import Mapping
 
+from calcdoc.frozen import replace
 from calcdoc.model import namespace
 from calcdoc.model.citations import CHECKS
 from calcdoc.model.judging import Judging, discharge
 from calcdoc.model.model import Compared, Judged, Model, Relation
 from calcdoc.model.namespace import Namespace, direct_uses
+from calcdoc.model.picturing import pictured
 from calcdoc.model.quantities import Quantities
 from calcdoc.model.typing import Unknown
 from calcdoc.model.uses import Rests, find_uses
@@ -51,7 +53,8 @@ def build(
     quantities = Quantities(space, rests, relations, settled, tables)
     quantities.run()
     judged, compared, more = _judge(document, space, quantities)
-    findings += [*found, *quantities.findings, *more]
+    figures, wrong = pictured(document, quantities.checker, quantities.variables)
+    findings += [*found, *quantities.findings, *more, *wrong]
     for each in CHECKS:
         findings += each(document, space)
     # A table that could not be read leaves lines untyped; whoever read it reports that.
@@ -62,7 +65,7 @@ def build(
         for key, each in relations.items()
     }
     made = _model(document, tables, quantities, rests, stated, judged, compared)
-    return made, tuple(findings)
+    return replace(made, figures=figures), tuple(findings)
 
 
 def _judge(

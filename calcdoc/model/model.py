@@ -11,6 +11,7 @@ from calcdoc.text.nodes import Node
 from calcdoc.text.statements import (
     Basis,
     CrosscheckStatement,
+    FigureStatement,
     GivenStatement,
     HazardStatement,
     Index,
@@ -141,6 +142,14 @@ class Discharge(Frozen, frozen=True):
     statement: HazardStatement
 
 
+class Pictured(Frozen, frozen=True):
+    """A figure that can be computed."""
+
+    statement: FigureStatement
+    depends_on: tuple[str, ...]
+    """Keys of the given quantities that what it shows rests on, in the author's order."""
+
+
 class Model(Frozen, frozen=True):
     """A design that can be computed."""
 
@@ -159,3 +168,4 @@ class Model(Frozen, frozen=True):
     hazards: tuple[HazardStatement, ...]
     discharges: tuple[Discharge, ...]
     references: tuple[ReferenceStatement, ...]
+    figures: tuple[Pictured, ...] = ()

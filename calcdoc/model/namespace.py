@@ -13,6 +13,7 @@ from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
     CrosscheckStatement,
     Definition,
+    FigureStatement,
     GivenStatement,
     HazardStatement,
     Index,
@@ -211,6 +212,8 @@ def _used(statement: Statement) -> Iterator[Label]:
             yield from (statement.symbol, *statement.terms)
         case SensitivityStatement():
             yield from (statement.symbol, *statement.inputs)
+        case FigureStatement():
+            yield from (each for each in (statement.symbol, statement.against) if each)
         case _:
             pass
 
@@ -228,6 +231,8 @@ def trees(statement: Statement) -> tuple[Node, ...]:
             return (statement.where,) if statement.where is not None else ()
         case CrosscheckStatement():
             return (statement.first, statement.second)
+        case FigureStatement():
+            return (statement.limit,) if statement.limit is not None else ()
         case _:
             return ()
 
@@ -280,6 +285,8 @@ def _units(statement: Statement) -> Iterator[tuple[str, UnitText]]:
         given += [point.given for point in statement.clauses.at]
         if statement.clauses.margin:
             given.append(statement.clauses.margin.value)
+    if isinstance(statement, FigureStatement):
+        given += [each for each in (statement.low, statement.high) if each]
     for each in given:
         for unit in each.units:
             yield "", unit

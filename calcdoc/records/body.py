@@ -12,6 +12,7 @@ from calcdoc.text import prose
 from calcdoc.text.statements import (
     CrosscheckStatement,
     Definition,
+    FigureStatement,
     GivenStatement,
     Inequality,
     RelationStatement,
@@ -196,6 +197,8 @@ def _lines(statement: Statement, naming: Naming) -> tuple[r.Block, ...]:
             return (r.SentenceLine(id=statement.id.name),)
         case Inequality() | Uncalculated():
             return (r.CriterionLine(id=statement.id.name),)
+        case FigureStatement():
+            return (r.FigureLine(number=naming.figures[statement.span.start]),)
         case _:
             return ()
 

@@ -11,6 +11,7 @@ from calcdoc.records import record as r
 from calcdoc.records.cautions import cautions, hazards
 from calcdoc.records.checks import crosschecks, relations
 from calcdoc.records.criteria import criteria
+from calcdoc.records.figures import figures
 from calcdoc.records.method import method_statement
 from calcdoc.records.naming import name_lines
 from calcdoc.records.quantities import Numbers, quantities
@@ -76,7 +77,7 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
         cautions=cautions(evaluation, register, body),
         references=references(model, naming),
         methods=method_statement(lines, title.digits, looked_up=bool(evaluation.looked)),
-        figures=(),
+        figures=figures(numbers, judged),
         notices=unsourced(model),
         problems=tuple(_problem(evaluation, each) for each in in_order(made.findings)),
         body=body,

@@ -1,0 +1,158 @@
+"""The spread of a quantity: parts vary at random, conditions and biases stand still."""
+
+from typing import Final
+
+import numpy as np
+
+from calcdoc.analysis.box import Box
+from calcdoc.analysis.compile import Against, Compiled
+from calcdoc.analysis.evaluation import Evaluation, Judgement
+from calcdoc.analysis.extremes import Question, extremes
+from calcdoc.analysis.looking_up import reached
+from calcdoc.analysis.parts import Part, base_point, draw, random_parts, stream
+from calcdoc.analysis.pictured import Bound, Spread
+from calcdoc.analysis.points import FloatArray
+from calcdoc.analysis.program import plain
+from calcdoc.model.model import Pictured
+from calcdoc.problems import Mistake, error
+from calcdoc.text.names import fold
+from calcdoc.text.nodes import Group, Name, Node
+from calcdoc.text.scan import shown
+
+BINS: Final = 40
+DRAWS: Final = 100_000
+"""When the title block states none, and the most that a figure takes."""
+SEED: Final = 1
+CHUNK: Final = 20_000
+"""Draws computed at once: memory does not grow with their number."""
+
+
+def spread(
+    compiled: Compiled, evaluation: Evaluation, pictured: Pictured, against: Against | None
+) -> Spread:
+    """Draw the parts a quantity rests on.
+
+    Where a criterion compares the quantity with a limit, conditions stand where they govern it
+    and biases at that end; else all stand at nominal.
+
+    Raises:
+        Mistake: when no draw can be computed.
+    """
+    symbol = pictured.statement.symbol
+    assert symbol is not None
+    target, title = compiled.variables[symbol.key], evaluation.model.document.title
+    judged = [each for each in evaluation.judgements if _is(each.side.value_tree, symbol.key)]
+    box, governing = compiled.box, compiled.box.nominal
+    if judged:
+        box = _box(compiled, judged[0])
+        governing = _governing(compiled, judged[0], box)
+    rests = reached(compiled.tape, target)
+    parts = tuple(
+        each
+        for each in random_parts(compiled, evaluation.model)
+        if each.column in rests and each.low < each.high
+    )
+    base = base_point(random_parts(compiled, evaluation.model), governing)
+    draws = min(title.draws or DRAWS, DRAWS)
+    seed = SEED if title.seed is None else title.seed
+    values = _drawn(compiled, target, parts, base, draws, seed)
+    kept = values[np.isfinite(values)]
+    if not kept.size:
+        raise Mistake(
+            error(
+                "figure-form",
+                f"no draw of {shown(symbol.name)} can be computed",
+                symbol.span,
+                help="check its formula over the bands of its inputs",
+            )
+        )
+    ends = (Question(target, end, box.low, box.nominal, box.high) for end in (False, True))
+    least, greatest = (each.value for each in extremes(compiled.tape, tuple(ends)))
+    program = plain(compiled.tape, (target,))
+    nominal = float(program.evaluate(box.nominal[:, None])[program.row[target], 0])
+    keys = {column: key for key, column in compiled.columns.items()}
+    moved = sorted(rests & {int(at) for at in np.flatnonzero(base != compiled.box.nominal)})
+    low, high = float(kept.min()), float(kept.max())
+    counts = np.histogram(kept, BINS, (low, high))[0] if low < high else np.array([kept.size])
+    return Spread(
+        pictured,
+        draws,
+        seed,
+        draws - kept.size,
+        low,
+        high,
+        tuple(int(each) for each in counts),
+        float(kept.mean()),
+        float(kept.std()),
+        nominal,
+        min(least, nominal),
+        max(greatest, nominal),
+        _bounds(compiled, judged, against, base),
+        judged[0].judged.statement.id.name if judged else "",
+        {keys[at]: float(base[at]) for at in moved},
+        tuple(each.key for each in parts if _assumed(evaluation, each)),
+    )
+
+
+def _is(tree: Node, key: str) -> bool:
+    """Whether a side of a criterion is the quantity itself."""
+    while isinstance(tree, Group):
+        tree = tree.inner
+    return isinstance(tree, Name) and fold(tree.name) == key
+
+
+def _box(compiled: Compiled, judgement: Judgement) -> Box:
+    """The box a criterion is judged over."""
+    clauses, box = judgement.judged.statement.clauses, compiled.box
+    low, nominal, high = box.low.copy(), box.nominal.copy(), box.high.copy()
+    for point in clauses.at:
+        column = compiled.columns[point.symbol.key]
+        low[column], nominal[column], high[column] = point.given.si
+    return Box(low, nominal, high)
+
+
+def _governing(compiled: Compiled, judgement: Judgement, box: Box) -> FloatArray:
+    """The combination that governs a criterion; what does not matter stands at nominal."""
+    point = box.nominal.copy()
+    for key, stand in judgement.governing.items():
+        point[compiled.columns[key]] = stand.value
+    return point
+
+
+def _drawn(  # noqa: PLR0913  (what to draw, and how)
+    compiled: Compiled,
+    target: int,
+    parts: tuple[Part, ...],
+    base: FloatArray,
+    draws: int,
+    seed: int,
+) -> FloatArray:
+    """The quantity at every draw, shape (draws,)."""
+    program = plain(compiled.tape, (target,))
+    streams = [stream(seed, part.key) for part in parts]
+    found = np.empty(draws)
+    for begin in range(0, draws, CHUNK):
+        count = min(CHUNK, draws - begin)
+        points = np.repeat(base[:, None], count, axis=1)
+        for part, generator in zip(parts, streams, strict=True):
+            points[part.column] += draw(part, generator, count)
+        found[begin : begin + count] = program.evaluate(points)[program.row[target]]
+    return found
+
+
+def _bounds(
+    compiled: Compiled, judged: list[Judgement], against: Against | None, base: FloatArray
+) -> tuple[Bound, ...]:
+    """The stated limit, else those of the criteria on this quantity."""
+    if against is not None:
+        program = plain(compiled.tape, (against.limit,))
+        value = float(program.evaluate(base[:, None])[program.row[against.limit], 0])
+        return (Bound("", value),) if np.isfinite(value) else ()
+    return tuple(
+        Bound(each.judged.statement.id.name, row.limit) for each in judged for row in each.rows
+    )
+
+
+def _assumed(evaluation: Evaluation, part: Part) -> bool:
+    given = evaluation.model.variables[part.key].given
+    return given is not None and given.parts.assumed
