@@ -61,7 +61,7 @@ class Spread(Frozen, frozen=True):
     nominal: float
     least: float
     greatest: float
-    """At nominal, and by extremes over parts and conditions."""
+    """With parts at nominal, and by extremes over the parts; all else stands still."""
     bounds: tuple[Bound, ...]
     criterion: str
     """The criterion whose governing conditions hold here; empty: all at nominal."""

@@ -46,13 +46,9 @@ def spread(
     if judged:
         box = _box(compiled, judged[0])
         governing = _governing(compiled, judged[0], box)
-    rests = reached(compiled.tape, target)
-    parts = tuple(
-        each
-        for each in random_parts(compiled, evaluation.model)
-        if each.column in rests and each.low < each.high
-    )
-    base = base_point(random_parts(compiled, evaluation.model), governing)
+    rests, every = reached(compiled.tape, target), random_parts(compiled, evaluation.model)
+    parts = tuple(each for each in every if each.column in rests and each.low < each.high)
+    base = base_point(every, governing)
     draws = min(title.draws or DRAWS, DRAWS)
     seed = SEED if title.seed is None else title.seed
     values = _drawn(compiled, target, parts, base, draws, seed)
@@ -66,10 +62,11 @@ def spread(
                 help="check its formula over the bands of its inputs",
             )
         )
-    ends = (Question(target, end, box.low, box.nominal, box.high) for end in (False, True))
+    still = _still(box, base, every)
+    ends = (Question(target, end, still.low, base, still.high) for end in (False, True))
     least, greatest = (each.value for each in extremes(compiled.tape, tuple(ends)))
     program = plain(compiled.tape, (target,))
-    nominal = float(program.evaluate(box.nominal[:, None])[program.row[target], 0])
+    nominal = float(program.evaluate(base[:, None])[program.row[target], 0])
     keys = {column: key for key, column in compiled.columns.items()}
     moved = sorted(rests & {int(at) for at in np.flatnonzero(base != compiled.box.nominal)})
     low, high = float(kept.min()), float(kept.max())
@@ -117,6 +114,14 @@ def _governing(compiled: Compiled, judgement: Judgement, box: Box) -> FloatArray
     for key, stand in judgement.governing.items():
         point[compiled.columns[key]] = stand.value
     return point
+
+
+def _still(box: Box, base: FloatArray, parts: tuple[Part, ...]) -> Box:
+    """The box with everything but the parts where it stands."""
+    low, high = base.copy(), base.copy()
+    for part in parts:
+        low[part.column], high[part.column] = box.low[part.column], box.high[part.column]
+    return Box(low, base, high)
 
 
 def _drawn(  # noqa: PLR0913  (what to draw, and how)

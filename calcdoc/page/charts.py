@@ -31,6 +31,7 @@ from calcdoc.page.marks import (
     named,
     number,
     per_unit,
+    spread_out,
     ticks,
     words,
 )
@@ -45,9 +46,10 @@ _DOTS: Final = (1.2, 2.2)
 _ROW: Final = 10.0
 """Height of a row of labels."""
 _FAILS: Final = "fail"
+_PASSES: Final = "pass"
 _LONGEST: Final = 62.0
 """Points that a limit may take beside its line."""
-_MOST: Final = 100.0
+_MOST: Final = 106.0
 """Per cent: longer bars are cut, their number stands beside them."""
 
 
@@ -140,7 +142,8 @@ def _at_nominal(figure: Curve, drawn: Drawing) -> None:
         return
     at, value = figure.at_nominal
     low, high = drawn.frame.y
-    drawn.marks += [Stroke((at, at), (low, high), SOFT, 0.5), Ring(at, value, SEA, SEA)]
+    drawn.marks.append(Stroke((at, at), (low, high), SOFT, 0.5))
+    drawn.rings.append(Ring(at, value, SEA, SEA))
     text = words(f"nominal {typeset(figure.at_nominal_text)}")
     anchor = _beside(drawn.frame, at, extent(text))
     drawn.labels.append(Label(at, high, text, anchor, up=3.0, ink=SOFT))
@@ -159,7 +162,7 @@ def _meetings(figure: Curve, drawn: Drawing, limit: tuple[float, ...]) -> None:
     if figure.limit_least:
         return  # curve and limit move together: the picture shows each alone
     for each in figure.meetings:
-        drawn.marks += [Ring(at, _between(figure.axis, limit, at)) for at in each.at]
+        drawn.rings += [Ring(at, _between(figure.axis, limit, at)) for at in each.at]
 
 
 def _between(axis: tuple[float, ...], row: tuple[float, ...], at: float) -> float:
@@ -213,26 +216,29 @@ def _spread(figure: Spread) -> Drawing:
     shares = [100 * each / total for each in counts]
     y = (0.0, max(shares) * 1.08)
     marks = _marks(figure)
-    rows = _rows(marks, Frame(WIDTH, 1, 40, 20, 0, 0, x, y))
-    top = 14 + _ROW * (max(rows) + 1)
+    flat = Frame(WIDTH, 1, 40, 20, 0, 0, x, y)
+    places = spread_out([(flat.points_x(at), extent(text)) for at, text, _, _ in marks],
+                        -36.0, WIDTH - 44.0)  # fmt: skip
+    top = 18 + _ROW * (max(each.row for each in places) + 1)
     frame = Frame(WIDTH, 132 + top, 40, 20, 28, top, x, y, ticks(*x, 8), ticks(*y, 4))
     drawn = Drawing(frame)
     wide = (figure.high - figure.low) / len(counts) or (x[1] - x[0]) / 200
-    drawn.marks += [
-        Bar(figure.low + at * wide, figure.low + (at + 1) * wide, 0.0, share)
-        for at, share in enumerate(shares)
-        if share
-    ]
-    for (at, text, ink, dashes), row in zip(marks, rows, strict=True):
-        up = 4 + _ROW * row
+    edges = tuple(figure.low + (at + 1) // 2 * wide for at in range(1, 2 * len(shares) + 1))
+    edges = (figure.low, *edges[:-1])
+    steps = tuple(share for share in shares for _ in range(2))
+    drawn.marks.append(Area(edges, (0.0,) * len(edges), steps))
+    outline = (0.0, *steps, 0.0)
+    drawn.marks.append(Stroke((edges[0], *edges, edges[-1]), outline, SEA, 0.7))
+    for (at, text, ink, dashes), place in zip(marks, places, strict=True):
+        up = 4 + _ROW * place.row
         height = y[1] + (up - 1.5) * (y[1] - y[0]) / (frame.height - frame.bottom - frame.top)
         width = 1.0 if ink == INK else 0.7
         drawn.marks.append(Stroke((at, at), (0.0, height), ink, width, dashes, over=True))
-        anchor = _beside(frame, at, extent(text))
-        drawn.labels.append(Label(at, y[1], text, anchor, up=up, ink=ink))
+        drawn.labels.append(Label(at, y[1], text, place.anchor, place.right, up, ink=ink))
     _scales(drawn)
     _titles(drawn, per_unit(figure.symbol, figure.unit))
-    drawn.labels.append(Label(x[0], y[1], words("share of draws/%"), right=-36.0, up=4.0))
+    above = top - 9
+    drawn.labels.append(Label(x[0], y[1], words("share of draws/%"), right=-36.0, up=above))
     return drawn
 
 
@@ -242,7 +248,7 @@ Mark = tuple[float, tuple[Run, ...], str, tuple[float, ...]]
 def _marks(figure: Spread) -> list[Mark]:
     """Upright rules with their names, from left to right."""
     found: list[Mark] = [
-        (figure.nominal, words(f"nominal {typeset(figure.nominal_text)}"), SOFT, ()),
+        (figure.nominal, words(f"parts nominal {typeset(figure.nominal_text)}"), SOFT, ()),
         (figure.least, words(f"least {typeset(figure.least_text)}"), SOFT, _DOTS),
         (figure.greatest, words(f"greatest {typeset(figure.greatest_text)}"), SOFT, _DOTS),
     ]
@@ -250,21 +256,6 @@ def _marks(figure: Spread) -> list[Mark]:
         text = words(f"limit {each.criterion} {typeset(each.text)}".replace("  ", " "))
         found.append((each.value, text, INK, _DASHES))
     return sorted(found, key=lambda mark: mark[0])
-
-
-def _rows(marks: list[Mark], frame: Frame) -> list[int]:
-    """The row of each label, such that none touches another; the lowest row that is free."""
-    ends: list[float] = []
-    rows = []
-    for at, text, _, _ in marks:
-        width, place = extent(text), frame.points_x(at)
-        left = {"start": place, "middle": place - width / 2, "end": place - width}[
-            _beside(frame, at, width)
-        ]
-        row = next((n for n, end in enumerate(ends) if end + 6 < left), len(ends))
-        ends[row : row + 1] = [left + width]
-        rows.append(row)
-    return rows
 
 
 # --- sensitivities and margins -----------------------------------------------------------------
@@ -282,17 +273,13 @@ def _sensitivities(figure: Sensitivities) -> Drawing:
         for change, bottom, fill in ((row.low, 0.03, PAPER), (row.high, -0.3, SEA)):
             if change:
                 ends = sorted((0.0, change))
-                bar = Bar(*ends, middle + bottom, middle + bottom + 0.27, fill)
+                bar = Bar(ends[0], ends[1], middle + bottom, middle + bottom + 0.27, fill)
                 drawn.marks.append(bar)
-        drawn.labels.append(
-            Label(x[0], middle, named(row.symbol), "end", right=-6.0, up=-2.7)
-        )
+        drawn.labels.append(Label(x[0], middle, named(row.symbol), "end", right=-6.0, up=-2.7))
         for text, right in ((row.low_text, 68.0), (row.high_text, 134.0)):
-            drawn.labels.append(
-                Label(x[1], middle, words(text), "end", right=right, up=-2.7)
-            )
+            drawn.labels.append(Label(x[1], middle, words(text), "end", right=right, up=-2.7))
     _zero(drawn, len(rows))
-    for text, right in (("at its least ▫", 68.0), ("at its greatest ▪", 134.0)):
+    for text, right in (("open: at least", 68.0), ("full: at greatest", 134.0)):
         drawn.labels.append(
             Label(x[1], frame.y[1], words(text), "end", right=right, up=5.0, ink=SOFT)
         )
@@ -325,9 +312,11 @@ def _margins(figure: Margins) -> Drawing:
         fails = row.verdict == _FAILS
         if row.margin is not None:
             share = 100 * row.margin
-            ends = sorted((0.0, min(max(share, x[0]), x[1])))
-            look = (PAPER, BAD, "/////") if fails else (TINT, SEA, "")
-            drawn.marks.append(Bar(*ends, middle - 0.28, middle + 0.28, *look))
+            ends = sorted((0.0, min(max(share, 2 * x[0]), 2 * x[1])))
+            fill, ink, hatch = (PAPER, BAD, "/////") if fails else (TINT, SEA, "")
+            fill = TINT if row.verdict == _PASSES else PAPER
+            low_edge, high_edge = middle - 0.28, middle + 0.28
+            drawn.marks.append(Bar(ends[0], ends[1], low_edge, high_edge, fill, ink, hatch))
         drawn.labels.append(Label(x[0], middle, words(row.id), "end", right=-6.0, up=-2.7))
         text = typeset(row.margin_text)
         drawn.labels.append(Label(x[1], middle, words(text), "end", right=52.0, up=-2.7))
@@ -338,5 +327,5 @@ def _margins(figure: Margins) -> Drawing:
         Label(0.0, frame.y[1], words("limit"), _beside(frame, 0.0, 18.0), up=5.0, ink=SOFT)
     )
     _scales(drawn)
-    _titles(drawn, words("margin, share of the limit/%"))
+    _titles(drawn, words("margin as a share of the limit/%"))
     return drawn

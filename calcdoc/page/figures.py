@@ -22,5 +22,5 @@ def figure(view: View, shown: AnyFigure) -> str:
     said = f'<span class="soft">{notes}</span>' if notes else ""
     return (
         f'<figure class="fig" id="{name}">{drawn}<figcaption><b>Figure {shown.number}.</b>'
-        f" {view.words(shown.caption)}.{said}</figcaption></figure>\n"
+        f" {view.words(shown.caption.rstrip('.'))}.{said}</figcaption></figure>\n"
     )

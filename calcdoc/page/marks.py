@@ -123,7 +123,8 @@ class Drawing:
     """What is drawn, in order."""
 
     frame: Frame
-    marks: list[Stroke | Area | Bar | Ring] = field(default_factory=list)
+    marks: list[Stroke | Area | Bar] = field(default_factory=list)
+    rings: list[Ring] = field(default_factory=list)
     labels: list[Label] = field(default_factory=list)
 
 
@@ -203,3 +204,74 @@ def apart(wanted: list[float], room: float) -> list[float]:
 def _touch(lower: tuple[float, list[int]], upper: tuple[float, list[int]], room: float) -> bool:
     reach = (len(lower[1]) + len(upper[1])) / 2 * room
     return upper[0] - lower[0] < reach
+
+
+@dataclass(frozen=True, slots=True)
+class Place:
+    """Where the name of an upright rule stands: its row, and on which side of the rule."""
+
+    row: int
+    anchor: Anchor
+    right: float
+
+
+SIDES: Final = (Place(0, "middle", 0.0), Place(0, "end", -3.0), Place(0, "start", 3.0))
+GAP: Final = 6.0
+"""Between two names in a row."""
+ROWS: Final = 6
+
+
+def spread_out(rules: list[tuple[float, float]], least: float, most: float) -> list[Place]:
+    """Places for the names of upright rules that touch neither each other nor a rule.
+
+    Args:
+        rules: Where each rule stands, in points from left to right, and how wide its name is.
+        least: The left end of the paper.
+        most: The right end.
+
+    Returns:
+        A place for each, in as few rows as it takes; each in a row of its own when none fits.
+    """
+    for rows in range(1, ROWS + 1):
+        found = _fitted(rules, least, most, rows, [])
+        if found is not None:
+            return found
+    return [Place(at, "middle", 0.0) for at in range(len(rules))]
+
+
+def _fitted(
+    rules: list[tuple[float, float]], least: float, most: float, rows: int, placed: list[Place]
+) -> list[Place] | None:
+    if len(placed) == len(rules):
+        return placed
+    at = len(placed)
+    for row in range(rows):
+        for side in SIDES:
+            place = Place(row, side.anchor, side.right)
+            left, right = _reach(rules[at], place)
+            if left < least or right > most:
+                continue
+            if all(_clear(rules[n], each, rules[at], place) for n, each in enumerate(placed)):
+                found = _fitted(rules, least, most, rows, [*placed, place])
+                if found is not None:
+                    return found
+    return None
+
+
+def _reach(rule: tuple[float, float], place: Place) -> tuple[float, float]:
+    """The left and the right end of a name."""
+    at, width = rule
+    left = at + place.right - {"start": 0.0, "middle": 0.5, "end": 1.0}[place.anchor] * width
+    return left, left + width
+
+
+def _clear(
+    first: tuple[float, float], one: Place, second: tuple[float, float], other: Place
+) -> bool:
+    """Whether two names stand apart, and neither rule runs through the other's name."""
+    (left, right), (start, end) = _reach(first, one), _reach(second, other)
+    if one.row == other.row and left < end + GAP and start < right + GAP:
+        return False
+    if one.row > other.row and start - 2 < first[0] < end + 2:
+        return False
+    return not (other.row > one.row and left - 2 < second[0] < right + 2)

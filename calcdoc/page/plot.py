@@ -49,12 +49,17 @@ def svg(drawing: Drawing, name: str) -> str:
         axes = _axes(figure, frame)
         for mark in drawing.marks:
             _draw(axes, mark)
-        places = [axes.transData.transform((each.x, each.y)) for each in drawing.labels]
+
+        def place(mark: Ring | Label) -> tuple[float, float]:
+            x, y = axes.transData.transform((mark.x, mark.y))
+            return float(x), frame.height - float(y)
+
+        placed = [_ring(each, *place(each)) for each in drawing.rings]
+        placed += [_text(each, *place(each)) for each in drawing.labels]
         written = io.BytesIO()
         figure.savefig(written, format="svg", metadata={"Date": None, "Creator": None})
     root = _cleaned(ET.fromstring(written.getvalue()), name)  # noqa: S314  made just above
-    for label, (x, y) in zip(drawing.labels, places, strict=True):
-        root.append(_text(label, float(x) + label.right, frame.height - float(y) - label.up))
+    root.extend(placed)
     ET.register_namespace("", SVG)
     return ET.tostring(root, encoding="unicode")
 
@@ -82,7 +87,7 @@ def _axes(figure: "Figure", frame: Frame) -> "Axes":
     return axes
 
 
-def _draw(axes: "Axes", mark: Stroke | Area | Bar | Ring) -> None:
+def _draw(axes: "Axes", mark: Stroke | Area | Bar) -> None:
     match mark:
         case Stroke(x, y, ink, width, dashes, over):
             style = (0, dashes) if dashes else "solid"
@@ -97,15 +102,11 @@ def _draw(axes: "Axes", mark: Stroke | Area | Bar | Ring) -> None:
                 (left, right, right, left), (bottom, bottom, top, top), facecolor=fill,
                 edgecolor=ink, hatch=hatch or None, linewidth=0.5, joinstyle="miter", zorder=2,
             )  # fmt: skip
-        case Ring(x, y, fill, ink):
-            axes.plot(
-                [x], [y], marker="o", markersize=2 * RING, markerfacecolor=fill,
-                markeredgecolor=ink, markeredgewidth=0.8, linestyle="none", clip_on=False, zorder=4,
-            )  # fmt: skip
 
 
 def _cleaned(root: ET.Element, name: str) -> ET.Element:
     """Without what a page has no use for; ids begin with the name, styles are attributes."""
+    _spelled_out(root)
     for parent in root.iter():
         for child in list(parent):
             if child.tag in (f"{{{SVG}}}metadata", f"{{{SVG}}}style"):
@@ -121,9 +122,7 @@ def _cleaned(root: ET.Element, name: str) -> ET.Element:
             each.set(key.strip(), value.strip())
         for key, value in each.attrib.items():
             text = _REFERENCE.sub(rf"url(#{name}-\1)", value)
-            if key == LINK:
-                text = f"#{name}-{value[1:]}"
-            elif key in ("d", "x", "y", "points", "transform", "width", "height"):
+            if key in ("d", "x", "y", "points", "transform", "width", "height"):
                 text = _DECIMALS.sub(lambda found: f"{float(found[0]):.2f}", " ".join(text.split()))
             each.set(key, text)
         each.text = each.tail = None
@@ -132,8 +131,35 @@ def _cleaned(root: ET.Element, name: str) -> ET.Element:
     return root
 
 
+def _spelled_out(root: ET.Element) -> None:
+    """Marks that are used from a definition, as the ticks are, stand where they are drawn."""
+    known = {each.get("id", ""): each for each in root.iter(f"{{{SVG}}}path")}
+    for parent in root.iter():
+        for child in list(parent):
+            if child.tag == f"{{{SVG}}}use":
+                defined = known[child.attrib.pop(LINK)[1:]]
+                child.tag = defined.tag
+                child.set("d", defined.get("d", ""))
+                x, y = child.attrib.pop("x"), child.attrib.pop("y")
+                child.set("transform", f"translate({x} {y})")
+    for parent in root.iter():
+        for child in list(parent):
+            if child.tag == f"{{{SVG}}}defs" and all(
+                each.tag == f"{{{SVG}}}path" for each in child
+            ):
+                parent.remove(child)
+
+
+def _ring(ring: Ring, x: float, y: float) -> ET.Element:
+    return ET.Element(f"{{{SVG}}}circle", {
+        "cx": f"{x:.2f}", "cy": f"{y:.2f}", "r": f"{RING}", "fill": ring.fill,
+        "stroke": ring.ink, "stroke-width": "0.9",
+    })  # fmt: skip
+
+
 def _text(label: Label, x: float, y: float) -> ET.Element:
     """A label as text; its runs follow each other."""
+    x, y = x + label.right, y - label.up
     node = ET.Element(f"{{{SVG}}}text", {
         "x": f"{x:.2f}", "y": f"{y:.2f}", "font-size": f"{label.size:g}", "font-family": SANS,
         "fill": label.ink,
@@ -158,5 +184,3 @@ def _run(run: Run, size: float, *, lowered: bool) -> ET.Element:
     node = ET.Element(f"{{{SVG}}}tspan", attributes)
     node.text = run.text
     return node
-
-

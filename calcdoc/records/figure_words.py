@@ -6,7 +6,7 @@ from typing import TypeVar
 from msgspec.structs import replace
 
 from calcdoc.records import record as r
-from calcdoc.records.rounding import significant
+from calcdoc.records.rounding import significant, trimmed
 from calcdoc.records.shapes import NO_BREAK
 from calcdoc.records.wording import counted, typeset
 
@@ -38,6 +38,12 @@ def _value(number: float | None, unit: str, digits: int = _DIGITS) -> str:
     return f"{text}{NO_BREAK}{unit}" if unit else text
 
 
+def _place(number: float, unit: str) -> str:
+    """A place on an axis, without zeros that say nothing."""
+    text = typeset(trimmed(number, _DIGITS))
+    return f"{text}{NO_BREAK}{unit}" if unit else text
+
+
 def _list(parts: Sequence[str]) -> str:
     if len(parts) < 2:  # noqa: PLR2004
         return "".join(parts)
@@ -48,7 +54,7 @@ def _list(parts: Sequence[str]) -> str:
 
 
 def _curve(figure: r.Curve) -> list[str]:
-    low, high = (_value(end, figure.against_unit) for end in (figure.axis[0], figure.axis[-1]))
+    low, high = (_place(end, figure.against_unit) for end in (figure.axis[0], figure.axis[-1]))
     text = [f"Curve of {figure.symbol} against {figure.against} from {low} to {high}."]
     if figure.least != figure.greatest:
         text.append("A band around it reaches from the least to the greatest value over all else.")
@@ -80,7 +86,7 @@ def _point(figure: r.Curve, at: int) -> str:
     if figure.least[at] != figure.greatest[at]:
         least, greatest = (_value(row[at], figure.unit) for row in (figure.least, figure.greatest))
         band = f" (least {least}, greatest {greatest})"
-    place = _value(figure.axis[at], figure.against_unit)
+    place = _place(figure.axis[at], figure.against_unit)
     return f"{_value(figure.nominal[at], figure.unit)}{band} at {place}"
 
 
@@ -92,11 +98,9 @@ def _gaps(figure: r.Curve) -> list[str]:
         if lost and row is figure.least:
             lost = [at for at in lost if figure.nominal[at] is not None]
         if lost:
-            low, high = (_value(figure.axis[at], figure.against_unit) for at in (lost[0], lost[-1]))
+            low, high = (_place(figure.axis[at], figure.against_unit) for at in (lost[0], lost[-1]))
             where = f"at {low}" if len(lost) == 1 else f"between {low} and {high}"
-            text.append(
-                f"At {len(lost)} of {len(row)} points {what} cannot be computed, {where}."
-            )
+            text.append(f"At {len(lost)} of {len(row)} points {what} cannot be computed, {where}.")
     return text
 
 
@@ -104,8 +108,12 @@ def _meeting(figure: r.Curve) -> list[str]:
     """Where the curve meets its limit, or on which side of it it stays."""
     limit = typeset(figure.limit_text)
     text = []
+    sides = {each.end: each.side for each in figure.meetings}
+    implied = {"above": "greatest", "below": "least"}.get(sides.get("nominal", ""), "")
     for each in figure.meetings:
-        places = [_value(at, figure.against_unit) for at in each.at[:_FEW]]
+        if each.end == implied:
+            continue
+        places = [_place(at, figure.against_unit) for at in each.at[:_FEW]]
         if len(each.at) > _FEW:
             places.append(f"{len(each.at) - _FEW} more places")
         stays = f"stays {each.side}" if each.side else "meets"
@@ -129,11 +137,16 @@ def _spread(figure: r.Spread) -> list[str]:
     unit, difference = figure.unit, "K" if figure.unit == "°C" else figure.unit
     low, high, mean = (_value(each, unit) for each in (figure.low, figure.high, figure.mean))
     text = [
-        f"Histogram of {figure.symbol} when parts vary at random: {_count(figure.draws)} draws in"
-        f" {len(figure.counts)} bins from {low} to {high}, mean {mean}, standard deviation"
-        f" {_value(figure.deviation, difference, _FEW)}.",
-        f"Marked are the nominal value {typeset(figure.nominal_text)} and the extremes, least"
-        f" {typeset(figure.least_text)} and greatest {typeset(figure.greatest_text)}.",
+        (
+            f"Histogram of {figure.symbol} when parts vary at random: {_count(figure.draws)} draws"
+            f" in {len(figure.counts)} bins from {low} to {high}, mean {mean}, standard deviation"
+            f" {_value(figure.deviation, difference, _FEW)}."
+        ),
+        (
+            f"Marked are the value with all parts at nominal, {typeset(figure.nominal_text)}, and"
+            f" the extremes over the parts, least {typeset(figure.least_text)} and greatest"
+            f" {typeset(figure.greatest_text)}."
+        ),
     ]
     for each in figure.limits:
         name = f"The limit of {each.criterion}" if each.criterion else "The limit"
@@ -170,16 +183,21 @@ def _assumed(figure: r.Spread) -> list[str]:
 
 
 def _sensitivities(figure: r.Sensitivities) -> list[str]:
-    rows = [
-        f"{each.symbol} from {typeset(each.at_least)} to {typeset(each.at_greatest)} changes it by"
-        f" {each.low_text} to {each.high_text}"
-        for each in figure.rows
-    ]
+    rows = [_drive(each) for each in figure.rows]
     return [
-        f"Bars of the change of {figure.symbol} from its nominal value"
-        f" {typeset(figure.nominal_text)} when one input alone moves to its least and to its"
-        f" greatest value, the largest first. {'; '.join(rows)}."
+        (
+            f"Bars of the change of {figure.symbol} from its nominal value"
+            f" {typeset(figure.nominal_text)} when one input alone moves to its least and to its"
+            f" greatest value, the largest first. {'; '.join(rows)}."
+        )
     ]
+
+
+def _drive(row: r.Drive) -> str:
+    return (
+        f"{row.symbol} from {typeset(row.at_least)} to {typeset(row.at_greatest)} changes it by"
+        f" {row.low_text} to {row.high_text}"
+    )
 
 
 def _left_out(figure: r.Sensitivities) -> list[str]:
