@@ -15,6 +15,7 @@ from typing import Final
 from calcdoc import __version__
 from calcdoc.analysis.evaluate import evaluate_model
 from calcdoc.analysis.evaluation import Evaluation
+from calcdoc.analysis.sampling import Progress
 from calcdoc.beside import Beside, read_beside
 from calcdoc.errors import CalcdocError
 from calcdoc.folder import Folder, read_bytes, write_whole
@@ -28,6 +29,7 @@ from calcdoc.problems.views import full, has_errors, in_order
 from calcdoc.records.build import Circumstances, build_record
 from calcdoc.records.cautions import hazard_warning
 from calcdoc.records.record import Record, Tool
+from calcdoc.records.statistics import doubts
 from calcdoc.records.store import to_json
 from calcdoc.source import SourceFile, digest
 from calcdoc.text.document import read_document
@@ -110,8 +112,12 @@ def read(path: str | os.PathLike[str]) -> Design:
     return Design(source, data, model, in_order((*findings, *trouble, *more)), beside)
 
 
-def evaluate(design: Design) -> Evaluated:
+def evaluate(design: Design, progress: Progress | None = None) -> Evaluated:
     """Compute a design at nominal and over its bands.
+
+    Args:
+        design: A design that was read.
+        progress: Told how many draws of how many are done, when criteria are judged by sampling.
 
     Returns:
         The numbers, or None with the findings when the text has errors or a value cannot be
@@ -119,12 +125,13 @@ def evaluate(design: Design) -> Evaluated:
     """
     if design.model is None or not design.ok:
         return Evaluated(design, None, design.findings)
-    evaluation, findings = evaluate_model(design.model)
+    evaluation, findings = evaluate_model(design.model, progress)
     if evaluation is not None:
         findings += (
             *hazard_warning(evaluation),
             *outside_band(design.model),
             *expired(design.model),
+            *doubts(evaluation),
         )
     return Evaluated(design, evaluation, in_order((*design.findings, *findings)))
 

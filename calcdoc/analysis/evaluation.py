@@ -3,8 +3,11 @@
 from collections.abc import Mapping
 from enum import Enum
 
+from calcdoc.analysis.counting import Sampled, Spread
+from calcdoc.analysis.draws import Setting
 from calcdoc.analysis.extremes import Proof
 from calcdoc.analysis.looking_up import LookedUp
+from calcdoc.analysis.root_sum_square import Combined
 from calcdoc.analysis.sides import Side
 from calcdoc.frozen import Frozen
 from calcdoc.model.model import Compared, Judged, Measured, Model, Root
@@ -67,6 +70,16 @@ class Row(Frozen, frozen=True):
     outcome: "Outcome"
 
 
+class Drawn(Frozen, frozen=True):
+    """What the draws say about one limit of a criterion."""
+
+    share: float
+    """Of the draws that must meet the criterion."""
+    sampled: Sampled
+    spread: Spread
+    """Of the requirement of this limit."""
+
+
 class Judgement(Frozen, frozen=True):
     """A criterion in one case, at its governing point: where limit less value is least."""
 
@@ -94,6 +107,8 @@ class Judgement(Frozen, frozen=True):
     away: tuple[str, ...]
     """Keys of settled quantities it rests on whose loop gain may reach one: then it fails, or is
     not decided."""
+    statistics: Combined | Drawn | None = None
+    """By root sum square, by sampling, or None by extremes."""
 
 
 class Unjudged(Frozen, frozen=True):
@@ -264,3 +279,5 @@ class Evaluation(Frozen, frozen=True):
     looked: tuple[LookedUp, ...]
     restated: tuple[Restated, ...]
     sensitive: tuple[Sensitive, ...]
+    setting: Setting | None
+    """How parts were drawn; None when no criterion is judged by sampling."""

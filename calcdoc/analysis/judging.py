@@ -7,6 +7,7 @@ from calcdoc.analysis.box import Box
 from calcdoc.analysis.evaluation import (
     Combination,
     Conclusion,
+    Drawn,
     Judgement,
     Outcome,
     Row,
@@ -14,6 +15,7 @@ from calcdoc.analysis.evaluation import (
 )
 from calcdoc.analysis.extremes import Extreme
 from calcdoc.analysis.points import FloatArray
+from calcdoc.analysis.root_sum_square import Combined
 from calcdoc.analysis.sides import Side
 from calcdoc.analysis.working import InCase
 from calcdoc.frozen import Frozen
@@ -122,6 +124,7 @@ def judgement(  # noqa: PLR0913  (what the judgement is made of)
     which: int,
     values: Mapping[str, float],
     away: tuple[str, ...],
+    statistics: Combined | Drawn | None = None,
 ) -> Judgement:
     """The criterion at its governing point."""
     row, extreme = rows[which], found[which].extreme
@@ -143,6 +146,7 @@ def judgement(  # noqa: PLR0913  (what the judgement is made of)
         bound=extreme.bound,
         rows=rows,
         away=away,
+        statistics=statistics,
     )
 
 

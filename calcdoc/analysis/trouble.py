@@ -109,6 +109,11 @@ def out_of_reach(
     }
 
 
+def said(finding: Finding) -> str:
+    """A finding as a reason, on one line."""
+    return f"{finding.message} {finding.place.label}".rstrip()
+
+
 class _Teller:
     """Says what a hazard is in the words and at the place of the author's text."""
 

@@ -26,11 +26,12 @@ def criterion_said(criterion: Criterion) -> str:
     remarks = [sentence(each) for each in (criterion.remark, criterion.reason) if each]
     if criterion.value is not None:
         case = f", in {criterion.case}" if criterion.case != NORMAL else ""
-        remarks[:0] = [
+        numbers = (
             f"value {typeset(criterion.value_text)}, limit {SIGNS[criterion.relation]}"
             f" {typeset(criterion.limit_text)}, margin {typeset(criterion.margin_text)}"
             f"{case}{_at(criterion.governing)}"
-        ]
+        )
+        remarks.insert(0, numbers)
     if criterion.unverified:
         remarks.append(f"on unverified values: {', '.join(criterion.unverified)}")
     if criterion.accepted:

@@ -1,6 +1,7 @@
 """Criteria about criteria: any of several, and failures that are accepted until a day."""
 
 from collections.abc import Mapping
+from typing import Final
 
 from calcdoc.model.cases import Stated, named
 from calcdoc.model.model import Accepted, Chosen, Criterion, Judged, Model
@@ -11,6 +12,8 @@ from calcdoc.text.names import nearest
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import Acceptance, AnyOf, Inequality, Label, Statement, Uncalculated
 
+_ALL: Final = ""
+"""Stands for every case; no case has an empty name."""
 Stating = Mapping[str, Inequality | Uncalculated | AnyOf]
 """The statements of criteria by key."""
 
@@ -151,25 +154,24 @@ def _judged_in(criterion: Criterion, criteria: Mapping[str, Criterion]) -> tuple
 def check_once(accepted: list[Accepted]) -> list[Finding]:
     """No failure is accepted twice."""
     findings = []
-    for at, each in enumerate(accepted):
-        for other in accepted[:at]:
-            if other.criterion == each.criterion and _meet(other.cases, each.cases):
-                label, first = each.statement.criterion, other.statement.criterion
-                findings.append(
-                    error(
-                        "acceptance",
-                        f"a failure of {shown(label.name)} is accepted twice",
-                        label.span,
-                        related=(Place(first.span, "first here"),),
-                        help="keep one of them, or name different cases",
-                    )
+    seen: dict[str, dict[str, Label]] = {}
+    for each in accepted:
+        label, firsts = each.statement.criterion, seen.setdefault(each.criterion, {})
+        wanted = each.cases or tuple(firsts)
+        first = next((firsts[at] for at in (*wanted, _ALL) if at in firsts), None)
+        if first is not None:
+            findings.append(
+                error(
+                    "acceptance",
+                    f"a failure of {shown(label.name)} is accepted twice",
+                    label.span,
+                    related=(Place(first.span, "first here"),),
+                    help="keep one of them, or name different cases",
                 )
-                break
+            )
+        for at in each.cases or (_ALL,):
+            firsts.setdefault(at, label)
     return findings
-
-
-def _meet(one: tuple[str, ...], other: tuple[str, ...]) -> bool:
-    return not one or not other or bool(set(one) & set(other))
 
 
 def _form(label: Label, message: str, advice: str, *related: Place) -> Mistake:

@@ -1,6 +1,7 @@
 """From document to model: the checks in order, each reporting all it finds."""
 
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
+from contextlib import contextmanager
 
 from calcdoc.frozen import Working
 from calcdoc.model import namespace
@@ -112,12 +113,6 @@ class _Judgements(Working):
             case _:
                 pass
 
-    def accept(self, statement: Statement) -> None:
-        """Check an acceptance, when all criteria are known."""
-        if isinstance(statement, Acceptance):
-            by_key = {key_of(each): each for each in self.criteria}
-            self.accepted.append(self.accepting.accepted(statement, by_key))
-
 
 def _judge(
     document: Document, space: Namespace, quantities: Quantities, known: Stated
@@ -125,16 +120,27 @@ def _judge(
     judging = Judging(space, quantities.checker, quantities.variables, known)
     accepting = Accepting(space, criteria_of(document.statements), known)
     found = _Judgements(judging, accepting, [], [], [], [], [])
-    for check in (found.take, found.accept):
-        for statement in document.statements:
-            try:
-                check(statement)
-            except Mistake as mistake:
-                found.findings.append(mistake.finding)
-            except Unknown:
-                pass
+    for statement in document.statements:
+        with _noted(found.findings):
+            found.take(statement)
+    by_key = {key_of(each): each for each in found.criteria}
+    for statement in document.statements:
+        if isinstance(statement, Acceptance):
+            with _noted(found.findings):
+                found.accepted.append(accepting.accepted(statement, by_key))
     found.findings += check_once(found.accepted)
     return found
+
+
+@contextmanager
+def _noted(findings: list[Finding]) -> Iterator[None]:
+    """Keep a mistake and go on; what rests on a wrong line was reported there."""
+    try:
+        yield
+    except Mistake as mistake:
+        findings.append(mistake.finding)
+    except Unknown:
+        pass
 
 
 def _model(  # noqa: PLR0913  (the parts of a model)

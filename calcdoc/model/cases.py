@@ -1,6 +1,6 @@
 """Cases: what each mode and fault changes, and which cases a criterion is judged in."""
 
-from collections.abc import Collection, Iterator, Mapping
+from collections.abc import Collection, Mapping
 from typing import Final
 
 from calcdoc.frozen import Frozen
@@ -17,6 +17,7 @@ from calcdoc.text.nodes import Node
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import CaseStatement, Change, Label, Scope
 
+MOST_CASES: Final = 1000
 MODE: Final = "mode"
 FAULT: Final = "fault"
 
@@ -55,6 +56,15 @@ def stated(document: Document) -> tuple[Stated, list[Finding]]:
                     help="give one of them another name",
                 )
             )
+    findings += [
+        error(
+            "case-form",
+            f"a design has at most {MOST_CASES} cases",
+            cases.pop(name).name.span,
+            help="split the design into several texts",
+        )
+        for name in list(cases)[MOST_CASES:]
+    ]
     return Stated(cases, document.broken), findings
 
 
@@ -211,8 +221,3 @@ def _check_makeup(given: Given, target: Variable) -> None:
                 help="the design must hold at all of it; state parts in inputs",
             )
         )
-
-
-def changed_givens(cases: tuple[Case, ...]) -> Iterator[Given]:
-    """Every value that stands in a case."""
-    return (each for case in cases for each in case.changes.values() if isinstance(each, Given))

@@ -12,6 +12,7 @@ from calcdoc.page.lines import (
     both_limits,
     given_value,
     gives_limits,
+    made_of,
     remark,
     subject,
 )
@@ -101,10 +102,18 @@ def _given_row(view: View, quantity: Quantity) -> tuple[str, ...]:
         view.place(quantity.symbol),
         view.symbol(quantity.symbol),
         nominal if gives_limits(quantity) else given_value(quantity),
-        both_limits(quantity) if quantity.varies else "",
+        _limits(view, quantity),
         view.opening(quantity.description),
         basis or "no source given",
     )
+
+
+def _limits(view: View, quantity: Quantity) -> str:
+    """Both limits, and what the tolerance is made of."""
+    if not quantity.varies:
+        return ""
+    made = f"<br><small>{made_of(view, quantity)}</small>" if quantity.makeup else ""
+    return both_limits(quantity) + made
 
 
 def assumptions(view: View) -> str:
@@ -213,8 +222,11 @@ def method(view: View) -> str:
     libraries = ", ".join(f"{name} {version}" for name, version in sorted(tool.libraries.items()))
     sentences = [view.sentence(each) for each in view.record.methods]
     if view.record.sampling:
-        drawn = ", ".join(f"{name} {value}" for name, value in sorted(view.record.sampling.items()))
-        sentences.append(f"Sampling: {escape(drawn)}.")
+        drawn = view.record.sampling
+        sentences.append(
+            f"Sampling: {typeset.sentence(f'{drawn.draws} draws')}, seed {drawn.seed},"
+            f" {drawn.sequence} numbers ({escape(drawn.generator)})."
+        )
     sentences.append(escape(f"Computed by calcdoc {tool.version} with {libraries}."))
     return "".join(f"<p>{each}</p>\n" for each in sentences)
 

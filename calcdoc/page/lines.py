@@ -111,7 +111,9 @@ def _given(view: View, quantity: Quantity) -> str:
     limits = ""
     if quantity.varies and not gives_limits(quantity):
         limits = f' <span class="soft">{both_limits(quantity)}</span>'
-    notes = _notes(view, quantity.notes)
+    notes = _notes(view, quantity.notes) + _cases(view, quantity)
+    if quantity.makeup:
+        notes += f'<p class="step">{made_of(view, quantity)}</p>'
     label = escape(quantity.id or quantity.line)
     return (
         f'<div class="in" id="q-{escape(quantity.symbol)}"><span class="no">{label}</span>'
@@ -133,6 +135,11 @@ def given_value(quantity: Quantity) -> str:
     if gives_limits(quantity) and typeset_text(quantity.result) not in quantity.tolerance:
         return f"{nominal}, {shown}"
     return shown
+
+
+def made_of(view: View, quantity: Quantity) -> str:
+    """What a tolerance is made of, in one line."""
+    return view.named("; ".join(quantity.makeup))
 
 
 def gives_limits(quantity: Quantity) -> bool:
@@ -396,4 +403,9 @@ def _decided(view: View, criterion: Criterion) -> str:
         margin = ""
     first = f"{words}: {why}" if why else words
     text = ", ".join(filter(None, (first, margin, view.sentence(criterion.remark))))
-    return f'<p class="band">{margin_bar(criterion)} {text}</p>'
+    return f'<p class="band">{margin_bar(criterion)} {text}</p>{_statistics(view, criterion)}'
+
+
+def _statistics(view: View, criterion: Criterion) -> str:
+    """How parts were combined, and what came out; their numbers are typeset already."""
+    return "".join(f'<p class="step">{view.named(each)}</p>' for each in criterion.statistics)

@@ -86,13 +86,14 @@ def _answers(view: View, row: SensitivityRow) -> str:
 
 def crosscheck_line(view: View, check: Crosscheck) -> str:
     """Two ways to one quantity: both with their numbers, the difference, the verdict in words."""
-    worst = f"worst at {view.setting(check.at)}" if check.at else ""
+    measured = bool(check.first_band)
+    word = "at" if measured else "worst at"
+    worst = f"{word} {view.setting(check.at)}" if check.at else ""
     beside = len(check.at) <= BESIDE
     side = aside([view.basis(check.basis), worst if beside else ""])
     stated = f'{view.math(check.first)} <span class="req">{check.form}</span> '
     stated += view.math(check.second)
-    numbers = f'{view.math(check.first_text)} <span class="req">and</span> '
-    numbers += f'{view.math(check.second_text)} <span class="cl">at nominal</span>'
+    numbers = _measured(view, check) if measured else _at_nominal(view, check)
     below = "" if beside else f'<p class="band">{worst}</p>'
     return _line(
         f"k-{check.id}",
@@ -103,13 +104,35 @@ def crosscheck_line(view: View, check: Crosscheck) -> str:
     )
 
 
+def _at_nominal(view: View, check: Crosscheck) -> str:
+    """Both sides at nominal."""
+    return (
+        f'{view.math(check.first_text)} <span class="req">and</span> '
+        f'{view.math(check.second_text)} <span class="cl">at nominal</span>'
+    )
+
+
+def _measured(view: View, check: Crosscheck) -> str:
+    """What was measured with the band of the instrument, what is computed with its own band."""
+    band = f" ({typeset.sentence(check.second_band)})" if check.second_band else ""
+    return (
+        f'<span class="nb">{escape(check.first_band)}</span> <span class="req">measured,</span> '
+        f'{view.math(check.second_text)}{band} <span class="req">computed</span>'
+    )
+
+
 def agreement(check: Crosscheck) -> str:
     """Whether both ways agree, and by how much they differ at the worst."""
     words = verdict("agrees") if check.agrees else verdict("differs")
     if not check.difference_text:
         return words
-    shown = f"{words}, worst difference {typeset.quantity(check.difference_text)}"
     allowed = typeset.quantity(check.allowed_text)
+    if check.first_band:
+        return (
+            f"{words}, difference {typeset.quantity(check.difference_text)}, root sum square of"
+            f" both bands {allowed}"
+        )
+    shown = f"{words}, worst difference {typeset.quantity(check.difference_text)}"
     return f"{shown}, allowed {allowed}" if allowed else shown
 
 

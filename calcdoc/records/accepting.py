@@ -59,10 +59,7 @@ def _any_of(
         case="normal",
         remark=f"met by {names}" if best == "pass" else "",
         reason="" if best == "pass" else said,
-        # What one verified route shows needs no other.
-        unverified=()
-        if () in unverified
-        else tuple(dict.fromkeys(t for u in unverified for t in u)),
+        unverified=unverified,
     )
 
 

@@ -2,6 +2,7 @@
 
 from collections.abc import Mapping
 
+from calcdoc.analysis.draws import Setting
 from calcdoc.analysis.evaluation import Evaluation
 from calcdoc.frozen import Frozen
 from calcdoc.problems import Finding
@@ -65,7 +66,7 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
         verdict=tally(judged, register),
         source=_source(evaluation, made),
         tool=made.tool,
-        sampling=None,
+        sampling=_sampling(evaluation.setting),
         cases=cases(numbers, naming),
         quantities=lines,
         relations=relations(numbers, naming),
@@ -77,7 +78,9 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
         hazards=hazards(evaluation),
         cautions=cautions(evaluation, register, body),
         references=references(model, naming),
-        methods=method_statement(lines, title.digits, looked_up=bool(evaluation.looked)),
+        methods=method_statement(
+            lines, judged, title.digits, looked_up=bool(evaluation.looked), cases=bool(model.cases)
+        ),
         figures=(),
         notices=unsourced(model),
         problems=tuple(_problem(evaluation, each) for each in in_order(made.findings)),
@@ -104,6 +107,17 @@ def _document(title: TitleBlock, subtitle: str) -> r.Document:
             r.Issue(revision=each.revision, date=each.date, reason=each.reason)
             for each in title.history
         ),
+    )
+
+
+def _sampling(setting: Setting | None) -> r.Sampling | None:
+    if setting is None:
+        return None
+    return r.Sampling(
+        draws=setting.total,
+        seed=setting.seed,
+        sequence="quasi-random" if setting.quasi_random else "random",
+        generator="Sobol, scrambled 16 times" if setting.quasi_random else "PCG64",
     )
 
 

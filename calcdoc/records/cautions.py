@@ -132,7 +132,8 @@ def _stored(evaluation: Evaluation, discharge: Discharge, discharged: Discharged
     return (
         f"Stored charge: after disconnection {store} falls from up to {start} to {typeset('60 V')}"
         f" through {symbol[discharge.resistance]} in at most {time} over all {over}{worst}; with an"
-        f" open bleed resistor it stays charged.{unknown}{rest} Wait, then measure, before touching."
+        f" open bleed resistor it stays charged.{unknown}{rest} Wait, then measure, before"
+        " touching."
     )
 
 

@@ -5,6 +5,7 @@ from calcdoc.frozen import replace
 from calcdoc.model.accepting import key_of
 from calcdoc.model.model import Judged, Typed
 from calcdoc.records import record as r
+from calcdoc.records import statistics
 from calcdoc.records.accepting import accepted, routes
 from calcdoc.records.looked import unverified
 from calcdoc.records.naming import Naming
@@ -82,6 +83,7 @@ def _blank(naming: Naming, statement: Inequality | Uncalculated | AnyOf) -> r.Cr
         limit_text="",
         margin_text="",
         remark="",
+        statistics=(),
         proof="",
     )
 
@@ -164,8 +166,11 @@ def _with_numbers(
         value_text=with_unit(shown, unit),
         limit_text=with_unit(bound, unit),
         margin_text=_margin_text(judgement, unit, share),
+        interval=statistics.interval(judgement, unit),
+        standard_error=statistics.standard_error(judgement, unit),
         remark=_remark(judgement, unit, share),
-        proof=judgement.proof.value,
+        statistics=statistics.said(numbers, judgement, unit),
+        proof="" if judgement.statistics else judgement.proof.value,
     )
 
 
@@ -202,6 +207,8 @@ def _inequality(statement: Inequality) -> str:
 
 
 def _method(statement: Inequality) -> str:
+    if statement.clauses.by != "extremes":
+        return statement.clauses.by
     if statement.clauses.at_nominal:
         return "nominal"
     return "point" if statement.clauses.at else "extremes"
@@ -294,8 +301,8 @@ def _reason(numbers: Numbers, judgement: Judgement, unit: Unit) -> str:
             return f"it rests on {names}, which runs away: the loop gain reaches one"
         return f"it rests on {names}, whose loop gain is not proven to stay below one"
     digits = numbers.digits
-    if judgement.outcome is not Outcome.NOT_DECIDED:
-        return ""
+    if judgement.outcome is not Outcome.NOT_DECIDED or judgement.statistics:
+        return statistics.undecided(judgement)
     attained = difference(judgement.requirement, unit, digits)
     if judgement.bound == float("-inf"):
         return f"the least margin found by search is {attained}; no bound on it could be proven"

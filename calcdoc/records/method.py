@@ -7,13 +7,21 @@ from calcdoc.records.wording import counted, typeset
 
 
 def method_statement(
-    lines: tuple[r.Quantity, ...], digits: int, *, looked_up: bool
+    lines: tuple[r.Quantity, ...],
+    criteria: tuple[r.Criterion, ...],
+    digits: int,
+    *,
+    looked_up: bool,
+    cases: bool,
 ) -> tuple[str, ...]:
     """What a reviewer must know of the computation, in the order it was done."""
-    return tuple(_paragraphs(lines, digits, looked_up))
+    said = frozenset(each.method for each in criteria)
+    return tuple(_paragraphs(lines, digits, looked_up, said, cases))
 
 
-def _paragraphs(lines: tuple[r.Quantity, ...], digits: int, looked_up: bool) -> Iterator[str]:
+def _paragraphs(
+    lines: tuple[r.Quantity, ...], digits: int, looked_up: bool, said: frozenset[str], cases: bool
+) -> Iterator[str]:
     yield (
         "Units and dimensions of every formula were checked before any number was computed; the"
         " computation runs in coherent SI units and nothing is rounded on the way."
@@ -34,8 +42,34 @@ def _paragraphs(lines: tuple[r.Quantity, ...], digits: int, looked_up: bool) -> 
     yield (
         "Extremes: every quantity is taken at its least and greatest value while all conditions,"
         " inputs and assumptions it depends on move through their whole bands at once; a quantity"
-        " used twice moves once. Bands are not combined statistically."
+        " used twice moves once."
+        + (
+            ""
+            if "root sum square" in said or "sampling" in said
+            else " Bands are not combined statistically."
+        )
     )
+    if "root sum square" in said:
+        yield (
+            "Root sum square: conditions stand where they govern the criterion at extremes, biases"
+            " at their worse end, like parts that are stated vary on their own. The effects of the"
+            " limits of all parts, to first order, are combined as the root of the sum of their"
+            " squares, as if the parts were independent; the result is never beyond the extremes."
+        )
+    if "sampling" in said:
+        yield (
+            "Sampling: conditions stand where they govern the criterion at extremes and are never"
+            " drawn, biases stand at their worse end, parts are drawn on their own. Every part has"
+            " a stream of its own, keyed by seed and symbol, and the same draws in every case. A"
+            " criterion passes when the one-sided bound of the share of draws that meet it, with"
+            f" {typeset('95 %')} confidence, is at least the share asked for."
+        )
+    if cases:
+        yield (
+            "Cases: every mode and fault is computed like the normal case, with the values it"
+            " changes. A criterion counts in the normal case and in every mode unless it says"
+            " otherwise; the worst case governs. What cannot be computed in a case is not decided."
+        )
     proofs = [each.proof for each in lines if each.varies and each.kind in _COMPUTED]
     if proofs:
         exact, bounded, searched = (proofs.count(p) for p in ("exact", "bounded", "searched"))

@@ -8,6 +8,7 @@ from calcdoc.records import record as r
 from calcdoc.records.carried import units_carried
 from calcdoc.records.cases import in_cases
 from calcdoc.records.looked import looked_up, unverified_in
+from calcdoc.records.makeup import parts_in_words
 from calcdoc.records.naming import Naming
 from calcdoc.records.numbers import Numbers
 from calcdoc.records.rounding import significant, stored
@@ -60,6 +61,7 @@ def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantit
         varies=shown.varies,
         from_relation=", ".join(_relations(numbers, variable)),
         unverified=unverified_in(numbers.evaluation, {variable.key}),
+        makeup=parts_in_words(numbers.model, variable),
         notes=(
             *shown.notes,
             *_runaway(numbers, variable),

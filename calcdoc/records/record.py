@@ -306,6 +306,8 @@ class Quantity(Plain, frozen=True):
     """Names of the relations it was solved from, as in ``charge``; else empty."""
     unverified: tuple[str, ...]
     """Tables of which this line itself uses a row that is not verified."""
+    makeup: tuple[str, ...]
+    """What a tolerance is made of, typeset: the random part, biases, like parts."""
     notes: tuple[str, ...]
     """Sentences for the reader: the extreme lies inside the band, the nominal is the middle, ..."""
 
@@ -359,7 +361,8 @@ class Criterion(Plain, frozen=True):
     text: str
     """The inequality as written, or the text of a test, without the clauses."""
     method: str
-    """``extremes``, ``nominal``, ``point`` (at a point), ``test``, ``inspection``, ``none``."""
+    """``extremes``, ``nominal``, ``point`` (extremes at an operating point), ``root sum square``,
+    ``sampling``, ``any of``, ``test``, ``inspection`` or ``none``."""
     value: float | None
     limit: float | None
     unit: str
@@ -376,8 +379,10 @@ class Criterion(Plain, frozen=True):
     route_of: str
     """The criterion of which this is one of several routes; then it counts through that one."""
     rows: tuple["CriterionRow", ...]
-    interval: tuple[float, float] | None
+    interval: tuple[float | None, float | None] | None
+    """By sampling: 95 % confidence interval of ``value``, which is then a quantile."""
     standard_error: float | None
+    """Of the same."""
     unverified: tuple[str, ...]
     description: str
     basis: str
@@ -395,7 +400,10 @@ class Criterion(Plain, frozen=True):
     """``8.2 %`` or, where there is no share, ``4.1 K``."""
     remark: str
     """As in ``short by 7.2 V (-180 % of the limit)``, ``equal to the limit``; may be empty."""
+    statistics: tuple[str, ...]
+    """By root sum square or sampling: how the parts were combined, typeset sentences."""
     proof: str
+    """Empty by root sum square and by sampling, which prove nothing."""
 
 
 class CriterionRow(Plain, frozen=True):
@@ -601,6 +609,17 @@ class Tally(Plain, frozen=True):
     """One sentence: ``5 pass, 1 fail, 1 by test``; never "all pass" while tests are open."""
 
 
+class Sampling(Plain, frozen=True):
+    """How parts were drawn."""
+
+    draws: int
+    """As many as were computed."""
+    seed: int
+    sequence: str
+    """``random`` or ``quasi-random``."""
+    generator: str
+
+
 class Record(Plain, frozen=True):
     """A calculation record."""
 
@@ -611,7 +630,7 @@ class Record(Plain, frozen=True):
     verdict: Tally
     source: Source
     tool: Tool
-    sampling: dict[str, int] | None
+    sampling: Sampling | None
     cases: tuple[Case, ...]
     quantities: tuple[Quantity, ...]
     relations: tuple[Relation, ...]

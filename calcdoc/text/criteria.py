@@ -122,6 +122,15 @@ def _clauses(scanner: Scanner) -> Clauses:
             )
         seen.add(word)
         clauses = _clause(scanner, clauses, word, found.start())
+    if clauses.at_nominal and clauses.by != "extremes":
+        raise Mistake(
+            error(
+                "criterion-form",
+                f"at nominal no part varies, so there is nothing to judge by {clauses.by}",
+                scanner.span(begin, len(scanner.passage.text)),
+                help="keep one of the two clauses",
+            )
+        )
     text = " ".join(scanner.passage.text[begin:].split())
     return replace(clauses, text=text)
 

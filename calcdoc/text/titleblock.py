@@ -4,7 +4,7 @@ import re
 import tomllib
 from collections.abc import Mapping
 from datetime import date
-from typing import Any, Final
+from typing import Final
 
 from calcdoc.frozen import Frozen, Working
 from calcdoc.problems import Finding, error
@@ -171,8 +171,9 @@ def _block(reader: _Reader, table: Table) -> TitleBlock:
     digits = reader.whole_number(table, "digits", _DIGITS.start)
     if digits is not None and digits not in _DIGITS:
         reader.wrong("digits", f"`digits` must be at most {_DIGITS.stop - 1}", "")
-    people, sampling = reader.table(table, "people"), _sampling(reader, table)
+    people = reader.table(table, "people")
     reader.known(people, _PEOPLE, "people.")
+    draws, seed, sequence = _sampling(reader, reader.table(table, "sampling"))
     return TitleBlock(
         **texts,
         **choices,
@@ -180,16 +181,15 @@ def _block(reader: _Reader, table: Table) -> TitleBlock:
         digits=digits or 4,
         **{role: reader.text(people, role, "people.") for role in _PEOPLE},
         history=_history(reader, table),
-        draws=sampling["draws"],
-        seed=sampling["seed"],
-        sequence=sampling["sequence"],
+        draws=draws,
+        seed=seed,
+        sequence=sequence,
         span=reader.passage.whole,
     )
 
 
-def _sampling(reader: _Reader, table: Table) -> dict[str, Any]:
+def _sampling(reader: _Reader, sampling: Table) -> tuple[int | None, int | None, str]:
     """How criteria are sampled."""
-    sampling = reader.table(table, "sampling")
     reader.known(sampling, ("draws", "seed", "sequence"), "sampling.")
     draws = reader.whole_number(sampling, "draws", 1, "sampling.")
     if draws is not None and draws > MOST_DRAWS:
@@ -200,7 +200,7 @@ def _sampling(reader: _Reader, table: Table) -> dict[str, Any]:
     sequence = reader.text(sampling, "sequence", "sampling.") or _SEQUENCES[0]
     if sequence not in _SEQUENCES:
         reader.wrong("sequence", f"`sampling.sequence` must be one of: {', '.join(_SEQUENCES)}", "")
-    return {"draws": draws, "seed": seed, "sequence": sequence}
+    return draws, seed, sequence
 
 
 def _history(reader: _Reader, table: Table) -> tuple[Revision, ...]:

@@ -76,6 +76,7 @@ def quantity(**values: object) -> r.Quantity:
         "description": "",
         "basis": "",
         "by_case": {},
+        "makeup": (),
         "id": "",
         "state": "",
         "units_carried": "",
@@ -108,6 +109,8 @@ def criterion(**values: object) -> r.Criterion:
         "case": "normal",
         "governing": {},
         "by_case": {},
+        "route_of": "",
+        "statistics": (),
         "rows": (),
         "interval": None,
         "standard_error": None,
@@ -209,7 +212,15 @@ WORKED = (
         basis="[CAP, p. 2]",
         steps=("from charge: divide both sides by C_res",),
         residual="put back: left − right = 0",
-        by_case={"one LED shorted": r.CaseValues(nominal=24.93, least=19.61, greatest=33.02)},
+        by_case={
+            "one LED shorted": r.CaseValues(
+                nominal=24.93,
+                least=19.61,
+                greatest=33.02,
+                text="24.93 V, 19.61 V to 33.02 V",
+                reason="",
+            )
+        },
     ),
     worked(
         (257.9, 298.5, 336.4),
@@ -423,4 +434,25 @@ REFERENCES = (
     ("REG", "Linear regulator, data sheet", "rev. 1.4", ("2.3", "R2", "R4")),
     ("CAP", "Capacitor, data sheet", "2024-05", ("2.1", "3.3")),
     ("SPEC", "Specification of the stair light", "draft 4", ("1.1", "1.2", "1.3")),
+)
+
+
+def _fault(name: str, line: str, symbol: str, result: str) -> r.Case:
+    change = r.CaseChange(
+        symbol=symbol,
+        text=f"{symbol} = {result}",
+        formula="",
+        normal="12",
+        result=result,
+        band="",
+    )
+    return r.Case(
+        name=name, kind="fault", line=line, changes=(change,), description="single fault", basis=""
+    )
+
+
+CASES = (
+    r.Case(name="normal", kind="normal", line="", changes=(), description="", basis=""),
+    _fault("one LED shorted", "2.1", "n_LED", "11"),
+    _fault("one LED open", "2.2", "n_LED", "0"),
 )

@@ -3,7 +3,7 @@
 from typing import Any
 
 from calcdoc.records import record as r
-from tests.helpers.sample_parts import CRITERIA, GIVEN, NB, REFERENCES, WORKED, given
+from tests.helpers.sample_parts import CASES, CRITERIA, GIVEN, NB, REFERENCES, WORKED, given
 
 DATA = b'{"schema":"calcdoc-record/1","note":"</script><b>&"}'
 TEXT = b"# Quay stair light\n"
@@ -117,7 +117,7 @@ def sample(**changes: object) -> r.Record:
         source=r.Source(name="designs/stair.md", sha256="4f1c92ab" * 8, files=()),
         tool=r.Tool(version="0.1", libraries={"numpy": "2.4.6", "pint": "0.25.3"}),
         sampling=None,
-        cases=("normal", "one LED shorted", "one LED open"),
+        cases=CASES,
         quantities=(*map(given, GIVEN), *WORKED),
         relations=(),
         restated=(),

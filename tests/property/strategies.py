@@ -178,6 +178,9 @@ PIECES: Final = (
     "·", "±", "+/-", "..", ".", ",", "%", "°C", "µF", "V", "m", "s", "min", "max(", "if(", "V_a",
     "η", "e\u0301", "1", "0.5", "1e9", "230 V", "1/", "by", "at", "nominal", "with margin", "in",
     "open:", "closed:", "supply", "stored", "through", "by test:", "{V_a:least}", "[A, 2]",
+    "cases", "mode dim: ", "fault ", "crosschecks", "K: measured ", "against", "any of ",
+    "accept R ", "until 2027-06-30", "in every fault", "when ", "dim", "as normal k=3", "bias ",
+    "each of ", "shared ", "R: V_a <= 5 V ", "R: ", "normal", "not below",
     "\u2028", "\u00a0", "\x00", "\x1b", "\u202e", "\U0001f600", 'number = "1"', "[[history]]",
 )  # fmt: skip
 """What texts are made of, in and out of place."""
@@ -188,7 +191,19 @@ def texts() -> SearchStrategy[str]:
     soup = st.lists(st.sampled_from(PIECES), max_size=60).map("".join)
     block = st.builds(
         lambda word, inner: f"```{word}\n{inner}\n```\n",
-        st.sampled_from(("inputs", "derive", "criteria", "assumptions", "hazards", "references")),
+        st.sampled_from(
+            (
+                "inputs",
+                "derive",
+                "criteria",
+                "assumptions",
+                "hazards",
+                "references",
+                "cases",
+                "crosschecks",
+                "conditions",
+            )
+        ),
         soup,
     )
     return st.one_of(soup, st.lists(block, max_size=3).map("".join), st.text(max_size=80))

@@ -44,6 +44,16 @@ def inputs(value: str) -> str:
     return f"{TITLE}```inputs\nV = {value}\n```\n"
 
 
+def cases(changes: str) -> str:
+    """A text with one case."""
+    return f"{TITLE}```inputs\nx = 1\n```\n```cases\nmode dim: {changes}\n```\n"
+
+
+def criteria(clauses: str) -> str:
+    """A text with one criterion."""
+    return f"{TITLE}```criteria\nR: 1 <= 2 {clauses}\n```\n"
+
+
 HOSTILE = {
     "ten thousand parentheses": (derive("(" * 10_000), ("formula-size",)),
     "ten thousand signs": (derive("-" * 10_000 + "1"), ("formula-size",)),
@@ -60,6 +70,22 @@ HOSTILE = {
     "twenty thousand columns": (inputs("5 V" + "|" * 20_000), ("columns",)),
     "brackets in a basis": (inputs("5 V | a | " + "[" * 19_000), ()),
     "blanks in a formula": (derive("1" + " " * 19_000 + "x"), ("number-form",)),
+    "a case of ten thousand changes": (cases("x = 1, " * 10_000), ("formula-size",)),
+    "a case of nested parentheses": (cases("x = " + "(" * 10_000), ("formula-size",)),
+    "a name of nine thousand words": (criteria("in " + "a " * 9000), ("unknown-case",)),
+    "a list of six thousand cases": (criteria("in " + "a, " * 6000 + "a"), ("unknown-case",)),
+    "a condition of ten thousand signs": (criteria("when " + "-" * 10_000), ("formula-size",)),
+    "a thousand biases": (inputs("1 V" + " bias 0 .. 1 V" * 1000), ("tolerance",)),
+    "two thousand cases": (
+        f"{TITLE}```inputs\nx = 1\n```\n```cases\n"
+        + "".join(f"mode m{k}: x = {k}\n" for k in range(2000))
+        + "```\n",
+        ("case-form",) * 1000,
+    ),
+    "ten thousand acceptances": (
+        f"{TITLE}```criteria\nR: 1 <= 2\n" + "accept R | r | until 2027-06-30\n" * 10_000 + "```\n",
+        ("acceptance",) * 9999,
+    ),
     "nested quotations": (TITLE + ">" * 100_000, ()),
     "nested lists": (TITLE + "- " * 100_000, ()),
     "open brackets in prose": (TITLE + "[" * 50_000, ()),

@@ -1,0 +1,253 @@
+"""Criteria over all their cases: asked, judged by their method, and concluded."""
+
+from collections.abc import Mapping, Sequence
+
+import numpy as np
+
+from calcdoc.analysis import judging
+from calcdoc.analysis.asking import Asker, judged_of, question
+from calcdoc.analysis.box import Box
+from calcdoc.analysis.compile import Limits
+from calcdoc.analysis.evaluation import (
+    Combination,
+    Conclusion,
+    Judgement,
+    Outcome,
+    PutBack,
+    Unjudged,
+)
+from calcdoc.analysis.extremes import extremes
+from calcdoc.analysis.judging import Found, Hearing
+from calcdoc.analysis.program import plain
+from calcdoc.analysis.putting_back import running_away
+from calcdoc.analysis.sampling import Progress
+from calcdoc.analysis.sides import Side
+from calcdoc.analysis.statistical import Ready, Weighed, combine, parts_of, sample, setting_of
+from calcdoc.analysis.trouble import out_of_reach, said
+from calcdoc.frozen import Frozen, replace
+from calcdoc.model.model import Judged, Model
+from calcdoc.problems import Finding
+from calcdoc.text.cases import NORMAL
+
+
+class Roots(Frozen, frozen=True):
+    """What is known of solved and settled quantities, by case."""
+
+    back: Mapping[str, Mapping[str, PutBack]]
+    bad: Mapping[str, Mapping[str, str]]
+    """Quantities whose solution does not satisfy its relation, with the reason."""
+
+
+class Criteria:
+    """Asks for every criterion in each of its cases, and judges when all is answered."""
+
+    def __init__(self, asker: Asker, model: Model) -> None:
+        self.asker, self.model, self.compiled = asker, model, asker.compiled
+        self._set_ceilings()
+        self.heard = [
+            {name: self._hearing(number, judged, name, limits)
+             for name, limits in self.compiled.limits[number].items()}
+            for number, judged in enumerate(judged_of(model))
+        ]  # fmt: skip
+
+    # --- asking --------------------------------------------------------------------------------
+
+    def _set_ceilings(self) -> None:
+        """Give every criterion with a condition a value that none of its requirements reaches."""
+        sides = [
+            (number, side)
+            for number, in_case in enumerate(self.compiled.limits)
+            for each in in_case.values()
+            if isinstance(each, Limits)
+            for side in each.sides
+            if side.ceiling is not None
+        ]
+        if not sides:
+            return
+        questions = [question(side.requirement, True, self._box(number)) for number, side in sides]
+        for (_, side), most in zip(sides, extremes(self.compiled.tape, questions), strict=True):
+            size = most.bound if np.isfinite(most.bound) else np.finfo(float).max / 4
+            assert side.ceiling is not None
+            for room in self.asker.rooms.values():
+                for ends in (room.box.low, room.box.nominal, room.box.high):
+                    ends[side.ceiling] = size + abs(size) + np.finfo(float).tiny
+
+    def _hearing(
+        self, number: int, judged: Judged, case: str, limits: Limits | Finding
+    ) -> Hearing | Unjudged:
+        if isinstance(limits, Finding):
+            return Unjudged(judged, case, Outcome.NOT_DECIDED, said(limits))
+        box = self._box(number)
+        if case != NORMAL:
+            own = self.asker.rooms.get(("criterion", number))
+            targets = [side.target for side in limits.sides]
+            reasons = out_of_reach(
+                self.compiled, self.model, box, targets, own.setter if own else None
+            )
+            for reason in reasons.values():
+                return Unjudged(judged, case, Outcome.NOT_DECIDED, said(reason))
+        asked = tuple(self.asker.ask(side.target, False, box) for side in limits.sides)
+        return Hearing(judged, case, limits.case, limits.sides, box, asked)
+
+    def _box(self, criterion: int) -> Box:
+        """The box a criterion is judged over."""
+        own = self.asker.rooms.get(("criterion", criterion))
+        box = own.box if own else self.asker.declared
+        nominal = judged_of(self.model)[criterion].statement.clauses.at_nominal
+        return box.at_nominal if nominal else box
+
+    # --- judging -------------------------------------------------------------------------------
+
+    def concluded(self, roots: Roots, progress: Progress | None) -> tuple[Conclusion, ...]:
+        """Every criterion, when all questions are answered."""
+        away = {name: running_away(self.model, back) for name, back in roots.back.items()}
+        tried = [
+            {name: self._tried(each, roots) for name, each in in_case.items()}
+            for in_case in self.heard
+        ]
+        weighed = self._weighed(tried, progress)
+        return tuple(
+            judging.concluded(
+                judged,
+                {
+                    name: self._judge(each, weighed.get((number, name)), roots, away)
+                    if isinstance(each, Ready)
+                    else each
+                    for name, each in tried[number].items()
+                },
+            )
+            for number, judged in enumerate(judged_of(self.model))
+        )
+
+    def _tried(self, hearing: Hearing | Unjudged, roots: Roots) -> Ready | Unjudged:
+        """A criterion in a case with its extremes, or why there is nothing to judge."""
+        if isinstance(hearing, Unjudged):
+            return hearing
+        judged, case = hearing.judged, hearing.case
+        reached = self._reached(judged.depends_on) if roots.bad[case] else set[str]()
+        for key, reason in roots.bad[case].items():
+            if key in reached:
+                return Unjudged(judged, case, Outcome.NOT_DECIDED, reason)
+        found = tuple(self._found(hearing))
+        if nothing := judging.no_ground(judged, case, found):
+            return nothing
+        by = judged.statement.clauses.by
+        parts = () if by == "extremes" else parts_of(self.compiled, self.model, hearing)
+        return Ready(hearing, found, parts)
+
+    def _weighed(
+        self, tried: Sequence[Mapping[str, Ready | Unjudged]], progress: Progress | None
+    ) -> dict[tuple[int, str], Weighed | str]:
+        """What root sum square and sampling say, by the criterion's number and case."""
+        ready = {
+            (number, name): each
+            for number, in_case in enumerate(tried)
+            for name, each in in_case.items()
+            if isinstance(each, Ready)
+        }
+        found: dict[tuple[int, str], Weighed | str] = {
+            key: combine(self.compiled, each)
+            for key, each in ready.items()
+            if _by(each) == "root sum square"
+        }
+        drawn = {key: each for key, each in ready.items() if _by(each) == "sampling"}
+        if drawn:
+            setting = setting_of(self.model.document.title)
+            results = sample(self.compiled, list(drawn.values()), setting, progress)
+            found |= zip(drawn, results, strict=True)
+        return found
+
+    def _judge(
+        self,
+        ready: Ready,
+        weighed: Weighed | str | None,
+        roots: Roots,
+        away: Mapping[str, Mapping[str, frozenset[str]]],
+    ) -> Judgement | Unjudged:
+        hearing, judged, case = ready.hearing, ready.hearing.judged, ready.hearing.case
+        if isinstance(weighed, str):
+            return Unjudged(judged, case, Outcome.NOT_DECIDED, weighed)
+        if weighed is None:
+            rows = tuple(judging.row_of(each) for each in ready.found)
+            weighed = Weighed(rows, tuple(each.extreme.value for each in ready.found), None, ())
+        which = judging.governing_row(judged, weighed.rows, weighed.requirements)
+        running = tuple(sorted({k for each in judged.depends_on for k in away[case][each]}))
+        made = judging.judgement(
+            hearing,
+            ready.found,
+            weighed.rows,
+            weighed.requirements,
+            self._governing(ready, which),
+            which,
+            _named(hearing, ready.found[which]),
+            running,
+            weighed.statistics[which] if weighed.statistics else None,
+        )
+        outcome = weighed.outcome or made.outcome
+        return replace(made, outcome=_with_loops(outcome, running, roots.back[case]))
+
+    def _governing(self, ready: Ready, which: int) -> Combination:
+        """Where the inputs stand; parts that vary on their own stand nowhere in particular."""
+        extreme, columns = ready.found[which].extreme, self.compiled.columns
+        random = {part.column for part in ready.parts}
+        matters = [int(at) for at in np.flatnonzero(extreme.matters) if at not in random]
+        stated = [point.symbol.key for point in ready.hearing.judged.statement.clauses.at]
+        own = [columns[key] for key in stated if columns[key] not in random]
+        return self.asker.stands(extreme, [*matters, *own])
+
+    def _found(self, hearing: Hearing) -> list[Found]:
+        """The extremes of all sides, with the values there."""
+        wanted = {at for side in hearing.sides for at in _instructions(side)}
+        known, answers = hearing.known, self.asker.answers
+        for key in hearing.judged.depends_on:
+            if key in known.variables:
+                wanted.add(known.variables[key])
+            else:
+                wanted.update(known.series[key].values())
+        part = plain(self.compiled.tape, wanted)
+        points = np.stack([answers[at].point for at in hearing.asked], axis=1)
+        computed = part.evaluate(points)
+        return [
+            Found(side, answers[at], judging.values_at(part.row, computed[:, number]))
+            for number, (side, at) in enumerate(zip(hearing.sides, hearing.asked, strict=True))
+        ]
+
+    def _reached(self, keys: tuple[str, ...]) -> set[str]:
+        """Everything that some quantities rest on, themselves included."""
+        reached: set[str] = set()
+        waiting = list(keys)
+        while waiting:
+            key = waiting.pop()
+            if key not in reached:
+                reached.add(key)
+                waiting.extend(self.model.variables[key].depends_on)
+        return reached
+
+
+def _by(ready: Ready) -> str:
+    return ready.hearing.judged.statement.clauses.by
+
+
+def _instructions(side: Side) -> tuple[int, ...]:
+    known = (side.value, side.limit, side.requirement)
+    return known if side.when is None else (*known, side.when)
+
+
+def _named(hearing: Hearing, found: Found) -> dict[str, float]:
+    """Every quantity a criterion names, at its governing point; of a series its element."""
+    values = {}
+    for key in hearing.judged.depends_on:
+        at = hearing.known.variables.get(key)
+        if at is None and found.side.element is not None:
+            at = hearing.known.series[key].get(found.side.element)
+        if at is not None:
+            values[key] = found.computed[at]
+    return values
+
+
+def _with_loops(outcome: Outcome, running: tuple[str, ...], back: Mapping[str, PutBack]) -> Outcome:
+    """A criterion that rests on a loop fails when the loop runs away."""
+    gains = [back[key].gain for key in running]
+    if any(gain and gain.runs_away for gain in gains):
+        return Outcome.FAIL
+    return Outcome.NOT_DECIDED if running and outcome is Outcome.PASS else outcome

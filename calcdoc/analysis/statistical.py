@@ -1,0 +1,192 @@
+"""Criteria by root sum square and by sampling: parts vary on their own, all else at its worst."""
+
+from collections.abc import Mapping, Sequence
+from typing import Final
+
+from calcdoc.analysis.compile import Compiled
+from calcdoc.analysis.evaluation import Drawn, Outcome, Row
+from calcdoc.analysis.judging import EQUAL, Found, Hearing, holds
+from calcdoc.analysis.parts import Part, counted, part_of, random_parts
+from calcdoc.analysis.points import FloatArray
+from calcdoc.analysis.program import plain
+from calcdoc.analysis.root_sum_square import Combined, root_sum_square
+from calcdoc.analysis.sampling import Asked, Job, Progress, Sampled, Setting, sampled
+from calcdoc.analysis.sides import Side
+from calcdoc.frozen import Frozen
+from calcdoc.model.model import Model
+from calcdoc.text.given import Given
+from calcdoc.text.names import fold
+from calcdoc.text.nodes import Name
+from calcdoc.text.titleblock import TitleBlock
+
+DRAWS: Final = 100_000
+SEED: Final = 1
+"""Both where the title block does not say."""
+
+
+class Weighed(Frozen, frozen=True):
+    """What the statistics say about the limits of a criterion in one case."""
+
+    rows: tuple[Row, ...]
+    requirements: tuple[float, ...]
+    outcome: Outcome | None
+    """Over all limits, for sampling; None where each limit is judged on its own."""
+    statistics: tuple[Combined | Drawn, ...]
+    """For each limit."""
+
+
+class Ready(Frozen, frozen=True):
+    """A criterion in one case with what was found at the extremes and the parts that vary."""
+
+    hearing: Hearing
+    found: tuple[Found, ...]
+    parts: tuple[Part, ...]
+
+
+def setting_of(title: TitleBlock) -> Setting:
+    """How many draws, from which seed, as the title block says."""
+    return Setting(
+        DRAWS if title.draws is None else title.draws,
+        SEED if title.seed is None else title.seed,
+        quasi_random=title.sequence == "quasi-random",
+    )
+
+
+def parts_of(compiled: Compiled, model: Model, hearing: Hearing) -> tuple[Part, ...]:
+    """The columns that vary at random for a criterion in its case.
+
+    Values that the criterion's operating point sets are as it says, those that the case changes
+    as the case says.
+    """
+    counts = _counts(compiled, model, hearing)
+    stated = {each.symbol.key: each.given for each in hearing.judged.statement.clauses.at}
+    changed = {key: each for key, each in hearing.known.changes.items() if isinstance(each, Given)}
+    parts = [
+        each
+        for each in random_parts(compiled.columns, model, counts)
+        if each.key not in stated and each.key not in hearing.known.changes
+    ]
+    for key, given in stated.items():
+        parts += _set(compiled, model, key, key, given, counts)
+    for key, given in changed.items():
+        parts += _set(compiled, model, key, f"{key}@{hearing.known.name}", given, counts)
+    # A formula of a case reads the normal value of what it changes.
+    read = [each for each in random_parts(compiled.columns, model, counts)
+            if each.key in hearing.known.changes and each.key not in changed
+            and each.key not in stated]  # fmt: skip
+    return (*parts, *read)
+
+
+def _set(  # noqa: PLR0913  (a part and where it stands)
+    compiled: Compiled, model: Model, name: str, key: str, given: Given, counts: Mapping[str, int]
+) -> list[Part]:
+    """A part whose value is set for a criterion or by a case; none for a condition."""
+    if model.variables[name].kind == "condition" or not given.varies:
+        return []
+    return [part_of(key, compiled.columns[key], given, counted(given, model, counts))]
+
+
+def _counts(compiled: Compiled, model: Model, hearing: Hearing) -> dict[str, int]:
+    """Numbers of like parts that the case changes."""
+    names = {
+        fold(like.count.name)
+        for variable in model.variables.values()
+        if variable.given and (like := variable.given.parts.like) and isinstance(like.count, Name)
+    }
+    moved = sorted(names & hearing.known.changes.keys() & hearing.known.variables.keys())
+    if not moved:
+        return {}
+    rows = [hearing.known.variables[key] for key in moved]
+    part = plain(compiled.tape, rows)
+    values = part.evaluate(hearing.box.nominal[:, None])[:, 0]
+    return {
+        key: max(1, round(float(values[part.row[at]]))) for key, at in zip(moved, rows, strict=True)
+    }
+
+
+def combine(compiled: Compiled, ready: Ready) -> Weighed:
+    """Judge by root sum square: every limit on its own."""
+    combined = [
+        root_sum_square(
+            compiled.tape, (each.side.requirement,), ready.parts, each.extreme.point,
+            each.extreme.value,
+        )
+        for each in ready.found
+    ]  # fmt: skip
+    rows, requirements = [], []
+    for found, each in zip(ready.found, combined, strict=True):
+        base = _At(compiled, found.side, each.point)
+        rows.append(base.row(each.requirement, None))
+        requirements.append(each.requirement)
+    return Weighed(tuple(rows), tuple(requirements), None, tuple(combined))
+
+
+def sample(
+    compiled: Compiled, ready: Sequence[Ready], setting: Setting, progress: Progress | None
+) -> list[Weighed | str]:
+    """Judge by sampling, all criteria with the same draws; a text says why one cannot be."""
+    results = sampled(compiled.tape, [_job(each) for each in ready], setting, progress)
+    return [_weighed(compiled, one, result) for one, result in zip(ready, results, strict=True)]
+
+
+def _job(ready: Ready) -> Job:
+    share = ready.hearing.judged.statement.clauses.share
+    assert share is not None
+    asked = tuple(
+        Asked(each.side.requirement, "=" not in each.side.relation, _tolerance(each),
+              each.extreme.point)
+        for each in ready.found
+    )  # fmt: skip
+    return Job(asked, ready.parts, share, ready.hearing.sides[0].when)
+
+
+def _tolerance(found: Found) -> float:
+    side = found.side
+    return EQUAL * max(abs(found.computed[side.value]), abs(found.computed[side.limit]))
+
+
+def _weighed(compiled: Compiled, ready: Ready, result: Sampled) -> Weighed | str:
+    share = float(ready.hearing.judged.statement.clauses.share or 0)
+    outcome = Outcome.NOT_DECIDED
+    if result.lower >= share:
+        outcome = Outcome.PASS
+    elif result.upper < share:
+        outcome = Outcome.FAIL
+    rows, requirements = [], []
+    for found, spread in zip(ready.found, result.spreads, strict=True):
+        if spread.quantile is None:
+            return f"{result.lost} of {result.draws} draws could not be computed"
+        base = _At(compiled, found.side, spread.base)
+        rows.append(base.row(spread.quantile, outcome if len(ready.found) == 1 else None))
+        requirements.append(spread.quantile)
+    drawn = tuple(Drawn(share, result, each) for each in result.spreads)
+    return Weighed(tuple(rows), tuple(requirements), outcome, drawn)
+
+
+class _At:
+    """A limit with value and limit where the parts vary around."""
+
+    def __init__(self, compiled: Compiled, side: Side, point: FloatArray) -> None:
+        self.side = side
+        wanted = (side.value, side.limit, side.requirement)
+        part = plain(compiled.tape, wanted)
+        values = part.evaluate(point[:, None])[:, 0]
+        value, self.limit, requirement = (float(values[part.row[at]]) for at in wanted)
+        self.sign = -1.0 if side.relation[0] == "<" else 1.0
+        self.margin = self.sign * (value - self.limit) - requirement
+        """What is asked for beyond the limit."""
+
+    def value(self, requirement: float) -> float:
+        """The value at which the requirement has this size."""
+        return self.limit + self.sign * (requirement + self.margin)
+
+    def row(self, requirement: float, outcome: Outcome | None) -> Row:
+        """The limit with its value; without an outcome it is judged by the requirement."""
+        value = self.value(requirement)
+        tolerance = EQUAL * max(abs(value), abs(self.limit))
+        if outcome is None:
+            met = holds(self.side, requirement, tolerance)
+            outcome = Outcome.PASS if met else Outcome.FAIL
+        slack = requirement + self.margin
+        slack = 0.0 if abs(slack) <= tolerance else slack
+        return Row(self.side.element or 0, value, self.limit, slack, outcome)
