@@ -11,11 +11,13 @@ import numpy as np
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.looking_up import LookedUp
 from calcdoc.analysis.sides import (
+    Against,
     Check,
     Side,
     criterion_sides,
     crosscheck_sides,
     discharge_time,
+    figure_limit,
     measured_against,
 )
 from calcdoc.analysis.tape import Tape
@@ -59,6 +61,8 @@ class Compiled(Frozen, frozen=True):
     """Instruction to the piece of formula it came from first."""
     inside: Mapping[int, Mapping[int, Node]]
     """The same for the residual of every root, by the instruction of the root."""
+    figures: tuple[Against | None, ...] = ()
+    """For every figure its limit; None where it has none."""
 
     @property
     def normal(self) -> InCase:
@@ -99,6 +103,7 @@ def compile_model(model: Model) -> Compiled:
     working.enter(normal)
     checks = tuple(crosscheck_sides(working, each) for each in model.crosschecks)
     measured = tuple(measured_against(working, each) for each in model.measurements)
+    figures = tuple(figure_limit(working, each) for each in model.figures)
     discharges = {name: _discharges(working, case) for name, case in cases.items()}
     return Compiled(
         tape=working.builder.tape(),
@@ -112,6 +117,7 @@ def compile_model(model: Model) -> Compiled:
         looked=tuple(working.looked),
         origins=working.origins,
         inside=working.inside,
+        figures=figures,
     )
 
 
@@ -120,6 +126,9 @@ def _columns(model: Model) -> dict[str, int]:
     points = [each.statement.clauses.at for each in model.criteria if isinstance(each, Judged)]
     points += [each.statement.at for each in model.measurements]
     set_by_points = {point.symbol.key for each in points for point in each}
+    set_by_points |= {
+        each.statement.against.key for each in model.figures if each.statement.against
+    }
     keys = [
         key
         for key, variable in model.variables.items()

@@ -45,9 +45,18 @@ def evaluate_model(
     if found:
         return None, found
     try:
-        return _evaluated(compiled, model, found_rooms, progress), ()
+        return _drawn(compiled, _evaluated(compiled, model, found_rooms, progress)), ()
     except Mistake as mistake:
         return None, (mistake.finding,)
+
+
+def _drawn(compiled: Compiled, evaluation: Evaluation) -> Evaluation:
+    """The evaluation with its figures."""
+    if not evaluation.model.figures:
+        return evaluation
+    from calcdoc.analysis.picturing import with_figures  # noqa: PLC0415  (many designs have none)
+
+    return with_figures(compiled, evaluation)
 
 
 def _targets(compiled: Compiled, key: Key) -> list[int]:

@@ -7,6 +7,7 @@ from calcdoc.analysis.counting import Sampled, Spread
 from calcdoc.analysis.draws import Setting
 from calcdoc.analysis.extremes import Proof
 from calcdoc.analysis.looking_up import LookedUp
+from calcdoc.analysis.pictured import Picture
 from calcdoc.analysis.root_sum_square import Combined
 from calcdoc.analysis.sides import Side
 from calcdoc.frozen import Frozen
@@ -281,3 +282,5 @@ class Evaluation(Frozen, frozen=True):
     sensitive: tuple[Sensitive, ...]
     setting: Setting | None
     """How parts were drawn; None when no criterion is judged by sampling."""
+    figures: tuple[Picture, ...] = ()
+    """In the author's order."""

@@ -22,7 +22,7 @@ from calcdoc.analysis.streaming import stream
 from calcdoc.analysis.tape import Tape
 from calcdoc.frozen import Frozen
 
-__all__ = ["Asked", "Job", "Progress", "Sampled", "Setting", "Spread", "sampled"]
+__all__ = ["Asked", "Job", "Progress", "Sampled", "Setting", "Spread", "drawn", "sampled"]
 
 Progress = Callable[[int, int], object]
 """Called with the draws that are done and their total."""
@@ -89,6 +89,32 @@ def sampled(
             if progress is not None:
                 progress(done, setting.total)
         return tuple(each.result() for each in counts)
+
+
+def drawn(
+    tape: Tape, target: int, parts: Sequence[Part], base: FloatArray, setting: Setting
+) -> FloatArray:
+    """One quantity at every draw, shape (setting.total,); what cannot be computed is not finite.
+
+    Args:
+        tape: The formulas, in coherent SI.
+        target: Instruction of the quantity.
+        parts: The columns that vary.
+        base: Shape (n_columns,): where they vary around, and where all else stands.
+        setting: How many draws, from which seed.
+    """
+    values = {part.variate: np.zeros(setting.size) for part in parts if part.is_random}
+    pool = Pool(setting.size)
+    bound = stream(tape, (target,), base, _sources(parts, base, values), pool)
+    used = _used(values, {(base.tobytes(), tuple(parts)): bound})
+    found, done = np.empty(setting.total), 0
+    with np.errstate(all="ignore"):
+        for count in Draws(used, setting).chunks():
+            bound.run()
+            here = bound.values[target]
+            found[done : done + count] = here if isinstance(here, float) else here[:count]
+            done += count
+    return found
 
 
 def _base(tape: Tape, job: Job, asked: Asked) -> FloatArray:

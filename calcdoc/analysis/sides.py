@@ -8,7 +8,7 @@ from calcdoc.analysis.formulas import is_constant
 from calcdoc.analysis.tape import Op
 from calcdoc.analysis.working import Working
 from calcdoc.frozen import Frozen
-from calcdoc.model.model import Compared, Discharge, Judged, Measured
+from calcdoc.model.model import Compared, Discharge, Judged, Measured, Pictured
 from calcdoc.text.nodes import Binary, Name, Node
 
 SAFE_VOLTAGE: Final = Fraction(60)
@@ -45,6 +45,14 @@ class Check(Frozen, frozen=True):
     """First less second; as a share of the second where a share is allowed."""
     share: Binary | None
     """That share as a formula: the origin of its instruction; the author does not write it."""
+
+
+class Against(Frozen, frozen=True):
+    """The limit of a figure as instructions."""
+
+    limit: int
+    difference: int
+    """What is drawn less the limit."""
 
 
 def criterion_sides(working: Working, judged: Judged) -> tuple[Side, ...]:
@@ -144,6 +152,18 @@ def measured_against(working: Working, measured: Measured) -> int:
     """What a measured value is compared with."""
     working.owner = measured.statement.id.key
     return working.node(measured.statement.second)
+
+
+def figure_limit(working: Working, pictured: Pictured) -> Against | None:
+    """The limit that a figure draws; None where it has none."""
+    symbol, limit = pictured.statement.symbol, pictured.statement.limit
+    if symbol is None or limit is None:
+        return None
+    working.owner = symbol.key
+    at = working.node(limit)
+    difference = working.builder.add(Op.SUB, working.variables[symbol.key], at)
+    working.origins.setdefault(difference, limit)
+    return Against(at, difference)
 
 
 def discharge_time(working: Working, discharge: Discharge, resistance: str) -> int:

@@ -1,12 +1,12 @@
 """Criteria by root sum square and by sampling: parts vary on their own, all else at its worst."""
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Sequence
 from typing import Final
 
 from calcdoc.analysis.compile import Compiled
 from calcdoc.analysis.evaluation import Drawn, Outcome, Row
 from calcdoc.analysis.judging import EQUAL, Found, Hearing, holds
-from calcdoc.analysis.parts import Part, counted, part_of, random_parts
+from calcdoc.analysis.parts import Part, part_of, random_parts
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import plain
 from calcdoc.analysis.root_sum_square import Combined, root_sum_square
@@ -14,7 +14,6 @@ from calcdoc.analysis.sampling import Asked, Job, Progress, Sampled, Setting, sa
 from calcdoc.analysis.sides import Side
 from calcdoc.frozen import Frozen
 from calcdoc.model.model import Model
-from calcdoc.text.given import Given
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Name
 from calcdoc.text.titleblock import TitleBlock
@@ -60,30 +59,15 @@ def parts_of(compiled: Compiled, model: Model, hearing: Hearing) -> tuple[Part, 
     """
     counts = _counts(compiled, model, hearing)
     stated = {each.symbol.key: each.given for each in hearing.judged.statement.clauses.at}
-    changed = {key: each for key, each in hearing.known.changes.items() if isinstance(each, Given)}
     parts = [
-        each
-        for each in random_parts(compiled.columns, model, counts)
-        if each.key not in stated and each.key not in hearing.known.changes
+        each for each in random_parts(compiled.columns, model, counts) if each.stream not in stated
     ]
-    for key, given in stated.items():
-        parts += _set(compiled, model, key, key, given, counts)
-    for key, given in changed.items():
-        parts += _set(compiled, model, key, f"{key}@{hearing.known.name}", given, counts)
-    # A formula of a case reads the normal value of what it changes.
-    read = [each for each in random_parts(compiled.columns, model, counts)
-            if each.key in hearing.known.changes and each.key not in changed
-            and each.key not in stated]  # fmt: skip
-    return (*parts, *read)
-
-
-def _set(  # noqa: PLR0913  (a part and where it stands)
-    compiled: Compiled, model: Model, name: str, key: str, given: Given, counts: Mapping[str, int]
-) -> list[Part]:
-    """A part whose value is set for a criterion or by a case; none for a condition."""
-    if model.variables[name].kind == "condition" or not given.varies:
-        return []
-    return [part_of(key, compiled.columns[key], given, counted(given, model, counts))]
+    parts += [
+        part_of(key, compiled.columns[key], given)
+        for key, given in stated.items()
+        if given.varies and model.variables[key].kind != "condition"
+    ]
+    return tuple(parts)
 
 
 def _counts(compiled: Compiled, model: Model, hearing: Hearing) -> dict[str, int]:
@@ -134,10 +118,10 @@ def _job(ready: Ready) -> Job:
     assert share is not None
     asked = tuple(
         Asked(each.side.requirement, "=" not in each.side.relation, _tolerance(each),
-              each.extreme.point)
+              each.extreme.point, each.side.when)
         for each in ready.found
     )  # fmt: skip
-    return Job(asked, ready.parts, share, ready.hearing.sides[0].when)
+    return Job(asked, ready.parts, share)
 
 
 def _tolerance(found: Found) -> float:

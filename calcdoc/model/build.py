@@ -3,7 +3,7 @@
 from collections.abc import Iterator, Mapping
 from contextlib import contextmanager
 
-from calcdoc.frozen import Working
+from calcdoc.frozen import Working, replace
 from calcdoc.model import namespace
 from calcdoc.model.accepting import Accepting, check_once, criteria_of, key_of
 from calcdoc.model.cases import Stated, build_cases, stated
@@ -19,6 +19,7 @@ from calcdoc.model.model import (
     Relation,
 )
 from calcdoc.model.namespace import Namespace, direct_uses
+from calcdoc.model.picturing import pictured
 from calcdoc.model.quantities import Quantities
 from calcdoc.model.typing import Unknown
 from calcdoc.model.uses import Rests, find_uses
@@ -71,6 +72,8 @@ def build(
     quantities.check_counts(cases)
     judged = _judge(document, space, quantities, known)
     findings += [*found, *quantities.findings, *twice, *wrong, *judged.findings]
+    figures, unfit = pictured(document, quantities.checker, quantities.variables)
+    findings += unfit
     for each in CHECKS:
         findings += each(document, space)
     # A table that could not be read leaves lines untyped; whoever read it reports that.
@@ -81,7 +84,7 @@ def build(
         for key, each in relations.items()
     }
     made = _model(document, tables, quantities, rests, relations_of, cases, judged)
-    return made, tuple(findings)
+    return replace(made, figures=figures), tuple(findings)
 
 
 class _Judgements(Working):

@@ -14,6 +14,7 @@ from calcdoc.text.statements import (
     Basis,
     CaseStatement,
     CrosscheckStatement,
+    FigureStatement,
     GivenStatement,
     HazardStatement,
     Index,
@@ -191,6 +192,14 @@ class Discharge(Frozen, frozen=True):
     statement: HazardStatement
 
 
+class Pictured(Frozen, frozen=True):
+    """A figure that can be computed."""
+
+    statement: FigureStatement
+    depends_on: tuple[str, ...]
+    """Keys of the given quantities that what it shows rests on, in the author's order."""
+
+
 class Model(Frozen, frozen=True):
     """A design that can be computed."""
 
@@ -214,3 +223,4 @@ class Model(Frozen, frozen=True):
     hazards: tuple[HazardStatement, ...]
     discharges: tuple[Discharge, ...]
     references: tuple[ReferenceStatement, ...]
+    figures: tuple[Pictured, ...] = ()

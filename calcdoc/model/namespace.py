@@ -16,6 +16,7 @@ from calcdoc.text.statements import (
     CaseStatement,
     CrosscheckStatement,
     Definition,
+    FigureStatement,
     GivenStatement,
     HazardStatement,
     Index,
@@ -228,6 +229,8 @@ def _used(statement: Statement) -> Iterator[Label]:
             yield from (statement.symbol, *statement.terms)
         case SensitivityStatement():
             yield from (statement.symbol, *statement.inputs)
+        case FigureStatement():
+            yield from (each for each in (statement.symbol, statement.against) if each)
         case _:
             pass
 
@@ -261,6 +264,8 @@ def trees(statement: Statement) -> tuple[Node, ...]:
             return (statement.where,) if statement.where is not None else ()
         case CrosscheckStatement():
             return (statement.first, statement.second)
+        case FigureStatement():
+            return (statement.limit,) if statement.limit is not None else ()
         case _:
             return ()
 

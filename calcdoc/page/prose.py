@@ -3,7 +3,7 @@
 from collections.abc import Iterable
 from html import escape
 
-from calcdoc.page import incase, lines, solved, typeset
+from calcdoc.page import figures, incase, lines, solved, typeset
 from calcdoc.page.markup import verdict
 from calcdoc.page.view import View
 from calcdoc.records import record as r
@@ -40,6 +40,8 @@ def block(view: View, item: r.Block, levels: dict[int, int]) -> str:
             return "<hr>\n"
         case r.CautionBox(signal, inner):
             return caution(signal, blocks(view, inner))
+        case r.FigureLine(number):
+            return figures.figure(view, view.figures[number])
         case _:
             return _line(view, item)
 

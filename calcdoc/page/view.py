@@ -10,6 +10,7 @@ from calcdoc.page.pieces import ROOM, Draw, is_formula, no_links, pieces, read
 from calcdoc.records import wording
 from calcdoc.records.pictures import symbol
 from calcdoc.records.record import (
+    AnyFigure,
     Assumption,
     Case,
     Criterion,
@@ -124,6 +125,11 @@ class View:
     def crosschecks(self) -> dict[str, Crosscheck]:
         """Cross-checks by id."""
         return {each.id: each for each in self.record.crosschecks}
+
+    @cached_property
+    def figures(self) -> dict[int, AnyFigure]:
+        """Figures by number."""
+        return {each.number: each for each in self.record.figures}
 
     def links(self, name: str) -> str:
         """Attributes of the link to the line that defines a symbol; empty where there is none."""

@@ -14,6 +14,7 @@ from calcdoc.text.statements import (
     CaseStatement,
     CrosscheckStatement,
     Definition,
+    FigureStatement,
     GivenStatement,
     Inequality,
     Measurement,
@@ -180,7 +181,9 @@ class _Body:
         return anchor
 
 
-def _lines(statement: Statement, naming: Naming) -> tuple[r.Block, ...]:
+def _lines(  # noqa: PLR0911  (one for each kind of line)
+    statement: Statement, naming: Naming
+) -> tuple[r.Block, ...]:
     """Where the lines of a statement stand."""
     match statement:
         case GivenStatement() | Definition():
@@ -201,6 +204,8 @@ def _lines(statement: Statement, naming: Naming) -> tuple[r.Block, ...]:
             return (r.SentenceLine(id=statement.id.name),)
         case Inequality() | Uncalculated() | AnyOf():
             return (r.CriterionLine(id=statement.id.name),)
+        case FigureStatement():
+            return (r.FigureLine(number=naming.figures[statement.span.start]),)
         case _:
             return ()
 

@@ -13,6 +13,7 @@ from calcdoc.records.cases import cases
 from calcdoc.records.cautions import cautions, hazards
 from calcdoc.records.checks import crosschecks, relations
 from calcdoc.records.criteria import criteria
+from calcdoc.records.figures import figures
 from calcdoc.records.method import method_statement
 from calcdoc.records.naming import name_lines
 from calcdoc.records.numbers import Numbers
@@ -81,7 +82,7 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
         methods=method_statement(
             lines, judged, title.digits, looked_up=bool(evaluation.looked), cases=bool(model.cases)
         ),
-        figures=(),
+        figures=figures(numbers, judged),
         notices=unsourced(model),
         problems=tuple(_problem(evaluation, each) for each in in_order(made.findings)),
         body=body,

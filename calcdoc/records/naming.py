@@ -51,6 +51,8 @@ class Naming(Frozen, frozen=True):
     """The level of heading that opens a section."""
     used_by: Mapping[str, tuple[str, ...]]
     """Key of a quantity to the symbols and ids that use it, in the author's order."""
+    figures: Mapping[int, int] = {}
+    """Place of a figure in the text to its number."""
 
 
 def name_lines(model: Model, body: tuple[prose.Block, ...]) -> Naming:
@@ -68,7 +70,7 @@ def name_lines(model: Model, body: tuple[prose.Block, ...]) -> Naming:
         for key in keys_of(each):
             line += 1
             lines[key] = f"{section}.{line}" if level else str(line)
-    return Naming(lines, sections, level, _uses(model))
+    return Naming(lines, sections, level, _uses(model), _figures(model))
 
 
 def section_level(body: tuple[prose.Block, ...]) -> int:
@@ -117,6 +119,11 @@ def keys_of(statement: Numbered) -> tuple[str, ...]:
 def case_key(name: str) -> str:
     """What the line of a case is known by; cases have names apart from symbols and ids."""
     return f"case {name}"
+
+
+def _figures(model: Model) -> dict[int, int]:
+    starts = (each.statement.span.start for each in model.figures)
+    return {start: number for number, start in enumerate(starts, 1)}
 
 
 def _uses(model: Model) -> dict[str, tuple[str, ...]]:

@@ -11,6 +11,7 @@ from calcdoc.source import SourceFile, Span
 from calcdoc.text import prose
 from calcdoc.text.commonmark import Fence, read_prose
 from calcdoc.text.criteria import criterion
+from calcdoc.text.figures import figure
 from calcdoc.text.names import SYMBOL, fold
 from calcdoc.text.passage import Passage
 from calcdoc.text.rules import RULES
@@ -23,9 +24,10 @@ LARGEST: Final = 2_000_000
 _STATEMENT_RULES: Final[dict[str, Callable[[Passage], Statement]]] = {
     **RULES,
     "criteria": criterion,
+    "figure": figure,
 }
 _OTHER_BLOCKS: Final = ("document", "caution")
-_COMING: Final = ("use", "figure", "takes", "gives")
+_COMING: Final = ("use", "takes", "gives")
 BLOCK_WORDS: Final = (*_OTHER_BLOCKS, *_STATEMENT_RULES, *_COMING)
 SIGNALS: Final = ("danger", "warning", "caution", "notice")
 _FENCE_LINE: Final = re.compile(r" {0,3}(?P<marks>`{3,}|~{3,}) *(?P<word>[a-z]+)(?: .*)?")
@@ -272,7 +274,8 @@ class _Reader:
                 if passage.offset(0) >= sure:
                     break
                 self.findings.append(mistake.finding)
-                self.broken |= _defined(passage.text)
+                if fence.word != "figure":  # it defines nothing
+                    self.broken |= _defined(passage.text)
         return prose.Statements(fence.word, tuple(found))
 
     def _surely_within(self, fence: Fence) -> int:

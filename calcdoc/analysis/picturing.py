@@ -1,0 +1,231 @@
+"""The numbers of figures: curves, spreads, sensitivities."""
+
+from collections.abc import Sequence
+from typing import Final
+
+import numpy as np
+
+from calcdoc.analysis.box import Box
+from calcdoc.analysis.compile import Compiled
+from calcdoc.analysis.evaluation import Evaluation
+from calcdoc.analysis.extremes import Question, extremes
+from calcdoc.analysis.looking_up import reached
+from calcdoc.analysis.pictured import (
+    Curve,
+    Drive,
+    Drives,
+    Margins,
+    Meeting,
+    Picture,
+    Spread,
+    Track,
+)
+from calcdoc.analysis.points import FloatArray
+from calcdoc.analysis.program import plain
+from calcdoc.analysis.spreading import spread
+from calcdoc.frozen import replace
+from calcdoc.model.model import Pictured
+from calcdoc.problems import Mistake, error
+from calcdoc.text.scan import shown
+
+POINTS: Final = 61
+"""Of a curve."""
+FINER: Final = 17
+"""Points between two of them, to find where a limit is crossed."""
+_ENDS: Final = ("nominal", "least", "greatest")
+
+
+def with_figures(compiled: Compiled, evaluation: Evaluation) -> Evaluation:
+    """The evaluation with the numbers of all figures.
+
+    Raises:
+        Mistake: when nothing of a figure can be computed.
+    """
+    figures = tuple(
+        _picture(compiled, evaluation, number) for number in range(len(evaluation.model.figures))
+    )
+    return replace(evaluation, figures=figures)
+
+
+def _picture(compiled: Compiled, evaluation: Evaluation, number: int) -> Picture:
+    pictured = evaluation.model.figures[number]
+    match pictured.statement.kind:
+        case "curve":
+            return _curve(compiled, evaluation, number)
+        case "spread":
+            return _spread(compiled, evaluation, number)
+        case "sensitivities":
+            return _drives(compiled, pictured)
+        case _:
+            return Margins(pictured)
+
+
+def _spread(compiled: Compiled, evaluation: Evaluation, number: int) -> Spread:
+    return spread(compiled, evaluation, evaluation.model.figures[number], compiled.figures[number])
+
+
+# --- curves ------------------------------------------------------------------------------------
+
+
+class _Axis:
+    """Moves one input along an axis, all others over their bands."""
+
+    def __init__(self, compiled: Compiled, column: int) -> None:
+        self.compiled, self.column = compiled, column
+
+    def _at(self, values: FloatArray, at: float) -> FloatArray:
+        moved = values.copy()
+        moved[self.column] = at
+        return moved
+
+    def nominal(self, target: int, axis: FloatArray) -> FloatArray:
+        """Values at nominal, shape (n,); NaN where they cannot be computed."""
+        program = plain(self.compiled.tape, (target,))
+        points = np.repeat(self.compiled.box.nominal[:, None], len(axis), axis=1)
+        points[self.column] = axis
+        found = program.evaluate(points)[program.row[target]]
+        return np.where(np.isfinite(found), found, np.nan)
+
+    def both_ends(self, target: int, axis: FloatArray) -> FloatArray:
+        """Least and greatest over the other bands, shape (2, n); NaN where not known."""
+        box = self.compiled.box
+        questions = []
+        for greatest in (False, True):
+            for at in axis:
+                low, mid, high = (self._at(each, at) for each in (box.low, box.nominal, box.high))
+                questions.append(Question(target, greatest, low, mid, high))
+        answers = extremes(self.compiled.tape, questions)
+        values = [
+            each.value if np.isfinite(each.value) and np.isfinite(each.bound) else np.nan
+            for each in answers
+        ]
+        return np.array(values).reshape(2, -1)
+
+    def all(self, target: int, axis: FloatArray) -> FloatArray:
+        """Nominal, least and greatest, shape (3, n)."""
+        nominal, ends = self.nominal(target, axis), self.both_ends(target, axis)
+        # Rounding may put an attained end a hair on the wrong side of the nominal value.
+        return np.stack((nominal, np.fmin(ends[0], nominal) + 0 * ends[0],
+                         np.fmax(ends[1], nominal) + 0 * ends[1]))  # fmt: skip
+
+    def row(self, target: int, axis: FloatArray, end: int) -> FloatArray:
+        """One row of :meth:`all`; the nominal one costs little."""
+        return self.nominal(target, axis) if end == 0 else self.all(target, axis)[end]
+
+
+def _curve(compiled: Compiled, evaluation: Evaluation, number: int) -> Curve:
+    pictured, against = evaluation.model.figures[number], compiled.figures[number]
+    statement = pictured.statement
+    assert statement.symbol is not None
+    assert statement.against is not None
+    assert statement.low is not None
+    assert statement.high is not None
+    low, high = statement.low.si[1], statement.high.si[1]
+    axis = low + (high - low) * np.arange(POINTS) / (POINTS - 1)
+    axis[-1] = high
+    moved = _Axis(compiled, compiled.columns[statement.against.key])
+    drawn = moved.all(compiled.variables[statement.symbol.key], axis)
+    if np.isnan(drawn[0]).all():
+        raise Mistake(
+            error(
+                "figure-form",
+                f"{shown(statement.symbol.name)} cannot be computed anywhere along this axis",
+                statement.low.span.to(statement.high.span),
+                help="choose values for which its formula has a value",
+            )
+        )
+    limit: Track | None = None
+    meetings: tuple[Meeting, ...] = ()
+    if against is not None:
+        limit = _track(moved.all(against.limit, axis))
+        meetings = _meetings(moved, against.difference, axis)
+    places = tuple(float(each) for each in axis)
+    return Curve(pictured, places, _track(drawn), limit, meetings)
+
+
+def _track(values: FloatArray) -> Track:
+    nominal, least, greatest = (
+        tuple(None if np.isnan(each) else float(each) for each in row) for row in values
+    )
+    return Track(nominal, least, greatest)
+
+
+def _meetings(moved: _Axis, difference: int, axis: FloatArray) -> tuple[Meeting, ...]:
+    """Where curve less limit changes its sign, at nominal and at both ends."""
+    rows = moved.all(difference, axis)
+    found: list[Meeting] = []
+    for end, name in enumerate(_ENDS):
+        row = rows[end]
+        if np.isnan(row).all() or (end and np.array_equal(row, rows[0], equal_nan=True)):
+            continue  # nothing else varies
+        places = []
+        for left, right in _changes(row):
+            finer = np.linspace(axis[left], axis[right], FINER) if left < right else axis[left:left]
+            closer = moved.row(difference, finer, end)
+            inner = _changes(closer)[:1]
+            places += [_zero(finer, closer, *each) for each in inner] or [float(axis[left])]
+        side = "" if places else ("above" if np.nanmin(row) > 0.0 else "below")
+        found.append(Meeting(name, tuple(places), side))
+    return tuple(found)
+
+
+def _changes(row: FloatArray) -> list[tuple[int, int]]:
+    """Neighbours between which a sign changes; the same place twice where it is zero."""
+    found = [(at, at) for at in np.flatnonzero(row == 0.0)]
+    with np.errstate(invalid="ignore"):
+        found += [(at, at + 1) for at in np.flatnonzero(row[:-1] * row[1:] < 0.0)]
+    return sorted((int(left), int(right)) for left, right in found)
+
+
+def _zero(axis: FloatArray, row: FloatArray, left: int, right: int) -> float:
+    """Where the straight line between two neighbours is zero."""
+    if left == right:
+        return float(axis[left])
+    share = row[left] / (row[left] - row[right])
+    return float(axis[left] + share * (axis[right] - axis[left]))
+
+
+# --- sensitivities -----------------------------------------------------------------------------
+
+
+def _drives(compiled: Compiled, pictured: Pictured) -> Drives:
+    """Each input alone at its least and greatest value."""
+    assert pictured.statement.symbol is not None
+    target, box = compiled.variables[pictured.statement.symbol.key], compiled.box
+    rests = reached(compiled.tape, target)
+    moving = [
+        (key, column)
+        for key, column in compiled.columns.items()
+        if column in rests and box.low[column] < box.high[column]
+    ]
+    values = _moved_alone(compiled, target, box, [column for _, column in moving])
+    changes = [_change(each - values[0]) for each in values[1:]]
+    rows = [
+        Drive(key, float(box.low[column]), float(box.high[column]),
+              changes[2 * at], changes[2 * at + 1])
+        for at, (key, column) in enumerate(moving)
+    ]  # fmt: skip
+    rows.sort(key=_size, reverse=True)
+    return Drives(pictured, float(values[0]), tuple(rows))
+
+
+def _moved_alone(compiled: Compiled, target: int, box: Box, columns: Sequence[int]) -> FloatArray:
+    """The target at nominal, then for each column at its least and at its greatest value."""
+    program = plain(compiled.tape, (target,))
+    points = [box.nominal]
+    for column in columns:
+        for end in (box.low, box.high):
+            moved = box.nominal.copy()
+            moved[column] = end[column]
+            points.append(moved)
+    found: FloatArray = program.evaluate(np.stack(points, axis=1))[program.row[target]]
+    return found
+
+
+def _change(value: float) -> float | None:
+    return float(value) if np.isfinite(value) else None
+
+
+def _size(row: Drive) -> float:
+    """The larger change; what cannot be computed comes first."""
+    return max(float("inf") if each is None else abs(each) for each in (row.low, row.high))
