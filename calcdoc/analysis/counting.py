@@ -31,8 +31,8 @@ class Spread(Frozen, frozen=True):
     mean: float | None
     deviation: float | None
     """Standard deviation; both over the draws that were computed, None without any."""
-    first_order: float
-    """Standard deviation by first order at the base; NaN where there is no derivative."""
+    first_order: float | None
+    """Standard deviation by first order at the base; None where there is no derivative."""
     base: FloatArray
     """Shape (n_columns,): where the parts varied around."""
     disagree: bool
@@ -63,7 +63,7 @@ class Limit(Frozen, frozen=True):
     strict: bool
     equal: float
     base: FloatArray
-    first_order: float
+    first_order: float | None
 
 
 class JobCount:
@@ -192,8 +192,10 @@ class _LimitCount:
 
     def _disagree(self, deviation: float) -> bool:
         first = self.limit.first_order
+        if first is None:
+            return True
         larger = max(first, deviation)
-        return not (larger <= self.limit.equal or abs(first - deviation) <= DISAGREE * larger)
+        return larger > self.limit.equal and abs(first - deviation) > DISAGREE * larger
 
     def _at(self, place: int) -> float | None:
         """The value at a place; None where there is none or it is no number."""

@@ -3,6 +3,7 @@
 The stream of a symbol is keyed by seed and symbol alone, so an edit elsewhere does not reshuffle
 it. Quasi-random points are spread more evenly over all parts together, so there every part has a
 share in all points; sixteen scramblings that know nothing of each other show how sure a result is.
+What like parts have of their own stays random there: it is much, and little depends on each.
 """
 
 import hashlib

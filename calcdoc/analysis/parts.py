@@ -63,12 +63,17 @@ class Part(Frozen, frozen=True):
     @property
     def deviation(self) -> float:
         """The standard deviation of the column."""
-        low, high = self.low - self.nominal, self.high - self.nominal
         if self.shape == "normal":
-            return high / self.k * self.reduction
+            return (self.high - self.nominal) / self.k * self.reduction
+        width = (self.high - self.low) * self.reduction
         if self.shape == "triangular":
-            return sqrt((low**2 + high**2 - low * high) / 18.0) * self.reduction
-        return (high - low) / sqrt(12.0) * self.reduction
+            return width * sqrt((1.0 - self.mode + self.mode**2) / 18.0)
+        return width / sqrt(12.0)
+
+    @property
+    def mode(self) -> float:
+        """Where the nominal value stands in the band, between 0 and 1."""
+        return (self.nominal - self.low) / (self.high - self.low)
 
     @property
     def limits(self) -> tuple[float, float]:
@@ -86,9 +91,7 @@ class Part(Frozen, frozen=True):
         """What is drawn for it."""
         if self.shape == "normal":
             return Variate(self.stream, self.shape, 0.0, 1, 0.0)
-        mode = 0.0
-        if self.shape == "triangular":
-            mode = (self.nominal - self.low) / (self.high - self.low)
+        mode = self.mode if self.shape == "triangular" else 0.0
         return Variate(self.stream, self.shape, mode, self.count, self.shared)
 
     @property

@@ -5,7 +5,7 @@ Conditions and biases stand at their worst, and the result is never beyond the e
 
 from collections.abc import Sequence
 from enum import Enum
-from math import isfinite, sqrt
+from math import hypot, isfinite, sqrt
 from typing import Final
 
 import numpy as np
@@ -30,6 +30,7 @@ first order has missed something, as in a product of two parts that are both zer
 class Doubt(Enum):
     """Why first order cannot be trusted."""
 
+    NOT_COMPUTED = "not computed"  # the base itself cannot be computed; the extreme stands
     NO_SLOPE = "no slope"  # there is no derivative at the base
     ZERO = "zero"  # the slopes are zero, yet the parts move the requirement
     CURVED = "curved"  # the limits do not do what the slopes say
@@ -95,9 +96,11 @@ def root_sum_square(
     drawn = [part for part in parts if part.is_random]
     values = program.evaluate(_at_limits(base, drawn))
     rows = [program.row[at] for at in requirements]
-    which = int(np.argmin(values[rows, 0]))
+    which = int(np.argmin(values[rows, 0]))  # the first that is no number, if there is one
     found = values[rows[which]]
     requirement = float(found[0])
+    if not isfinite(requirement):
+        return Combined(worst, worst, base, 0.0, False, (), (), Doubt.NOT_COMPUTED)
     zero = ROUNDING * float(largest_term(program.tape, rows[which], values[:, :1])[0])
     slopes = gradient(tape, [requirements[which]], base)[0]
     moved = np.where(np.isfinite(found[1:]), found[1:] - requirement, np.inf).reshape(-1, 2)
@@ -107,14 +110,14 @@ def root_sum_square(
         if (move := _Move(part, float(slopes[part.column]), at_low, at_high)).matters(zero)
     ]
     effects = sorted((each.effect for each in moves), key=lambda each: (each.effect, each.key))
-    spread = sqrt(sum(each.effect**2 for each in effects))
+    spread = hypot(*(each.effect for each in effects))
     far = requirement - min(worst, requirement)
     return Combined(
         requirement - min(spread, far),
         requirement,
         base,
         spread,
-        spread > far,
+        spread > far + zero,
         tuple(effects),
         _levels([each.part for each in moves]),
         _doubt(moves, far if far > zero else 0.0),
@@ -172,7 +175,7 @@ class _Move(Frozen, frozen=True):
 
 
 def _mean(low: float, high: float) -> float:
-    return sqrt((low**2 + high**2) / 2.0)
+    return hypot(low, high) / sqrt(2.0)
 
 
 def _levels(parts: Sequence[Part]) -> tuple[float | None, ...]:
@@ -185,14 +188,14 @@ def _doubt(moves: Sequence[_Move], far: float) -> Doubt | None:
     """Compare first order with what the limits do, one by one and all together.
 
     One by one, both limits count alike, so that mere bending to one side is no reason for doubt:
-    1/R at R ± 5 % has effects of 4.8 % and 5.3 %, whose quadratic mean is first order again.
+    1/R at R ± 5 % has effects of 4.8 % and 5.3 %, whose quadratic mean is first order within 0.1 %.
     """
     if any(not isfinite(each.slope) for each in moves):
         return Doubt.NO_SLOPE
-    linear, actual = (
-        sqrt(sum(size**2 for size in sizes))
-        for sizes in ([each.linear for each in moves], [each.actual for each in moves])
-    )
+    linear = hypot(*(each.linear for each in moves))
+    actual = hypot(*(each.actual for each in moves))
+    if not isfinite(actual):
+        return Doubt.CURVED
     if linear <= APART * max(actual, far):
         return Doubt.ZERO if max(actual, far) > 0.0 else None
     summed = sum(each.at_extremes for each in moves)

@@ -6,6 +6,7 @@ extremes; rectangular and triangular ones stay within their limits.
 
 from collections.abc import Callable, Mapping, Sequence
 from fractions import Fraction
+from math import isfinite
 
 import numpy as np
 
@@ -176,12 +177,14 @@ def _limit(
 ) -> Limit:
     found = streams[base.tobytes(), job.parts].values
     slopes = gradient(tape, [asked.requirement], base)[0]
-    moves = [slopes[part.column] * part.deviation for part in job.parts if part.is_random]
+    with np.errstate(all="ignore"):
+        moves = [slopes[part.column] * part.deviation for part in job.parts if part.is_random]
+    first_order = float(np.sqrt(np.sum(np.square(moves))))
     return Limit(
         found[asked.requirement],
         None if asked.when is None else found[asked.when],
         asked.strict,
         asked.equal,
         base,
-        float(np.sqrt(np.sum(np.square(moves)))),
+        first_order if isfinite(first_order) else None,
     )

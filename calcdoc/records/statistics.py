@@ -1,7 +1,6 @@
 """What root sum square and sampling say about a criterion, in words and numbers."""
 
 from collections.abc import Iterator
-from math import isfinite
 from typing import Final
 
 from calcdoc.analysis.evaluation import Conclusion, Drawn, Evaluation, Judgement, Outcome
@@ -18,6 +17,7 @@ _DIGITS: Final = 3
 _MOST: Final = 6
 """Contributions that are named one by one."""
 _DOUBTS: Final = {
+    Doubt.NOT_COMPUTED: "it cannot be computed with the parts at nominal; the extreme is shown",
     Doubt.NO_SLOPE: "there is no derivative here, so first order cannot be trusted",
     Doubt.ZERO: "to first order the parts have no effect here, but their limits have",
     Doubt.CURVED: "first order is wrong here: the limits do not move it as the slopes say",
@@ -124,7 +124,7 @@ def _drawn(numbers: Numbers, judgement: Judgement, drawn: Drawn, unit: Unit) -> 
     if drawn.spread.disagree and drawn.spread.deviation is not None:
         own = typeset(difference(drawn.spread.deviation, unit, _DIGITS))
         first = drawn.spread.first_order
-        slopes = typeset(difference(first, unit, _DIGITS)) if isfinite(first) else "none"
+        slopes = typeset(difference(first, unit, _DIGITS)) if first is not None else "none"
         yield (
             f"First order would mislead here: it gives a standard deviation of {slopes}, the draws"
             f" have {own}."

@@ -1,9 +1,13 @@
 """Root sum square: budget, cap at the extremes, level, and doubts about first order."""
 
+import numpy as np
 import pytest
 
-from calcdoc.analysis.root_sum_square import Doubt
+from calcdoc.analysis.parts import Part
+from calcdoc.analysis.root_sum_square import Doubt, root_sum_square
+from calcdoc.analysis.tape import Op
 from tests.helpers.random_parts import varied
+from tests.helpers.tapes import inputs
 
 
 def test_budget_of_a_divider() -> None:
@@ -72,6 +76,30 @@ def test_doubts(criterion: str, inputs: str, doubt: Doubt | None) -> None:
     made = varied(inputs=inputs, criteria=f"R1: {criterion}").combined()
     assert made.doubt is doubt
     assert made.doubtful == (doubt is not None)
+
+
+def test_limits_that_cannot_be_computed_are_doubted() -> None:
+    """A limit beyond which there is no number is no effect to trust; a base without one neither."""
+    x, y = inputs(2)
+    term = x.then(Op.LN) + y
+    parts = [
+        Part("x", "x", 0, 1.0, -0.5, 2.5, 0.0, 0.0, "rectangular", 0.0, 1, 0.0),
+        Part("y", "y", 1, 5.0, 4.9, 5.1, 0.0, 0.0, "rectangular", 0.0, 1, 0.0),
+    ]
+    tape = term.builder.tape()
+    made = root_sum_square(tape, [term.at], parts, np.array([1.0, 5.0]), 0.0)
+    assert made.doubt is Doubt.CURVED
+    assert made.spread == pytest.approx(np.hypot(1.5, 0.1))
+    lost = root_sum_square(tape, [term.at], parts[1:], np.array([-1.0, 5.0]), 3.0)
+    assert (lost.doubt, lost.requirement) == (Doubt.NOT_COMPUTED, 3.0)
+
+
+def test_huge_values_do_not_overflow() -> None:
+    """The squares of effects that can be computed are never formed where they cannot."""
+    made = varied(inputs="x = 1e99 ± 1e97\ny = 1e99 ± 1e97", criteria="R1: x^2 + y^2 <= 1e99^3")
+    combined = made.combined()
+    assert combined.spread == pytest.approx(2 * np.sqrt(2) * 1e196)
+    assert combined.doubt is None
 
 
 def test_no_slope_takes_what_the_limits_do() -> None:

@@ -3,6 +3,7 @@
 import tracemalloc
 from fractions import Fraction
 from math import sqrt
+from pathlib import Path
 
 import numpy as np
 import pytest
@@ -15,7 +16,8 @@ from calcdoc.analysis.parts import Variate
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.sampling import Asked, Job, sampled
 from calcdoc.analysis.tape import Op, TapeBuilder
-from tests.helpers.random_parts import varied
+from tests.bench.designs import CLOSED, DEMO
+from tests.helpers.random_parts import varied, varied_text
 
 DIVIDER = "V = 10 V ± 1 %\nR_1 = 10 kΩ ± 1 %\nR_2 = 10 kΩ ± 1 %"
 
@@ -271,6 +273,59 @@ def test_quasi_random_draws_are_nearer_and_no_less_careful() -> None:
     assert quasi.lower <= share_bounds(quasi.met, quasi.draws, 0.95)[0]
     mean = quasi.spreads[0].mean
     assert mean == pytest.approx(0.05, abs=1e-6)
+
+
+def test_quasi_random_like_parts() -> None:
+    """What like parts share is quasi-random, what is their own random: the spread is right."""
+    made = varied(
+        inputs="x = 0 V ± 1 V each of 4 shared 60 %\ny = 0 V ± 1 V as normal k=2 each of 4",
+        criteria="R1: x + y <= 9 V",
+    )
+    (spread,) = made.sampled(draws=30_000, quasi=True)[0].spreads
+    assert spread.first_order == pytest.approx(sqrt((0.36 + 0.04) / 3 + 1 / 16))
+    assert spread.deviation == pytest.approx(spread.first_order, rel=0.01)
+
+
+def test_no_derivative_at_the_base() -> None:
+    """Where first order has no number it disagrees with any."""
+    made = varied(inputs="x = 0 .. 0 .. 1", criteria="R1: sqrt(x) <= 2")
+    (spread,) = made.sampled(draws=1000)[0].spreads
+    assert (spread.first_order, spread.disagree) == (None, True)
+
+
+def test_a_case_sees_the_same_draws() -> None:
+    """The same part in another case: what the case does not move comes out the same."""
+    made = varied(
+        inputs="a = 1 V ± 1 %\nb = 1 V ± 1 %",
+        cases="mode dim: b = 2 V ± 1 %",
+        criteria="R1: a <= 1.005 V in normal, dim\nR2: b <= 1.005 V in normal\n"
+        "R3: b <= 2.010 V in dim",
+    )
+    jobs = [made.job(0), made.job(0, case="dim"), made.job(1), made.job(2, case="dim")]
+    found = [each.met for each in sampled(made.compiled.tape, jobs, Setting(10_000, 1))]
+    assert found[0] == found[1]
+    assert found[2] == found[3]
+    assert found[0] != found[2]
+
+
+@pytest.mark.parametrize("path", [CLOSED, DEMO], ids=lambda path: path.stem)
+def test_no_draw_and_no_root_sum_square_is_beyond_the_extremes(path: Path) -> None:
+    """In both designs the worst of many draws, and the combined limits, are within the extremes."""
+    made = varied_text(path.read_text(encoding="utf-8"))
+    jobs = [made.job(number, "0.9999999") for number in range(len(made.compiled.limits))]
+    results = sampled(made.compiled.tape, jobs, Setting(20_000, 1))
+    seen = 0
+    for number, found in enumerate(results):
+        assert found.lost == 0
+        for which, spread in enumerate(found.spreads):
+            combined = made.combined(number, which)
+            _, worst = made.governing(made.sides(number)[which])
+            assert spread.quantile is not None
+            room = 1e-9 * max(abs(combined.base), abs(worst))
+            assert worst - room <= spread.quantile <= combined.base + room
+            assert worst <= combined.requirement <= combined.base
+            seen += combined.requirement < combined.base
+    assert seen >= 7
 
 
 def test_memory_does_not_grow_with_the_draws() -> None:
