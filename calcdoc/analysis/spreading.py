@@ -32,8 +32,8 @@ def spread(
 ) -> Spread:
     """Draw the parts a quantity rests on.
 
-    Where a criterion compares the quantity with a limit, conditions stand where they govern it
-    and biases at that end; else all stand at nominal.
+    Where criteria compare the quantity with a limit, conditions stand where they govern the one
+    that is nearest to it, and biases at that end; else all stand at nominal.
 
     Raises:
         Mistake: when no draw can be computed.
@@ -43,9 +43,10 @@ def spread(
     target, title = compiled.variables[symbol.key], evaluation.model.document.title
     judged = [each for each in evaluation.judgements if _is(each.side.value_tree, symbol.key)]
     box, governing = compiled.box, compiled.box.nominal
-    if judged:
-        box = _box(compiled, judged[0])
-        governing = _governing(compiled, judged[0], box)
+    nearest = min(judged, key=lambda each: each.requirement) if judged else None
+    if nearest is not None:
+        box = _box(compiled, nearest)
+        governing = _governing(compiled, nearest, box)
     rests, every = reached(compiled.tape, target), random_parts(compiled, evaluation.model)
     parts = tuple(each for each in every if each.column in rests and each.low < each.high)
     base = base_point(every, governing)
@@ -85,7 +86,7 @@ def spread(
         min(least, nominal),
         max(greatest, nominal),
         _bounds(compiled, judged, against, base),
-        judged[0].judged.statement.id.name if judged else "",
+        nearest.judged.statement.id.name if nearest else "",
         {keys[at]: float(base[at]) for at in moved},
         tuple(each.key for each in parts if _assumed(evaluation, each)),
     )
