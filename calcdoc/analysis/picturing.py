@@ -27,6 +27,7 @@ from calcdoc.frozen import replace
 from calcdoc.model.model import Pictured
 from calcdoc.problems import Mistake, error
 from calcdoc.text.scan import shown
+from calcdoc.text.statements import FigureStatement
 
 POINTS: Final = 61
 """Of a curve."""
@@ -125,22 +126,31 @@ def _curve(compiled: Compiled, evaluation: Evaluation, number: int) -> Curve:
     axis[-1] = high
     moved = _Axis(compiled, compiled.columns[statement.against.key])
     drawn = moved.all(compiled.variables[statement.symbol.key], axis)
-    if np.isnan(drawn[0]).all():
+    _check(drawn, f"{shown(statement.symbol.name)} cannot", statement)
+    limit: Track | None = None
+    meetings: tuple[Meeting, ...] = ()
+    if against is not None:
+        along = moved.all(against.limit, axis)
+        _check(along, "the limit cannot", statement)
+        limit = _track(along)
+        meetings = _meetings(moved, against.difference, axis)
+    places = tuple(float(each) for each in axis)
+    return Curve(pictured, places, _track(drawn), limit, meetings)
+
+
+def _check(values: FloatArray, what: str, statement: FigureStatement) -> None:
+    """A line without any value is a slip."""
+    if np.isnan(values[0]).all():
+        assert statement.low is not None
+        assert statement.high is not None
         raise Mistake(
             error(
                 "figure-form",
-                f"{shown(statement.symbol.name)} cannot be computed anywhere along this axis",
+                f"{what} be computed anywhere along this axis",
                 statement.low.span.to(statement.high.span),
                 help="choose values for which its formula has a value",
             )
         )
-    limit: Track | None = None
-    meetings: tuple[Meeting, ...] = ()
-    if against is not None:
-        limit = _track(moved.all(against.limit, axis))
-        meetings = _meetings(moved, against.difference, axis)
-    places = tuple(float(each) for each in axis)
-    return Curve(pictured, places, _track(drawn), limit, meetings)
 
 
 def _track(values: FloatArray) -> Track:

@@ -35,8 +35,8 @@ def spread(
 ) -> Spread:
     """Draw the parts a quantity rests on.
 
-    Where a criterion compares the quantity with a limit, conditions stand where they govern it
-    and biases at that end; else all stand at nominal.
+    Where criteria compare the quantity with a limit, conditions stand where they govern the one
+    that is nearest to it, and biases at that end; else all stand at nominal.
 
     Raises:
         Mistake: when no draw can be computed.
@@ -51,17 +51,18 @@ def spread(
         and _is(each.side.value_tree, symbol.key)
     ]
     box, governing = compiled.box, compiled.box.nominal
-    if judged:
-        box = _box(compiled, judged[0])
-        governing = _governing(compiled, judged[0], box)
+    nearest = min(judged, key=lambda each: each.requirement) if judged else None
+    if nearest is not None:
+        box = _box(compiled, nearest)
+        governing = _governing(compiled, nearest, box)
     rests = reached(compiled.tape, target)
     every = tuple(
         each for each in random_parts(compiled.columns, evaluation.model) if each.column in rests
     )
     parts = tuple(each for each in every if each.is_random)
     base = governing
-    if judged:
-        worst = judged[0].side.requirement
+    if nearest is not None:
+        worst = nearest.side.requirement
         base = base_point(plain(compiled.tape, (worst,)), (worst,), every, governing)
     asked = setting_of(title)
     setting = replace(asked, draws=min(asked.draws, DRAWS))
@@ -100,7 +101,7 @@ def spread(
         min(least, nominal),
         max(greatest, nominal),
         _bounds(compiled, judged, against, base),
-        judged[0].judged.statement.id.name if judged else "",
+        nearest.judged.statement.id.name if nearest else "",
         {keys[at]: float(base[at]) for at in moved},
         tuple(each.key for each in parts if _assumed(evaluation, each)),
     )

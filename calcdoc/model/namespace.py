@@ -328,6 +328,8 @@ def _givens(statement: Statement) -> tuple[Given, ...]:
             return (*(point.given for point in _points(statement)), *margin)
         case Measurement():
             return (statement.given, *(point.given for point in _points(statement)))
+        case FigureStatement():
+            return tuple(each for each in (statement.low, statement.high) if each is not None)
         case _:
             return ()
 

@@ -105,7 +105,14 @@ class _Figures:
                 Place(axis.label.span, "defined here"),
             )
         self._check_axis(statement, axis)
-        if drawn.given is not None or axis.key not in self._rests_on((drawn.key,)):
+        if drawn.given is not None:
+            _refuse(
+                f"{shown(statement.symbol.name)} is given, a curve shows a computed quantity",
+                statement.symbol.span,
+                f"name a quantity that depends on {axis.symbol}",
+                Place(drawn.label.span, "given here"),
+            )
+        if axis.key not in self._rests_on((drawn.key,)):
             _refuse(
                 f"{shown(statement.symbol.name)} does not depend on"
                 f" {shown(statement.against.name)}, so the curve would be a level line",
@@ -145,7 +152,7 @@ class _Figures:
         low, high = (end.unit.to_si(end.nominal) for end in (statement.low, statement.high))
         if low >= high:
             _refuse(
-                "the axis begins where it ends or behind it",
+                "the end of this axis is not beyond its beginning",
                 statement.low.span.to(statement.high.span),
                 "write the lesser value first",
             )

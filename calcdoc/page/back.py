@@ -70,7 +70,7 @@ def _result(view: View, criterion: Criterion) -> str:
         parts.append(typeset.quantity(criterion.value_text) + against)
     case = criterion.case if criterion.case not in ("", "normal") else ""
     parts += [escape(f"case {case}") if case else "", view.sentence(criterion.remark)]
-    parts.append(view.sentence(remark(criterion)))
+    parts.append(view.reason(remark(criterion)))
     return "; ".join(filter(None, parts))
 
 

@@ -16,13 +16,13 @@ from calcdoc.records.wording import counted
 
 VERDICTS: Final = (
     Column("id", 3.5),
-    Column("criterion", 28.5),
+    Column("criterion", 27),
     Column("value", 10.5, "num"),
     Column("limit", 9.5, "num"),
     Column("margin", 6.5, "num"),
     Column("", 6.5),
-    Column("verdict", 8.5),
-    Column("governed by", 26.5, "gov"),
+    Column("verdict", 11.5),
+    Column("governed by", 25, "gov"),
 )
 KIND: Final = "Calculation record"
 LONG: Final = 24
@@ -194,7 +194,7 @@ def _why(view: View, criterion: Criterion) -> str:
     if criterion.verdict in NOT_COMPUTED:
         return view.words(remark(criterion)) or view.basis(criterion.basis)
     if remark(criterion):
-        return view.sentence(remark(criterion))
+        return view.reason(remark(criterion))
     return "nominal values" if criterion.method == "nominal" else ""
 
 

@@ -12,15 +12,28 @@ def figure(view: View, shown: AnyFigure) -> str:
     from calcdoc.page.plot import svg  # noqa: PLC0415  (few records have figures)
 
     name = f"figure-{shown.number}"
-    drawn = svg(charts.drawing(shown), name)
-    words = escape(shown.alternative)
-    if view.paper:  # the layout engine takes the alternative text of a picture from its title
-        drawn = drawn.replace(">", f"><title>{words}</title>", 1)
-    else:
-        drawn = drawn.replace("<svg ", f'<svg role="img" aria-label="{words}" ', 1)
-    notes = "".join(f" {view.named(each)}" for each in shown.notes)
-    said = f'<span class="soft">{notes}</span>' if notes else ""
-    return (
-        f'<figure class="fig" id="{name}">{drawn}<figcaption><b>Figure {shown.number}.</b>'
-        f" {view.words(shown.caption.rstrip('.'))}.{said}</figcaption></figure>\n"
+    drawn = charts.drawings(shown)
+    parts = [svg(each, f"{name}-{at}") for at, each in enumerate(drawn, 1)]
+    words = [shown.alternative, *[f"Figure {shown.number}, continued."] * (len(parts) - 1)]
+    pictures = "".join(
+        f'<div class="pic">{_told(view, part, said)}</div>'
+        for part, said in zip(parts, words, strict=True)
     )
+    kind = "fig" if len(parts) == 1 else "fig long"
+    return (
+        f'<figure class="{kind}" id="{name}">{pictures}<figcaption>'
+        f"<b>Figure {shown.number}.</b> {view.words(shown.caption.rstrip('.'))}."
+        f"{_notes(view, shown)}</figcaption></figure>\n"
+    )
+
+
+def _told(view: View, drawn: str, words: str) -> str:
+    """The picture with its text alternative, where the reader of the page looks for it."""
+    if view.paper:  # the layout engine takes it from the title
+        return drawn.replace(">", f"><title>{escape(words)}</title>", 1)
+    return drawn.replace("<svg ", f'<svg role="img" aria-label="{escape(words)}" ', 1)
+
+
+def _notes(view: View, shown: AnyFigure) -> str:
+    notes = "".join(f" {view.named(each)}" for each in shown.notes)
+    return f'<span class="soft">{notes}</span>' if notes else ""

@@ -35,7 +35,7 @@ def _change(view: View, change: CaseChange) -> str:
         shown += f' <span class="req">=</span> {view.math(change.result, bold=True)}'
     else:
         shown = view.math(f"{change.symbol} = {change.result}", bold=True)
-    said = [typeset.sentence(change.band)] if change.band else []
+    said = [typeset.unbroken(change.band)] if change.band else []
     said.append(f"normally {typeset.quantity(change.normal)}")
     return f'<div class="eq">{shown} <span class="cl">{"; ".join(said)}</span></div>'
 
@@ -80,5 +80,5 @@ def _cell(here: CriterionCase | None) -> str:
     if here is None:
         return '<span class="cl" title="not judged in this case">–</span>'
     words = verdict(here.verdict) + (" accepted" if here.accepted else "")
-    margin = f"<br><small>{typeset.quantity(here.margin_text)}</small>" if here.margin_text else ""
-    return f"{words}{margin}"
+    margin = f" <small>{typeset.quantity(here.margin_text)}</small>" if here.margin_text else ""
+    return f'<span class="nb">{words}{margin}</span>'

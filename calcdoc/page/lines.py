@@ -112,8 +112,10 @@ def _given(view: View, quantity: Quantity) -> str:
     if quantity.varies and not gives_limits(quantity):
         limits = f' <span class="soft">{both_limits(quantity)}</span>'
     notes = _notes(view, quantity.notes) + _cases(view, quantity)
-    if quantity.makeup:
+    if len(quantity.makeup) > 1:
         notes += f'<p class="step">{made_of(view, quantity)}</p>'
+    elif quantity.makeup:
+        limits += f' <span class="soft">{made_of(view, quantity)}</span>'
     label = escape(quantity.id or quantity.line)
     return (
         f'<div class="in" id="q-{escape(quantity.symbol)}"><span class="no">{label}</span>'
@@ -311,9 +313,9 @@ def _cases(view: View, quantity: Quantity) -> str:
 
 def _in_case(view: View, quantity: Quantity, values: CaseValues) -> str:
     if values.reason:
-        return f"not computed, {view.sentence(values.reason)}"
+        return f"not computed, {view.reason(values.reason)}"
     if values.text:
-        return typeset.sentence(values.text)
+        return typeset.unbroken(values.text)
     unit = quantity.unit
     return "; ".join(
         f'<span class="nb">{at}: {typeset.in_unit(value, unit, _digits(view))}</span>'
@@ -397,7 +399,7 @@ def _parts(shown: Picture) -> tuple[Picture, ...]:
 def _decided(view: View, criterion: Criterion) -> str:
     """The bar, the verdict in words, the margin, the remark."""
     words = verdict(criterion.verdict, criterion.accepted)
-    why = view.sentence(remark(criterion))
+    why = view.reason(remark(criterion))
     margin = f"margin {typeset.quantity(criterion.margin_text)}" if criterion.margin_text else ""
     if criterion.verdict == "fail" and criterion.remark:
         margin = ""

@@ -153,6 +153,17 @@ class View:
         """A sentence of the record: its numbers typeset, its symbols set as symbols."""
         return NAME.sub(self._named, typeset.sentence(text))
 
+    def reason(self, text: str) -> str:
+        """A sentence that has pieces of formulas between back quotes."""
+        parts = text.split("`")  # what stands between quotes has the odd places
+        return "".join(
+            self._quoted(part) if at % 2 else self.sentence(part) for at, part in enumerate(parts)
+        )
+
+    def _quoted(self, text: str) -> str:
+        """A piece of a formula, or whatever else is quoted."""
+        return self.math(text) if is_formula(text) else f"<code>{escape(text)}</code>"
+
     def named(self, text: str) -> str:
         """A sentence whose numbers are typeset already, its symbols set as symbols."""
         return NAME.sub(self._named, typeset.unbroken(text))

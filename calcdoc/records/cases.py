@@ -6,8 +6,8 @@ from calcdoc.records import record as r
 from calcdoc.records.naming import Naming, case_key
 from calcdoc.records.numbers import Numbers
 from calcdoc.records.rounding import stored
-from calcdoc.records.values import given_nominal
-from calcdoc.records.wording import band_in_words
+from calcdoc.records.values import computed, given_nominal
+from calcdoc.records.wording import band_in_words, typeset
 from calcdoc.text.cases import NORMAL
 from calcdoc.text.statements import Change
 from calcdoc.text.unparse import unparse
@@ -68,7 +68,7 @@ def _values(numbers: Numbers, key: str, band: Band) -> r.CaseValues:
         stored(unit.from_si(each)) for each in (band.nominal, band.least, band.greatest)
     )
     shown = _band(numbers, key, band)
-    text = _value(numbers, key, band.nominal) + (f", {shown}" if shown else "")
+    text = typeset(_value(numbers, key, band.nominal)) + (f", {shown}" if shown else "")
     return r.CaseValues(nominal=nominal, least=least, greatest=greatest, text=text, reason="")
 
 
@@ -82,10 +82,15 @@ def _series(numbers: Numbers, key: str, bands: tuple[Band, ...]) -> r.CaseValues
 
 
 def _band(numbers: Numbers, key: str, band: Band) -> str:
+    """Both ends, typeset; empty when it does not vary."""
     if not band.varies:
         return ""
-    return f"{_value(numbers, key, band.least)} to {_value(numbers, key, band.greatest)}"
+    low, high = (typeset(_value(numbers, key, each)) for each in (band.least, band.greatest))
+    return f"{low} to {high}"
 
 
 def _value(numbers: Numbers, key: str, si: float) -> str:
-    return numbers.at(key, si)
+    """A value in a case: exact when it is short, as 11 LEDs are, else with the usual digits."""
+    exact = numbers.at(key, si)
+    short = sum(each.isdigit() for each in exact.partition(" ")[0]) <= numbers.digits
+    return exact if short else computed(si, numbers.units[key], numbers.digits)

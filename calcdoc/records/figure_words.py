@@ -12,6 +12,8 @@ from calcdoc.records.wording import counted, typeset
 
 _DIGITS = 4
 _FEW = 3
+_FAR = 6
+"""Widths of a spread."""
 Some = TypeVar("Some", r.Curve, r.Spread, r.Sensitivities, r.Margins)
 
 
@@ -83,7 +85,8 @@ def _course(figure: r.Curve) -> str:
 
 def _point(figure: r.Curve, at: int) -> str:
     band = ""
-    if figure.least[at] != figure.greatest[at]:
+    ends = (figure.least[at], figure.greatest[at])
+    if None not in ends and ends[0] != ends[1]:
         least, greatest = (_value(row[at], figure.unit) for row in (figure.least, figure.greatest))
         band = f" (least {least}, greatest {greatest})"
     place = _place(figure.axis[at], figure.against_unit)
@@ -149,6 +152,8 @@ def _spread(figure: r.Spread) -> list[str]:
         ),
     ]
     for each in figure.limits:
+        if beyond(figure, each):
+            continue
         name = f"The limit of {each.criterion}" if each.criterion else "The limit"
         where = ""
         if figure.low > each.value:
@@ -160,6 +165,12 @@ def _spread(figure: r.Spread) -> list[str]:
         lost = _count(figure.lost)
         text.append(f"{lost} draws could not be computed and are left out.")
     return text
+
+
+def beyond(figure: r.Spread, limit: r.SpreadLimit) -> bool:
+    """Whether a limit is so far away that the spread would shrink to a line beside it."""
+    reach = _FAR * (figure.greatest - figure.least)
+    return not figure.least - reach <= limit.value <= figure.greatest + reach
 
 
 def _count(number: int) -> str:
@@ -174,6 +185,10 @@ def _assumed(figure: r.Spread) -> list[str]:
         notes.append(f"Conditions and biases are not random; they stand at {setting}{why}.")
     else:
         notes.append("Conditions are not random; they stand at nominal.")
+    for each in figure.limits:
+        if beyond(figure, each):
+            name = f"The limit of {each.criterion}" if each.criterion else "The limit"
+            notes.append(f"{name}, {typeset(each.text)}, lies far outside of the picture.")
     if figure.assumed:
         notes.append(f"Distributions assumed to be rectangular: {', '.join(figure.assumed)}.")
     return notes
@@ -201,9 +216,12 @@ def _drive(row: r.Drive) -> str:
 
 
 def _left_out(figure: r.Sensitivities) -> list[str]:
-    if not figure.left_out:
-        return []
-    return [f"{counted(figure.left_out, 'input')} with smaller changes left out."]
+    notes = []
+    if figure.left_out:
+        notes.append(f"{counted(figure.left_out, 'input')} with smaller changes left out.")
+    if any(each.symbol.startswith("lookup(") for each in figure.rows):
+        notes.append("A table that is read over a range counts as an input of its own.")
+    return notes
 
 
 def _margins(figure: r.Margins) -> list[str]:

@@ -55,7 +55,7 @@ def _random(given: Given) -> str:
         shape = f"normal, limits at {float(made.k):g} standard deviations"
     if made.assumed:
         shape += " (assumed)"
-    return f"random part {shape}"
+    return shape if not made.biases and made.like is None else f"random part {shape}"
 
 
 def _like(like: Like) -> str:

@@ -259,7 +259,7 @@ class CaseValues(Plain, frozen=True):
     least: float | list[float] | None
     greatest: float | list[float] | None
     text: str
-    """The nominal value and, when it varies, its band; empty for a series."""
+    """The nominal value and, when it varies, its band, typeset; empty for a series."""
     reason: str
     """Why it cannot be computed."""
 

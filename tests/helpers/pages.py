@@ -77,7 +77,7 @@ class _Words(HTMLParser):
     """Collects the words of a page, one line for each block."""
 
     BLOCKS = re.compile(
-        "blockquote|caption|d[dlt]|div|footer|h[1-6]|header|li|nav|p|pre|section|summary|table|tr"
+        "blockquote|caption|d[dlt]|div|figcaption|footer|h[1-6]|header|li|nav|p|pre|section|summary|table|tr"
     )
     SILENT = frozenset({"style", "script", "title"})
 
@@ -87,14 +87,15 @@ class _Words(HTMLParser):
         self.silent = ""
 
     def handle_starttag(self, tag: str, attrs: list[tuple[str, str | None]]) -> None:
-        """Begin a line or a cell; a formula is told by its alternative text."""
+        """Begin a line or a cell; formulas and pictures are told by their alternative."""
         if self.silent:
             return
         if tag in self.SILENT:
             self.silent = tag
-        elif tag == "math":
+        elif tag in {"math", "svg"}:
             self.silent = tag
-            self.parts.append(dict(attrs).get("alttext") or "")
+            name = "alttext" if tag == "math" else "aria-label"
+            self.parts.append(dict(attrs).get(name) or "")
         elif self.BLOCKS.fullmatch(tag) or tag == "br":
             self.parts.append("\n")
         elif tag in {"td", "th"}:
