@@ -61,12 +61,13 @@ def by_hand_closed(draws: int) -> tuple[float, float]:
 
 
 def by_hand_demo(draws: int) -> tuple[float, float]:
-    """The same for the demo, with a loop and a root."""
+    """The same for the demo, with a loop, a root and twelve LEDs that vary on their own."""
     rng = np.random.default_rng(1)
     f_line, t_a, v_line = 50.5, 45.0 + 273.15, 253.0
     v_d = rng.uniform(0.8, 1.0, draws)
     c_res = rng.uniform(0.8 * 4.7e-6, 1.2 * 4.7e-6, draws)
-    v_led = rng.uniform(0.97 * 18.5, 1.03 * 18.5, draws)
+    own = rng.uniform(0.97 * 18.5, 1.03 * 18.5, (draws, 12)).mean(axis=1)
+    v_led = 0.6 * rng.uniform(0.97 * 18.5, 1.03 * 18.5, draws) + 0.4 * own
     k_t = rng.uniform(-14.4e-3, -9.6e-3, draws)
     v_ref = rng.uniform(0.98 * 0.6, 1.02 * 0.6, draws)
     r_set = rng.uniform(0.99 * 41.2, 1.01 * 41.2, draws)

@@ -13,7 +13,6 @@ from calcdoc.analysis.sides import Side
 from calcdoc.model.build import build
 from calcdoc.model.model import Model
 from calcdoc.source import SourceFile
-from calcdoc.text.cases import NORMAL
 from calcdoc.text.document import read_document
 from tests.helpers.checking import TITLE
 
@@ -26,9 +25,10 @@ class Varied:
     compiled: Compiled
     parts: tuple[Part, ...]
 
-    def sides(self, number: int = 0, case: str = NORMAL) -> tuple[Side, ...]:
-        """The limits of a criterion."""
-        limits = self.compiled.limits[number][case]
+    def sides(self, number: int = 0, case: str | None = None) -> tuple[Side, ...]:
+        """The limits of a criterion, in the first case it is judged in unless another is named."""
+        in_case = self.compiled.limits[number]
+        limits = in_case[case or next(iter(in_case))]
         assert isinstance(limits, Limits), limits
         return limits.sides
 
@@ -45,7 +45,7 @@ class Varied:
         point, worst = self.governing(side)
         return root_sum_square(self.compiled.tape, [side.requirement], self.parts, point, worst)
 
-    def job(self, number: int = 0, share: str = "0.975", case: str = NORMAL) -> Job:
+    def job(self, number: int = 0, share: str = "0.975", case: str | None = None) -> Job:
         """A criterion to be sampled with all its limits."""
         asked = tuple(
             Asked(
