@@ -44,6 +44,7 @@ class Criteria:
     def __init__(self, asker: Asker, model: Model) -> None:
         self.asker, self.model, self.compiled = asker, model, asker.compiled
         self._set_ceilings()
+        self.out_of_reach = self._beyond()
         self.heard = [
             {name: self._hearing(number, judged, name, limits)
              for name, limits in self.compiled.limits[number].items()}
@@ -72,19 +73,46 @@ class Criteria:
                 for ends in (room.box.low, room.box.nominal, room.box.high):
                     ends[side.ceiling] = size + abs(size) + np.finfo(float).tiny
 
+    def _beyond(self) -> dict[tuple[int, int], Finding]:
+        """What cannot be computed in cases: criterion and instruction to the reason.
+
+        Criteria over one box are looked at together.
+        """
+        boxes: dict[tuple[bytes, bytes], list[int]] = {}
+        for number in range(len(self.compiled.limits)):
+            box = self._box(number)
+            boxes.setdefault((box.low.tobytes(), box.high.tobytes()), []).append(number)
+        found: dict[tuple[int, int], Finding] = {}
+        for numbers in boxes.values():
+            wanted = [(number, at) for number in numbers for at in self._in_cases(number)]
+            own = self.asker.rooms.get(("criterion", numbers[0]))
+            reasons = out_of_reach(
+                self.compiled,
+                self.model,
+                self._box(numbers[0]),
+                list(dict.fromkeys(at for _, at in wanted)),
+                own.setter if own else None,
+            )
+            found |= {(number, at): reasons[at] for number, at in wanted if at in reasons}
+        return found
+
+    def _in_cases(self, number: int) -> list[int]:
+        """The targets of a criterion in all cases but the normal one."""
+        return [
+            side.target
+            for name, limits in self.compiled.limits[number].items()
+            if name != NORMAL and isinstance(limits, Limits)
+            for side in limits.sides
+        ]
+
     def _hearing(
         self, number: int, judged: Judged, case: str, limits: Limits | Finding
     ) -> Hearing | Unjudged:
         if isinstance(limits, Finding):
             return Unjudged(judged, case, Outcome.NOT_DECIDED, said(limits))
         box = self._box(number)
-        if case != NORMAL:
-            own = self.asker.rooms.get(("criterion", number))
-            targets = [side.target for side in limits.sides]
-            reasons = out_of_reach(
-                self.compiled, self.model, box, targets, own.setter if own else None
-            )
-            for reason in reasons.values():
+        for side in limits.sides if case != NORMAL else ():
+            if (reason := self.out_of_reach.get((number, side.target))) is not None:
                 return Unjudged(judged, case, Outcome.NOT_DECIDED, said(reason))
         asked = tuple(self.asker.ask(side.target, False, box) for side in limits.sides)
         return Hearing(judged, case, limits.case, limits.sides, box, asked)

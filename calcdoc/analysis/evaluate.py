@@ -3,7 +3,7 @@
 from collections.abc import Mapping
 
 from calcdoc.analysis.asking import DECLARED, Asker, Key, Room, given_band, rooms
-from calcdoc.analysis.case_bands import CaseAsked
+from calcdoc.analysis.case_bands import CaseAsked, ask_cases
 from calcdoc.analysis.comparing import against_measured, crosschecked, discharged
 from calcdoc.analysis.compile import Compiled, Limits, compile_model
 from calcdoc.analysis.criteria import Criteria, Roots
@@ -100,7 +100,7 @@ def _evaluated(
         key: {n: asker.ask_both(at) for n, at in elements.items()}
         for key, elements in compiled.series.items()
     }
-    cases = [CaseAsked(asker, model, case) for case in compiled.cases.values() if case.changes]
+    cases = ask_cases(asker, model)
     checks = [asker.ask_both(each.difference) for each in compiled.checks]
     measured = [
         asker.ask_both(at, found_rooms["measurement", number].box)
@@ -159,12 +159,12 @@ def _given(model: Model, key: str) -> Band:
 
 def _ask_times(asker: Asker, model: Model, cases: list[CaseAsked]) -> list[dict[str, int]]:
     """For every stored charge, by case, the question for its greatest time to a safe voltage."""
-    broken = {NORMAL: set[int](), **{each.case.name: each.out_of_reach for each in cases}}
+    broken = {each.case.name: each.out_of_reach for each in cases}
     return [
         {
             name: asker.ask(times[number], True, asker.declared)
             for name, times in asker.compiled.discharges.items()
-            if number in times and times[number] not in broken.get(name, set())
+            if number in times and times[number] not in broken.get(name, ())
         }
         for number in range(len(model.discharges))
     ]

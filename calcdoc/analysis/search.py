@@ -11,9 +11,9 @@ from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import Program
 from calcdoc.analysis.sweep import Boxes, sweep
 
-COLUMNS: Final = 128
+COLUMNS: Final = 256
 """Boxes in one sweep: enough to hide the cost of a call, few enough to stay best first."""
-CROWD: Final = 32
+CROWD: Final = 64
 """Hunts that run together; more would sweep much that each one does not need."""
 POLISH_STEPS: Final = 48
 

@@ -12,9 +12,9 @@ from calcdoc.analysis.slopes import Tangent
 from calcdoc.analysis.sweep import Boxes, sweep
 from calcdoc.frozen import Frozen
 
-CELLS: Final = 8192
+CELLS: Final = 16384
 """Boxes times slots in one sweep."""
-CHUNK: Final = 64
+CHUNK: Final = 256
 """Questions with boxes of their own in one sweep."""
 
 
