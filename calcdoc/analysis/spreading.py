@@ -7,7 +7,7 @@ import numpy as np
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.compile import Against, Compiled
 from calcdoc.analysis.evaluation import Evaluation, Judgement
-from calcdoc.analysis.extremes import Question, extremes
+from calcdoc.analysis.extremes import Question, effort, extremes
 from calcdoc.analysis.looking_up import reached
 from calcdoc.analysis.parts import Part, base_point, draw, random_parts, stream
 from calcdoc.analysis.pictured import Bound, Spread
@@ -25,6 +25,11 @@ DRAWS: Final = 100_000
 SEED: Final = 1
 CHUNK: Final = 20_000
 """Draws computed at once: memory does not grow with their number."""
+VALUES: Final = 4_000_000
+"""Numbers held at once, for a design of many lines."""
+WORK: Final = 500_000_000
+"""Instructions times draws that a figure may cost: some seconds. Larger ones take fewer draws."""
+FEWEST: Final = 1000
 
 
 def spread(
@@ -50,7 +55,8 @@ def spread(
     rests, every = reached(compiled.tape, target), random_parts(compiled, evaluation.model)
     parts = tuple(each for each in every if each.column in rests and each.low < each.high)
     base = base_point(every, governing)
-    draws = min(title.draws or DRAWS, DRAWS)
+    affordable = max(FEWEST, WORK // effort(compiled.tape, target))
+    draws = min(title.draws or DRAWS, DRAWS, affordable)
     seed = SEED if title.seed is None else title.seed
     values = _drawn(compiled, target, parts, base, draws, seed)
     kept = values[np.isfinite(values)]
@@ -137,8 +143,9 @@ def _drawn(  # noqa: PLR0913  (what to draw, and how)
     program = plain(compiled.tape, (target,))
     streams = [stream(seed, part.key) for part in parts]
     found = np.empty(draws)
-    for begin in range(0, draws, CHUNK):
-        count = min(CHUNK, draws - begin)
+    chunk = max(1, min(CHUNK, VALUES // len(program.steps)))
+    for begin in range(0, draws, chunk):
+        count = min(chunk, draws - begin)
         points = np.repeat(base[:, None], count, axis=1)
         for part, generator in zip(parts, streams, strict=True):
             points[part.column] += draw(part, generator, count)

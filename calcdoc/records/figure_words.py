@@ -126,10 +126,9 @@ def _meeting(figure: r.Curve) -> list[str]:
         elif not figure.limit_least:
             text.append(f"The {each.end} value {stays} the limit{where}.")
         else:
-            text.append(
-                f"With value and limit at the combination that is {each.end} for their difference,"
-                f" {figure.symbol} {stays} the limit{where}."
-            )
+            sign = "above" if each.side == "above" else "below"
+            how = f"stays {sign} zero" if each.side else f"vanishes{where}"
+            text.append(f"Over all bands the {each.end} difference between the two {how}.")
     return text
 
 

@@ -1,5 +1,6 @@
 """Figures on both pages: labels, text alternatives, and bytes that are the same twice."""
 
+import io
 import os
 import re
 import subprocess
@@ -9,13 +10,14 @@ from html import unescape
 from pathlib import Path
 from xml.etree import ElementTree as ET
 
+import pikepdf
 import pytest
 
 from calcdoc.page import charts
 from calcdoc.page.axes import apart, spread_out, ticks
 from calcdoc.page.html import html
-from calcdoc.page.marks import Run, named, per_unit
-from calcdoc.page.pdf import sheet_html
+from calcdoc.page.marks import Run, extent, named, per_unit
+from calcdoc.page.pdf import pdf, sheet_html
 from calcdoc.page.plot import svg
 from calcdoc.records.record import AnyFigure, Curve, Margins, Record
 from tests.helpers.design import worked
@@ -68,6 +70,18 @@ def test_lines_are_named_where_they_end(shown: Record) -> None:
         assert {"nominal", "least", "greatest", limit} <= {
             each.replace("\u00a0", " ") for each in texts(drawn(shown.figures[number]))
         }
+
+
+def test_labels_stay_on_the_paper(shown: Record) -> None:
+    """Every label, as wide as it can be, lies within the picture, so that nothing is cut off."""
+    for figure in shown.figures:
+        for one in charts.drawings(figure):
+            frame = one.frame
+            for label in one.labels:
+                wide = extent(label.runs, label.size)
+                left = frame.left + frame.points_x(label.x) + label.right
+                left -= {"start": 0.0, "middle": 0.5, "end": 1.0}[label.anchor] * wide
+                assert -6 < left < left + wide < frame.width + 6, label
 
 
 def test_numbers_have_a_true_minus(shown: Record) -> None:
@@ -214,3 +228,20 @@ def test_check_loads_no_matplotlib(tmp_path: Path) -> None:
     )
     assert said.stdout.splitlines()[-1] == "[]"
     assert '"kind": "curve"' in said.stdout
+
+
+@pytest.mark.slow
+@pytest.mark.timeout(180)
+@pytest.mark.filterwarnings("ignore::ResourceWarning")
+@pytest.mark.filterwarnings("ignore::pytest.PytestUnraisableExceptionWarning")
+def test_sheets_tell_what_pictures_show_and_hold_each_whole(shown: Record) -> None:
+    """Every picture of the PDF has its alternative text, its labels are text on one sheet."""
+    written = pdf(shown, b"", b"{}", issued=ISSUED)
+    with pikepdf.open(io.BytesIO(written)) as file:
+        found = [
+            str(each.Alt)
+            for each in file.objects
+            if isinstance(each, pikepdf.Dictionary) and each.get("/S") == "/Figure"
+        ]
+    assert sorted(found) == sorted(each.alternative for each in shown.figures)
+    assert pdf(shown, b"", b"{}", issued=ISSUED) == written
