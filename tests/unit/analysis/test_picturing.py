@@ -91,6 +91,13 @@ def test_limit_that_moves_with_the_curve_is_compared_at_one_combination() -> Non
     assert found.limit_least[0] == pytest.approx(177.0)
 
 
+def test_jump_over_the_limit_is_placed() -> None:
+    """A formula that jumps at 5.1 meets its limit there, not somewhere between two points."""
+    found = curve("curve y against x from 1 to 9 with 1.5 | jump",
+                  inputs="x = 5 ± 1 %", derive="y = if(x < 5.1, 1, 2)")  # fmt: skip
+    assert found.meetings[0].at == pytest.approx((5.1,), rel=1e-5)
+
+
 def test_gaps_are_none_and_said() -> None:
     """Where the root is of a negative value there is no point, and the alternative says where."""
     found = curve(

@@ -122,9 +122,8 @@ def test_same_bytes_twice_and_no_date(shown: Record) -> None:
         assert "metadata" not in one
         assert " style=" not in one
         assert "<use" not in one
-        assert all(
-            each.startswith(f"f{figure.number}-") for each in re.findall(r' id="([^"]+)"', one)
-        )
+        ids = re.findall(r' id="([^"]+)"', one)
+        assert all(each.startswith(f"f{figure.number}-") for each in ids)
 
 
 def test_settings_of_the_library_are_left_alone(shown: Record) -> None:
@@ -187,6 +186,22 @@ def test_odd_curves_are_drawn(derive: str, low: str, high: str) -> None:
     (figure,) = made.figures
     assert isinstance(figure, Curve)
     assert "nan" not in drawn(figure).lower()
+
+
+def test_long_names_leave_room_for_the_bars() -> None:
+    """Names of sixty letters are set smaller, and the axes keep their width."""
+    name = "V_" + "long" * 15
+    made = worked(
+        inputs=f"{name} = 1 V ± 10 %",
+        derive=f"y = 2*{name}",
+        criteria=f"R_{'x' * 60}: y <= 3 V",
+        figure=f"sensitivities of y | a\nmargins | b\nspread of {name} | c\n"
+        f"curve y against {name} from 1 V to 2 V with {name} | d",
+    ).record
+    for figure in made.figures:
+        (one,) = charts.drawings(figure)
+        assert one.frame.width - one.frame.left - one.frame.right > 80
+        assert name.removeprefix("V_")[:10] in drawn(figure) or isinstance(figure, Margins)
 
 
 def test_ticks_are_round_and_few() -> None:
