@@ -33,6 +33,8 @@ POINTS: Final = 61
 """Of a curve."""
 FINER: Final = 17
 """Points between two of them, to find where a limit is crossed."""
+ROUNDS: Final = 3
+"""How often it is looked at closer."""
 _ENDS: Final = ("nominal", "least", "greatest")
 
 
@@ -113,6 +115,20 @@ class _Axis:
         """One row of :meth:`all`; the nominal one costs little."""
         return self.nominal(target, axis) if end == 0 else self.all(target, axis)[end]
 
+    def meeting(self, target: int, axis: FloatArray, end: int, between: tuple[int, int]) -> float:
+        """Where one row of :meth:`all` is zero: between two points, looked at closer and closer.
+
+        A formula may jump over zero, so a straight line between two points is not enough.
+        """
+        left, right = between
+        for _ in range(ROUNDS):
+            if left == right:
+                break
+            axis = np.linspace(axis[left], axis[right], FINER)
+            row = self.row(target, axis, end)
+            left, right = next(iter(_changes(row)), (0, 0))
+        return float(axis[left]) if left == right else _zero(axis, row, left, right)
+
 
 def _curve(compiled: Compiled, evaluation: Evaluation, number: int) -> Curve:
     pictured, against = evaluation.model.figures[number], compiled.figures[number]
@@ -168,14 +184,9 @@ def _meetings(moved: _Axis, difference: int, axis: FloatArray) -> tuple[Meeting,
         row = rows[end]
         if np.isnan(row).all() or (end and np.array_equal(row, rows[0], equal_nan=True)):
             continue  # nothing else varies
-        places = []
-        for left, right in _changes(row):
-            finer = np.linspace(axis[left], axis[right], FINER) if left < right else axis[left:left]
-            closer = moved.row(difference, finer, end)
-            inner = _changes(closer)[:1]
-            places += [_zero(finer, closer, *each) for each in inner] or [float(axis[left])]
+        places = tuple(moved.meeting(difference, axis, end, each) for each in _changes(row))
         side = "" if places else ("above" if np.nanmin(row) > 0.0 else "below")
-        found.append(Meeting(name, tuple(places), side))
+        found.append(Meeting(name, places, side))
     return tuple(found)
 
 

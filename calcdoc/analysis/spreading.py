@@ -8,7 +8,7 @@ from calcdoc.analysis.base_point import base_point
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.compile import Compiled
 from calcdoc.analysis.evaluation import Evaluation, Judgement
-from calcdoc.analysis.extremes import Question, extremes
+from calcdoc.analysis.extremes import Question, effort, extremes
 from calcdoc.analysis.looking_up import reached
 from calcdoc.analysis.parts import Part, random_parts
 from calcdoc.analysis.pictured import Bound, Spread
@@ -28,6 +28,9 @@ from calcdoc.text.scan import shown
 BINS: Final = 40
 DRAWS: Final = 100_000
 """The most that a figure takes."""
+WORK: Final = 500_000_000
+"""Instructions times draws that a figure may cost: some seconds. Larger ones take fewer draws."""
+FEWEST: Final = 1000
 
 
 def spread(
@@ -65,7 +68,8 @@ def spread(
         worst = nearest.side.requirement
         base = base_point(plain(compiled.tape, (worst,)), (worst,), every, governing)
     asked = setting_of(title)
-    setting = replace(asked, draws=min(asked.draws, DRAWS))
+    affordable = max(FEWEST, WORK // effort(compiled.tape, target))
+    setting = replace(asked, draws=min(asked.draws, DRAWS, affordable))
     values = drawn(compiled.tape, target, parts, base, setting)
     draws, seed = setting.total, setting.seed
     kept = values[np.isfinite(values)]

@@ -15,6 +15,10 @@ from calcdoc.text.nodes import Call, Node, names, walk
 from calcdoc.text.scan import not_yet, shown
 from calcdoc.text.statements import FigureStatement, Inequality, Label
 
+CONDITION: Final = "condition"
+MOST: Final = 50
+"""Figures of a design: each is computed at many points."""
+
 
 def pictured(
     document: Document, checker: Checker, variables: Mapping[str, Variable]
@@ -23,14 +27,23 @@ def pictured(
     checks = _Figures(document, checker, variables)
     made: list[Pictured] = []
     findings: list[Finding] = []
-    for statement in document.statements:
-        if isinstance(statement, FigureStatement):
-            try:
-                made.append(checks.figure(statement))
-            except Mistake as mistake:
-                findings.append(mistake.finding)
-            except Unknown:  # the line it rests on was reported
-                pass
+    statements = [each for each in document.statements if isinstance(each, FigureStatement)]
+    for statement in statements[:MOST]:
+        try:
+            made.append(checks.figure(statement))
+        except Mistake as mistake:
+            findings.append(mistake.finding)
+        except Unknown:  # the line it rests on was reported
+            pass
+    if len(statements) > MOST:
+        findings.append(
+            error(
+                "figure-form",
+                f"a design has at most {MOST} figures, this one has {len(statements)}",
+                statements[MOST].span,
+                help="keep those that say something, or split the design",
+            )
+        )
     return tuple(made), findings
 
 
@@ -249,9 +262,6 @@ class _Figures:
                 statement.span,
                 "write one in a `criteria` block, as in R1: V_max <= 200 V",
             )
-
-
-CONDITION: Final = "condition"
 
 
 def _trees(variable: Variable) -> list[Node]:

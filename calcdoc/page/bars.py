@@ -9,6 +9,7 @@ from calcdoc.page.marks import (
     INK,
     PAPER,
     SEA,
+    SIZE,
     SOFT,
     TINT,
     WIDTH,
@@ -29,6 +30,9 @@ from calcdoc.records.wording import typeset
 _FAILS: Final = "fail"
 _LOOKS: Final = {"pass": (TINT, SEA, ""), _FAILS: (PAPER, BAD, "/////")}
 """Fill, ink and hatching of a margin; what is not decided is left open."""
+_NAME: Final = 100.0
+_NUMBER: Final = 84.0
+"""Points that a name and a number may take."""
 _MOST: Final = 106.0
 """Per cent: longer bars are cut, their number stands beside them."""
 
@@ -38,12 +42,12 @@ def sensitivities(figure: Sensitivities) -> Drawing:
     rows = figure.rows
     changes = [each for row in rows for each in (row.low, row.high) if each is not None]
     x = padded((0.0, *changes), 0.04)
-    left = 16 + max(extent(named(each.symbol)) for each in rows)
+    left = _gutter([named(each.symbol) for each in rows])
     texts = (
         ("open: at least", *(each.low_text for each in rows)),
         ("full: at greatest", *(each.high_text for each in rows)),
     )
-    wide = [max(66.0, *(6 + extent(words(each)) for each in column)) for column in texts]
+    wide = [_column(66.0, column) for column in texts]
     columns = (wide[0] + 4, wide[0] + wide[1] + 4)
     drawn = Drawing(_listed(len(rows), x, left=left, right=columns[1] + 2))
     for at, row in enumerate(rows):
@@ -53,7 +57,7 @@ def sensitivities(figure: Sensitivities) -> Drawing:
                 ends = sorted((0.0, change))
                 bar = Bar(ends[0], ends[1], middle + bottom, middle + bottom + 0.27, fill)
                 drawn.marks.append(bar)
-        drawn.labels.append(Label(x[0], middle, named(row.symbol), "end", right=-6.0, up=-2.7))
+        drawn.labels.append(_name(x[0], middle, named(row.symbol)))
     for column, right in zip(texts, columns, strict=True):
         head, *values = map(words, column)
         top = drawn.frame.y[1]
@@ -74,6 +78,22 @@ def _listed(count: int, x: tuple[float, float], *, left: float, right: float) ->
     return Frame(WIDTH, height, left, right, 28, 20, x, (0.0, float(count)), ticks(*x, 5))
 
 
+def _gutter(names: Sequence[tuple[Run, ...]]) -> float:
+    """Room for the names at the left."""
+    return 16 + min(_NAME, max(extent(each) for each in names))
+
+
+def _column(least: float, texts: Sequence[str]) -> float:
+    """Room for a column of numbers."""
+    return max(least, *(6 + min(_NUMBER, extent(words(each))) for each in texts))
+
+
+def _name(x: float, y: float, runs: tuple[Run, ...]) -> Label:
+    """The name of a row; a long one is set smaller."""
+    size = SIZE * min(1.0, _NAME / extent(runs))
+    return Label(x, y, runs, "end", right=-6.0, up=-2.7, size=round(size, 2))
+
+
 def _zero(drawn: Drawing, count: int) -> None:
     drawn.marks.append(Stroke((0.0, 0.0), (0.0, float(count)), INK, 0.7))
 
@@ -83,8 +103,8 @@ def margins(every: Sequence[MarginRow], rows: Sequence[MarginRow]) -> Drawing:
     shares = [100 * each.margin for each in every if each.margin is not None]
     low, high = min([0.0, *shares]), max([0.0, *shares]) or 10.0
     x = (max(1.06 * low, -_MOST), min(1.06 * high, _MOST))
-    left = 16 + max(extent(words(each.id)) for each in every)
-    wide = max(46.0, *(6 + extent(words(typeset(each.margin_text))) for each in every))
+    left = _gutter([words(each.id) for each in every])
+    wide = _column(46.0, [typeset(each.margin_text) for each in every])
     drawn = Drawing(_listed(len(rows), x, left=left, right=wide + 78))
     for at, row in enumerate(rows):
         middle = len(rows) - at - 0.5
@@ -96,7 +116,7 @@ def margins(every: Sequence[MarginRow], rows: Sequence[MarginRow]) -> Drawing:
         ink = BAD if row.verdict == _FAILS else INK
         text = typeset(row.margin_text)
         drawn.labels += [
-            Label(x[0], middle, words(row.id), "end", right=-6.0, up=-2.7),
+            _name(x[0], middle, words(row.id)),
             Label(x[1], middle, words(text), "end", right=wide + 6, up=-2.7),
             Label(x[1], middle, words(row.verdict), right=wide + 14, up=-2.7, ink=ink),
         ]

@@ -112,25 +112,28 @@ def _meeting(figure: r.Curve) -> list[str]:
     limit = typeset(figure.limit_text)
     text = []
     sides = {each.end: each.side for each in figure.meetings}
+    known = ", where it can be computed" if None in (*figure.nominal, *figure.least) else ""
     implied = {"above": "greatest", "below": "least"}.get(sides.get("nominal", ""), "")
     for each in figure.meetings:
         if each.end == implied:
             continue
-        places = [_place(at, figure.against_unit) for at in each.at[:_FEW]]
-        if len(each.at) > _FEW:
-            places.append(f"{len(each.at) - _FEW} more places")
-        stays = f"stays {each.side}" if each.side else "meets"
-        where = f" at {figure.against} = {_list(places)}" if places else ""
+        where = known if each.side else f" at {figure.against} = {_places(figure, each)}"
+        verb = f"stays {each.side}" if each.side else "meets"
         if each.end == "nominal":
-            text.append(f"At nominal {figure.symbol} {stays} the limit {limit}{where}.")
+            text.append(f"At nominal {figure.symbol} {verb} the limit {limit}{where}.")
         elif not figure.limit_least:
-            text.append(f"The {each.end} value {stays} the limit{where}.")
+            text.append(f"The {each.end} value {verb} the limit{where}.")
         else:
-            text.append(
-                f"With value and limit at the combination that is {each.end} for their difference,"
-                f" {figure.symbol} {stays} the limit{where}."
-            )
+            verb = f"stays {each.side} zero" if each.side else "vanishes"
+            text.append(f"Over all bands the {each.end} difference of the two {verb}{where}.")
     return text
+
+
+def _places(figure: r.Curve, meeting: r.Meeting) -> str:
+    places = [_place(at, figure.against_unit) for at in meeting.at[:_FEW]]
+    if len(meeting.at) > _FEW:
+        places.append(f"{len(meeting.at) - _FEW} more places")
+    return _list(places)
 
 
 # --- spreads -----------------------------------------------------------------------------------

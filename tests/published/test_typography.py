@@ -246,7 +246,7 @@ def test_t21_ppm_is_printed_as_a_power_of_ten() -> None:
 
 
 def test_t22_heads_of_tables_name_no_unit_in_brackets() -> None:
-    """T22, SP 811 7.1: SEEN. Units of the tables stand with each number; figures come later."""
+    """T22, SP 811 7.1: SEEN. Units of tables stand with each number, axes name quantity/unit."""
     for name in PAGES:
         heads = re.findall(r'<th scope="col"[^>]*>([^<]*)<', page(name))
         assert len(heads) > 20

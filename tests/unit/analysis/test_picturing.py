@@ -75,8 +75,8 @@ def test_limit_is_met_where_the_formulas_say() -> None:
     """200 V is met at nominal where 300/C = 30, at greatest where 285/C = 53; least stays below."""
     found = curve("curve V_min against C_res from 5 µF to 20 µF with 200 V | valley")
     meetings = {each.end: each for each in found.meetings}
-    assert meetings["nominal"].at == (pytest.approx(10.0, rel=1e-5),)
-    assert meetings["greatest"].at == (pytest.approx(285 / 53, rel=1e-5),)
+    assert meetings["nominal"].at == pytest.approx((10.0,), rel=1e-5)
+    assert meetings["greatest"].at == pytest.approx((285 / 53,), rel=1e-5)
     assert (meetings["least"].at, meetings["least"].side) == ((), "below")
     assert (found.limit, found.limit_least) == ((200.0,), ())
 
@@ -85,10 +85,17 @@ def test_limit_that_moves_with_the_curve_is_compared_at_one_combination() -> Non
     """V_line - ΔV against V_line - 30 V: the line cancels, only the current counts."""
     found = curve("curve V_min against C_res from 5 µF to 20 µF with V_line - 30 V | valley")
     meetings = {each.end: each.at for each in found.meetings}
-    assert meetings["nominal"] == (pytest.approx(10.0, rel=1e-5),)
-    assert meetings["least"] == (pytest.approx(10.5, rel=1e-4),)
-    assert meetings["greatest"] == (pytest.approx(9.5, rel=1e-4),)
+    assert meetings["nominal"] == pytest.approx((10.0,), rel=1e-5)
+    assert meetings["least"] == pytest.approx((10.5,), rel=1e-4)
+    assert meetings["greatest"] == pytest.approx((9.5,), rel=1e-4)
     assert found.limit_least[0] == pytest.approx(177.0)
+
+
+def test_jump_over_the_limit_is_placed() -> None:
+    """A formula that jumps at 5.1 meets its limit there, not somewhere between two points."""
+    found = curve("curve y against x from 1 to 9 with 1.5 | jump",
+                  inputs="x = 5 ± 1 %", derive="y = if(x < 5.1, 1, 2)")  # fmt: skip
+    assert found.meetings[0].at == pytest.approx((5.1,), rel=1e-5)
 
 
 def test_gaps_are_none_and_said() -> None:
@@ -109,9 +116,10 @@ def test_temperatures_keep_their_scale() -> None:
         inputs="T_a = 25 °C ± 5 K\nP = 2 W ± 10 %\nR_th = 10 K/W",
         derive="T_j [°C] = T_a + P*R_th",
     )
-    assert (found.axis[0], found.nominal[0], found.least[0]) == (-20.0, 0.0, pytest.approx(-2.0))
+    assert (found.axis[0], found.nominal[0]) == (-20.0, 0.0)
+    assert found.least[0] == pytest.approx(-2.0)
     assert found.against_unit == found.unit == "°C"
-    assert found.meetings[0].at == (pytest.approx(60.0),)
+    assert found.meetings[0].at == pytest.approx((60.0,))
 
 
 # --- spreads -----------------------------------------------------------------------------------
@@ -213,12 +221,9 @@ def test_sensitivities_against_hand_arithmetic() -> None:
     """V_min = 230 V - 30 V: the line makes ±23 V, C -7.5 V and +5 V, I +1.5 V and -1.5 V."""
     (found,) = record_of("sensitivities of V_min | what drives it").figures
     assert isinstance(found, Sensitivities)
-    rows = [(each.symbol, each.low, each.high) for each in found.rows]
-    assert rows == [
-        ("V_line", pytest.approx(-23.0), pytest.approx(23.0)),
-        ("C_res", pytest.approx(-7.5), pytest.approx(5.0)),
-        ("I_reg", pytest.approx(1.5), pytest.approx(-1.5)),
-    ]
+    assert [each.symbol for each in found.rows] == ["V_line", "C_res", "I_reg"]
+    assert [each.low for each in found.rows] == pytest.approx([-23.0, -7.5, 1.5])
+    assert [each.high for each in found.rows] == pytest.approx([23.0, 5.0, -1.5])
     assert [(each.at_least, each.at_greatest) for each in found.rows][1] == ("8 µF", "12 µF")
     assert (found.rows[1].low_text, found.rows[1].high_text) == ("−7.50\u00a0V", "+5.00\u00a0V")
     assert found.left_out == 0

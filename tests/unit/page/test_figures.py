@@ -1,5 +1,6 @@
 """Figures on both pages: labels, text alternatives, and bytes that are the same twice."""
 
+import io
 import os
 import re
 import subprocess
@@ -9,13 +10,14 @@ from html import unescape
 from pathlib import Path
 from xml.etree import ElementTree as ET
 
+import pikepdf
 import pytest
 
 from calcdoc.page import charts
 from calcdoc.page.axes import apart, spread_out, ticks
 from calcdoc.page.html import html
-from calcdoc.page.marks import Run, named, per_unit
-from calcdoc.page.pdf import sheet_html
+from calcdoc.page.marks import Run, extent, named, per_unit
+from calcdoc.page.pdf import pdf, sheet_html
 from calcdoc.page.plot import svg
 from calcdoc.records.record import AnyFigure, Curve, Margins, Record
 from tests.helpers.design import worked
@@ -70,6 +72,18 @@ def test_lines_are_named_where_they_end(shown: Record) -> None:
         }
 
 
+def test_labels_stay_on_the_paper(shown: Record) -> None:
+    """Every label, as wide as it can be, lies within the picture, so that nothing is cut off."""
+    for figure in shown.figures:
+        for one in charts.drawings(figure):
+            frame = one.frame
+            for label in one.labels:
+                wide = extent(label.runs, label.size)
+                left = frame.left + frame.points_x(label.x) + label.right
+                left -= {"start": 0.0, "middle": 0.5, "end": 1.0}[label.anchor] * wide
+                assert -6 < left < left + wide < frame.width + 6, label
+
+
 def test_numbers_have_a_true_minus(shown: Record) -> None:
     """T17: no hyphen stands for a minus in any label."""
     for figure in shown.figures:
@@ -108,9 +122,8 @@ def test_same_bytes_twice_and_no_date(shown: Record) -> None:
         assert "metadata" not in one
         assert " style=" not in one
         assert "<use" not in one
-        assert all(
-            each.startswith(f"f{figure.number}-") for each in re.findall(r' id="([^"]+)"', one)
-        )
+        ids = re.findall(r' id="([^"]+)"', one)
+        assert all(each.startswith(f"f{figure.number}-") for each in ids)
 
 
 def test_settings_of_the_library_are_left_alone(shown: Record) -> None:
@@ -175,6 +188,22 @@ def test_odd_curves_are_drawn(derive: str, low: str, high: str) -> None:
     assert "nan" not in drawn(figure).lower()
 
 
+def test_long_names_leave_room_for_the_bars() -> None:
+    """Names of sixty letters are set smaller, and the axes keep their width."""
+    name = "V_" + "long" * 15
+    made = worked(
+        inputs=f"{name} = 1 V ± 10 %",
+        derive=f"y = 2*{name}",
+        criteria=f"R_{'x' * 60}: y <= 3 V",
+        figure=f"sensitivities of y | a\nmargins | b\nspread of {name} | c\n"
+        f"curve y against {name} from 1 V to 2 V with {name} | d",
+    ).record
+    for figure in made.figures:
+        (one,) = charts.drawings(figure)
+        assert one.frame.width - one.frame.left - one.frame.right > 80
+        assert name.removeprefix("V_")[:10] in drawn(figure) or isinstance(figure, Margins)
+
+
 def test_ticks_are_round_and_few() -> None:
     """Steps of one, two or five times a power of ten, within the axis."""
     assert ticks(4.7, 22.0, 8) == (5.0, 10.0, 15.0, 20.0)
@@ -214,3 +243,20 @@ def test_check_loads_no_matplotlib(tmp_path: Path) -> None:
     )
     assert said.stdout.splitlines()[-1] == "[]"
     assert '"kind": "curve"' in said.stdout
+
+
+@pytest.mark.slow
+@pytest.mark.timeout(180)
+@pytest.mark.filterwarnings("ignore::ResourceWarning")
+@pytest.mark.filterwarnings("ignore::pytest.PytestUnraisableExceptionWarning")
+def test_sheets_tell_what_pictures_show_and_hold_each_whole(shown: Record) -> None:
+    """Every picture of the PDF has its alternative text, its labels are text on one sheet."""
+    written = pdf(shown, b"", b"{}", issued=ISSUED)
+    with pikepdf.open(io.BytesIO(written)) as file:
+        found = [
+            str(each.Alt)
+            for each in file.objects
+            if isinstance(each, pikepdf.Dictionary) and each.get("/S") == "/Figure"
+        ]
+    assert sorted(found) == sorted(each.alternative for each in shown.figures)
+    assert pdf(shown, b"", b"{}", issued=ISSUED) == written
