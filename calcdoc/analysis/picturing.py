@@ -31,9 +31,9 @@ from calcdoc.text.statements import FigureStatement
 
 POINTS: Final = 61
 """Of a curve."""
-FINER: Final = 17
+FINER: Final = 9
 """Points between two of them, to find where a limit is crossed."""
-ROUNDS: Final = 3
+ROUNDS: Final = 5
 """How often it is looked at closer."""
 _ENDS: Final = ("nominal", "least", "greatest")
 
@@ -89,31 +89,44 @@ class _Axis:
         found = program.evaluate(points)[program.row[target]]
         return np.where(np.isfinite(found), found, np.nan)
 
-    def both_ends(self, target: int, axis: FloatArray) -> FloatArray:
-        """Least and greatest over the other bands, shape (2, n); NaN where not known."""
+    def extreme(self, target: int, axis: FloatArray, *, greatest: bool) -> FloatArray:
+        """Least or greatest over the other bands, shape (n,); NaN where it is not known."""
         box = self.compiled.box
         questions = []
-        for greatest in (False, True):
-            for at in axis:
-                low, mid, high = (self._at(each, at) for each in (box.low, box.nominal, box.high))
-                questions.append(Question(target, greatest, low, mid, high))
+        for at in axis:
+            low, mid, high = (self._at(each, at) for each in (box.low, box.nominal, box.high))
+            questions.append(Question(target, greatest, low, mid, high))
         answers = extremes(self.compiled.tape, questions)
         values = [
             each.value if np.isfinite(each.value) and np.isfinite(each.bound) else np.nan
             for each in answers
         ]
-        return np.array(values).reshape(2, -1)
+        return np.array(values)
 
     def all(self, target: int, axis: FloatArray) -> FloatArray:
         """Nominal, least and greatest, shape (3, n)."""
-        nominal, ends = self.nominal(target, axis), self.both_ends(target, axis)
+        reaches = reached(self.compiled.tape, target)
+        if self.column not in reaches:  # level: one point says it all
+            return np.repeat(self._all(target, axis[:1]), len(axis), axis=1)
+        return self._all(target, axis)
+
+    def _all(self, target: int, axis: FloatArray) -> FloatArray:
+        nominal = self.nominal(target, axis)
+        least, greatest = (self.extreme(target, axis, greatest=end) for end in (False, True))
         # Rounding may put an attained end a hair on the wrong side of the nominal value.
-        return np.stack((nominal, np.fmin(ends[0], nominal) + 0 * ends[0],
-                         np.fmax(ends[1], nominal) + 0 * ends[1]))  # fmt: skip
+        return np.stack((nominal, np.minimum(least, nominal), np.maximum(greatest, nominal)))
+
+    def still(self, target: int) -> bool:
+        """Whether nothing but the axis moves it."""
+        box = self.compiled.box
+        others = reached(self.compiled.tape, target) - {self.column}
+        return not any(box.low[column] < box.high[column] for column in others)
 
     def row(self, target: int, axis: FloatArray, end: int) -> FloatArray:
-        """One row of :meth:`all`; the nominal one costs little."""
-        return self.nominal(target, axis) if end == 0 else self.all(target, axis)[end]
+        """One row of :meth:`all`."""
+        if end == 0:
+            return self.nominal(target, axis)
+        return self.extreme(target, axis, greatest=end == 2)  # noqa: PLR2004  the last of three
 
     def meeting(self, target: int, axis: FloatArray, end: int, between: tuple[int, int]) -> float:
         """Where one row of :meth:`all` is zero: between two points, looked at closer and closer.
@@ -149,7 +162,8 @@ def _curve(compiled: Compiled, evaluation: Evaluation, number: int) -> Curve:
         along = moved.all(against.limit, axis)
         _check(along, "the limit cannot", statement)
         limit = _track(along)
-        meetings = _meetings(moved, against.difference, axis)
+        rows = drawn - along if moved.still(against.limit) else moved.all(against.difference, axis)
+        meetings = _meetings(moved, against.difference, axis, rows)
     places = tuple(float(each) for each in axis)
     return Curve(pictured, places, _track(drawn), limit, meetings)
 
@@ -176,9 +190,10 @@ def _track(values: FloatArray) -> Track:
     return Track(nominal, least, greatest)
 
 
-def _meetings(moved: _Axis, difference: int, axis: FloatArray) -> tuple[Meeting, ...]:
-    """Where curve less limit changes its sign, at nominal and at both ends."""
-    rows = moved.all(difference, axis)
+def _meetings(
+    moved: _Axis, difference: int, axis: FloatArray, rows: FloatArray
+) -> tuple[Meeting, ...]:
+    """Where curve less limit, given in ``rows``, changes its sign, at nominal and both ends."""
     found: list[Meeting] = []
     for end, name in enumerate(_ENDS):
         row = rows[end]
