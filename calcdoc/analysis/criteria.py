@@ -165,7 +165,7 @@ class Criteria:
 
     def _weighed(
         self, tried: Sequence[Mapping[str, Ready | Unjudged]], progress: Progress | None
-    ) -> dict[tuple[int, str], Weighed | str]:
+    ) -> dict[tuple[int, str], Weighed | Unjudged]:
         """What root sum square and sampling say, by the criterion's number and case."""
         ready = {
             (number, name): each
@@ -173,7 +173,7 @@ class Criteria:
             for name, each in in_case.items()
             if isinstance(each, Ready)
         }
-        found: dict[tuple[int, str], Weighed | str] = {
+        found: dict[tuple[int, str], Weighed | Unjudged] = {
             key: combine(self.compiled, each)
             for key, each in ready.items()
             if _by(each) == "root sum square"
@@ -188,13 +188,13 @@ class Criteria:
     def _judge(
         self,
         ready: Ready,
-        weighed: Weighed | str | None,
+        weighed: Weighed | Unjudged | None,
         roots: Roots,
         away: Mapping[str, Mapping[str, frozenset[str]]],
     ) -> Judgement | Unjudged:
         hearing, judged, case = ready.hearing, ready.hearing.judged, ready.hearing.case
-        if isinstance(weighed, str):
-            return Unjudged(judged, case, Outcome.NOT_DECIDED, weighed)
+        if isinstance(weighed, Unjudged):
+            return weighed
         if weighed is None:
             rows = tuple(judging.row_of(each) for each in ready.found)
             weighed = Weighed(rows, tuple(each.extreme.value for each in ready.found), None, ())

@@ -4,7 +4,7 @@ from collections.abc import Sequence
 from typing import Final
 
 from calcdoc.analysis.compile import Compiled
-from calcdoc.analysis.evaluation import Drawn, Outcome, Row
+from calcdoc.analysis.evaluation import Drawn, Outcome, Row, Unjudged
 from calcdoc.analysis.judging import EQUAL, Found, Hearing, holds
 from calcdoc.analysis.parts import Part, part_of, random_parts
 from calcdoc.analysis.points import FloatArray
@@ -107,8 +107,8 @@ def combine(compiled: Compiled, ready: Ready) -> Weighed:
 
 def sample(
     compiled: Compiled, ready: Sequence[Ready], setting: Setting, progress: Progress | None
-) -> list[Weighed | str]:
-    """Judge by sampling, all criteria with the same draws; a text says why one cannot be."""
+) -> list[Weighed | Unjudged]:
+    """Judge by sampling, all criteria with the same draws."""
     results = sampled(compiled.tape, [_job(each) for each in ready], setting, progress)
     return [_weighed(compiled, one, result) for one, result in zip(ready, results, strict=True)]
 
@@ -129,22 +129,30 @@ def _tolerance(found: Found) -> float:
     return EQUAL * max(abs(found.computed[side.value]), abs(found.computed[side.limit]))
 
 
-def _weighed(compiled: Compiled, ready: Ready, result: Sampled) -> Weighed | str:
+def _weighed(compiled: Compiled, ready: Ready, result: Sampled) -> Weighed | Unjudged:
     share = float(ready.hearing.judged.statement.clauses.share or 0)
     outcome = Outcome.NOT_DECIDED
     if result.lower >= share:
         outcome = Outcome.PASS
-    elif result.upper < share:
+    elif result.upper < share and not result.lost:
         outcome = Outcome.FAIL
-    rows, requirements = [], []
-    for found, spread in zip(ready.found, result.spreads, strict=True):
-        if spread.quantile is None:
-            return f"{result.lost} of {result.draws} draws could not be computed"
-        base = _At(compiled, found.side, spread.base)
-        rows.append(base.row(spread.quantile, outcome if len(ready.found) == 1 else None))
-        requirements.append(spread.quantile)
+    numbers = [each.quantile for each in result.spreads if each.quantile is not None]
+    if len(numbers) < len(result.spreads):
+        return _no_number(ready, result, outcome)
+    rows = tuple(
+        _At(compiled, found.side, spread.base).row(number, outcome if len(numbers) == 1 else None)
+        for found, spread, number in zip(ready.found, result.spreads, numbers, strict=True)
+    )
     drawn = tuple(Drawn(share, result, each) for each in result.spreads)
-    return Weighed(tuple(rows), tuple(requirements), outcome, drawn)
+    return Weighed(rows, tuple(numbers), outcome, drawn)
+
+
+def _no_number(ready: Ready, result: Sampled, outcome: Outcome) -> Unjudged:
+    """The quantile asked for is no number: draws are lost, or the condition is seldom true."""
+    reason = "its condition is true in so few draws that no quantile can be given"
+    if result.lost:
+        reason = f"{result.lost} of {result.draws} draws could not be computed"
+    return Unjudged(ready.hearing.judged, ready.hearing.case, outcome, reason)
 
 
 class _At:

@@ -4,6 +4,7 @@ from typing import Final
 
 import click
 
+from calcdoc.commands.bars import draw_bar
 from calcdoc.commands.checked import Checked, check_file, status_of
 from calcdoc.commands.table import verdict_table
 from calcdoc.problems.views import as_data
@@ -42,7 +43,8 @@ def _status(checked: Checked, *, accepted: bool) -> int:
 
 def _all_checked(files: tuple[str, ...]) -> list[Checked]:
     if len(files) < MANY:
-        return [check_file(name) for name in files]
+        with draw_bar() as told:
+            return [check_file(name, told) for name in files]
     from calcdoc.commands.many import check_many  # noqa: PLC0415  (a quick check needs none of it)
 
     return check_many(files)

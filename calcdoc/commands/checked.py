@@ -2,6 +2,7 @@
 
 from collections.abc import Mapping
 
+from calcdoc.analysis.sampling import Progress
 from calcdoc.errors import CalcdocError
 from calcdoc.frozen import Frozen
 from calcdoc.pipeline import Evaluated, evaluate, read, record
@@ -32,10 +33,10 @@ class Checked(Frozen, frozen=True):
     """Ids of criteria and cross-checks to where they stand."""
 
 
-def check_file(name: str) -> Checked:
+def check_file(name: str, progress: Progress | None = None) -> Checked:
     """Read and evaluate one file; trouble with it, even a fault of ours, is said, not raised."""
     try:
-        evaluated = evaluate(read(name))
+        evaluated = evaluate(read(name), progress)
         return _checked(name, evaluated)
     except CalcdocError as trouble:
         return Checked(name, WORLD_IS_WRONG, str(trouble))

@@ -16,15 +16,13 @@ from multiprocessing import active_children, get_context
 from threading import active_count
 from typing import Final
 
+from calcdoc.commands.bars import Tick, file_bar
 from calcdoc.commands.checked import WORLD_IS_WRONG, Checked, check_file
 from calcdoc.frozen import Frozen, replace
 
 Check = Callable[[str], Checked]
-Tick = Callable[[], object]
 _SELDOM: Final = 100_000
 """As on the command line: a search for garbage costs more than it finds."""
-_NO_BAR: Final = ("dumb", "unknown")
-"""Terminals that cannot draw over a line."""
 
 
 class _Work(Frozen, frozen=True):
@@ -45,7 +43,7 @@ def check_many(names: Sequence[str], check: Check = check_file, method: str = ""
     """
     workers = min(len(names), os.cpu_count() or 1)
     work = _Work(check, method or _method(), workers)
-    with _bar(len(names)) as tick:
+    with file_bar(len(names)) as tick:
         if workers > 1:
             return _side_by_side(names, work, tick)
         return [_ticked(check(name), tick) for name in names]
@@ -136,23 +134,3 @@ def _no_interrupt() -> Iterator[None]:
         yield
     finally:
         signal.pthread_sigmask(signal.SIG_SETMASK, before)
-
-
-@contextmanager
-def _bar(total: int) -> Iterator[Tick]:
-    """A bar on standard error that is gone when all is done; nothing where it is no terminal.
-
-    It is drawn at each step and has no thread of its own, which would slow the start of processes.
-    """
-    if not sys.stderr.isatty() or os.environ.get("TERM") in _NO_BAR:
-        yield lambda: None
-        return
-    from rich.console import Console  # noqa: PLC0415  (only for a terminal)
-    from rich.progress import BarColumn, MofNCompleteColumn, Progress  # noqa: PLC0415
-
-    columns = ("checking", BarColumn(), MofNCompleteColumn())
-    console = Console(stderr=True)
-    with Progress(*columns, console=console, transient=True, auto_refresh=False) as progress:
-        task = progress.add_task("", total=total)
-        progress.refresh()
-        yield lambda: progress.update(task, advance=1, refresh=True)

@@ -2,6 +2,7 @@
 
 import click
 
+from calcdoc.commands.bars import draw_bar
 from calcdoc.commands.checked import TEXT_HAS_ERRORS, WORLD_IS_WRONG
 from calcdoc.errors import CalcdocError
 from calcdoc.pipeline import FORMS, Evaluated, evaluate, file_stem, read, record
@@ -45,7 +46,8 @@ def write(files: tuple[str, ...], folder: str, forms: tuple[str, ...]) -> int:
 
 def _evaluated(name: str) -> Evaluated | None:
     try:
-        evaluated = evaluate(read(name))
+        with draw_bar() as told:
+            evaluated = evaluate(read(name), told)
     except CalcdocError as trouble:
         click.echo(f"calcdoc: {trouble}", err=True)
         return None

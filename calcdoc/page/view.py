@@ -157,7 +157,8 @@ class View:
         """A sentence that has pieces of formulas between back quotes."""
         parts = text.split("`")  # what stands between quotes has the odd places
         return "".join(
-            self._quoted(part) if at % 2 else self.sentence(part) for at, part in enumerate(parts)
+            self._quoted(part) if at % 2 else self.sentence(wording.ranges(part))
+            for at, part in enumerate(parts)
         )
 
     def _quoted(self, text: str) -> str:

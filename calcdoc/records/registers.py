@@ -168,8 +168,9 @@ def _accepted(numbers: dict[str, int]) -> str:
     """Accepted failures are failures, counted apart."""
     if not numbers["accepted"]:
         return ""
-    which = "accepted" if numbers["accepted"] == numbers["failed"] else "of them accepted"
-    return f" ({numbers['accepted']} {which})"
+    if numbers["accepted"] == numbers["failed"]:
+        return " (accepted)"
+    return f" ({numbers['accepted']} of them accepted)"
 
 
 def unsourced(model: Model) -> tuple[str, ...]:

@@ -142,6 +142,11 @@ def undecided(judgement: Judgement) -> str:
     drawn = judgement.statistics
     if not isinstance(drawn, Drawn) or judgement.outcome is not Outcome.NOT_DECIDED:
         return ""
+    if drawn.sampled.lost:
+        return (
+            f"{drawn.sampled.lost} of {drawn.sampled.draws} draws could not be computed, and the"
+            f" others do not suffice for {_share(drawn.share)}"
+        )
     low, high = _share(drawn.sampled.lower), _share(drawn.sampled.upper)
     return (
         f"between {low} and {high} of all parts meet it, each bound with 95\u00a0% confidence, and"

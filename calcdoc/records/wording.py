@@ -90,7 +90,16 @@ def clauses(text: str) -> str:
     """
     times = f"{NO_BREAK}×{NO_BREAK}(1{NO_BREAK}±{NO_BREAK}"
     text = _FACTOR.sub(lambda found: f"{found[1]}{times}{found[2]})", text)
-    return sentence(_RANGE.sub(" to ", text))
+    return sentence(ranges(text))
+
+
+def ranges(text: str) -> str:
+    """Ranges of the language as printed (rule T10).
+
+    >>> ranges("outside -1 .. 1")
+    'outside -1 to 1'
+    """
+    return _RANGE.sub(" to ", text)
 
 
 def opened(text: str, symbols: Container[str]) -> str:

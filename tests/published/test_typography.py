@@ -277,13 +277,19 @@ def test_t25_plus_minus_belongs_to_tolerances_only() -> None:
         allowed = set(re.findall(r"±\s([0-9.]+)", given))
         clauses_of = " ".join(each.clauses for each in shown.criteria)
         allowed |= set(re.findall(r"± ([0-9.]+)", clauses_of))
+        measured = " ".join(each.first_band for each in shown.crosschecks)
+        allowed |= set(re.findall(r"±\s([0-9.]+)", measured))
         allowed.add("10")  # the prose of the 120 V design names the band of its supply
         assert set(re.findall(r"±\s([0-9.]+)", html_text(name))) <= allowed
         assert not re.search(r"\bk = [0-9]", html_text(name))
 
 
 def test_t26_uncertainty_to_two_digits() -> None:
-    """T26, GUM 7.2.6: SECONDARY. Nothing prints one yet; the helpers round as the rule asks."""
+    """T26, GUM 7.2.6: SECONDARY. Standard errors of sampling have two significant digits."""
+    said = [each for name in PAGES for c in record(name).criteria for each in c.statistics]
+    errors = [found[1] for each in said if (found := re.search(rf"standard error ([^{NB}]+)", each))]
+    assert errors
+    assert all(len(re.sub(r"[^0-9]", "", each).lstrip("0")) == 2 for each in errors), errors
     assert rounding.upward(10.47) == "11"
     assert rounding.significant(28.05, 2) == "28"
     assert str(rounding.to_multiple("10.05762", "0.001")) == "10.058"
