@@ -6,6 +6,7 @@ from calcdoc.analysis.asking import Asker
 from calcdoc.analysis.compile import Compiled
 from calcdoc.analysis.evaluation import CaseBands
 from calcdoc.analysis.points import FloatArray
+from calcdoc.analysis.putting_back import Solutions
 from calcdoc.analysis.trouble import out_of_reach, said
 from calcdoc.analysis.working import InCase
 from calcdoc.model.model import Model
@@ -63,14 +64,14 @@ class CaseAsked:
             if key not in self.broken
         }
 
-    def bands(self, nominal: FloatArray, no_root: Mapping[str, str]) -> CaseBands:
+    def bands(self, nominal: FloatArray, solved: Solutions) -> CaseBands:
         """The answers.
 
         Args:
             nominal: The value of every instruction at the nominal point.
-            no_root: Quantities whose solution is none, with the reason.
+            solved: What is known of solutions in this case.
         """
-        asker, broken = self.asker, {**self.broken, **no_root}
+        asker, broken = self.asker, {**self.broken, **solved.bad}
         return CaseBands(
             {
                 key: asker.band(float(nominal[at]), asked)
@@ -82,4 +83,9 @@ class CaseAsked:
                 for key, each in self.series.items()
             },
             broken,
+            {
+                key: gain
+                for key in self.single
+                if key in solved.back and (gain := solved.back[key].gain) and not gain.settles
+            },
         )

@@ -70,6 +70,13 @@ class Compiled(Frozen, frozen=True):
         return self.cases[NORMAL]
 
     @property
+    def all_cases(self) -> tuple[InCase, ...]:
+        """Every case, also as criteria see it whose operating point wins over its changes."""
+        seen = [each.case for in_case in self.limits for each in in_case.values()
+                if isinstance(each, Limits)]  # fmt: skip
+        return (*self.cases.values(), *seen)
+
+    @property
     def variables(self) -> Mapping[str, int]:
         """Key of every quantity that is no series to its instruction in the normal case."""
         return self.normal.variables

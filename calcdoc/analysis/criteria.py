@@ -19,23 +19,15 @@ from calcdoc.analysis.evaluation import (
 from calcdoc.analysis.extremes import extremes
 from calcdoc.analysis.judging import Found, Hearing
 from calcdoc.analysis.program import plain
-from calcdoc.analysis.putting_back import running_away
+from calcdoc.analysis.putting_back import Solutions, put_back, solutions
 from calcdoc.analysis.sampling import Progress
 from calcdoc.analysis.sides import Side
 from calcdoc.analysis.statistical import Ready, Weighed, combine, parts_of, sample, setting_of
 from calcdoc.analysis.trouble import out_of_reach, said
-from calcdoc.frozen import Frozen, replace
+from calcdoc.frozen import replace
 from calcdoc.model.model import Judged, Model
 from calcdoc.problems import Finding
 from calcdoc.text.cases import NORMAL
-
-
-class Roots(Frozen, frozen=True):
-    """What is known of solved and settled quantities, by case."""
-
-    back: Mapping[str, Mapping[str, PutBack]]
-    bad: Mapping[str, Mapping[str, str]]
-    """Quantities whose solution does not satisfy its relation, with the reason."""
 
 
 class Criteria:
@@ -126,11 +118,12 @@ class Criteria:
 
     # --- judging -------------------------------------------------------------------------------
 
-    def concluded(self, roots: Roots, progress: Progress | None) -> tuple[Conclusion, ...]:
-        """Every criterion, when all questions are answered."""
-        away = {name: running_away(self.model, back) for name, back in roots.back.items()}
+    def concluded(
+        self, solved: Mapping[str, Solutions], progress: Progress | None
+    ) -> tuple[Conclusion, ...]:
+        """Every criterion, when all questions are answered; ``solved`` by case."""
         tried = [
-            {name: self._tried(each, roots) for name, each in in_case.items()}
+            {name: self._tried(each, solved) for name, each in in_case.items()}
             for in_case in self.heard
         ]
         weighed = self._weighed(tried, progress)
@@ -138,7 +131,7 @@ class Criteria:
             judging.concluded(
                 judged,
                 {
-                    name: self._judge(each, weighed.get((number, name)), roots, away)
+                    name: self._judge(each, weighed.get((number, name)))
                     if isinstance(each, Ready)
                     else each
                     for name, each in tried[number].items()
@@ -147,13 +140,16 @@ class Criteria:
             for number, judged in enumerate(judged_of(self.model))
         )
 
-    def _tried(self, hearing: Hearing | Unjudged, roots: Roots) -> Ready | Unjudged:
+    def _tried(
+        self, hearing: Hearing | Unjudged, solved: Mapping[str, Solutions]
+    ) -> Ready | Unjudged:
         """A criterion in a case with its extremes, or why there is nothing to judge."""
         if isinstance(hearing, Unjudged):
             return hearing
         judged, case = hearing.judged, hearing.case
-        reached = self._reached(judged.depends_on) if roots.bad[case] else set[str]()
-        for key, reason in roots.bad[case].items():
+        known = self._own_solutions(hearing) or solved[case]
+        reached = self._reached(judged.depends_on) if known.bad else set[str]()
+        for key, reason in known.bad.items():
             if key in reached:
                 return Unjudged(judged, case, Outcome.NOT_DECIDED, reason)
         found = tuple(self._found(hearing))
@@ -161,7 +157,22 @@ class Criteria:
             return nothing
         by = judged.statement.clauses.by
         parts = () if by == "extremes" else parts_of(self.compiled, self.model, hearing)
-        return Ready(hearing, found, parts)
+        return Ready(hearing, found, parts, known)
+
+    def _own_solutions(self, hearing: Hearing) -> Solutions | None:
+        """Solutions put back where the criterion is judged; None where the case has them.
+
+        An operating point may lie beyond the band, and it wins over changes of the case.
+        """
+        compiled, known, box = self.compiled, hearing.known, hearing.box
+        if box is self.asker.declared and known is compiled.cases[hearing.case]:
+            return None
+        reached = self._reached(hearing.judged.depends_on)
+        relations = {**compiled.normal.relations, **known.relations}
+        own = replace(known, relations={k: at for k, at in relations.items() if k in reached})
+        points = [box.nominal, *(self.asker.answers[at].point for at in hearing.asked)]
+        found = put_back(compiled, self.model, own, np.stack(points, axis=1), box)
+        return solutions(self.model, {}, found)
 
     def _weighed(
         self, tried: Sequence[Mapping[str, Ready | Unjudged]], progress: Progress | None
@@ -185,21 +196,16 @@ class Criteria:
             found |= zip(drawn, results, strict=True)
         return found
 
-    def _judge(
-        self,
-        ready: Ready,
-        weighed: Weighed | Unjudged | None,
-        roots: Roots,
-        away: Mapping[str, Mapping[str, frozenset[str]]],
-    ) -> Judgement | Unjudged:
-        hearing, judged, case = ready.hearing, ready.hearing.judged, ready.hearing.case
+    def _judge(self, ready: Ready, weighed: Weighed | Unjudged | None) -> Judgement | Unjudged:
+        hearing, judged = ready.hearing, ready.hearing.judged
+        back, away = ready.solutions.back, ready.solutions.away
         if isinstance(weighed, Unjudged):
             return weighed
         if weighed is None:
             rows = tuple(judging.row_of(each) for each in ready.found)
             weighed = Weighed(rows, tuple(each.extreme.value for each in ready.found), None, ())
         which = judging.governing_row(judged, weighed.rows, weighed.requirements)
-        running = tuple(sorted({k for each in judged.depends_on for k in away[case][each]}))
+        running = tuple(sorted({k for each in judged.depends_on for k in away[each]}))
         made = judging.judgement(
             hearing,
             ready.found,
@@ -212,7 +218,7 @@ class Criteria:
             weighed.statistics[which] if weighed.statistics else None,
         )
         outcome = weighed.outcome or made.outcome
-        return replace(made, outcome=_with_loops(outcome, running, roots.back[case]))
+        return replace(made, outcome=_with_loops(outcome, running, back))
 
     def _governing(self, ready: Ready, which: int) -> Combination:
         """Where the inputs stand; parts that vary on their own stand nowhere in particular."""

@@ -6,14 +6,14 @@ from calcdoc.analysis.asking import DECLARED, Asker, Key, Room, given_band, room
 from calcdoc.analysis.case_bands import CaseAsked, ask_cases
 from calcdoc.analysis.comparing import against_measured, crosschecked, discharged
 from calcdoc.analysis.compile import Compiled, Limits, compile_model
-from calcdoc.analysis.criteria import Criteria, Roots
-from calcdoc.analysis.evaluation import Band, Evaluation, PutBack, Restated, Sensitive
+from calcdoc.analysis.criteria import Criteria
+from calcdoc.analysis.evaluation import Band, Evaluation, Restated, Sensitive
 from calcdoc.analysis.points import evaluate_points
-from calcdoc.analysis.putting_back import put_back
+from calcdoc.analysis.putting_back import Solutions, put_back, solutions
 from calcdoc.analysis.sampling import Progress
 from calcdoc.analysis.sides import Side
 from calcdoc.analysis.statistical import setting_of
-from calcdoc.analysis.trouble import said, troubles
+from calcdoc.analysis.trouble import troubles
 from calcdoc.model.model import Judged, Model
 from calcdoc.problems import Finding, Mistake
 from calcdoc.text.cases import NORMAL
@@ -108,13 +108,13 @@ def _evaluated(
     ]
     times = _ask_times(asker, model, cases)
     asker.answer()
-    roots = _roots(asker, model)
+    solved = _solved(asker, model)
     nominal = evaluate_points(compiled.tape, found_rooms[DECLARED].box.nominal[:, None])[:, 0]
     bands = {
         key: asker.band(float(nominal[at]), asked[key]) if key in asked else _given(model, key)
         for key, at in compiled.variables.items()
     }
-    in_case = {each.case.name: each.bands(nominal, roots.bad[each.case.name]) for each in cases}
+    in_case = {each.case.name: each.bands(nominal, solved[each.case.name]) for each in cases}
     sampling = any(
         isinstance(each, Judged) and each.statement.clauses.by == "sampling"
         for each in model.criteria
@@ -128,7 +128,7 @@ def _evaluated(
             for key, elements in asked_series.items()
         },
         in_case,
-        criteria.concluded(roots, progress),
+        criteria.concluded(solved, progress),
         tuple(
             crosschecked(asker, compared, check, nominal, ends)
             for compared, check, ends in zip(
@@ -140,7 +140,7 @@ def _evaluated(
             for number, (each, ends) in enumerate(zip(model.measurements, measured, strict=True))
         ),
         compiled.chosen,
-        roots.back[NORMAL],
+        solved[NORMAL].back,
         tuple(
             discharged(asker, each, time, bands, in_case)
             for each, time in zip(model.discharges, times, strict=True)
@@ -170,31 +170,25 @@ def _ask_times(asker: Asker, model: Model, cases: list[CaseAsked]) -> list[dict[
     ]
 
 
-def _roots(asker: Asker, model: Model) -> Roots:
-    """Put solutions back at every point found.
+def _solved(asker: Asker, model: Model) -> dict[str, Solutions]:
+    """Put solutions back at every point found, by case.
 
     Raises:
         Mistake: when one does not satisfy its relation in the normal case.
     """
     points = asker.points()
     left = {
-        name: put_back(asker.compiled, model, case, points)
+        name: put_back(asker.compiled, model, case, points, asker.declared)
         for name, case in asker.compiled.cases.items()
     }
     for found in left[NORMAL].values():
         if isinstance(found, Finding):
             raise Mistake(found)
-    good = {
-        name: {key: each for key, each in found.items() if isinstance(each, PutBack)}
+    normal = solutions(model, {}, left[NORMAL])
+    return {
+        name: solutions(model, normal.back, found) if found else normal
         for name, found in left.items()
     }
-    return Roots(
-        {name: {**good[NORMAL], **found} for name, found in good.items()},
-        {
-            name: {key: said(each) for key, each in found.items() if isinstance(each, Finding)}
-            for name, found in left.items()
-        },
-    )
 
 
 def _restated(

@@ -256,6 +256,8 @@ class CaseBands(Frozen, frozen=True):
     """By key and index."""
     broken: Mapping[str, str]
     """Key of every quantity that cannot be computed in this case, with the reason."""
+    running: Mapping[str, Gain]
+    """The gain of every loop that is not proven to settle in this case, by key."""
 
 
 class Evaluation(Frozen, frozen=True):

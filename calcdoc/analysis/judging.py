@@ -24,7 +24,7 @@ from calcdoc.model.model import Judged
 EQUAL: Final = 1e-12
 """Share of the largest term below which a requirement counts as met with equality."""
 SLIGHTLY: Final = 1e-9
-"""Relative gap between what was attained and what is proven that is no reason to doubt."""
+"""Share of the largest term by which what is proven may lie beyond what was attained."""
 _WORST_FIRST: Final = (
     Outcome.FAIL,
     Outcome.NOT_DECIDED,
@@ -78,18 +78,18 @@ def row_of(found: Found) -> Row:
     value, limit = found.computed[side.value], found.computed[side.limit]
     slack = limit - value if side.relation[0] == "<" else value - limit
     tolerance = EQUAL * max(abs(value), abs(limit))
-    outcome = _outcome(side, extreme.value, extreme.bound, tolerance)
+    outcome = _outcome(side, extreme.value, extreme.bound, max(abs(value), abs(limit)))
     if _beside_its_condition(found):
         outcome = Outcome.NOT_APPLICABLE if extreme.bound >= extreme.value else Outcome.NOT_DECIDED
     slack = 0.0 if abs(slack) <= tolerance else slack
     return Row(side.element or 0, value, limit, slack, outcome)
 
 
-def _outcome(side: Side, requirement: float, bound: float, tolerance: float) -> Outcome:
+def _outcome(side: Side, requirement: float, bound: float, size: float) -> Outcome:
     """Pass when it is proven to hold, fail when a point breaks it, else not decided."""
-    if not holds(side, requirement, tolerance):
+    if not holds(side, requirement, EQUAL * size):
         return Outcome.FAIL
-    proven = holds(side, bound, tolerance) or requirement - bound <= SLIGHTLY * abs(requirement)
+    proven = holds(side, bound, EQUAL * size) or requirement - bound <= SLIGHTLY * size
     return Outcome.PASS if proven else Outcome.NOT_DECIDED
 
 

@@ -1,6 +1,7 @@
 """Criteria by root sum square and by sampling: parts vary on their own, all else at its worst."""
 
 from collections.abc import Sequence
+from math import isfinite
 from typing import Final
 
 from calcdoc.analysis.compile import Compiled
@@ -9,6 +10,7 @@ from calcdoc.analysis.judging import EQUAL, Found, Hearing, holds
 from calcdoc.analysis.parts import Part, part_of, random_parts
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import plain
+from calcdoc.analysis.putting_back import Solutions
 from calcdoc.analysis.root_sum_square import Combined, root_sum_square
 from calcdoc.analysis.sampling import Asked, Job, Progress, Sampled, Setting, sampled
 from calcdoc.analysis.sides import Side
@@ -21,6 +23,9 @@ from calcdoc.text.titleblock import TitleBlock
 DRAWS: Final = 100_000
 SEED: Final = 1
 """Both where the title block does not say."""
+_SELDOM: Final = "its condition is true in too few"
+_NOT_AT_NOMINAL: Final = "it cannot be computed with the parts at nominal"
+"""Where a condition leaves such points out."""
 
 
 class Weighed(Frozen, frozen=True):
@@ -40,6 +45,7 @@ class Ready(Frozen, frozen=True):
     hearing: Hearing
     found: tuple[Found, ...]
     parts: tuple[Part, ...]
+    solutions: Solutions
 
 
 def setting_of(title: TitleBlock) -> Setting:
@@ -71,13 +77,14 @@ def parts_of(compiled: Compiled, model: Model, hearing: Hearing) -> tuple[Part, 
 
 
 def _counts(compiled: Compiled, model: Model, hearing: Hearing) -> dict[str, int]:
-    """Numbers of like parts that the case changes."""
+    """Numbers of like parts that the case changes or the operating point sets."""
     names = {
         fold(like.count.name)
         for variable in model.variables.values()
         if variable.given and (like := variable.given.parts.like) and isinstance(like.count, Name)
     }
-    moved = sorted(names & hearing.known.changes.keys() & hearing.known.variables.keys())
+    stated = {each.symbol.key for each in hearing.judged.statement.clauses.at}
+    moved = sorted(names & (hearing.known.changes.keys() | stated) & hearing.known.variables.keys())
     if not moved:
         return {}
     rows = [hearing.known.variables[key] for key in moved]
@@ -88,8 +95,12 @@ def _counts(compiled: Compiled, model: Model, hearing: Hearing) -> dict[str, int
     }
 
 
-def combine(compiled: Compiled, ready: Ready) -> Weighed:
-    """Judge by root sum square: every limit on its own."""
+def combine(compiled: Compiled, ready: Ready) -> Weighed | Unjudged:
+    """Judge by root sum square: every limit on its own.
+
+    Effects start from the parts at nominal, so a condition that is false there leaves nothing to
+    combine.
+    """
     combined = [
         root_sum_square(
             compiled.tape, (each.side.requirement,), ready.parts, each.extreme.point,
@@ -100,6 +111,13 @@ def combine(compiled: Compiled, ready: Ready) -> Weighed:
     rows, requirements = [], []
     for found, each in zip(ready.found, combined, strict=True):
         base = _At(compiled, found.side, each.point)
+        if not base.applies:
+            return _unjudged(
+                ready,
+                Outcome.NOT_DECIDED,
+                "its condition is false with the parts at nominal, so there are no effects to"
+                " combine: judge it by extremes or by sampling",
+            )
         rows.append(base.row(each.requirement, None))
         requirements.append(each.requirement)
     return Weighed(tuple(rows), tuple(requirements), None, tuple(combined))
@@ -129,6 +147,10 @@ def _tolerance(found: Found) -> float:
     return EQUAL * max(abs(found.computed[side.value]), abs(found.computed[side.limit]))
 
 
+def _unjudged(ready: Ready, outcome: Outcome, reason: str) -> Unjudged:
+    return Unjudged(ready.hearing.judged, ready.hearing.case, outcome, reason)
+
+
 def _weighed(compiled: Compiled, ready: Ready, result: Sampled) -> Weighed | Unjudged:
     share = float(ready.hearing.judged.statement.clauses.share or 0)
     outcome = Outcome.NOT_DECIDED
@@ -136,23 +158,28 @@ def _weighed(compiled: Compiled, ready: Ready, result: Sampled) -> Weighed | Unj
         outcome = Outcome.PASS
     elif result.upper < share and not result.lost:
         outcome = Outcome.FAIL
-    numbers = [each.quantile for each in result.spreads if each.quantile is not None]
-    if len(numbers) < len(result.spreads):
-        return _no_number(ready, result, outcome)
-    rows = tuple(
-        _At(compiled, found.side, spread.base).row(number, outcome if len(numbers) == 1 else None)
-        for found, spread, number in zip(ready.found, result.spreads, numbers, strict=True)
-    )
+    rows, requirements = [], []
+    for found, spread in zip(ready.found, result.spreads, strict=True):
+        if spread.quantile is None and result.lost > (1 - share) * result.draws:
+            reason = f"{result.lost} of {result.draws} draws could not be computed"
+            return _unjudged(ready, Outcome.NOT_DECIDED, reason)
+        if spread.quantile is None:
+            return _unjudged(ready, outcome, _no_value(result, outcome, _SELDOM))
+        base = _At(compiled, found.side, spread.base)
+        if not isfinite(base.limit + base.margin):
+            return _unjudged(ready, outcome, _no_value(result, outcome, _NOT_AT_NOMINAL))
+        rows.append(base.row(spread.quantile, outcome if len(ready.found) == 1 else None))
+        requirements.append(spread.quantile)
     drawn = tuple(Drawn(share, result, each) for each in result.spreads)
-    return Weighed(rows, tuple(numbers), outcome, drawn)
+    return Weighed(tuple(rows), tuple(requirements), outcome, drawn)
 
 
-def _no_number(ready: Ready, result: Sampled, outcome: Outcome) -> Unjudged:
-    """The quantile asked for is no number: draws are lost, or the condition is seldom true."""
-    reason = "its condition is true in so few draws that no quantile can be given"
-    if result.lost:
-        reason = f"{result.lost} of {result.draws} draws could not be computed"
-    return Unjudged(ready.hearing.judged, ready.hearing.case, outcome, reason)
+def _no_value(result: Sampled, outcome: Outcome, why: str) -> str:
+    """The verdict of the draws, without the value of one of them."""
+    more = ": more draws decide" if outcome is Outcome.NOT_DECIDED else ""
+    return (
+        f"{result.met} of {result.draws} draws meet it; {why}, so there is no value to show{more}"
+    )
 
 
 class _At:
@@ -161,9 +188,11 @@ class _At:
     def __init__(self, compiled: Compiled, side: Side, point: FloatArray) -> None:
         self.side = side
         wanted = (side.value, side.limit, side.requirement)
-        part = plain(compiled.tape, wanted)
+        part = plain(compiled.tape, wanted if side.when is None else (*wanted, side.when))
         values = part.evaluate(point[:, None])[:, 0]
         value, self.limit, requirement = (float(values[part.row[at]]) for at in wanted)
+        self.applies = side.when is None or bool(values[part.row[side.when]])
+        """Whether its condition is true here."""
         self.sign = -1.0 if side.relation[0] == "<" else 1.0
         self.margin = self.sign * (value - self.limit) - requirement
         """What is asked for beyond the limit."""

@@ -120,9 +120,7 @@ class _Teller:
     def __init__(self, compiled: Compiled, model: Model) -> None:
         self.compiled, self.model = compiled, model
         self.shares = [each.share for each in compiled.checks if each.share]
-        self.of_root = {
-            at: key for case in compiled.cases.values() for key, at in case.roots.items()
-        }
+        self.of_root = {at: key for case in compiled.all_cases for key, at in case.roots.items()}
 
     def finding(self, hazard: Hazard, setter: Setter | None, *, at_nominal: bool) -> Finding:
         """The finding for a hazard."""

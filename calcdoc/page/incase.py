@@ -48,7 +48,18 @@ def case_tables(view: View) -> str:
     if not judged:
         return ""
     shown = "".join(_table(view, some) for some in _some(judged))
+    shown += "".join(_reasons(view, each) for each in judged)
     return f'<h3 id="cases">Verdicts by case</h3>\n{shown}'
+
+
+def _reasons(view: View, criterion: Criterion) -> str:
+    """Why a criterion is not decided in a case, where its own line does not say it."""
+    return "".join(
+        f'<p class="band"><span class="cl">{escape(criterion.id)} in {escape(name)}:</span>'
+        f" {verdict(here.verdict)}, {view.sentence(here.reason)}</p>\n"
+        for name, here in criterion.by_case.items()
+        if here.reason and name != criterion.case
+    )
 
 
 def _some(criteria: list[Criterion]) -> Iterator[list[Criterion]]:

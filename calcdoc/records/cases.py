@@ -1,11 +1,11 @@
 """Cases as the record shows them, and quantities in the cases that change them."""
 
-from calcdoc.analysis.evaluation import Band, CaseBands
+from calcdoc.analysis.evaluation import Band, CaseBands, Gain
 from calcdoc.model.model import Case
 from calcdoc.records import record as r
 from calcdoc.records.naming import Naming, case_key
 from calcdoc.records.numbers import Numbers
-from calcdoc.records.rounding import stored
+from calcdoc.records.rounding import significant, stored
 from calcdoc.records.values import computed, given_nominal
 from calcdoc.records.wording import band_in_words, typeset
 from calcdoc.text.cases import NORMAL
@@ -52,7 +52,7 @@ def in_cases(numbers: Numbers, key: str) -> dict[str, r.CaseValues]:
     found = {}
     for name, case in numbers.evaluation.cases.items():
         if key in case.bands:
-            found[name] = _values(numbers, key, case.bands[key])
+            found[name] = _values(numbers, key, case.bands[key], case.running.get(key))
         elif key in case.series:
             found[name] = _series(numbers, key, tuple(case.series[key].values()))
         elif key in case.broken:
@@ -62,14 +62,22 @@ def in_cases(numbers: Numbers, key: str) -> dict[str, r.CaseValues]:
     return found
 
 
-def _values(numbers: Numbers, key: str, band: Band) -> r.CaseValues:
+def _values(numbers: Numbers, key: str, band: Band, running: Gain | None) -> r.CaseValues:
     unit = numbers.units[key]
     nominal, least, greatest = (
         stored(unit.from_si(each)) for each in (band.nominal, band.least, band.greatest)
     )
     shown = _band(numbers, key, band)
     text = typeset(_value(numbers, key, band.nominal)) + (f", {shown}" if shown else "")
+    if running is not None:
+        text += f"; {_away(running)}"
     return r.CaseValues(nominal=nominal, least=least, greatest=greatest, text=text, reason="")
+
+
+def _away(gain: Gain) -> str:
+    if not gain.runs_away:
+        return "it could not be proven that the loop gain stays below one"
+    return f"thermal runaway: the loop gain reaches {typeset(significant(gain.value, 3))}"
 
 
 def _series(numbers: Numbers, key: str, bands: tuple[Band, ...]) -> r.CaseValues:

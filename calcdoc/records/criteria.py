@@ -103,7 +103,7 @@ def _calculated(numbers: Numbers, naming: Naming, conclusion: Conclusion) -> r.C
         unit=unit.text,
         verdict=conclusion.outcome.value,
         case=governing.case,
-        by_case={name: _in_case(each, unit) for name, each in conclusion.in_case.items()},
+        by_case={name: _in_case(numbers, each, unit) for name, each in conclusion.in_case.items()},
         unverified=unverified(numbers.evaluation, conclusion.judged),
         clauses=statement.clauses.text,
     )
@@ -119,7 +119,7 @@ def _in_words(unjudged: Unjudged) -> str:
     return f"in {unjudged.case}: {unjudged.reason}"
 
 
-def _in_case(judgement: Judgement | Unjudged, unit: Unit) -> r.CriterionCase:
+def _in_case(numbers: Numbers, judgement: Judgement | Unjudged, unit: Unit) -> r.CriterionCase:
     """A criterion in one case, in the unit of the criterion."""
     if isinstance(judgement, Unjudged):
         return r.CriterionCase(
@@ -130,6 +130,7 @@ def _in_case(judgement: Judgement | Unjudged, unit: Unit) -> r.CriterionCase:
             verdict=judgement.outcome.value,
             margin_text="",
             accepted=None,
+            reason=judgement.reason,
         )
     share = _share(judgement, judgement)
     return r.CriterionCase(
@@ -140,6 +141,7 @@ def _in_case(judgement: Judgement | Unjudged, unit: Unit) -> r.CriterionCase:
         verdict=judgement.outcome.value,
         margin_text=_margin_text(judgement, unit, share),
         accepted=None,
+        reason=_reason(numbers, judgement, unit),
     )
 
 

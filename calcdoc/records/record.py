@@ -358,6 +358,8 @@ class CriterionCase(Plain, frozen=True):
     margin_text: str
     """As in ``8.2 %`` or ``4.1 K``; empty where there is nothing to compare."""
     accepted: str | None
+    reason: str
+    """Why it is not decided, not applicable, or fails for another reason than its numbers."""
 
 
 class Criterion(Plain, frozen=True):

@@ -287,7 +287,9 @@ def test_t25_plus_minus_belongs_to_tolerances_only() -> None:
 def test_t26_uncertainty_to_two_digits() -> None:
     """T26, GUM 7.2.6: SECONDARY. Standard errors of sampling have two significant digits."""
     said = [each for name in PAGES for c in record(name).criteria for each in c.statistics]
-    errors = [found[1] for each in said if (found := re.search(rf"standard error ([^{NB}]+)", each))]
+    errors = [
+        found[1] for each in said if (found := re.search(rf"standard error ([^{NB}]+)", each))
+    ]
     assert errors
     assert all(len(re.sub(r"[^0-9]", "", each).lstrip("0")) == 2 for each in errors), errors
     assert rounding.upward(10.47) == "11"
