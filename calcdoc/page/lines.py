@@ -15,6 +15,8 @@ from calcdoc.records.wording import typeset as typeset_text
 
 GIVEN = frozenset({"condition", "input", "assumption"})
 NOT_COMPUTED = frozenset({"by test", "by inspection"})
+UNCALCULATED = frozenset({"test", "inspection", "none", "any of"})
+"""Methods of criteria that are no inequality."""
 BESIDE = 4
 """So many values of a governing combination stand in the right margin; more, below the verdict."""
 UNITS_SIZE = 0.78
@@ -46,8 +48,11 @@ def criterion_line(view: View, criterion: Criterion) -> str:
         f' <span class="cl">{view.clauses(criterion.clauses)}</span>' if criterion.clauses else ""
     )
     work = ""
-    if criterion.relation:
+    if criterion.method not in UNCALCULATED:
         work = f'<div class="eq">{view.math(criterion.text)}{clauses}</div>'
+    elif criterion.method == "any of" and what:
+        routes = criterion.text.removeprefix("any of ").split(", ")
+        work = f'<p class="step">any of {view.places(tuple(routes))}</p>'
     return (
         f'<div class="wl cr" id="c-{escape(criterion.id)}">'
         f'<span class="no">{escape(criterion.id)}</span>{_criterion_side(view, criterion)}'
@@ -73,11 +78,13 @@ def _rows(criterion: Criterion) -> str:
 
 def subject(criterion: Criterion) -> str:
     """What a criterion is about, in words; empty when only its inequality says it."""
-    if criterion.relation:
-        return criterion.description
-    if criterion.verdict == "not applicable" and criterion.description:
-        return criterion.description
-    return criterion.text
+    match criterion.method:
+        case "test" | "inspection":
+            return criterion.text
+        case "none" | "any of":
+            return criterion.description or criterion.text
+        case _:
+            return criterion.description
 
 
 def remark(criterion: Criterion) -> str:
