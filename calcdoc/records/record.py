@@ -362,6 +362,27 @@ class CriterionCase(Plain, frozen=True):
     """Why it is not decided, not applicable, or fails for another reason than its numbers."""
 
 
+class Share(Plain, frozen=True):
+    """How many draws meet a criterion that is judged by sampling; shares of one."""
+
+    asked: float
+    met: float
+    lower: float
+    """One-sided bound: the true share is at least this, with 95 % confidence."""
+    upper: float
+    """The same: it is at most this."""
+    lost: int
+    """Draws that could not be computed; they count as not meeting it."""
+
+
+class Contribution(Plain, frozen=True):
+    """What one part contributes to a criterion by root sum square, in the criterion's unit."""
+
+    symbol: str
+    effect: float
+    """To the limit at which the margin falls: zero or negative."""
+
+
 class Criterion(Plain, frozen=True):
     """One acceptance criterion with its verdict. Numbers are in ``unit`` at the governing point."""
 
@@ -392,6 +413,10 @@ class Criterion(Plain, frozen=True):
     """By sampling: 95 % confidence interval of ``value``, which is then a quantile."""
     standard_error: float | None
     """Of the same."""
+    share: Share | None
+    """By sampling."""
+    contributions: tuple[Contribution, ...]
+    """By root sum square, the greatest first."""
     unverified: tuple[str, ...]
     description: str
     basis: str

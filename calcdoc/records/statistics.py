@@ -6,6 +6,7 @@ from typing import Final
 from calcdoc.analysis.evaluation import Conclusion, Drawn, Evaluation, Judgement, Outcome
 from calcdoc.analysis.root_sum_square import Combined, Doubt
 from calcdoc.problems import Finding, warning
+from calcdoc.records import record as r
 from calcdoc.records.numbers import Numbers
 from calcdoc.records.rounding import apart, stored
 from calcdoc.records.values import difference, with_unit
@@ -52,6 +53,34 @@ def standard_error(judgement: Judgement, unit: Unit) -> float | None:
     if not isinstance(drawn, Drawn) or drawn.spread.standard_error is None:
         return None
     return stored(unit.difference_from_si(drawn.spread.standard_error))
+
+
+def share(judgement: Judgement) -> r.Share | None:
+    """How many draws meet it."""
+    drawn = judgement.statistics
+    if not isinstance(drawn, Drawn):
+        return None
+    found = drawn.sampled
+    return r.Share(
+        asked=drawn.share,
+        met=found.met / found.draws,
+        lower=stored(found.lower),
+        upper=stored(found.upper),
+        lost=found.lost,
+    )
+
+
+def contributions(numbers: Numbers, judgement: Judgement, unit: Unit) -> tuple[r.Contribution, ...]:
+    """What every part contributes by root sum square."""
+    combined = judgement.statistics
+    if not isinstance(combined, Combined):
+        return ()
+    return tuple(
+        r.Contribution(
+            symbol=_symbol(numbers, each.key), effect=stored(unit.difference_from_si(each.effect))
+        )
+        for each in combined.effects
+    )
 
 
 def said(numbers: Numbers, judgement: Judgement, unit: Unit) -> tuple[str, ...]:

@@ -114,6 +114,8 @@ def criterion(**values: object) -> r.Criterion:
         "rows": (),
         "interval": None,
         "standard_error": None,
+        "share": None,
+        "contributions": (),
         "unverified": (),
         "description": "",
         "basis": "",
