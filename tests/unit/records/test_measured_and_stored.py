@@ -133,7 +133,7 @@ def test_a_table_that_ends_only_in_a_fault(tmp_path: Path) -> None:
     (tmp_path / "tables").mkdir()
     (tmp_path / "tables" / "lin.toml").write_text(TABLE)
     blocks = (
-        "```inputs\na = 12 V ± 1 V\n```\n```derive\nx = lookup(\"lin\", a)\ny = 2*x\n```\n"
+        '```inputs\na = 12 V ± 1 V\n```\n```derive\nx = lookup("lin", a)\ny = 2*x\n```\n'
         "```cases\nfault out: a = 31 V\nfault last: a = 30 V\n```\n"
         "```criteria\nR: y <= 20 mm in every case\n```\n"
     )  # fmt: skip
