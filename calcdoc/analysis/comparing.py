@@ -51,13 +51,15 @@ def against_measured(asker: Asker, number: int, measured: Measured, asked: Ends)
     box, at = asker.rooms["measurement", number].box, asker.compiled.measured[number]
     second = float(plain(asker.compiled.tape, (at,)).evaluate(box.nominal[:, None])[-1, 0])
     least, first, greatest = measured.statement.given.si
+    equal = EQUAL * max(abs(first), abs(second))
+    difference = 0.0 if abs(first - second) <= equal else first - second
     own, other = first - least, high.value - second
-    if first < second:
+    if difference < 0:
         own, other = greatest - first, second - low.value
     allowed = float(np.hypot(own, max(other, 0.0)))
-    agrees = abs(first - second) <= allowed + EQUAL * max(abs(first), abs(second))
+    agrees = abs(difference) <= allowed + equal
     return AgainstMeasured(
-        measured, first, second, first - second, allowed, agrees,
+        measured, first, second, difference, allowed, agrees,
         low.value, high.value, weaker(low.proof, high.proof),
     )  # fmt: skip
 

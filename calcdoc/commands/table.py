@@ -1,5 +1,6 @@
 """The verdict table for the terminal."""
 
+from calcdoc.commands.verdicts import undecided
 from calcdoc.records.record import Criterion, Record
 from calcdoc.records.wording import counted, typeset
 from calcdoc.text.cases import NORMAL
@@ -69,6 +70,7 @@ def _bottom(record: Record) -> list[str]:
     """The bottom line, then what is open."""
     said = [record.verdict.bottom_line]
     said += [f"{each.id}: {each.reason}" for each in record.criteria if each.reason]
+    said += [f"{each.id} {case}" for each in record.criteria for case in undecided(each)]
     said += [f"{each.id}: {each.accepted}" for each in record.criteria if each.accepted]
     said += [
         f"{each.id} differs by {typeset(each.difference_text)}"

@@ -32,6 +32,7 @@ def criterion_said(criterion: Criterion) -> str:
             f"{case}{_at(criterion.governing)}"
         )
         remarks.insert(0, numbers)
+    remarks += undecided(criterion)
     if criterion.unverified:
         remarks.append(f"on unverified values: {', '.join(criterion.unverified)}")
     if criterion.accepted:
@@ -39,6 +40,15 @@ def criterion_said(criterion: Criterion) -> str:
     if criterion.route_of:
         remarks.append(f"one of the routes of {criterion.route_of}")
     return "; ".join(remarks or [criterion.text])
+
+
+def undecided(criterion: Criterion) -> list[str]:
+    """The cases without a verdict beside the one that governs, each with its reason."""
+    return [
+        f"not decided in {name}: {sentence(case.reason)}"
+        for name, case in criterion.by_case.items()
+        if case.verdict == "not decided" and name != criterion.case
+    ]
 
 
 def crosscheck_said(crosscheck: Crosscheck) -> str:

@@ -64,7 +64,10 @@ def _any_of(
 
 
 def accepted(model: Model, made: Mapping[str, r.Criterion]) -> dict[str, r.Criterion]:
-    """Failing criteria whose failure is accepted in every case in which they fail, by key."""
+    """Failing criteria whose failure is accepted in every case in which they fail, by key.
+
+    One with a case that is not decided is not among them.
+    """
     found: dict[str, r.Criterion] = {}
     for each in model.acceptances:
         criterion = found.get(each.criterion, made[each.criterion])
@@ -82,7 +85,9 @@ def _accepted(criterion: r.Criterion, acceptance: Accepted) -> r.Criterion:
         for name, each in criterion.by_case.items()
     }
     failing = [each for each in by_case.values() if each.verdict == "fail"]
-    whole = criterion.verdict == "fail" and all(each.accepted for each in failing)
+    # A case that is not decided may fail too, and nobody has accepted that.
+    decided = all(each.verdict != "not decided" for each in by_case.values())
+    whole = criterion.verdict == "fail" and decided and all(each.accepted for each in failing)
     if not by_case:  # several routes have no cases of their own
         whole = criterion.verdict == "fail" and not acceptance.cases
     texts = dict.fromkeys(each.accepted for each in failing if each.accepted)

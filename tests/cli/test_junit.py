@@ -71,6 +71,17 @@ def test_not_decided_is_an_error(shell: Shell) -> None:
     assert (root.get("failures"), root.get("errors")) == ("2", "1")
 
 
+def test_cases_routes_and_acceptances(shell: Shell) -> None:
+    """Accepted failures fail and say so, routes are cases with their numbers, to the byte."""
+    shell.put("cases.md", (REPORTS / "cases.md").read_bytes())
+    said = shell("check", "cases.md", "--format", "junit")
+    assert said.out == (REPORTS / "cases-junit.xml").read_text(encoding="utf-8")
+    assert said.status == 1
+    root = _read(said.out.encode())
+    (route,) = [each for each in root.iter("testcase") if each.get("name") == "H1: first way"]
+    assert [each.tag for each in route] == ["system-out"]
+
+
 def test_what_xml_cannot_hold(shell: Shell) -> None:
     """A character that XML has no spelling for is replaced, so that the document can be read."""
     put_files(shell)

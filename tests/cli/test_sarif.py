@@ -61,6 +61,23 @@ def test_whole_log(shell: Shell) -> None:
     assert said.status == 3
 
 
+def test_cases_routes_and_acceptances(shell: Shell) -> None:
+    """An accepted failure is suppressed with its reason; a route has no result of its own."""
+    shell.put("cases.md", (REPORTS / "cases.md").read_bytes())
+    said = shell("check", "cases.md", "--format", "sarif")
+    expected = (REPORTS / "cases-sarif.json").read_text(encoding="utf-8")
+    assert said.out == expected.replace("VERSION", __version__)
+    assert said.status == 1
+    results = _read(said.out.encode())["results"]
+    names = [each["message"]["text"].partition(":")[0] for each in results]
+    assert names == ["R2", "R3", "R4", "R5", "K1"]
+    suppressed = {name: each.get("suppressions") for name, each in zip(names, results, strict=True)}
+    why = "the load stands 6 V in short, until 2027-06-30"
+    accepted = [{"kind": "inSource", "status": "accepted", "justification": why}]
+    assert suppressed == {"R2": None, "R3": accepted, "R4": None, "R5": None, "K1": None}
+    assert [each["level"] for each in results] == ["error"] * 3 + ["warning", "error"]
+
+
 def test_regions_mark_what_is_meant(shell: Shell) -> None:
     """A region marks the statement of a verdict, and of a problem the smallest wrong piece."""
     put_files(shell)
