@@ -14,8 +14,7 @@ from typing import Final
 
 from calcdoc import __version__
 from calcdoc.analysis.evaluate import evaluate_model
-from calcdoc.analysis.evaluation import Evaluation
-from calcdoc.analysis.sampling import Progress
+from calcdoc.analysis.evaluation import Evaluation, Progress
 from calcdoc.beside import Beside, read_beside
 from calcdoc.errors import CalcdocError
 from calcdoc.folder import Folder, read_bytes, write_whole
@@ -29,7 +28,6 @@ from calcdoc.problems.views import full, has_errors, in_order
 from calcdoc.records.build import Circumstances, build_record
 from calcdoc.records.cautions import hazard_warning
 from calcdoc.records.record import Record, Tool
-from calcdoc.records.statistics import doubts
 from calcdoc.records.store import to_json
 from calcdoc.source import SourceFile, digest
 from calcdoc.text.document import read_document
@@ -131,9 +129,17 @@ def evaluate(design: Design, progress: Progress | None = None) -> Evaluated:
             *hazard_warning(evaluation),
             *outside_band(design.model),
             *expired(design.model),
-            *doubts(evaluation),
+            *_doubts(evaluation),
         )
     return Evaluated(design, evaluation, in_order((*design.findings, *findings)))
+
+
+def _doubts(evaluation: Evaluation) -> tuple[Finding, ...]:
+    if all(each.judged.statement.clauses.by == "extremes" for each in evaluation.conclusions):
+        return ()
+    from calcdoc.records.statistics import doubts  # noqa: PLC0415  (many designs need none)
+
+    return doubts(evaluation)
 
 
 def record(evaluated: Evaluated) -> Record:

@@ -13,16 +13,15 @@ from calcdoc.analysis.evaluation import (
     Conclusion,
     Judgement,
     Outcome,
+    Progress,
     PutBack,
     Unjudged,
 )
 from calcdoc.analysis.extremes import extremes
-from calcdoc.analysis.judging import Found, Hearing
+from calcdoc.analysis.judging import Found, Hearing, Ready, Weighed
 from calcdoc.analysis.program import plain
 from calcdoc.analysis.putting_back import Solutions, put_back, solutions
-from calcdoc.analysis.sampling import Progress
 from calcdoc.analysis.sides import Side
-from calcdoc.analysis.statistical import Ready, Weighed, combine, parts_of, sample, setting_of
 from calcdoc.analysis.trouble import out_of_reach, said
 from calcdoc.frozen import replace
 from calcdoc.model.model import Judged, Model
@@ -155,9 +154,11 @@ class Criteria:
         found = tuple(self._found(hearing))
         if nothing := judging.no_ground(judged, case, found):
             return nothing
-        by = judged.statement.clauses.by
-        parts = () if by == "extremes" else parts_of(self.compiled, self.model, hearing)
-        return Ready(hearing, found, parts, known)
+        if judged.statement.clauses.by == "extremes":
+            return Ready(hearing, found, (), known)
+        from calcdoc.analysis.statistical import parts_of  # noqa: PLC0415  (many need none)
+
+        return Ready(hearing, found, parts_of(self.compiled, self.model, hearing), known)
 
     def _own_solutions(self, hearing: Hearing) -> Solutions | None:
         """Solutions put back where the criterion is judged; None where the case has them.
@@ -182,19 +183,13 @@ class Criteria:
             (number, name): each
             for number, in_case in enumerate(tried)
             for name, each in in_case.items()
-            if isinstance(each, Ready)
+            if isinstance(each, Ready) and each.by != "extremes"
         }
-        found: dict[tuple[int, str], Weighed | Unjudged] = {
-            key: combine(self.compiled, each)
-            for key, each in ready.items()
-            if _by(each) == "root sum square"
-        }
-        drawn = {key: each for key, each in ready.items() if _by(each) == "sampling"}
-        if drawn:
-            setting = setting_of(self.model.document.title)
-            results = sample(self.compiled, list(drawn.values()), setting, progress)
-            found |= zip(drawn, results, strict=True)
-        return found
+        if not ready:
+            return {}
+        from calcdoc.analysis import statistical  # noqa: PLC0415  (many designs need none)
+
+        return statistical.weighed(self.compiled, self.model, ready, progress)
 
     def _judge(self, ready: Ready, weighed: Weighed | Unjudged | None) -> Judgement | Unjudged:
         hearing, judged = ready.hearing, ready.hearing.judged
@@ -202,8 +197,7 @@ class Criteria:
         if isinstance(weighed, Unjudged):
             return weighed
         if weighed is None:
-            rows = tuple(judging.row_of(each) for each in ready.found)
-            weighed = Weighed(rows, tuple(each.extreme.value for each in ready.found), None, ())
+            weighed = judging.by_extremes(ready)
         which = judging.governing_row(judged, weighed.rows, weighed.requirements)
         running = tuple(sorted({k for each in judged.depends_on for k in away[each]}))
         made = judging.judgement(
@@ -256,10 +250,6 @@ class Criteria:
                 reached.add(key)
                 waiting.extend(self.model.variables[key].depends_on)
         return reached
-
-
-def _by(ready: Ready) -> str:
-    return ready.hearing.judged.statement.clauses.by
 
 
 def _instructions(side: Side) -> tuple[int, ...]:

@@ -1,22 +1,24 @@
 """Evaluate a model: nominal, extremes, cases, criteria, cross-checks, discharge, on one tape."""
 
 from collections.abc import Mapping
+from typing import TYPE_CHECKING
 
-from calcdoc.analysis.asking import DECLARED, Asker, Key, Room, given_band, rooms
+from calcdoc.analysis.asking import DECLARED, Asker, Key, Room, given_band, judged_of, rooms
 from calcdoc.analysis.case_bands import CaseAsked, ask_cases
 from calcdoc.analysis.comparing import against_measured, crosschecked, discharged
 from calcdoc.analysis.compile import Compiled, Limits, compile_model
 from calcdoc.analysis.criteria import Criteria
-from calcdoc.analysis.evaluation import Band, Evaluation, Restated, Sensitive
+from calcdoc.analysis.evaluation import Band, Evaluation, Progress, Restated, Sensitive
 from calcdoc.analysis.points import evaluate_points
 from calcdoc.analysis.putting_back import Solutions, put_back, solutions
-from calcdoc.analysis.sampling import Progress
 from calcdoc.analysis.sides import Side
-from calcdoc.analysis.statistical import setting_of
 from calcdoc.analysis.trouble import troubles
-from calcdoc.model.model import Judged, Model
+from calcdoc.model.model import Model
 from calcdoc.problems import Finding, Mistake
 from calcdoc.text.cases import NORMAL
+
+if TYPE_CHECKING:
+    from calcdoc.analysis.draws import Setting
 
 
 def evaluate_model(
@@ -115,10 +117,6 @@ def _evaluated(
         for key, at in compiled.variables.items()
     }
     in_case = {each.case.name: each.bands(nominal, solved[each.case.name]) for each in cases}
-    sampling = any(
-        isinstance(each, Judged) and each.statement.clauses.by == "sampling"
-        for each in model.criteria
-    )
     return Evaluation(
         model,
         bands,
@@ -147,8 +145,17 @@ def _evaluated(
         ),
         compiled.looked,
         *_restated(model, bands, compiled),
-        setting_of(model.document.title) if sampling else None,
+        _setting(model),
     )  # fmt: skip
+
+
+def _setting(model: Model) -> "Setting | None":
+    """How parts are drawn; None when no criterion is judged by sampling."""
+    if not any(each.statement.clauses.by == "sampling" for each in judged_of(model)):
+        return None
+    from calcdoc.analysis.statistical import setting_of  # noqa: PLC0415  (many designs need none)
+
+    return setting_of(model.document.title)
 
 
 def _given(model: Model, key: str) -> Band:

@@ -1,19 +1,25 @@
 """What was computed: bands of quantities and judgements of criteria, in coherent SI."""
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from enum import Enum
+from typing import TYPE_CHECKING
 
-from calcdoc.analysis.counting import Sampled, Spread
-from calcdoc.analysis.draws import Setting
 from calcdoc.analysis.extremes import Proof
 from calcdoc.analysis.looking_up import LookedUp
-from calcdoc.analysis.pictured import Picture
-from calcdoc.analysis.root_sum_square import Combined
 from calcdoc.analysis.sides import Side
 from calcdoc.frozen import Frozen
 from calcdoc.model.model import Compared, Judged, Measured, Model, Root
 from calcdoc.text.nodes import Node
 from calcdoc.text.statements import RestateStatement, SensitivityStatement
+
+if TYPE_CHECKING:  # most designs need no statistics and no figures
+    from calcdoc.analysis.counting import Sampled, Spread
+    from calcdoc.analysis.draws import Setting
+    from calcdoc.analysis.pictured import Picture
+    from calcdoc.analysis.root_sum_square import Combined
+
+Progress = Callable[[int, int], object]
+"""Told how many draws of how many are done."""
 
 
 class Stand(Frozen, frozen=True):
@@ -76,8 +82,8 @@ class Drawn(Frozen, frozen=True):
 
     share: float
     """Of the draws that must meet the criterion."""
-    sampled: Sampled
-    spread: Spread
+    sampled: "Sampled"
+    spread: "Spread"
     """Of the requirement of this limit."""
 
 
@@ -108,7 +114,7 @@ class Judgement(Frozen, frozen=True):
     away: tuple[str, ...]
     """Keys of settled quantities it rests on whose loop gain may reach one: then it fails, or is
     not decided."""
-    statistics: Combined | Drawn | None = None
+    statistics: "Combined | Drawn | None" = None
     """By root sum square, by sampling, or None by extremes."""
 
 
@@ -282,7 +288,7 @@ class Evaluation(Frozen, frozen=True):
     looked: tuple[LookedUp, ...]
     restated: tuple[Restated, ...]
     sensitive: tuple[Sensitive, ...]
-    setting: Setting | None
+    setting: "Setting | None"
     """How parts were drawn; None when no criterion is judged by sampling."""
-    figures: tuple[Picture, ...] = ()
+    figures: "tuple[Picture, ...]" = ()
     """In the author's order."""

@@ -1,7 +1,7 @@
 """One criterion in one case: value, limit and outcome where limit less value is least."""
 
 from collections.abc import Mapping, Sequence
-from typing import Final
+from typing import TYPE_CHECKING, Final
 
 from calcdoc.analysis.box import Box
 from calcdoc.analysis.evaluation import (
@@ -15,11 +15,15 @@ from calcdoc.analysis.evaluation import (
 )
 from calcdoc.analysis.extremes import Extreme
 from calcdoc.analysis.points import FloatArray
-from calcdoc.analysis.root_sum_square import Combined
+from calcdoc.analysis.putting_back import Solutions
 from calcdoc.analysis.sides import Side
 from calcdoc.analysis.working import InCase
 from calcdoc.frozen import Frozen
 from calcdoc.model.model import Judged
+
+if TYPE_CHECKING:  # most criteria need no statistics
+    from calcdoc.analysis.parts import Part
+    from calcdoc.analysis.root_sum_square import Combined
 
 EQUAL: Final = 1e-12
 """Share of the largest term below which a requirement counts as met with equality."""
@@ -53,6 +57,38 @@ class Found(Frozen, frozen=True):
     extreme: Extreme
     computed: Mapping[int, float]
     """Value of every instruction that matters, at the point of the extreme."""
+
+
+class Weighed(Frozen, frozen=True):
+    """The limits of a criterion in one case, by its method."""
+
+    rows: tuple[Row, ...]
+    requirements: tuple[float, ...]
+    outcome: Outcome | None
+    """Over all limits, for sampling; None where each limit is judged on its own."""
+    statistics: "tuple[Combined | Drawn, ...]"
+    """For each limit; empty by extremes."""
+
+
+class Ready(Frozen, frozen=True):
+    """A criterion in one case with what was found at the extremes and the parts that vary."""
+
+    hearing: Hearing
+    found: tuple[Found, ...]
+    parts: "tuple[Part, ...]"
+    """By extremes none: there they move like all else."""
+    solutions: Solutions
+
+    @property
+    def by(self) -> str:
+        """The method it is judged by."""
+        return self.hearing.judged.statement.clauses.by
+
+
+def by_extremes(ready: Ready) -> Weighed:
+    """Every limit at its extreme."""
+    rows = tuple(row_of(each) for each in ready.found)
+    return Weighed(rows, tuple(each.extreme.value for each in ready.found), None, ())
 
 
 def no_ground(judged: Judged, case: str, found: Sequence[Found]) -> Unjudged | None:
@@ -124,7 +160,7 @@ def judgement(  # noqa: PLR0913  (what the judgement is made of)
     which: int,
     values: Mapping[str, float],
     away: tuple[str, ...],
-    statistics: Combined | Drawn | None = None,
+    statistics: "Combined | Drawn | None" = None,
 ) -> Judgement:
     """The criterion at its governing point."""
     row, extreme = rows[which], found[which].extreme

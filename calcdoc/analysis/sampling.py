@@ -4,7 +4,7 @@ All criteria of a run share the draws. Normal parts have no end, so a draw may l
 extremes; rectangular and triangular ones stay within their limits.
 """
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from fractions import Fraction
 from math import isfinite
 
@@ -14,6 +14,7 @@ from calcdoc.analysis.base_point import base_point
 from calcdoc.analysis.buffers import Pool, Source, Stream
 from calcdoc.analysis.counting import JobCount, Limit, Sampled, Spread
 from calcdoc.analysis.draws import Draws, Setting
+from calcdoc.analysis.evaluation import Progress
 from calcdoc.analysis.gradient import gradient
 from calcdoc.analysis.parts import Part, Variate
 from calcdoc.analysis.points import FloatArray
@@ -23,9 +24,6 @@ from calcdoc.analysis.tape import Tape
 from calcdoc.frozen import Frozen
 
 __all__ = ["Asked", "Job", "Progress", "Sampled", "Setting", "Spread", "drawn", "sampled"]
-
-Progress = Callable[[int, int], object]
-"""Called with the draws that are done and their total."""
 
 
 class Asked(Frozen, frozen=True):

@@ -1,51 +1,31 @@
 """Criteria by root sum square and by sampling: parts vary on their own, all else at its worst."""
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from math import isfinite
 from typing import Final
 
 from calcdoc.analysis.compile import Compiled
-from calcdoc.analysis.evaluation import Drawn, Outcome, Row, Unjudged
-from calcdoc.analysis.judging import EQUAL, Found, Hearing, holds
+from calcdoc.analysis.evaluation import Drawn, Outcome, Progress, Row, Unjudged
+from calcdoc.analysis.judging import EQUAL, Found, Hearing, Ready, Weighed, holds
 from calcdoc.analysis.parts import Part, part_of, random_parts
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import plain
-from calcdoc.analysis.putting_back import Solutions
-from calcdoc.analysis.root_sum_square import Combined, root_sum_square
-from calcdoc.analysis.sampling import Asked, Job, Progress, Sampled, Setting, sampled
+from calcdoc.analysis.root_sum_square import root_sum_square
+from calcdoc.analysis.sampling import Asked, Job, Sampled, Setting, sampled
 from calcdoc.analysis.sides import Side
-from calcdoc.frozen import Frozen
 from calcdoc.model.model import Model
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Name
 from calcdoc.text.titleblock import TitleBlock
 
+Key = tuple[int, str]
+"""Number and case of a criterion."""
 DRAWS: Final = 100_000
 SEED: Final = 1
 """Both where the title block does not say."""
 _SELDOM: Final = "its condition is true in too few"
 _NOT_AT_NOMINAL: Final = "it cannot be computed with the parts at nominal"
 """Where a condition leaves such points out."""
-
-
-class Weighed(Frozen, frozen=True):
-    """What the statistics say about the limits of a criterion in one case."""
-
-    rows: tuple[Row, ...]
-    requirements: tuple[float, ...]
-    outcome: Outcome | None
-    """Over all limits, for sampling; None where each limit is judged on its own."""
-    statistics: tuple[Combined | Drawn, ...]
-    """For each limit."""
-
-
-class Ready(Frozen, frozen=True):
-    """A criterion in one case with what was found at the extremes and the parts that vary."""
-
-    hearing: Hearing
-    found: tuple[Found, ...]
-    parts: tuple[Part, ...]
-    solutions: Solutions
 
 
 def setting_of(title: TitleBlock) -> Setting:
@@ -93,6 +73,21 @@ def _counts(compiled: Compiled, model: Model, hearing: Hearing) -> dict[str, int
     return {
         key: max(1, round(float(values[part.row[at]]))) for key, at in zip(moved, rows, strict=True)
     }
+
+
+def weighed(
+    compiled: Compiled, model: Model, ready: Mapping[Key, Ready], progress: Progress | None
+) -> dict[Key, Weighed | Unjudged]:
+    """What root sum square and sampling say, by the criterion's number and case."""
+    found: dict[Key, Weighed | Unjudged] = {
+        key: combine(compiled, each) for key, each in ready.items() if each.by == "root sum square"
+    }
+    drawn = {key: each for key, each in ready.items() if each.by == "sampling"}
+    if drawn:
+        setting = setting_of(model.document.title)
+        results = sample(compiled, list(drawn.values()), setting, progress)
+        found |= zip(drawn, results, strict=True)
+    return found
 
 
 def combine(compiled: Compiled, ready: Ready) -> Weighed | Unjudged:

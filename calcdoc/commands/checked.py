@@ -2,7 +2,7 @@
 
 from collections.abc import Mapping
 
-from calcdoc.analysis.sampling import Progress
+from calcdoc.analysis.evaluation import Progress
 from calcdoc.errors import CalcdocError
 from calcdoc.frozen import Frozen
 from calcdoc.pipeline import Evaluated, evaluate, read, record

@@ -1,8 +1,8 @@
 """From evaluation to record: everything a page shows, in order."""
 
 from collections.abc import Mapping
+from typing import TYPE_CHECKING
 
-from calcdoc.analysis.draws import Setting
 from calcdoc.analysis.evaluation import Evaluation
 from calcdoc.frozen import Frozen
 from calcdoc.problems import Finding
@@ -13,7 +13,6 @@ from calcdoc.records.cases import cases
 from calcdoc.records.cautions import cautions, hazards
 from calcdoc.records.checks import crosschecks, relations
 from calcdoc.records.criteria import criteria
-from calcdoc.records.figures import figures
 from calcdoc.records.method import method_statement
 from calcdoc.records.naming import name_lines
 from calcdoc.records.numbers import Numbers
@@ -24,6 +23,9 @@ from calcdoc.source import digest
 from calcdoc.text import prose
 from calcdoc.text.names import fold
 from calcdoc.text.titleblock import TitleBlock
+
+if TYPE_CHECKING:
+    from calcdoc.analysis.draws import Setting
 
 
 class Embedded(Frozen, frozen=True):
@@ -82,7 +84,7 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
         methods=method_statement(
             lines, judged, title.digits, looked_up=bool(evaluation.looked), cases=bool(model.cases)
         ),
-        figures=figures(numbers, judged),
+        figures=_figures(numbers, judged),
         notices=unsourced(model),
         problems=tuple(_problem(evaluation, each) for each in in_order(made.findings)),
         body=body,
@@ -111,7 +113,15 @@ def _document(title: TitleBlock, subtitle: str) -> r.Document:
     )
 
 
-def _sampling(setting: Setting | None) -> r.Sampling | None:
+def _figures(numbers: Numbers, judged: tuple[r.Criterion, ...]) -> tuple[r.AnyFigure, ...]:
+    if not numbers.evaluation.figures:
+        return ()
+    from calcdoc.records.figures import figures  # noqa: PLC0415  (many designs have none)
+
+    return figures(numbers, judged)
+
+
+def _sampling(setting: "Setting | None") -> r.Sampling | None:
     if setting is None:
         return None
     return r.Sampling(

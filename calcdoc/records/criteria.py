@@ -5,7 +5,6 @@ from calcdoc.frozen import replace
 from calcdoc.model.accepting import key_of
 from calcdoc.model.model import Judged, Typed
 from calcdoc.records import record as r
-from calcdoc.records import statistics
 from calcdoc.records.accepting import accepted, routes
 from calcdoc.records.looked import unverified
 from calcdoc.records.naming import Naming
@@ -154,7 +153,7 @@ def _with_numbers(
     value, limit = stored(unit.from_si(judgement.value)), stored(unit.from_si(judgement.limit))
     shown, bound = apart(value, limit, numbers.digits)
     share = _share(judgement, judgement)
-    return replace(
+    by_numbers = replace(
         made,
         value=value,
         limit=limit,
@@ -170,14 +169,14 @@ def _with_numbers(
         value_text=with_unit(shown, unit),
         limit_text=with_unit(bound, unit),
         margin_text=_margin_text(judgement, unit, share),
-        interval=statistics.interval(judgement, unit),
-        standard_error=statistics.standard_error(judgement, unit),
-        share=statistics.share(judgement),
-        contributions=statistics.contributions(numbers, judgement, unit),
         remark=_remark(judgement, unit, share),
-        statistics=statistics.said(numbers, judgement, unit),
-        proof="" if judgement.statistics else judgement.proof.value,
+        proof=judgement.proof.value,
     )
+    if judgement.statistics is None:
+        return by_numbers
+    from calcdoc.records.statistics import with_statistics  # noqa: PLC0415  (many need none)
+
+    return with_statistics(numbers, by_numbers, judgement, unit)
 
 
 def _element(judgement: Judgement) -> dict[str, str]:
@@ -308,7 +307,7 @@ def _reason(numbers: Numbers, judgement: Judgement, unit: Unit) -> str:
         return f"it rests on {names}, whose loop gain is not proven to stay below one"
     digits = numbers.digits
     if judgement.outcome is not Outcome.NOT_DECIDED or judgement.statistics:
-        return statistics.undecided(judgement)
+        return ""
     attained = difference(judgement.requirement, unit, digits)
     if judgement.bound == float("-inf"):
         return f"the least margin found by search is {attained}; no bound on it could be proven"

@@ -5,6 +5,7 @@ from typing import Final
 
 from calcdoc.analysis.evaluation import Conclusion, Drawn, Evaluation, Judgement, Outcome
 from calcdoc.analysis.root_sum_square import Combined, Doubt
+from calcdoc.frozen import replace
 from calcdoc.problems import Finding, warning
 from calcdoc.records import record as r
 from calcdoc.records.numbers import Numbers
@@ -23,6 +24,22 @@ _DOUBTS: Final = {
     Doubt.ZERO: "to first order the parts have no effect here, but their limits have",
     Doubt.CURVED: "first order is wrong here: the limits do not move it as the slopes say",
 }
+
+
+def with_statistics(
+    numbers: Numbers, criterion: r.Criterion, judgement: Judgement, unit: Unit
+) -> r.Criterion:
+    """A criterion by root sum square or sampling, with what they say; they prove nothing."""
+    return replace(
+        criterion,
+        interval=interval(judgement, unit),
+        standard_error=standard_error(judgement, unit),
+        share=share(judgement),
+        contributions=contributions(numbers, judgement, unit),
+        statistics=said(numbers, judgement, unit),
+        reason=criterion.reason or undecided(judgement),
+        proof="",
+    )
 
 
 def interval(judgement: Judgement, unit: Unit) -> tuple[float | None, float | None] | None:
