@@ -17,7 +17,7 @@ from calcdoc.text.nodes import Node
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import CaseStatement, Change, Label, Scope
 
-MOST_CASES: Final = 1000
+MOST_CASES: Final = 200
 MODE: Final = "mode"
 FAULT: Final = "fault"
 

@@ -155,6 +155,8 @@ def _drawn(numbers: Numbers, judgement: Judgement, drawn: Drawn, unit: Unit) -> 
         f" {typeset(str(sampled.draws))} draws meet it, at least {_share(sampled.lower)} with"
         f" 95\u00a0% confidence; asked for {_share(drawn.share)}."
     )
+    if judgement.judged.statement.clauses.when is not None:
+        yield "Draws for which its condition is false count as meeting it."
     if sampled.lost:
         yield f"{counted(sampled.lost, 'draw')} could not be computed and count as not meeting it."
     ends = interval(judgement, unit)

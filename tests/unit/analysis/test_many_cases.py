@@ -4,7 +4,7 @@ import pytest
 
 from tests.helpers.design import worked
 
-N_CASES = 1000
+N_CASES = 200
 
 
 def test_a_thousand_cases() -> None:
