@@ -7,7 +7,7 @@ from tests.helpers.design import worked
 N_CASES = 200
 
 
-def test_a_thousand_cases() -> None:
+def test_two_hundred_cases() -> None:
     """Every case has its numbers; the worst of them governs."""
     done = worked(
         inputs="a = 1 ± 1 %\nb = 2 ± 1 %",
@@ -16,8 +16,8 @@ def test_a_thousand_cases() -> None:
         criteria="R: z <= 1e9 in every case\nS: y >= 1 in every case",
     )
     found = done.criterion("R")
-    assert (found.verdict, found.case, len(found.by_case)) == ("pass", f"f{N_CASES - 1}", 1001)
-    assert found.value == pytest.approx((1010 * 2.02) ** 2 + 1010)
+    assert (found.verdict, found.case, len(found.by_case)) == ("pass", f"f{N_CASES - 1}", N_CASES + 1)
+    assert found.value == pytest.approx((202 * 2.02) ** 2 + 202)
     assert done["z"].by_case["f7"].nominal == 264
     assert done.criterion("S").by_case["f1"].value == pytest.approx(2 * 2 * 0.99**2)
 
