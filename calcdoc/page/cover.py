@@ -15,14 +15,14 @@ from calcdoc.records.record import Assumption, Criterion, Crosscheck
 from calcdoc.records.wording import counted
 
 VERDICTS: Final = (
-    Column("id", 3.5),
-    Column("criterion", 27),
-    Column("value", 10.5, "num"),
-    Column("limit", 9.5, "num"),
+    Column("id", 4),
+    Column("criterion", 25.5),
+    Column("value", 12, "num"),
+    Column("limit", 10.5, "num"),
     Column("margin", 6.5, "num"),
-    Column("", 6.5),
-    Column("verdict", 11.5),
-    Column("governed by", 25, "gov"),
+    Column("", 6),
+    Column("verdict", 11),
+    Column("governed by", 24.5, "gov"),
 )
 KIND: Final = "Calculation record"
 LONG: Final = 24
