@@ -6,7 +6,7 @@ from typing import Final
 
 from calcdoc.problems import Mistake, error
 from calcdoc.text.cases import case_names
-from calcdoc.text.cells import basis, columns, label, plain
+from calcdoc.text.cells import basis, columns, plain, used
 from calcdoc.text.names import LETTER
 from calcdoc.text.passage import Passage
 from calcdoc.text.scan import Scanner
@@ -24,9 +24,9 @@ _DATE: Final = re.compile(r"[0-9]{4}-[0-9]{2}-[0-9]{2}")
 
 def any_of(scanner: Scanner, name: Label, description: str, source: Basis) -> AnyOf:
     """``ID ":" "any of" ID ("," ID)+``, behind ``any of``."""
-    members = [label(scanner, "the id of a criterion")]
+    members = [used(scanner, "the id of a criterion")]
     while scanner.take(_COMMA):
-        members.append(label(scanner, "the id of a further criterion"))
+        members.append(used(scanner, "the id of a further criterion"))
     if not scanner.ended:
         scanner.refuse("`,` and a further criterion, or the end of the criterion")
     if len(members) == 1:
@@ -47,7 +47,7 @@ def acceptance(statement: Passage) -> Acceptance:
     first, reason, source = columns(statement, ACCEPT_COLUMNS)
     scanner = Scanner(first)
     scanner.expect(ACCEPT, "`accept`")
-    criterion = label(scanner, "the id of a criterion")
+    criterion = used(scanner, "the id of a criterion")
     cases: tuple[Label, ...] = ()
     if scanner.take(_IN):
         if scanner.look(_EVERY):

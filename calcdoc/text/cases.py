@@ -5,7 +5,7 @@ import unicodedata
 from typing import Final
 
 from calcdoc.problems import Finding, Mistake, error
-from calcdoc.text.cells import basis, columns, label, plain
+from calcdoc.text.cells import basis, columns, plain, used
 from calcdoc.text.formula import LONGEST, formula
 from calcdoc.text.given import MAKEUP_WORD, Given, Style, given
 from calcdoc.text.makeup import with_makeup
@@ -206,7 +206,7 @@ def _between_digits(text: str, at: int) -> bool:
 def _change(piece: Passage) -> Change:
     """``SYMBOL "=" (given | sum)``; a number with its unit and band is a value."""
     scanner = Scanner(piece)
-    symbol = label(scanner, "a symbol and what it becomes, as in n_LED = n_LED - 1")
+    symbol = used(scanner, "a symbol and what it becomes, as in n_LED = n_LED - 1")
     if scanner.look(_BRACKET):
         scanner.refuse("`=` (the unit of a value stands after its number)")
     scanner.expect(_EQUALS, "`=`")

@@ -4,9 +4,9 @@ import re
 from typing import Final
 
 from calcdoc.problems import Mistake, error
-from calcdoc.text.names import SYMBOL
+from calcdoc.text.names import OF_METHOD, SYMBOL
 from calcdoc.text.passage import Passage
-from calcdoc.text.scan import Scanner
+from calcdoc.text.scan import Scanner, one_dot, shown
 from calcdoc.text.statements import Basis, Citation, Label
 
 _CITATION: Final = re.compile(r"\[([^\[\],]+)(?:,([^\[\]]*))?\]")
@@ -61,11 +61,27 @@ def columns(statement: Passage, names: tuple[str, ...]) -> list[Passage]:
 
 
 def label(scanner: Scanner, what: str) -> Label:
-    """A symbol or id."""
-    found = scanner.look(SYMBOL)
-    if found is None:
+    """A symbol or id of this text itself, as where it is defined."""
+    found = used(scanner, what)
+    if "." in found.name:
+        raise Mistake(
+            error(
+                "method-symbol",
+                f"{shown(found.name)} belongs to a method, it cannot stand here",
+                found.span,
+                help="a name with a dot is what a method gives, and can be used but not defined",
+            )
+        )
+    return found
+
+
+def used(scanner: Scanner, what: str) -> Label:
+    """A symbol or id that is spoken of: of this text, or of a method it applies."""
+    if scanner.look(SYMBOL) is None:
         scanner.refuse(what)
-    scanner.at = found.end()
+    found = scanner.take(OF_METHOD)
+    assert found is not None
+    one_dot(scanner, found)
     return Label(found.group(), scanner.span(*found.span()))
 
 

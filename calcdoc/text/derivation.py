@@ -7,7 +7,7 @@ from typing import Final, NoReturn
 from calcdoc.problems import Finding, Mistake, error
 from calcdoc.source import Span
 from calcdoc.text import literal
-from calcdoc.text.cells import basis, columns, label, labelled, plain
+from calcdoc.text.cells import basis, columns, label, labelled, plain, used
 from calcdoc.text.formula import formula
 from calcdoc.text.given import Given, Style, given
 from calcdoc.text.names import LETTER
@@ -170,6 +170,13 @@ def _labels(scanner: Scanner, what: str) -> tuple[Label, ...]:
     return tuple(found)
 
 
+def _used(scanner: Scanner, what: str) -> tuple[Label, ...]:
+    found = [used(scanner, what)]
+    while scanner.take(_COMMA):
+        found.append(used(scanner, what))
+    return tuple(found)
+
+
 def _bracket(scanner: Scanner) -> Given:
     value = given(scanner)
     if value.style is not Style.RANGE or not value.varies:
@@ -208,9 +215,9 @@ def _settle(scanner: Scanner, description: str, source: Basis) -> SettleStatemen
 def _restate(scanner: Scanner, description: str, source: Basis) -> RestateStatement:
     """``"restate" SYMBOL "in" SYMBOL ("," SYMBOL)*``"""
     _no_basis(source, scanner)
-    symbol = label(scanner, "the symbol to restate")
+    symbol = used(scanner, "the symbol to restate")
     scanner.expect(_IN, "`in` and the quantities to keep")
-    terms = _labels(scanner, "a quantity to keep")
+    terms = _used(scanner, "a quantity to keep")
     return RestateStatement(symbol, terms, description, scanner.passage.whole)
 
 
@@ -218,9 +225,9 @@ def _sensitivity(scanner: Scanner, description: str, source: Basis) -> Sensitivi
     """``"sensitivity" "of" SYMBOL "to" SYMBOL ("," SYMBOL)*``"""
     _no_basis(source, scanner)
     scanner.expect(_OF, "`of` and a symbol")
-    symbol = label(scanner, "the symbol whose sensitivity is asked")
+    symbol = used(scanner, "the symbol whose sensitivity is asked")
     scanner.expect(_TO, "`to` and the quantities it depends on")
-    inputs = _labels(scanner, "a quantity it depends on")
+    inputs = _used(scanner, "a quantity it depends on")
     return SensitivityStatement(symbol, inputs, description, scanner.passage.whole)
 
 

@@ -6,7 +6,7 @@ from typing import Final, NoReturn
 
 from calcdoc.frozen import replace
 from calcdoc.problems import Mistake, error
-from calcdoc.text.cells import columns, label, plain
+from calcdoc.text.cells import columns, plain, used
 from calcdoc.text.formula import formula
 from calcdoc.text.given import Given, Style, given, no_makeup
 from calcdoc.text.names import LETTER, nearest
@@ -53,9 +53,9 @@ def figure(statement: Passage) -> FigureStatement:
 
 def _curve(scanner: Scanner) -> FigureStatement:
     """``"curve" SYMBOL "against" SYMBOL "from" value "to" value ["with" sum]``"""
-    symbol = label(scanner, "the symbol of the curve")
+    symbol = used(scanner, "the symbol of the curve")
     scanner.expect(_AGAINST, "`against` and the quantity along the axis")
-    against = label(scanner, "the symbol of the quantity along the axis")
+    against = used(scanner, "the symbol of the quantity along the axis")
     scanner.expect(_FROM, "`from` and where the axis begins, as in from 4.7 µF to 22 µF")
     low = _value(scanner)
     scanner.expect(_TO, "`to` and where the axis ends")
@@ -90,7 +90,7 @@ def _limit(scanner: Scanner) -> Node | None:
 def _spread(scanner: Scanner) -> FigureStatement:
     """``"spread" "of" SYMBOL ["with" sum]``"""
     scanner.expect(_OF, "`of` and a symbol")
-    symbol = label(scanner, "the symbol whose spread is drawn")
+    symbol = used(scanner, "the symbol whose spread is drawn")
     limit = _limit(scanner)
     passage = scanner.passage
     return FigureStatement(
@@ -101,7 +101,7 @@ def _spread(scanner: Scanner) -> FigureStatement:
 def _sensitivities(scanner: Scanner) -> FigureStatement:
     """``"sensitivities" "of" SYMBOL``"""
     scanner.expect(_OF, "`of` and a symbol")
-    symbol = label(scanner, "the symbol whose sensitivities are drawn")
+    symbol = used(scanner, "the symbol whose sensitivities are drawn")
     passage = scanner.passage
     return FigureStatement(
         "sensitivities", symbol, None, None, None, None, "", plain(passage), passage.whole

@@ -6,7 +6,7 @@ from typing import Final
 
 from calcdoc.problems import Mistake, error
 from calcdoc.text import literal
-from calcdoc.text.names import FUNCTIONS, SYMBOL, nearest
+from calcdoc.text.names import FUNCTIONS, OF_METHOD, SYMBOL, nearest
 from calcdoc.text.nodes import (
     Binary,
     Call,
@@ -22,7 +22,7 @@ from calcdoc.text.nodes import (
     children,
 )
 from calcdoc.text.passage import Passage, passage_of
-from calcdoc.text.scan import Scanner, not_yet, shown
+from calcdoc.text.scan import Scanner, one_dot, shown
 
 DEEPEST: Final = 60
 """Parentheses and functions within each other."""
@@ -151,7 +151,6 @@ class _Parser:
     def _named(self, found: re.Match[str]) -> Node:
         """``call = function "(" condition ("," condition)* ")"``; ``element = name "[" sum "]"``"""
         name, text = found.group(), self.scanner.passage.text
-        span = self.scanner.span(*found.span())
         follows = text[found.end() : found.end() + 1]
         if follows == "(":
             return self._call(found)
@@ -160,14 +159,13 @@ class _Parser:
             if name in FUNCTIONS:
                 self.scanner.at = found.end()
             return self.scanner.refuse(wanted)
-        self.scanner.at = found.end()
-        if follows == "[":
-            return self._element(name, found)
-        of_method = SYMBOL.match(text, found.end() + 1) if follows == "." else None
-        if of_method:
-            raise Mistake(
-                not_yet("a symbol of a method", self.scanner.span(found.start(), of_method.end()))
-            )
+        whole = OF_METHOD.match(text, found.start())
+        assert whole is not None
+        name, span = whole.group(), self.scanner.span(*whole.span())
+        self.scanner.at = whole.end()
+        one_dot(self.scanner, whole)
+        if text[whole.end() : whole.end() + 1] == "[":
+            return self._element(name, whole)
         return Name(name, span)
 
     def _call(self, found: re.Match[str]) -> Node:

@@ -17,6 +17,8 @@ SYMBOL: Final = re.compile(
     rf"[{LETTER}][{LETTER}{MARK}0-9]*(?:_[{LETTER}0-9][{LETTER}{MARK}0-9]*)*"
 )
 """A letter, then letters and digits, then ``_`` and a subscript (which may hold ``_`` again)."""
+OF_METHOD: Final = re.compile(rf"(?:{SYMBOL.pattern}\.)?{SYMBOL.pattern}")
+"""A symbol, or one of a method with the method's name before it: ``bridge.V_min``."""
 
 GREEK: Final = {
     "alpha": "α", "beta": "β", "gamma": "γ", "delta": "δ", "epsilon": "ε", "zeta": "ζ",
@@ -51,7 +53,19 @@ def fold(name: str) -> str:
 
     >>> fold("theta_JA") == fold("θ_JA"), fold("\u2206V") == fold("ΔV")
     (True, True)
+
+    The name of a method before a symbol is a symbol of its own: ``tau.tau`` is ``τ.τ``.
     """
+    return ".".join(map(_folded, name.split(".")))
+
+
+def owner(key: str) -> str:
+    """The key of the method that a symbol belongs to; empty for one of the design."""
+    method, dot, _ = key.partition(".")
+    return method if dot else ""
+
+
+def _folded(name: str) -> str:
     composed = unicodedata.normalize("NFC", name).translate(_LOOK_ALIKES)
     base, joint, subscript = composed.partition("_")
     return GREEK.get(base, base).translate(_LOOK_ALIKES) + joint + subscript

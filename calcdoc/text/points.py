@@ -3,7 +3,7 @@
 import re
 from typing import Final
 
-from calcdoc.text.cells import label
+from calcdoc.text.cells import used
 from calcdoc.text.given import given, no_makeup
 from calcdoc.text.scan import Scanner
 from calcdoc.text.statements import Label, PointValue
@@ -16,7 +16,7 @@ def point(scanner: Scanner, wanted: str) -> tuple[PointValue, ...]:
     """``point = SYMBOL "=" given ("," SYMBOL "=" given)*``"""
     values: list[PointValue] = []
     while True:
-        symbol: Label = label(scanner, wanted)
+        symbol: Label = used(scanner, wanted)
         scanner.expect(_EQUALS, "`=`")
         values.append(PointValue(symbol, given(scanner)))
         no_makeup(scanner)

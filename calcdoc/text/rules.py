@@ -6,7 +6,7 @@ from typing import Final
 
 from calcdoc.problems import Mistake, error
 from calcdoc.text.cases import case
-from calcdoc.text.cells import basis, columns, label, labelled, plain, state
+from calcdoc.text.cells import basis, columns, label, labelled, plain, state, used
 from calcdoc.text.crosschecks import crosscheck
 from calcdoc.text.derivation import derivation
 from calcdoc.text.given import given
@@ -114,12 +114,12 @@ def hazard(statement: Passage) -> Statement:
         scanner.refuse("`supply V`, `stored C at V through R` or `not isolated`")
     symbols: list[Label] = []
     if found[1] != "not isolated":
-        symbols.append(label(scanner, "a symbol"))
+        symbols.append(used(scanner, "a symbol"))
     if found[1] == "stored":
         scanner.expect(_AT, "`at` and the voltage")
-        symbols.append(label(scanner, "the symbol of the voltage"))
+        symbols.append(used(scanner, "the symbol of the voltage"))
         if scanner.take(_THROUGH):
-            symbols.append(label(scanner, "the symbol of the bleed resistor"))
+            symbols.append(used(scanner, "the symbol of the bleed resistor"))
     if not scanner.ended:
         scanner.refuse("the end of the statement")
     return HazardStatement(found[1], tuple(symbols), plain(first), first.whole)

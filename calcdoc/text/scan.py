@@ -16,6 +16,7 @@ from calcdoc.text.passage import Passage
 
 _FAMILIAR: Final = re.compile(rf"[{LETTER}]")
 _BLANKS: Final = re.compile(r"[ \n]*")
+_DOTTED: Final = re.compile(rf"(?:\.[{LETTER}][{LETTER}{MARK}0-9_]*)+")
 _PIECE: Final = rf"(?s)[{LETTER}][{LETTER}{MARK}0-9_]*|[0-9][0-9.]*|."
 """What stands here, for a mistake; compiled when there is one."""
 
@@ -122,6 +123,20 @@ def _advice(wanted: str, found: str) -> str:
     if implied and found not in TYPICAL and wanted.startswith("an operator or the end"):
         return "write * to multiply"
     return TYPICAL.get(found, "")
+
+
+def one_dot(scanner: Scanner, found: re.Match[str]) -> None:
+    """Refuse a name with two dots, as ``a.b.c``; ``found`` is ``a.b``."""
+    more = _DOTTED.match(scanner.passage.text, found.end())
+    if "." in found.group() and more:
+        raise Mistake(
+            error(
+                "method-symbol",
+                "a name has one dot at most",
+                scanner.span(found.start(), more.end()),
+                help="write the method's name and what it gives, as in bridge.V_min",
+            )
+        )
 
 
 SHOWN_MOST: Final = 40
