@@ -6,7 +6,7 @@ Each stage returns what it made and what it found; only a text without errors go
 """
 
 import os
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from datetime import UTC, datetime
 from importlib import import_module
 from pathlib import Path
@@ -18,18 +18,20 @@ from calcdoc.analysis.evaluation import Evaluation, Progress
 from calcdoc.beside import Beside, read_beside
 from calcdoc.errors import CalcdocError
 from calcdoc.folder import Folder, read_bytes, write_whole
-from calcdoc.frozen import Frozen
+from calcdoc.frozen import Frozen, replace
+from calcdoc.methods.apply import expand
 from calcdoc.model.accepting import expired
 from calcdoc.model.build import build
 from calcdoc.model.judging import outside_band
 from calcdoc.model.model import Model
-from calcdoc.problems import Finding, error
+from calcdoc.problems import Finding
 from calcdoc.problems.views import full, has_errors, in_order
 from calcdoc.records.build import Circumstances, build_record
 from calcdoc.records.cautions import hazard_warning
 from calcdoc.records.record import Record, Tool
 from calcdoc.records.store import to_json
-from calcdoc.source import SourceFile, digest
+from calcdoc.source import SourceFile
+from calcdoc.text.decode import decoded
 from calcdoc.text.document import read_document
 
 FORMS: Final = ("html", "pdf", "json")
@@ -56,11 +58,18 @@ class Design(Frozen, frozen=True):
     findings: tuple[Finding, ...]
     beside: Beside = Beside()
     """The files it uses."""
+    sheets: Mapping[str, SourceFile] = {}
+    """The sheets of methods it applies, by the path that places in them name."""
 
     @property
     def ok(self) -> bool:
         """Whether the text has no errors so far."""
         return not has_errors(self.findings)
+
+    @property
+    def sources(self) -> Mapping[str, SourceFile]:
+        """Every text that findings may point into, by path."""
+        return {**self.sheets, self.source.path: self.source}
 
 
 class Evaluated(Frozen, frozen=True):
@@ -78,7 +87,7 @@ class Evaluated(Frozen, frozen=True):
 
     def problems(self) -> str:
         """Every finding with its line and caret, in the order of the text."""
-        sources = {self.design.source.path: self.design.source}
+        sources = self.design.sources
         return "\n\n".join(full(each, sources) for each in in_order(self.findings))
 
 
@@ -97,17 +106,21 @@ def read(path: str | os.PathLike[str]) -> Design:
     name = os.fspath(path)
     data = read_bytes(Path(name), name)
     # A name that is no UTF-8 cannot stand in a record as it is.
-    source, findings = _decoded(os.fsencode(name).decode("utf-8", "replace"), data)
+    source, findings = decoded(os.fsencode(name).decode("utf-8", "replace"), data)
     if findings:
         return Design(source, data, None, findings)
     document, findings = read_document(source)
     if document is None:
         return Design(source, data, None, in_order(findings))
-    beside, trouble = read_beside(document, Folder(Path(name).parent))
-    model, more = build(document, beside.tables)
-    if has_errors(trouble):
+    folder = Folder(Path(name).parent)
+    expanded, wrong = expand(document, folder.read)
+    beside, trouble = read_beside(expanded.document, folder)
+    beside = replace(beside, files={**beside.files, **expanded.files})
+    model, more = build(expanded.document, beside.tables)
+    if has_errors((*wrong, *trouble)):
         model = None
-    return Design(source, data, model, in_order((*findings, *trouble, *more)), beside)
+    findings = in_order((*findings, *wrong, *trouble, *more))
+    return Design(source, data, model, findings, beside, expanded.sheets)
 
 
 def evaluate(design: Design, progress: Progress | None = None) -> Evaluated:
@@ -223,22 +236,3 @@ def _issued(made: Record) -> datetime:
     if made.document.date:
         return datetime.fromisoformat(made.document.date).replace(tzinfo=UTC)
     return datetime(1980, 1, 1, tzinfo=UTC)
-
-
-def _decoded(name: str, data: bytes) -> tuple[SourceFile, tuple[Finding, ...]]:
-    r"""The normalised text: no byte-order mark, line ends as ``\\n``."""
-    body = data.removeprefix(b"\xef\xbb\xbf")
-    text = body.decode("utf-8", errors="replace").replace("\r\n", "\n").replace("\r", "\n")
-    source = SourceFile(name, text, digest(data))
-    try:
-        body.decode("utf-8")
-    except UnicodeDecodeError as trouble:
-        before = body[: trouble.start].decode("utf-8").replace("\r\n", "\n").replace("\r", "\n")
-        span = source.span(len(before), len(before) + 1)
-        return source, (error("not-utf8", "the text is not UTF-8 from here on", span,
-                              help="save the file as UTF-8"),)  # fmt: skip
-    at = text.find("\0")
-    if at >= 0:
-        return source, (error("nul-character", "the text holds a NUL character",
-                              source.span(at, at + 1), help="remove it"),)  # fmt: skip
-    return source, ()

@@ -165,7 +165,8 @@ class _Builder(Working):
         word = token.info.split()[0] if token.info.split() else ""
         opening = self.source.line(first)
         start = self.source.line_start(first)
-        column = opening.rfind(word) if word else 0
+        marks = max(0, opening.find(token.markup)) + len(token.markup)
+        column = opening.find(word, marks) if word else 0
         span = self.source.span(
             start + column, start + column + len(word) if word else start + len(opening)
         )

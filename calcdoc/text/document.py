@@ -3,22 +3,23 @@
 import re
 from collections.abc import Callable, Iterator
 from itertools import pairwise
-from typing import Final
+from typing import Final, TypeVar
 
 from calcdoc.frozen import Frozen, replace
 from calcdoc.problems import Finding, Mistake, Place, error, warning
 from calcdoc.source import SourceFile, Span
-from calcdoc.text import prose
+from calcdoc.text import prose, sheets
 from calcdoc.text.commonmark import Fence, read_prose
 from calcdoc.text.criteria import criterion
 from calcdoc.text.figures import figure
-from calcdoc.text.names import SYMBOL, fold
+from calcdoc.text.names import SYMBOL, fold, owner
 from calcdoc.text.passage import Passage
 from calcdoc.text.rules import RULES
-from calcdoc.text.scan import not_yet, shown
-from calcdoc.text.statements import Statement
+from calcdoc.text.scan import shown
+from calcdoc.text.statements import Applied, Statement
 from calcdoc.text.titleblock import TitleBlock, title_block
 
+T = TypeVar("T")
 LARGEST: Final = 2_000_000
 """Characters of a design text."""
 _STATEMENT_RULES: Final[dict[str, Callable[[Passage], Statement]]] = {
@@ -27,8 +28,12 @@ _STATEMENT_RULES: Final[dict[str, Callable[[Passage], Statement]]] = {
     "figure": figure,
 }
 _OTHER_BLOCKS: Final = ("document", "caution")
-_COMING: Final = ("use", "takes", "gives")
-BLOCK_WORDS: Final = (*_OTHER_BLOCKS, *_STATEMENT_RULES, *_COMING)
+_OF_METHODS: Final = ("use", "takes", "gives")
+BLOCK_WORDS: Final = (*_OTHER_BLOCKS, *_STATEMENT_RULES, *_OF_METHODS)
+_OF_SHEETS: Final = (
+    *("document", "takes", "gives", "derive", "crosschecks", "criteria", "caution", "references"),
+)
+"""Blocks that a sheet may have."""
 SIGNALS: Final = ("danger", "warning", "caution", "notice")
 _FENCE_LINE: Final = re.compile(r" {0,3}(?P<marks>`{3,}|~{3,}) *(?P<word>[a-z]+)(?: .*)?")
 _DEEP_FENCE: Final = re.compile(
@@ -50,7 +55,10 @@ class Document(Frozen, frozen=True):
     title: TitleBlock
     body: tuple[prose.Block, ...]
     broken: frozenset[str] = frozenset()
-    """Keys of names that lines define which could not be read; they are not unknown."""
+    """Keys of names that lines define which could not be read; they are not unknown. The key of a
+    method that could not be applied stands for all it gives."""
+    applied: tuple[Applied, ...] = ()
+    """The methods it applies, in the author's order."""
 
     @property
     def statements(self) -> tuple[Statement, ...]:
@@ -62,6 +70,10 @@ class Document(Frozen, frozen=True):
             for each in block.statements
         )
 
+    def is_broken(self, key: str) -> bool:
+        """Whether a name, or the method it belongs to, is defined by what could not be read."""
+        return key in self.broken or owner(key) in self.broken
+
 
 def walk(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Block]:
     """Blocks and the blocks within them, in order."""
@@ -70,7 +82,7 @@ def walk(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Block]:
         if isinstance(block, prose.Items):
             for item in block.items:
                 yield from walk(item)
-        elif isinstance(block, prose.Quote | prose.CautionBlock):
+        elif isinstance(block, prose.Quote | prose.CautionBlock | prose.Method):
             yield from walk(block.blocks)
 
 
@@ -105,8 +117,10 @@ def pictures(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Picture]:
     return (each for each in inlines(blocks) if isinstance(each, prose.Picture))
 
 
-def read_document(source: SourceFile) -> tuple[Document | None, tuple[Finding, ...]]:
-    """Read a design text; None when it is too large to be read.
+def read_document(
+    source: SourceFile, *, sheet: bool = False
+) -> tuple[Document | None, tuple[Finding, ...]]:
+    """Read a design text, or the sheet of a method; None when it is too large to be read.
 
     Every mistake of the file is reported; a wrong statement is left out and reading goes on, so
     a document with errors among its findings is good for further checks only.
@@ -122,7 +136,7 @@ def read_document(source: SourceFile) -> tuple[Document | None, tuple[Finding, .
                 help="split the design into several texts",
             ),
         )
-    reader = _Reader(source)
+    reader = _Reader(source, sheet=sheet)
     body, findings = read_prose(source, source.text, 1, reader.fence)
     reader.findings += findings
     reader.find_deep_blocks()
@@ -132,7 +146,9 @@ def read_document(source: SourceFile) -> tuple[Document | None, tuple[Finding, .
                 "missing-document",
                 "the text has no `document` block",
                 source.span(0, min(1, size)),
-                help="begin with ```document, then number, title and revision, then ```",
+                help="begin with ```document, then title and revision, then ```"
+                if sheet
+                else "begin with ```document, then number, title and revision, then ```",
             )
         )
     title = reader.title or TitleBlock("", "", "")
@@ -142,8 +158,9 @@ def read_document(source: SourceFile) -> tuple[Document | None, tuple[Finding, .
 class _Reader:
     """Reads the fenced blocks of one text and collects what is wrong with them."""
 
-    def __init__(self, source: SourceFile) -> None:
+    def __init__(self, source: SourceFile, *, sheet: bool) -> None:
         self.source = source
+        self.sheet = sheet
         self.findings: list[Finding] = []
         self.title: TitleBlock | None = None
         self.broken: frozenset[str] = frozenset()
@@ -209,6 +226,8 @@ class _Reader:
 
     def _read(self, fence: Fence) -> prose.Block | None:
         """What a block of its kind says."""
+        if fence.word in BLOCK_WORDS and self._misplaced(fence):
+            return None
         if fence.word == "document":
             self._document(fence)
             return None
@@ -216,11 +235,47 @@ class _Reader:
             return self._caution(fence)
         if fence.word in _STATEMENT_RULES:
             return self._statements(fence, _STATEMENT_RULES[fence.word])
-        if fence.word in _COMING:
-            self.findings.append(not_yet(f"a `{fence.word}` block", fence.opening))
-            return None
+        if fence.word in _OF_METHODS:
+            return self._of_method(fence)
         self._check_word(fence)
         return prose.Listing("\n".join(fence.lines))
+
+    def _misplaced(self, fence: Fence) -> bool:
+        """Say that a block stands in a sheet, or in a design, where it means nothing."""
+        if self.sheet and fence.word not in _OF_SHEETS:
+            advice = (
+                "a sheet applies no other; take what it needs from the design"
+                if fence.word == "use"
+                else "what a sheet needs it takes from the design, or defines in `derive`"
+            )
+            where = "a sheet"
+        elif not self.sheet and fence.word in ("takes", "gives"):
+            where, advice = "a design", "it belongs into the sheet of a method"
+        else:
+            return False
+        message = f"{where} has no `{fence.word}` block"
+        self.findings.append(error("sheet-form", message, fence.opening, help=advice))
+        return True
+
+    def _of_method(self, fence: Fence) -> prose.Block | None:
+        """What a sheet takes and gives, and where a design applies one."""
+        if fence.word == "gives":
+            return prose.Gives(tuple(self._each(fence, sheets.give)[0]))
+        if fence.word == "takes":
+            lines, _ = self._each(fence, sheets.take)
+            return prose.Takes(
+                tuple(taken for taken, _ in lines if taken),
+                tuple(limit for _, limit in lines if limit),
+            )
+        try:
+            method, name = sheets.opening(self.source, fence.opening)
+        except Mistake as mistake:
+            self.findings.append(mistake.finding)
+            last = fence.info.split()[-1]
+            self.broken |= {fold(last)}
+            return None
+        bindings, broken = self._each(fence, sheets.binding)
+        return prose.Use(method, name, tuple(bindings), fence.opening, broken)
 
     def _note_lines(self, fence: Fence) -> None:
         first = self.source.position(fence.opening.start)[0]
@@ -261,11 +316,15 @@ class _Reader:
         if not fence.lines:
             text = " "
         passage = Passage(self.source.path, text, tuple(starts), tuple(places))
-        self.title, findings = title_block(passage, fence.opening)
+        self.title, findings = title_block(passage, fence.opening, sheet=self.sheet)
         self.findings += findings
 
     def _statements(self, fence: Fence, rule: Callable[[Passage], Statement]) -> prose.Statements:
-        found = []
+        return prose.Statements(fence.word, tuple(self._each(fence, rule)[0]))
+
+    def _each(self, fence: Fence, rule: Callable[[Passage], T]) -> tuple[list[T], bool]:
+        """Every line by its rule, and whether one could not be read."""
+        found, broken = [], False
         sure = self._surely_within(fence)
         for passage in self._passages(fence):
             try:
@@ -274,9 +333,10 @@ class _Reader:
                 if passage.offset(0) >= sure:
                     break
                 self.findings.append(mistake.finding)
-                if fence.word != "figure":  # it defines nothing
+                broken = True
+                if fence.word not in ("figure", "use"):  # they define nothing
                     self.broken |= _defined(passage.text)
-        return prose.Statements(fence.word, tuple(found))
+        return found, broken
 
     def _surely_within(self, fence: Fence) -> int:
         """Where prose may begin in a block that is not closed: its first blank line."""

@@ -2,7 +2,7 @@
 
 from calcdoc.frozen import Frozen
 from calcdoc.source import Span
-from calcdoc.text.statements import Statement
+from calcdoc.text.statements import Applied, Binding, Give, Label, Limit, Statement, Take
 
 
 class Words(Frozen, frozen=True):
@@ -114,4 +114,49 @@ class Statements(Frozen, frozen=True):
     statements: tuple[Statement, ...]
 
 
-Block = Heading | Paragraph | Items | Quote | Listing | Grid | Rule | CautionBlock | Statements
+class Use(Frozen, frozen=True):
+    """``use METHOD as NAME``: a method to be applied, with what it takes."""
+
+    method: Label
+    name: Label
+    bindings: tuple[Binding, ...]
+    opening: Span
+    broken: bool
+    """Whether a line of it could not be read."""
+
+
+class Method(Frozen, frozen=True):
+    """A method that was applied: its sheet in names of this application."""
+
+    applied: Applied
+    blocks: tuple["Block", ...]
+
+
+class Takes(Frozen, frozen=True):
+    """What a sheet takes, and where it is valid."""
+
+    takes: tuple[Take, ...]
+    limits: tuple[Limit, ...]
+
+
+class Gives(Frozen, frozen=True):
+    """What a sheet gives."""
+
+    gives: tuple[Give, ...]
+
+
+Block = (
+    Heading
+    | Paragraph
+    | Items
+    | Quote
+    | Listing
+    | Grid
+    | Rule
+    | CautionBlock
+    | Statements
+    | Use
+    | Method
+    | Takes
+    | Gives
+)

@@ -94,6 +94,8 @@ class Definition(Frozen, frozen=True):
     basis: Basis
     span: Span
     index: Index | None = None
+    taken: "Take | None" = None
+    """What a method takes, when this line hands it over; then the unit is what is asked for."""
 
 
 class Unknown(Frozen, frozen=True):
@@ -343,6 +345,59 @@ class ReferenceStatement(Frozen, frozen=True):
     edition: str
     held: str
     span: Span
+
+
+class Take(Frozen, frozen=True):
+    """``V_drop [V] = 0 V | voltage the regulator needs | basis``: what a sheet is applied to."""
+
+    symbol: Label
+    unit: Unit | None
+    """None for a plain number."""
+    unit_text: UnitText | None
+    default: Node | None
+    """Without one it has to be given where the sheet is applied."""
+    description: str
+    basis: Basis
+    """Of the default."""
+    span: Span
+
+
+class Limit(Frozen, frozen=True):
+    """``V_s > 0 V | description | basis``: where a sheet is valid; without clauses."""
+
+    inequality: "Inequality"
+    description: str
+
+
+class Give(Frozen, frozen=True):
+    """``V_min | least voltage``: what a sheet gives to the design that applies it."""
+
+    symbol: Label
+    description: str
+
+
+class Binding(Frozen, frozen=True):
+    """``C = C_res`` in a `use` block: what a method takes, and from where."""
+
+    symbol: Label
+    formula: Node
+
+
+class Applied(Frozen, frozen=True):
+    """A method as one design applies it."""
+
+    name: Label
+    """As in ``use METHOD as NAME``, where the design says it."""
+    method: str
+    """As the design names it: ``residual-voltage`` or ``./sheets/bleed.md``."""
+    title: str
+    revision: str
+    limits: tuple["Inequality", ...]
+    """Where the method is valid, in names of this application."""
+    gives: frozenset[str]
+    """Keys that the design may use: what the sheet gives, and the ids of what it judges."""
+    defaults: frozenset[str]
+    """Keys of what it takes and the design leaves at its default."""
 
 
 Statement = (

@@ -50,6 +50,7 @@ _TEXTS: Final = ("number", "title", "revision", "product", "owner", "language", 
 _CHOICES: Final = {"status": ("draft", "for issue"), "paper": ("A4", "letter")}
 _DATE: Final = re.compile(r"[0-9]{4}-[0-9]{2}-[0-9]{2}")
 _KEYS: Final = (*_TEXTS, *_CHOICES, "date", "digits", "people", "history", "sampling")
+_SHEET_KEYS: Final = ("number", "title", "revision", "date", "owner")
 _PEOPLE: Final = ("prepared", "checked", "approved")
 _ROW: Final = ("revision", "date", "reason")
 _DIGITS: Final = range(2, 10)
@@ -128,8 +129,13 @@ def _is_day(text: str) -> bool:
         return False
 
 
-def title_block(passage: Passage, opening: Span) -> tuple[TitleBlock | None, list[Finding]]:
-    """Read the title block; None when it is no TOML or lacks a required key."""
+def title_block(
+    passage: Passage, opening: Span, *, sheet: bool = False
+) -> tuple[TitleBlock | None, list[Finding]]:
+    """Read the title block; None when it is no TOML or lacks a required key.
+
+    That of a sheet says what it is; all else is said by the design that applies it.
+    """
     try:
         table = tomllib.loads(passage.text)
     except tomllib.TOMLDecodeError as trouble:
@@ -146,8 +152,8 @@ def title_block(passage: Passage, opening: Span) -> tuple[TitleBlock | None, lis
     except RecursionError:
         return None, [error("document-toml", "the title block is nested too deeply", passage.whole)]
     reader = _Reader(passage, [])
-    reader.known(table, _KEYS)
-    for key in ("number", "title", "revision"):
+    reader.known(table, _SHEET_KEYS if sheet else _KEYS)
+    for key in ("title", "revision") if sheet else ("number", "title", "revision"):
         if not table.get(key):
             reader.findings.append(
                 error(

@@ -1,0 +1,1 @@
+"""Methods: sheets of the library and of the project, and what applying one makes of a design."""
