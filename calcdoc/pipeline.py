@@ -28,6 +28,7 @@ from calcdoc.problems import Finding
 from calcdoc.problems.views import full, has_errors, in_order
 from calcdoc.records.build import Circumstances, build_record
 from calcdoc.records.cautions import hazard_warning
+from calcdoc.records.methods import outside_validity
 from calcdoc.records.record import Record, Tool
 from calcdoc.records.store import to_json
 from calcdoc.source import SourceFile
@@ -142,6 +143,7 @@ def evaluate(design: Design, progress: Progress | None = None) -> Evaluated:
             *hazard_warning(evaluation),
             *outside_band(design.model),
             *expired(design.model),
+            *outside_validity(evaluation),
             *_doubts(evaluation),
         )
     return Evaluated(design, evaluation, in_order((*design.findings, *findings)))
@@ -168,7 +170,11 @@ def record(evaluated: Evaluated) -> Record:
     versions = {name: import_module(module).__version__ for name, module in LIBRARIES.items()}
     tool = Tool(version=__version__, libraries=versions)
     made = Circumstances(
-        tool, evaluated.findings, evaluated.design.beside.pictures, evaluated.design.beside.files
+        tool,
+        evaluated.findings,
+        evaluated.design.beside.pictures,
+        evaluated.design.beside.files,
+        evaluated.design.sheets,
     )
     return build_record(evaluated.evaluation, made)
 

@@ -56,8 +56,8 @@ def _set(compiled: Compiled, points: tuple[PointValue, ...]) -> Box:
 
 
 def judged_of(model: Model) -> list[Judged]:
-    """The calculated criteria, in order."""
-    return [each for each in model.criteria if isinstance(each, Judged)]
+    """The calculated criteria, then the limits of validity of methods, in order."""
+    return list(model.judged)
 
 
 class Asker:

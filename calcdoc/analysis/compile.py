@@ -105,7 +105,7 @@ def compile_model(model: Model) -> Compiled:
     normal = working.normal()
     cases = {NORMAL: normal}
     cases |= {case.name: working.changed(case.name, case.changes) for case in model.cases}
-    judged = [each for each in model.criteria if isinstance(each, Judged)]
+    judged = model.judged
     limits = tuple(_in_its_cases(working, each, cases) for each in judged)
     working.enter(normal)
     checks = tuple(crosscheck_sides(working, each) for each in model.crosschecks)

@@ -117,6 +117,8 @@ def _evaluated(
         for key, at in compiled.variables.items()
     }
     in_case = {each.case.name: each.bands(nominal, solved[each.case.name]) for each in cases}
+    concluded = criteria.concluded(solved, progress)
+    limits_at = len(concluded) - len(model.limits)
     return Evaluation(
         model,
         bands,
@@ -126,7 +128,8 @@ def _evaluated(
             for key, elements in asked_series.items()
         },
         in_case,
-        criteria.concluded(solved, progress),
+        concluded[:limits_at],
+        concluded[limits_at:],
         tuple(
             crosschecked(asker, compared, check, nominal, ends)
             for compared, check, ends in zip(

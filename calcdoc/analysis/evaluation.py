@@ -278,6 +278,8 @@ class Evaluation(Frozen, frozen=True):
     """By name, every case but the normal one."""
     conclusions: tuple[Conclusion, ...]
     """One for each calculated criterion, in order."""
+    validity: tuple[Conclusion, ...]
+    """One for each limit of validity of a method, in order."""
     crosschecks: tuple[Crosschecked, ...]
     measurements: tuple[AgainstMeasured, ...]
     chosen: Mapping[str, Root]

@@ -25,10 +25,12 @@ from calcdoc.text.statements import (
     Applied,
     Basis,
     Binding,
+    CaseStatement,
     Definition,
     Inequality,
     Label,
     ReferenceStatement,
+    Statement,
     Take,
 )
 
@@ -83,6 +85,12 @@ class _Applier:
         self.findings: list[Finding] = []
         self.names: dict[str, Label] = {}
         self.room = LARGEST
+        self.kinds = frozenset(
+            kind
+            for each in document.statements
+            if isinstance(each, CaseStatement)
+            for kind in ("case", each.kind)
+        )
         self.references: dict[str, Said] = {
             each.key: (each.title, each.edition, each.held)
             for each in document.statements
@@ -195,7 +203,8 @@ class _Applier:
                 lines = tuple(_taken(each, naming, bound) for each in block.takes)
                 blocks.append(prose.Statements("derive", lines))
             else:
-                blocks.append(self._without_known(renamed(block, naming), naming))
+                shown_here = self._without_known(renamed(block, naming), naming)
+                blocks.append(_in_cases(shown_here, self.kinds))
         return prose.Method(applied, tuple(blocks))
 
     # --- references ----------------------------------------------------------------------------
@@ -297,6 +306,23 @@ def _taken(take: Take, naming: Naming, bound: Mapping[str, Binding]) -> Definiti
     return Definition(
         symbol, take.unit, take.unit_text, formula, described, basis, span, None, take
     )
+
+
+def _in_cases(block: prose.Block, kinds: frozenset[str]) -> prose.Block:
+    """A block of criteria without ``in every fault`` where the design has none."""
+    if not isinstance(block, prose.Statements):
+        return block
+    return replace(block, statements=tuple(_in_case(each, kinds) for each in block.statements))
+
+
+def _in_case(statement: Statement, kinds: frozenset[str]) -> Statement:
+    if not isinstance(statement, Inequality):
+        return statement
+    clauses = statement.clauses
+    if clauses.scope is None or clauses.scope.every in kinds:
+        return statement
+    text = clauses.text.replace(f"in every {clauses.scope.every}", "").strip()
+    return replace(statement, clauses=replace(clauses, scope=None, text=text))
 
 
 def _shown(body: tuple[prose.Block, ...]) -> tuple[prose.Block, ...]:

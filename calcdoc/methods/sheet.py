@@ -8,6 +8,7 @@ from collections.abc import Iterator
 from calcdoc.frozen import Frozen
 from calcdoc.methods.naming import spoken
 from calcdoc.problems import Finding, Place, error
+from calcdoc.problems.views import has_errors
 from calcdoc.source import SourceFile
 from calcdoc.text import prose
 from calcdoc.text.document import Document, mentions, read_document, walk
@@ -75,7 +76,7 @@ def read_sheet(source: SourceFile) -> tuple[Sheet | None, tuple[Finding, ...]]:
         *_not_given(sheet, document),
         *_out_of_place(sheet),
     )
-    return (None if wrong else sheet), wrong
+    return (None if has_errors(wrong) else sheet), wrong
 
 
 def _statements(body: tuple[prose.Block, ...]) -> tuple[Statement, ...]:

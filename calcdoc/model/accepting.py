@@ -8,7 +8,7 @@ from calcdoc.model.model import Accepted, Chosen, Criterion, Judged, Model
 from calcdoc.model.namespace import Namespace
 from calcdoc.model.typing import Unknown
 from calcdoc.problems import Finding, Mistake, Place, error, warning
-from calcdoc.text.names import nearest
+from calcdoc.text.names import nearest, owner
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import Acceptance, AnyOf, Inequality, Label, Statement, Uncalculated
 
@@ -87,7 +87,7 @@ class Accepting:
         found = self.stating.get(label.key)
         if found is not None:
             return found
-        if label.key in self.known.broken:
+        if label.key in self.known.broken or owner(label.key) in self.known.broken:
             raise Unknown
         if label.key in self.space.labels:
             what = self.space.ids.get(label.key, "symbol")

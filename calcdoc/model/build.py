@@ -14,6 +14,7 @@ from calcdoc.model.model import (
     Case,
     Compared,
     Criterion,
+    Judged,
     Measured,
     Model,
     Relation,
@@ -26,6 +27,7 @@ from calcdoc.model.uses import Rests, find_uses
 from calcdoc.problems import Finding, Mistake
 from calcdoc.problems.views import has_errors
 from calcdoc.tables.table import Table
+from calcdoc.text.cases import NORMAL
 from calcdoc.text.document import Document
 from calcdoc.text.statements import (
     Acceptance,
@@ -84,7 +86,7 @@ def build(
         for key, each in relations.items()
     }
     made = _model(document, tables, quantities, rests, relations_of, cases, judged)
-    return replace(made, figures=figures), tuple(findings)
+    return replace(made, figures=figures, limits=tuple(judged.limits)), tuple(findings)
 
 
 class _Judgements(Working):
@@ -96,6 +98,7 @@ class _Judgements(Working):
     accepted: list[Accepted]
     compared: list[Compared]
     measured: list[Measured]
+    limits: list[Judged]
     findings: list[Finding]
 
     def take(self, statement: Statement) -> None:
@@ -122,10 +125,14 @@ def _judge(
 ) -> _Judgements:
     judging = Judging(space, quantities.checker, quantities.variables, known)
     accepting = Accepting(space, criteria_of(document.statements), known)
-    found = _Judgements(judging, accepting, [], [], [], [], [])
+    found = _Judgements(judging, accepting, [], [], [], [], [], [])
     for statement in document.statements:
         with _noted(found.findings):
             found.take(statement)
+    everywhere = (NORMAL, *known.cases)
+    for limit in (limit for each in document.applied for limit in each.limits):
+        with _noted(found.findings):
+            found.limits.append(replace(judging.criterion(limit), cases=everywhere))
     by_key = {key_of(each): each for each in found.criteria}
     for statement in document.statements:
         if isinstance(statement, Acceptance):

@@ -3,6 +3,7 @@
 from collections.abc import Callable, Iterator
 from typing import Final
 
+from calcdoc.model.methods import out_of_sight
 from calcdoc.model.namespace import MEASURED, Namespace
 from calcdoc.problems import Finding, Place, error
 from calcdoc.text.document import Document, mentions
@@ -12,6 +13,7 @@ from calcdoc.text.statements import (
     Basis,
     FigureStatement,
     HazardStatement,
+    Label,
     ReferenceStatement,
     RestateStatement,
     SensitivityStatement,
@@ -73,7 +75,10 @@ def check_mentions(document: Document, space: Namespace) -> list[Finding]:
     for mention in mentions(document.body):
         key = fold(mention.name)
         known = key in space.quantities or (key in ids and not mention.form)
-        if known or key in document.broken:
+        if hidden := out_of_sight(Label(mention.name, mention.span), document):
+            findings.append(hidden)
+            continue
+        if known or document.is_broken(key):
             continue
         if key in ids:
             findings.append(

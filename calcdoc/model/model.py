@@ -224,3 +224,10 @@ class Model(Frozen, frozen=True):
     discharges: tuple[Discharge, ...]
     references: tuple[ReferenceStatement, ...]
     figures: tuple[Pictured, ...] = ()
+    limits: tuple[Judged, ...] = ()
+    """The limits of validity of its methods, in order."""
+
+    @property
+    def judged(self) -> tuple[Judged, ...]:
+        """What is judged at extremes and by the other ways: criteria first, then limits."""
+        return (*(each for each in self.criteria if isinstance(each, Judged)), *self.limits)

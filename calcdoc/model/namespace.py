@@ -5,6 +5,7 @@ from typing import Final
 
 from calcdoc.frozen import Frozen
 from calcdoc.model.constants import CONSTANTS
+from calcdoc.model.methods import METHOD, out_of_sight
 from calcdoc.problems import Finding, Place, error
 from calcdoc.text.document import Document
 from calcdoc.text.given import Given
@@ -61,7 +62,8 @@ def collect(document: Document) -> tuple[Namespace, list[Finding]]:
     labels: dict[str, Label] = {}
     ids: dict[str, str] = {}
     findings: list[Finding] = []
-    for statement, label, what in _labels(document.statements):
+    methods = ((None, each.name, METHOD) for each in document.applied)
+    for statement, label, what in (*methods, *_labels(document.statements)):
         taken = taken_as(label.name)
         first = labels.get(label.key)
         if taken:
@@ -136,7 +138,10 @@ def unknown_names(document: Document, space: Namespace) -> list[Finding]:
         running = {each.name.key for each in (running_index(statement),) if each}
         for label in _used(statement):
             known = label.key in space.quantities or label.key in CONSTANTS
-            if not known and label.key not in running and label.key not in document.broken:
+            hidden = out_of_sight(label, document)
+            if hidden:
+                findings.append(hidden)
+            elif not known and label.key not in running and not document.is_broken(label.key):
                 findings.append(_unknown(label, space, own))
         findings += _unknown_relations(statement, space, document.broken)
     return findings
@@ -191,6 +196,13 @@ def _unknown(label: Label, space: Namespace, own: set[str]) -> Finding:
             f"{shown(label.name)} is a measured value, it cannot be used in formulas",
             label.span,
             help="a design is calculated from its inputs; state the value there if it is one",
+        )
+    if space.ids.get(label.key) == METHOD:
+        return error(
+            "unknown-symbol",
+            f"{shown(label.name)} is a method, not a quantity",
+            label.span,
+            help=f"use what it gives, as in {label.name}.V",
         )
     if label.key in space.labels:
         return error(
@@ -275,6 +287,8 @@ def two_readings(document: Document, space: Namespace) -> list[Finding]:
     findings = []
     for statement in document.statements:
         for digits, unit in _units(statement):
+            if unit.span.path != document.source.path:
+                continue  # a sheet sees no symbols of a design
             for at, word in enumerate(unit.words[1:], 1):
                 label = space.labels.get(fold(word.word))
                 if label is None or fold(word.word) not in space.quantities:

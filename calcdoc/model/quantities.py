@@ -6,6 +6,7 @@ from fractions import Fraction
 from calcdoc.frozen import replace
 from calcdoc.model import series
 from calcdoc.model.constant import constant_value
+from calcdoc.model.methods import check_taken
 from calcdoc.model.model import Case, Implicit, Solved, Typed, Variable
 from calcdoc.model.namespace import Namespace
 from calcdoc.model.typing import Checker, Unknown
@@ -110,7 +111,10 @@ class Quantities:
         else:
             typed = self.checker.quantity(statement.formula, index)
             _check_whole(statement.symbol, typed, statement.formula.span)
-        _check_unit(statement.symbol, statement, typed, statement.formula.span)
+        if statement.taken:
+            check_taken(statement, typed.dimension, typed.weight)
+        else:
+            _check_unit(statement.symbol, statement, typed, statement.formula.span)
         if index:
             self.checker.sets[key] = index.values
         return Variable(

@@ -163,8 +163,9 @@ def symbols(view: View) -> str:
 
 def _alphabetical(name: str) -> tuple[str, str]:
     """Latin before Greek, a spelled letter in the place of its sign, small beside capital."""
-    base, _, below = name.partition("_")
-    shown = f"{GREEK.get(base, base)}_{below}"
+    owner, _, symbol = name.rpartition(".")
+    base, _, below = symbol.partition("_")
+    shown = f"{owner}.{GREEK.get(base, base)}_{below}".removeprefix(".")
     return shown.lower(), shown
 
 
@@ -235,7 +236,8 @@ def problems(view: View) -> str:
     """Notices, and warnings that the text gave rise to."""
     rows = [f"<li>{view.sentence(each)}</li>" for each in view.record.notices]
     for each in view.record.problems:
-        place = f"line {each.line}: " if each.line else ""
+        file = f"{escape(each.file)}, " if each.file else ""
+        place = f"{file}line {each.line}: " if each.line else ""
         hint = f" ({view.sentence(each.help)})" if each.help else ""
         rows.append(f"<li>{place}{view.sentence(each.message)} [{escape(each.code)}]{hint}</li>")
     return f"<ul>{''.join(rows)}</ul>\n" if rows else ""

@@ -3,7 +3,7 @@
 from collections.abc import Iterable
 from html import escape
 
-from calcdoc.page import figures, incase, lines, solved, typeset
+from calcdoc.page import figures, incase, lines, methods, solved, typeset
 from calcdoc.page.markup import verdict
 from calcdoc.page.view import View
 from calcdoc.records import record as r
@@ -19,7 +19,9 @@ def blocks(view: View, items: Iterable[r.Block], levels: dict[int, int] | None =
     return "".join(block(view, item, levels or {}) for item in items)
 
 
-def block(view: View, item: r.Block, levels: dict[int, int]) -> str:
+def block(  # noqa: PLR0911  (one for each kind of block)
+    view: View, item: r.Block, levels: dict[int, int]
+) -> str:
     """One block: a table of cases, one for each kind."""
     match item:
         case r.Heading():
@@ -40,6 +42,8 @@ def block(view: View, item: r.Block, levels: dict[int, int]) -> str:
             return "<hr>\n"
         case r.CautionBox(signal, inner):
             return caution(signal, blocks(view, inner))
+        case r.MethodBox():
+            return methods.head(view, item) + blocks(view, item.blocks) + methods.END
         case r.FigureLine(number):
             return figures.figure(view, view.figures[number])
         case _:

@@ -11,6 +11,7 @@ from calcdoc.records import wording
 from calcdoc.records.pictures import symbol
 from calcdoc.records.record import (
     AnyFigure,
+    AppliedMethod,
     Assumption,
     Case,
     Criterion,
@@ -24,8 +25,9 @@ from calcdoc.records.record import (
 from calcdoc.records.shapes import MINUS, Picture
 from calcdoc.text.names import fold
 
-NAME = re.compile(r"[^\W\d_][^\W_]*(?:\.[^\W\d_][^\W_]*)?(?:_\w+)|[\u0370-\u03ff][^\W_]*")
-"""What can only be a symbol in a sentence: with a subscript, or beginning with a Greek letter."""
+NAME = re.compile(r"[^\W\d_]\w*\.[^\W\d_]\w*|[^\W\d_][^\W_]*_\w+|[\u0370-\u03ff][^\W_]*")
+"""What can only be a symbol in a sentence: of a method, with a subscript, or beginning with a Greek
+letter."""
 WORD = re.compile(r"(?<![^ (])[^\W\d_]\w*(?:\.[^\W\d_]\w*)?")
 """What may be a symbol in the language: not behind a number and its no-break space."""
 TAG = re.compile(r"(<[^>]*>)")
@@ -115,6 +117,11 @@ class View:
     def sensitivities(self) -> dict[str, Sensitivity]:
         """Sensitivities by line."""
         return {each.line: each for each in self.record.sensitivities}
+
+    @cached_property
+    def applied(self) -> dict[str, AppliedMethod]:
+        """Methods by the names they are applied under."""
+        return {each.name: each for each in self.record.applied}
 
     @cached_property
     def cases(self) -> dict[str, Case]:

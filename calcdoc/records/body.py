@@ -4,9 +4,9 @@ import re
 import unicodedata
 from collections.abc import Callable
 
-from calcdoc.frozen import Frozen
+from calcdoc.frozen import Frozen, replace
 from calcdoc.records import record as r
-from calcdoc.records.naming import Naming, keys_of
+from calcdoc.records.naming import Naming, keys_of, section_level
 from calcdoc.records.wording import opened
 from calcdoc.text import prose
 from calcdoc.text.statements import (
@@ -27,6 +27,8 @@ from calcdoc.text.statements import (
     Uncalculated,
 )
 
+_BELOW_METHOD = 4
+"""The level of the first headings in a method."""
 _SLUG = re.compile(r"[^a-z0-9]+")
 
 
@@ -124,7 +126,9 @@ class _Body:
         self.naming, self.fill = naming, fill
         self.anchors: set[str] = set()
 
-    def block(self, block: prose.Block) -> tuple[r.Block, ...]:
+    def block(  # noqa: PLR0911  (one for each kind of block)
+        self, block: prose.Block
+    ) -> tuple[r.Block, ...]:
         """The record's blocks for one of the text."""
         match block:
             case prose.Heading():
@@ -144,11 +148,29 @@ class _Body:
                 return (r.Rule(),)
             case prose.CautionBlock(signal, inner):
                 return (r.CautionBox(signal=signal, blocks=self._opened(self._all(inner))),)
+            case prose.Method(applied, inner):
+                name = applied.name.name
+                return (
+                    r.MethodBox(name=name, anchor=self._anchor(name), blocks=self._within(inner)),
+                )
+            case prose.Use() | prose.Takes() | prose.Gives():
+                return ()
             case prose.Statements(_, statements):
                 return tuple(line for each in statements for line in _lines(each, self.naming))
 
     def _all(self, body: tuple[prose.Block, ...]) -> tuple[r.Block, ...]:
         return tuple(each for block in body for each in self.block(block))
+
+    def _within(self, body: tuple[prose.Block, ...]) -> tuple[r.Block, ...]:
+        """The blocks of a method; its headings stand below the head of the method."""
+        top = section_level(body)
+        return tuple(
+            replace(each, level=block.level - top + _BELOW_METHOD)
+            if isinstance(each, r.Heading) and isinstance(block, prose.Heading)
+            else each
+            for block in body
+            for each in self.block(block)
+        )
 
     def _opened(self, body: tuple[r.Block, ...]) -> tuple[r.Block, ...]:
         """The text of a caution with a capital, as descriptions have one."""

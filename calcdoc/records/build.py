@@ -14,12 +14,13 @@ from calcdoc.records.cautions import cautions, hazards
 from calcdoc.records.checks import crosschecks, relations
 from calcdoc.records.criteria import criteria
 from calcdoc.records.method import method_statement
+from calcdoc.records.methods import applied_methods, outside_notices
 from calcdoc.records.naming import name_lines
 from calcdoc.records.numbers import Numbers
 from calcdoc.records.quantities import quantities
 from calcdoc.records.registers import assumptions, references, tally, unsourced
 from calcdoc.records.restating import restated, sensitivities
-from calcdoc.source import digest
+from calcdoc.source import SourceFile, digest
 from calcdoc.text import prose
 from calcdoc.text.names import fold
 from calcdoc.text.titleblock import TitleBlock
@@ -46,6 +47,8 @@ class Circumstances(Frozen, frozen=True):
     """By path as written in the text."""
     files: Mapping[str, bytes] = {}
     """Every file of the design's folder that was used, by name."""
+    sheets: Mapping[str, SourceFile] = {}
+    """The sheets of methods, by the path that places in them name."""
 
 
 def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
@@ -81,12 +84,13 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
         hazards=hazards(evaluation),
         cautions=cautions(evaluation, register, body),
         references=references(model, naming),
+        applied=applied_methods(numbers, naming),
         methods=method_statement(
             lines, judged, title.digits, looked_up=bool(evaluation.looked), cases=bool(model.cases)
         ),
         figures=_figures(numbers, judged),
-        notices=unsourced(model),
-        problems=tuple(_problem(evaluation, each) for each in in_order(made.findings)),
+        notices=(*unsourced(model), *outside_notices(numbers)),
+        problems=tuple(_problem(evaluation, made, each) for each in in_order(made.findings)),
         body=body,
     )
 
@@ -144,9 +148,10 @@ def _source(evaluation: Evaluation, made: Circumstances) -> r.Source:
     )
 
 
-def _problem(evaluation: Evaluation, finding: Finding) -> r.Problem:
+def _problem(evaluation: Evaluation, made: Circumstances, finding: Finding) -> r.Problem:
     source = evaluation.model.document.source
-    data = as_data(finding, {source.path: source})
+    data = as_data(finding, {**made.sheets, source.path: source})
+    path = finding.place.span.path
     return r.Problem(
         code=finding.code,
         severity=finding.severity.value,
@@ -154,6 +159,7 @@ def _problem(evaluation: Evaluation, finding: Finding) -> r.Problem:
         line=int(str(data["line"])),
         column=int(str(data["column"])),
         help=finding.help,
+        file="" if path == source.path else path,
     )
 
 

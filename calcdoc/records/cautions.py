@@ -159,7 +159,7 @@ def _of_author(body: tuple[r.Block, ...]) -> Iterator[r.Caution]:
             case r.Items():
                 for item in block.items:
                     yield from _of_author(item)
-            case r.Quote():
+            case r.Quote() | r.MethodBox():
                 yield from _of_author(block.blocks)
             case _:
                 pass

@@ -10,6 +10,7 @@ from calcdoc.records.values import computed, difference, given_nominal, with_uni
 from calcdoc.records.wording import band_in_words
 from calcdoc.text.names import fold
 from calcdoc.text.nodes import Group, Name, Node
+from calcdoc.text.statements import CrosscheckStatement, Measurement
 from calcdoc.text.unparse import unparse
 from calcdoc.units import Unit, unit_of
 from calcdoc.units.choose import choose_unit
@@ -20,11 +21,13 @@ _DIGITS = 3
 
 def crosschecks(numbers: Numbers, naming: Naming) -> tuple[r.Crosscheck, ...]:
     """Every cross-check of the record, measurements among them, in the author's order."""
-    made = [(each.compared.statement.span.start, _crosscheck(numbers, naming, each))
-            for each in numbers.evaluation.crosschecks]  # fmt: skip
-    made += [(each.measured.statement.span.start, _measurement(numbers, naming, each))
-             for each in numbers.evaluation.measurements]  # fmt: skip
-    return tuple(check for _, check in sorted(made, key=lambda pair: pair[0]))
+    made = {each.compared.statement.id.key: _crosscheck(numbers, naming, each)
+            for each in numbers.evaluation.crosschecks}  # fmt: skip
+    made |= {each.measured.statement.id.key: _measurement(numbers, naming, each)
+             for each in numbers.evaluation.measurements}  # fmt: skip
+    order = numbers.model.document.statements
+    ids = (each.id.key for each in order if isinstance(each, CrosscheckStatement | Measurement))
+    return tuple(made[key] for key in ids)
 
 
 def _crosscheck(numbers: Numbers, naming: Naming, done: Crosschecked) -> r.Crosscheck:

@@ -31,7 +31,7 @@ def criteria(numbers: Numbers, naming: Naming) -> tuple[r.Criterion, ...]:
     for each in numbers.model.criteria:
         if isinstance(each, Judged):
             key = each.statement.id.key
-            made[key] = _calculated(numbers, naming, conclusions[key])
+            made[key] = calculated(numbers, naming, conclusions[key])
         elif isinstance(each, Uncalculated):
             made[each.id.key] = _uncalculated(naming, each)
     made |= routes(numbers.model, made, lambda statement: _blank(naming, statement))
@@ -54,7 +54,7 @@ def _blank(naming: Naming, statement: Inequality | Uncalculated | AnyOf) -> r.Cr
     """A criterion of which nothing is computed."""
     return r.Criterion(
         id=statement.id.name,
-        line=naming.lines[statement.id.key],
+        line=naming.lines.get(statement.id.key, ""),
         text="",
         method="",
         value=None,
@@ -89,7 +89,8 @@ def _blank(naming: Naming, statement: Inequality | Uncalculated | AnyOf) -> r.Cr
     )
 
 
-def _calculated(numbers: Numbers, naming: Naming, conclusion: Conclusion) -> r.Criterion:
+def calculated(numbers: Numbers, naming: Naming, conclusion: Conclusion) -> r.Criterion:
+    """A calculated criterion, or a limit of a method, which has no line of its own."""
     statement, governing = conclusion.judged.statement, conclusion.governing
     judged = [each for each in conclusion.in_case.values() if isinstance(each, Judgement)]
     unit = (

@@ -27,7 +27,7 @@ def _paragraphs(
         " computation runs in coherent SI units and nothing is rounded on the way."
     )
     kinds = {each.kind for each in lines}
-    if "solved" in kinds:
+    if "solved" in kinds or any(each.from_relation for each in lines):
         yield (
             "Solved lines: a relation is solved step by step, or numerically between two values by"
             " bisection and inverse interpolation to the last digits; the solution is put back, at"
@@ -97,4 +97,4 @@ def _paragraphs(
     )
 
 
-_COMPUTED = frozenset({"derived", "solved", "settled"})
+_COMPUTED = frozenset({"derived", "solved", "settled", "method"})

@@ -90,6 +90,8 @@ def _in_order(blocks: tuple[prose.Block, ...]) -> Iterator[prose.Heading | Numbe
                     yield from _in_order(item)
             case prose.Quote(inner):
                 yield from _in_order(inner)
+            case prose.Method(_, inner):  # its headings open no section
+                yield from (e for e in _in_order(inner) if not isinstance(e, prose.Heading))
             case _:
                 pass
 
@@ -109,7 +111,7 @@ def keys_of(statement: Numbered) -> tuple[str, ...]:
         case RelationStatement():
             return (statement.name.key,)
         case RestateStatement() | SensitivityStatement():
-            return (f"line at {statement.span.start}",)
+            return (f"line at {statement.span.start} of {statement.symbol.key}",)
         case CaseStatement():
             return (case_key(statement.name.name),)
         case _:

@@ -16,6 +16,7 @@ from calcdoc.records.substitute import substituted
 from calcdoc.records.values import computed, exact_limit, given_nominal, with_unit
 from calcdoc.records.wording import band_in_words, typeset
 from calcdoc.text.given import Given, Style
+from calcdoc.text.names import owner
 from calcdoc.text.nodes import Node
 from calcdoc.text.unparse import unparse
 from calcdoc.units import PLAIN, Unit
@@ -33,7 +34,7 @@ def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantit
     return r.Quantity(
         symbol=variable.symbol,
         line=naming.lines[variable.key],
-        kind=variable.kind,
+        kind="method" if owner(variable.key) else variable.kind,
         unit=numbers.units[variable.key].text,
         nominal=shown.nominal,
         least=shown.least,
@@ -64,6 +65,7 @@ def _quantity(numbers: Numbers, naming: Naming, variable: Variable) -> r.Quantit
         makeup=parts_in_words(numbers.model, variable),
         notes=(
             *shown.notes,
+            *_default(numbers, variable),
             *_runaway(numbers, variable),
             *looked_up(numbers.evaluation, variable.key),
         ),
@@ -202,6 +204,14 @@ def _runaway(numbers: Numbers, variable: Variable) -> tuple[str, ...]:
         " quantity does not come to rest; everything that rests on it fails"
     )
     return (note,)
+
+
+def _default(numbers: Numbers, variable: Variable) -> tuple[str, ...]:
+    """What a method takes and the design does not say."""
+    applied = numbers.model.document.applied
+    if any(variable.key in each.defaults for each in applied):
+        return ("default of the method",)
+    return ()
 
 
 def _substitution(numbers: Numbers, variable: Variable, formula: Node | None) -> str:

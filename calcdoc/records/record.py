@@ -188,6 +188,14 @@ class CautionBox(Plain, frozen=True, tag_field="kind", tag="caution"):
     blocks: tuple["Block", ...]
 
 
+class MethodBox(Plain, frozen=True, tag_field="kind", tag="method"):
+    """Here stands a method that was applied, line by line."""
+
+    name: str
+    anchor: str
+    blocks: tuple["Block", ...]
+
+
 Block = (
     Heading
     | Paragraph
@@ -206,6 +214,7 @@ Block = (
     | SentenceLine
     | FigureLine
     | CautionBox
+    | MethodBox
 )
 
 # --- title block ------------------------------------------------------------------------------
@@ -680,6 +689,44 @@ class Margins(Figure, frozen=True, tag="margins"):
 AnyFigure = Curve | Spread | Sensitivities | Margins
 
 
+class MethodLimit(Plain, frozen=True):
+    """A limit of validity of a method, judged over the whole band and in every case."""
+
+    text: str
+    """``discharge.V_0 > discharge.V_safe``"""
+    verdict: str
+    """``within``, ``outside`` or ``not decided``."""
+    case: str
+    value_text: str
+    limit_text: str
+    """Both sides where the limit is nearest, or farthest outside; empty when not computed."""
+    at: dict[str, str]
+    """The combination there."""
+    description: str
+    basis: str
+    reason: str
+    """Why it is not decided."""
+
+
+class AppliedMethod(Plain, frozen=True):
+    """A method as the design applies it."""
+
+    name: str
+    """What its symbols begin with: ``discharge``."""
+    method: str
+    """Of the library, or a sheet of the project by its path."""
+    title: str
+    revision: str
+    """Of the sheet."""
+    verdict: str
+    """``within`` its limits of validity, ``outside`` or ``not decided``."""
+    limits: tuple[MethodLimit, ...]
+    gives: tuple[str, ...]
+    """Symbols that the design may use."""
+    defaults: tuple[str, ...]
+    """Symbols of what it takes that stand at their defaults."""
+
+
 class Assumption(Plain, frozen=True):
     """One row of the assumptions register."""
 
@@ -762,6 +809,8 @@ class Problem(Plain, frozen=True):
     line: int
     column: int
     help: str
+    file: str = ""
+    """The sheet it stands in; empty for the design text."""
 
 
 class Tally(Plain, frozen=True):
@@ -813,6 +862,8 @@ class Record(Plain, frozen=True):
     hazards: tuple[Hazard, ...]
     cautions: tuple[Caution, ...]
     references: tuple[Reference, ...]
+    applied: tuple[AppliedMethod, ...]
+    """The methods it applies, in the author's order."""
     methods: tuple[str, ...]
     """The method statement: one sentence each, how bands were combined, what is exact."""
     figures: tuple[AnyFigure, ...]

@@ -20,7 +20,6 @@ from calcdoc.text.statements import (
     Inequality,
     Label,
     Limit,
-    Scope,
     Take,
 )
 
@@ -81,9 +80,10 @@ def _limit(scanner: Scanner, left: Label | None, description: str, source: Basis
                 help="write the least first: a <= x <= b; further limits are lines of their own",
             )
         )
-    clauses = Clauses(scope=Scope("case", (), span))
     name = Label("valid", span)
-    whole = Inequality(name, tuple(operands), tuple(operators), clauses, description, source, span)
+    whole = Inequality(
+        name, tuple(operands), tuple(operators), Clauses(), description, source, span
+    )
     return Limit(whole, description)
 
 
