@@ -2,7 +2,7 @@
 
 import pytest
 
-from tests.helpers.cases import FOLDER, Case, cases_of, rewrite
+from tests.helpers.cases import FOLDER, Case, cases_of, rewrite, sheets_of
 from tests.helpers.checking import rendered
 
 FILES = sorted(FOLDER.glob("*.md"))
@@ -24,7 +24,7 @@ def test_titles_are_unique() -> None:
 @pytest.mark.parametrize("case", CASES, ids=str)
 def test_refused(case: Case, request: pytest.FixtureRequest) -> None:
     """The text is answered with exactly the findings beside it, and with at least one."""
-    found = rendered(case.refused) + "\n"
+    found = rendered(case.refused, files=sheets_of(case.sheet)) + "\n"
     assert found.strip()
     if request.config.getoption("--rewrite-cases"):
         rewrite(case, found)
@@ -35,4 +35,4 @@ def test_refused(case: Case, request: pytest.FixtureRequest) -> None:
 @pytest.mark.parametrize("case", CASES, ids=str)
 def test_accepted(case: Case) -> None:
     """The neighbour, one change away, is read and checked without a finding."""
-    assert rendered(case.accepted) == ""
+    assert rendered(case.accepted, files=sheets_of(case.goodsheet)) == ""

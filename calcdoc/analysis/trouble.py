@@ -14,7 +14,8 @@ from calcdoc.analysis.tape import needed
 from calcdoc.frozen import Frozen, replace
 from calcdoc.model.model import Model, Variable
 from calcdoc.problems import Finding, Place, error
-from calcdoc.text.nodes import Binary, Call, Group, Negate, Node
+from calcdoc.source import Span
+from calcdoc.text.nodes import Binary, Call, Group, Negate, Node, walk
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import PointValue
 from calcdoc.text.unparse import unparse
@@ -150,7 +151,7 @@ class _Teller:
         return error(
             code,
             message.format(piece=shown(unparse(piece)), where=where),
-            piece.span,
+            piece.span if piece.span.path else self._solved(origin),
             label=label,
             help=advice,
         )
@@ -162,6 +163,13 @@ class _Teller:
             inside = self.compiled.inside.get(hazard.instruction, {})
             return inside.get(hazard.inner[0], origins[hazard.instruction])
         return origins[hazard.instruction]
+
+    def _solved(self, origin: Node) -> Span:
+        """Where the quantity stands whose closed form holds a piece that nobody wrote."""
+        for key, root in self.compiled.chosen.items():
+            if any(each is origin for each in walk(root.tree)):
+                return self.model.variables[key].label.span
+        return self.model.document.source.span(0, 1)
 
     def _root(self, hazard: Hazard, where: str, label: str) -> Finding:
         """A root that is not in its bracket, or not alone in it."""

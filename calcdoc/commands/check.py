@@ -86,7 +86,7 @@ def _object(checked: Checked) -> object:
         return checked.record
     source = checked.source
     assert source is not None
-    sources = {source.path: source}
+    sources = {**checked.sheets, source.path: source}
     return {
         "schema": SCHEMA,
         "source": {"name": source.path.rpartition("/")[2], "sha256": source.sha256, "files": []},

@@ -23,6 +23,8 @@ class Checked(Frozen, frozen=True):
     trouble: str = ""
     """Why it could not be read or computed; then there is nothing else."""
     source: SourceFile | None = None
+    sheets: Mapping[str, SourceFile] = {}
+    """Sheets of methods that places of findings may name, by path."""
     findings: tuple[Finding, ...] = ()
     """In the order of the text."""
     problems: str = ""
@@ -65,6 +67,7 @@ def _checked(name: str, evaluated: Evaluated) -> Checked:
         name,
         status_of(made) if made else TEXT_HAS_ERRORS,
         source=evaluated.design.source,
+        sheets=evaluated.design.sheets,
         findings=evaluated.findings,
         problems=evaluated.problems(),
         record=made,

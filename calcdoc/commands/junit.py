@@ -105,7 +105,7 @@ def _text(suite: Element, checked: Checked) -> None:
     """One case with an error for each error of the text."""
     source = checked.source
     assert source is not None
-    sources = {source.path: source}
+    sources = {**checked.sheets, source.path: source}
     case = SubElement(suite, "testcase", classname=_plain(checked.name), name="text")
     for each in checked.findings:
         if each.severity is Severity.ERROR:
@@ -116,7 +116,7 @@ def _warnings(suite: Element, checked: Checked) -> None:
     source = checked.source
     if source is None:
         return
-    sources = {source.path: source}
+    sources = {**checked.sheets, source.path: source}
     said = [headline(each, sources) for each in checked.findings
             if each.severity is Severity.WARNING]  # fmt: skip
     if said:

@@ -49,7 +49,10 @@ _Data = dict[str, object]
 
 def sarif(checked: Sequence[Checked]) -> bytes:
     """All files as one log with one run."""
-    seen = [result for index, each in enumerate(checked) for result in _results(each, index)]
+    sheets = _sheets(checked)
+    seen = [
+        result for index, each in enumerate(checked) for result in _results(each, index, sheets)
+    ]
     rules = sorted({str(result["ruleId"]) for result in seen})
     indices = {rule: index for index, rule in enumerate(rules)}
     run = {
@@ -62,7 +65,10 @@ def sarif(checked: Sequence[Checked]) -> bytes:
         },
         "columnKind": "unicodeCodePoints",
         "newlineSequences": ["\r\n", "\n", "\r"],
-        "artifacts": [_artifact(each) for each in checked],
+        "artifacts": [
+            *(_artifact(each) for each in checked),
+            *(_hashed(_uri(path), each) for path, (each, _) in sheets.items()),
+        ],
         "invocations": [_invocation(checked)],
         "results": [{**each, "ruleIndex": indices[str(each["ruleId"])]} for each in seen],
     }
@@ -80,6 +86,32 @@ def _rule(name: str) -> _Data:
         "fullDescription": _text(code.why),
         "help": _text(f"An example that is refused:\n\n{code.example}"),
     }
+
+
+_Sheets = Mapping[str, tuple[SourceFile, int]]
+"""Sheets of methods by path, with their places in the list of artifacts."""
+
+
+def _sheets(checked: Sequence[Checked]) -> _Sheets:
+    """Every sheet that a place names, once, behind the designs."""
+    found = {
+        span.path: each.sheets[span.path]
+        for each in checked
+        for span in _spans(each)
+        if span.path in each.sheets
+    }
+    return {path: (each, len(checked) + at) for at, (path, each) in enumerate(found.items())}
+
+
+def _spans(checked: Checked) -> Iterable[Span]:
+    for finding in checked.findings:
+        yield finding.place.span
+        yield from (each.span for each in finding.related)
+    yield from checked.places.values()
+
+
+def _hashed(uri: str, source: SourceFile) -> _Data:
+    return {"location": {"uri": uri}, "hashes": {"sha-256": source.sha256}}
 
 
 def _artifact(checked: Checked) -> _Data:
@@ -104,12 +136,12 @@ def _invocation(checked: Sequence[Checked]) -> _Data:
     return {**done, "toolExecutionNotifications": troubles} if troubles else done
 
 
-def _results(checked: Checked, index: int) -> Iterable[_Data]:
+def _results(checked: Checked, index: int, sheets: _Sheets) -> Iterable[_Data]:
     """Findings in the order of the text, then criteria and cross-checks in the author's."""
     source = checked.source
     if source is None:
         return
-    where = _Where(source, checked.name, index)
+    where = _Where(source, checked.name, index, sheets)
     for finding in checked.findings:
         yield _finding(finding, where)
     if checked.record is None:
@@ -155,19 +187,22 @@ def _result(rule: str, level: str, said: str, location: _Data) -> _Data:
 
 
 class _Where:
-    """Places of one file."""
+    """Places of one file, and of the sheets it applies."""
 
-    def __init__(self, source: SourceFile, name: str, index: int) -> None:
-        self._source, self._name, self._index = source, name, index
+    def __init__(self, source: SourceFile, name: str, index: int, sheets: _Sheets) -> None:
+        self._own, self._name, self._sheets = (source, index), name, sheets
 
     def location(self, span: Span) -> _Data:
-        line, column = self._source.position(span.start)
-        end_line, end_column = self._source.position(span.end)
+        in_sheet = span.path != self._own[0].path
+        name = span.path if in_sheet else self._name
+        source, index = self._sheets[span.path] if in_sheet else self._own
+        line, column = source.position(span.start)
+        end_line, end_column = source.position(span.end)
         region = {
             "startLine": line, "startColumn": column,
             "endLine": end_line, "endColumn": end_column,
         }  # fmt: skip
-        return {"physicalLocation": {**_physical(self._name, self._index), "region": region}}
+        return {"physicalLocation": {**_physical(name, index), "region": region}}
 
     def related(self, number: int, place: Place) -> _Data:
         location: _Data = {"id": number, **self.location(place.span)}

@@ -121,7 +121,7 @@ class _Applier:
     def _use(self, use: prose.Use) -> prose.Method | None:
         first = self.names.setdefault(use.name.key, use.name)
         if first is not use.name:
-            self._wrong(
+            self._refuse(
                 "defined-twice", f"there are two methods {shown(use.name.name)}", use.name,
                 "give one of them another name", Place(first.span, "first here"),
             )  # fmt: skip
@@ -135,7 +135,7 @@ class _Applier:
     def _has_room(self, use: prose.Use, sheet: Sheet) -> bool:
         self.room -= len(sheet.source.text)
         if self.room < 0:
-            self._wrong(
+            self._refuse(
                 "text-size",
                 f"the methods of this design have more than {LARGEST} characters together",
                 use.method, "split the design into several texts",
@@ -151,12 +151,12 @@ class _Applier:
             symbol = each.symbol
             if symbol.key not in takes:
                 near = nearest(symbol.name, [one.symbol.name for one in takes.values()])
-                self._wrong(
+                self._refuse(
                     "unknown-take", f"{shown(use.method.name)} takes no {shown(symbol.name)}",
                     symbol, f"did you mean {near}?" if near else f"it takes {_listed(sheet.takes)}",
                 )  # fmt: skip
             elif symbol.key in bound:
-                self._wrong(
+                self._refuse(
                     "defined-twice", f"{shown(symbol.name)} stands here twice", symbol,
                     "keep one of them", Place(bound[symbol.key].symbol.span, "first here"),
                 )  # fmt: skip
@@ -167,7 +167,7 @@ class _Applier:
             names = ", ".join(shown(each.symbol.name) for each in missing)
             line = f"{missing[0].symbol.name} = ..."
             about = f" ({missing[0].description})" if missing[0].description else ""
-            self._wrong(
+            self._refuse(
                 "missing-take", f"{shown(use.method.name)} also takes {names}", use.method,
                 f"add a line {line}{about}",
             )  # fmt: skip
@@ -254,7 +254,7 @@ class _Applier:
             return sheet
         near = nearest(named.name, known)
         advice = f"did you mean {near}? " if near else ""
-        self._wrong(
+        self._refuse(
             "unknown-method", f"there is no method {shown(named.name)}", named,
             f"{advice}the methods are {', '.join(known)}; a sheet of the project is named by its"
             " path, as in ./sheets/bleed.md",
@@ -266,7 +266,7 @@ class _Applier:
         try:
             data = self.read(name)
         except FileTrouble as trouble:
-            self._wrong(
+            self._refuse(
                 "sheet-file", f"this sheet cannot be applied: {trouble}", named,
                 "put it beside the design and name it from there",
             )  # fmt: skip
@@ -279,7 +279,7 @@ class _Applier:
         self.findings += findings
         return sheet
 
-    def _wrong(self, code: str, message: str, at: Label, advice: str, *related: Place) -> None:
+    def _refuse(self, code: str, message: str, at: Label, advice: str, *related: Place) -> None:
         self.findings.append(error(code, message, at.span, related=related, help=advice))
 
 

@@ -12,7 +12,7 @@ from calcdoc.text import prose, sheets
 from calcdoc.text.commonmark import Fence, read_prose
 from calcdoc.text.criteria import criterion
 from calcdoc.text.figures import figure
-from calcdoc.text.names import SYMBOL, fold, owner
+from calcdoc.text.names import OF_METHOD, fold, owner
 from calcdoc.text.passage import Passage
 from calcdoc.text.rules import RULES
 from calcdoc.text.scan import shown
@@ -454,7 +454,7 @@ class _Reader:
 def _defined(text: str) -> frozenset[str]:
     """Keys of the names that a statement would define, had it been read."""
     head = _DEFINED_BEFORE.split(text, maxsplit=1)[0]
-    return frozenset(fold(name) for name in SYMBOL.findall(_UNIT.sub(" ", head)))
+    return frozenset(fold(name) for name in OF_METHOD.findall(_UNIT.sub(" ", head)))
 
 
 def _like_a_signal(word: str) -> str | None:

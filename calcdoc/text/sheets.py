@@ -99,7 +99,16 @@ def give(statement: Passage) -> Give:
 
 def binding(statement: Passage) -> Binding:
     """``SYMBOL "=" sum``"""
-    (first,) = columns(statement, ("statement",))
+    first, *more = statement.columns()
+    if more:
+        raise Mistake(
+            error(
+                "columns",
+                "a line of a `use` block has no columns",
+                more[0].whole if more[0].text else statement.whole,
+                help="what it means stands in the sheet; a value with its basis is an input",
+            )
+        )
     scanner = Scanner(first)
     symbol = label(scanner, "what the method takes, as in C = C_res")
     if scanner.look(_BRACKET):

@@ -14,7 +14,9 @@ A case has a text that is refused (or warned of), what is found in it, and its a
     ~~~~
 
 ``design`` in place of ``fragment`` marks a text that is complete; a fragment gets a title block
-after its last line, so that its lines count from 1. The neighbour is of the same sort.
+after its last line, so that its lines count from 1. The neighbour is of the same sort. A block
+``sheet`` is the sheet ``sheets/own.md`` of both texts, or of the refused one alone when a block
+``goodsheet`` stands beside it for the accepted one.
 """
 
 import re
@@ -40,6 +42,8 @@ class Case:
     refused: str
     expected: str
     accepted: str
+    sheet: str = ""
+    goodsheet: str = ""
 
     def __str__(self) -> str:
         return f"{self.path.stem}: {self.title}"
@@ -55,7 +59,21 @@ def _case(path: Path, title: str, body: str) -> Case:
     blocks = {found["word"]: found["text"] for found in _BLOCK.finditer(body)}
     after = TITLE if "fragment" in blocks else ""
     refused = blocks["fragment"] if "fragment" in blocks else blocks["design"]
-    return Case(path, title, refused + after, blocks["findings"], blocks["accepted"] + after)
+    sheet = blocks.get("sheet", "")
+    return Case(
+        path,
+        title,
+        refused + after,
+        blocks["findings"],
+        blocks["accepted"] + after,
+        sheet,
+        blocks.get("goodsheet", sheet),
+    )
+
+
+def sheets_of(text: str) -> dict[str, str]:
+    """The sheets of a project that has one, or none."""
+    return {"sheets/own.md": text} if text else {}
 
 
 def rewrite(case: Case, found: str) -> None:

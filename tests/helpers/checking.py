@@ -1,34 +1,64 @@
 """From a design text to its findings as people read them."""
 
+from collections.abc import Mapping
+from typing import Final
+
 from calcdoc.analysis.evaluate import evaluate_model
+from calcdoc.errors import FileTrouble
+from calcdoc.methods.apply import expand
 from calcdoc.model.accepting import expired
 from calcdoc.model.build import build
 from calcdoc.model.judging import outside_band
 from calcdoc.problems import Finding
 from calcdoc.problems.views import full, has_errors, in_order
+from calcdoc.records.methods import outside_validity
 from calcdoc.source import SourceFile
 from calcdoc.text.document import read_document
 
+NO_FILES: Final[Mapping[str, str]] = {}
 TITLE = '```document\nnumber = "T-1"\ntitle = "Trial"\nrevision = "A"\n```\n'
 """A title block of five lines, for texts that are about something else."""
 
 
-def findings_of(text: str, path: str = "lamp.md") -> tuple[Finding, ...]:
+Files = Mapping[str, str]
+"""Sheets of the project: what they hold, by path."""
+
+
+def _checked(
+    text: str, path: str, files: Files
+) -> tuple[tuple[Finding, ...], Mapping[str, SourceFile]]:
+    source = SourceFile(path, text)
+    document, findings = read_document(source)
+    if document is None:
+        return in_order(findings), {path: source}
+    expanded, wrong = expand(document, lambda name: _bytes(name, files))
+    model, more = build(expanded.document)
+    findings += (*wrong, *more)
+    if model is not None and not has_errors(findings):
+        evaluation, trouble = evaluate_model(model)
+        findings += (
+            trouble
+            if evaluation is None
+            else (*outside_band(model), *expired(model), *outside_validity(evaluation))
+        )
+    return in_order(findings), {**expanded.sheets, path: source}
+
+
+def _bytes(name: str, files: Files) -> bytes:
+    if name not in files:
+        raise FileTrouble(f"there is no file {name}")
+    return files[name].encode()
+
+
+def findings_of(text: str, path: str = "lamp.md", files: Files = NO_FILES) -> tuple[Finding, ...]:
     """Everything that reading, checking and computing find, in the order shown."""
-    document, findings = read_document(SourceFile(path, text))
-    if document is not None:
-        model, more = build(document)
-        findings += more
-        if model is not None and not has_errors(findings):
-            evaluation, trouble = evaluate_model(model)
-            findings += trouble if evaluation is None else (*outside_band(model), *expired(model))
-    return in_order(findings)
+    return _checked(text, path, files)[0]
 
 
-def rendered(text: str, path: str = "lamp.md") -> str:
+def rendered(text: str, path: str = "lamp.md", files: Files = NO_FILES) -> str:
     """The findings in full, as printed; empty when there are none."""
-    sources = {path: SourceFile(path, text)}
-    return "\n".join(full(each, sources) for each in findings_of(text, path))
+    findings, sources = _checked(text, path, files)
+    return "\n".join(full(each, sources) for each in findings)
 
 
 def codes(text: str) -> tuple[str, ...]:

@@ -174,6 +174,7 @@ def sample(**changes: object) -> r.Record:
             )
             for key, title, edition, cited in REFERENCES
         ),
+        applied=(),
         methods=(
             "Conditions and tolerances stand at their ends, in all combinations.",
             "Exact where marked exact; searched where marked searched.",
