@@ -12,12 +12,13 @@ import click
 from calcdoc import __version__
 from calcdoc.commands.check import check
 from calcdoc.commands.explain import explain
+from calcdoc.commands.methods import methods
 from calcdoc.commands.new import new
 from calcdoc.commands.write import write
 from calcdoc.errors import CalcdocError
 
 WORLD_IS_WRONG: Final = 3
-COMMANDS: Final = (check, write, new, explain)
+COMMANDS: Final = (check, write, methods, new, explain)
 
 
 @click.group(context_settings={"help_option_names": ["-h", "--help"]})

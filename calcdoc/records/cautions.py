@@ -48,7 +48,7 @@ def cautions(
         *_of_hazards(evaluation),
         *_of_assumptions(assumptions),
         r.Caution(signal="notice", text=GENERAL, origin="general"),
-        *_of_author(body),
+        *dict.fromkeys(_of_author(body)),  # a method applied twice warns once
     ]
     return tuple(sorted(found, key=lambda each: _ORDER.index(each.signal)))
 

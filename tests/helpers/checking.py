@@ -1,6 +1,6 @@
 """From a design text to its findings as people read them."""
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from typing import Final
 
 from calcdoc.analysis.evaluate import evaluate_model
@@ -31,7 +31,7 @@ def _checked(
     document, findings = read_document(source)
     if document is None:
         return in_order(findings), {path: source}
-    expanded, wrong = expand(document, lambda name: _bytes(name, files))
+    expanded, wrong = expand(document, reader(files))
     model, more = build(expanded.document)
     findings += (*wrong, *more)
     if model is not None and not has_errors(findings):
@@ -44,10 +44,15 @@ def _checked(
     return in_order(findings), {**expanded.sheets, path: source}
 
 
-def _bytes(name: str, files: Files) -> bytes:
-    if name not in files:
-        raise FileTrouble(f"there is no file {name}")
-    return files[name].encode()
+def reader(files: Files) -> Callable[[str], bytes]:
+    """Reads a project that holds these files."""
+
+    def read(name: str) -> bytes:
+        if name not in files:
+            raise FileTrouble(f"there is no file {name}")
+        return files[name].encode()
+
+    return read
 
 
 def findings_of(text: str, path: str = "lamp.md", files: Files = NO_FILES) -> tuple[Finding, ...]:

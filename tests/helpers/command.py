@@ -34,5 +34,7 @@ class Shell:
     def put(self, name: str, text: str | bytes) -> str:
         """Write a file and give its name."""
         data = text.encode() if isinstance(text, str) else text
-        (self.folder / name).write_bytes(data)
+        path = self.folder / name
+        path.parent.mkdir(parents=True, exist_ok=True)
+        path.write_bytes(data)
         return name

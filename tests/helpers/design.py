@@ -3,11 +3,12 @@
 from dataclasses import dataclass
 
 from calcdoc import pipeline
+from calcdoc.methods.apply import expand
 from calcdoc.model.build import build
 from calcdoc.records.record import Criterion, Quantity, Record
 from calcdoc.source import SourceFile
 from calcdoc.text.document import read_document
-from tests.helpers.checking import TITLE
+from tests.helpers.checking import NO_FILES, TITLE, Files, reader
 
 
 @dataclass(frozen=True)
@@ -24,14 +25,20 @@ class Worked:
         return next(each for each in self.record.criteria if each.id == name)
 
 
-def worked(**blocks: str) -> Worked:
-    """Evaluate a design of blocks: ``worked(inputs="a = 1 V", derive="b = 2*a")``."""
-    text = TITLE + "".join(f"\n```{word}\n{lines}\n```\n" for word, lines in blocks.items())
+def worked(*uses: str, files: Files = NO_FILES, **blocks: str) -> Worked:
+    r"""Evaluate a design of blocks: ``worked(inputs="a = 1 V", derive="b = 2*a")``.
+
+    ``uses`` are blocks that apply methods, without their fences: ``"use inrush as i\nC = C_1"``.
+    """
+    fenced = [f"{word}\n{lines}" for word, lines in blocks.items()] + list(uses)
+    text = TITLE + "".join(f"\n```{each}\n```\n" for each in fenced)
     source = SourceFile("trial.md", text)
     document, findings = read_document(source)
     assert document is not None
-    model, more = build(document)
-    design = pipeline.Design(source, text.encode(), model, (*findings, *more))
+    expanded, wrong = expand(document, reader(files))
+    model, more = build(expanded.document)
+    found = (*findings, *wrong, *more)
+    design = pipeline.Design(source, text.encode(), model, found, sheets=expanded.sheets)
     evaluated = pipeline.evaluate(design)
     assert evaluated.evaluation is not None, evaluated.problems()
     return Worked(pipeline.record(evaluated))

@@ -67,7 +67,7 @@ def test_folders_are_complete(expected: Golden) -> None:
     assert len(NAMES) >= 5
     for name in NAMES:
         assert design_of(name).exists()
-        assert {each.name for each in (GOLDEN / name).iterdir()} - {"design.md"} == FILES
+        assert {each.name for each in (GOLDEN / name).iterdir()} - {"design.md", "sheets"} == FILES
 
 
 @pytest.mark.parametrize("name", NAMES)
