@@ -25,11 +25,16 @@ class Worked:
         return next(each for each in self.record.criteria if each.id == name)
 
 
-def worked(*uses: str, files: Files = NO_FILES, **blocks: str) -> Worked:
+def worked(*uses: str, **blocks: str) -> Worked:
     r"""Evaluate a design of blocks: ``worked(inputs="a = 1 V", derive="b = 2*a")``.
 
     ``uses`` are blocks that apply methods, without their fences: ``"use inrush as i\nC = C_1"``.
     """
+    return worked_with(NO_FILES, *uses, **blocks)
+
+
+def worked_with(files: Files, *uses: str, **blocks: str) -> Worked:
+    """The same for a project that has sheets."""
     fenced = [f"{word}\n{lines}" for word, lines in blocks.items()] + list(uses)
     text = TITLE + "".join(f"\n```{each}\n```\n" for each in fenced)
     source = SourceFile("trial.md", text)

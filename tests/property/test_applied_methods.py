@@ -5,7 +5,7 @@ import pytest
 from numpy.random import Generator
 
 from calcdoc.records.record import Quantity
-from tests.helpers.design import Worked, worked
+from tests.helpers.design import Worked, worked, worked_with
 
 pytestmark = pytest.mark.property
 
@@ -84,9 +84,9 @@ def both(seed: int) -> tuple[Worked, Worked]:
     cases = "fault shift: p_1 = p_1 + 1"
     takes = [f"{name} = {value}" for name, value in zip(ATOMS, bound, strict=False)]
     sheet = SHEET.format(takes="a\nb\nc = 3", **said)
-    applied = worked(
+    applied = worked_with(
+        {"sheets/own.md": sheet},
         "\n".join(("use ./sheets/own.md as m", *takes)),
-        files={"sheets/own.md": sheet},
         inputs=inputs,
         cases=cases,
     )
