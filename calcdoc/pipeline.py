@@ -19,7 +19,7 @@ from calcdoc.beside import Beside, read_beside
 from calcdoc.errors import CalcdocError
 from calcdoc.folder import Folder, read_bytes, write_whole
 from calcdoc.frozen import Frozen, replace
-from calcdoc.methods.apply import expand
+from calcdoc.methods.expanded import Expanded, Reader
 from calcdoc.model.accepting import expired
 from calcdoc.model.build import build
 from calcdoc.model.judging import outside_band
@@ -33,7 +33,8 @@ from calcdoc.records.record import Record, Tool
 from calcdoc.records.store import to_json
 from calcdoc.source import SourceFile
 from calcdoc.text.decode import decoded
-from calcdoc.text.document import read_document
+from calcdoc.text.document import Document, read_document, walk
+from calcdoc.text.prose import Use
 
 FORMS: Final = ("html", "pdf", "json")
 LIBRARIES: Final = {
@@ -114,7 +115,7 @@ def read(path: str | os.PathLike[str]) -> Design:
     if document is None:
         return Design(source, data, None, in_order(findings))
     folder = Folder(Path(name).parent)
-    expanded, wrong = expand(document, folder.read)
+    expanded, wrong = _written_out(document, folder.read)
     beside, trouble = read_beside(expanded.document, folder)
     beside = replace(beside, files={**beside.files, **expanded.files})
     model, more = build(expanded.document, beside.tables)
@@ -122,6 +123,15 @@ def read(path: str | os.PathLike[str]) -> Design:
         model = None
     findings = in_order((*findings, *wrong, *trouble, *more))
     return Design(source, data, model, findings, beside, expanded.sheets)
+
+
+def _written_out(document: Document, read: Reader) -> tuple[Expanded, tuple[Finding, ...]]:
+    """The text with its methods written out line by line."""
+    if not any(isinstance(each, Use) for each in walk(document.body)):
+        return Expanded(document, {}, {}), ()
+    from calcdoc.methods.apply import expand  # noqa: PLC0415  (many designs apply none)
+
+    return expand(document, read)
 
 
 def evaluate(design: Design, progress: Progress | None = None) -> Evaluated:

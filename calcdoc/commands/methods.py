@@ -1,12 +1,11 @@
 """``calcdoc methods``: the library, and what one of its methods takes, gives and rests on."""
 
 from collections.abc import Iterator
+from typing import TYPE_CHECKING
 
 import click
 
 from calcdoc.errors import CalcdocError
-from calcdoc.methods.library import method, method_names
-from calcdoc.methods.sheet import Sheet
 from calcdoc.text import prose
 from calcdoc.text.document import walk
 from calcdoc.text.names import nearest
@@ -19,11 +18,16 @@ from calcdoc.text.statements import (
 )
 from calcdoc.text.unparse import unit_text, unparse
 
+if TYPE_CHECKING:
+    from calcdoc.methods.sheet import Sheet
+
 
 @click.command()
 @click.argument("name", required=False)
 def methods(name: str | None) -> int:
     """List the methods of the library; with NAME say what one takes and gives, and its sources."""
+    from calcdoc.methods.library import method, method_names  # noqa: PLC0415  (needed only here)
+
     known = method_names()
     if name is None:
         width = max(map(len, known))
@@ -38,7 +42,7 @@ def methods(name: str | None) -> int:
     return 0
 
 
-def _described(name: str, sheet: Sheet) -> Iterator[str]:
+def _described(name: str, sheet: "Sheet") -> Iterator[str]:
     title = sheet.title
     issued = f", {title.date}" if title.date else ""
     yield f"{name}: {title.title} (revision {title.revision}{issued})"
@@ -97,7 +101,7 @@ def _inequality(limit: Inequality) -> str:
     return first + "".join(f" {sign} {side}" for sign, side in pairs)
 
 
-def _units(sheet: Sheet) -> dict[str, str]:
+def _units(sheet: "Sheet") -> dict[str, str]:
     """The unit of every symbol that has one, as it is shown behind it."""
     found = {each.symbol.key: each.unit_text for each in sheet.takes}
     for each in sheet.statements:
@@ -108,7 +112,7 @@ def _units(sheet: Sheet) -> dict[str, str]:
     return {key: f" [{unit_text(text)}]" for key, text in found.items() if text}
 
 
-def _cautions(sheet: Sheet) -> Iterator[tuple[str, str]]:
+def _cautions(sheet: "Sheet") -> Iterator[tuple[str, str]]:
     for block in walk(sheet.body):
         if isinstance(block, prose.CautionBlock):
             yield block.signal, " ".join(_words(block.blocks)).strip()

@@ -5,12 +5,13 @@ design knows those of a method.
 """
 
 import os
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from pathlib import PurePosixPath
 from typing import Final
 
 from calcdoc.errors import FileTrouble
-from calcdoc.frozen import Frozen, replace
+from calcdoc.frozen import replace
+from calcdoc.methods.expanded import Expanded, Reader
 from calcdoc.methods.library import method, method_names
 from calcdoc.methods.naming import Naming, renamed
 from calcdoc.methods.sheet import Sheet, read_sheet
@@ -34,21 +35,9 @@ from calcdoc.text.statements import (
     Take,
 )
 
-Reader = Callable[[str], bytes]
-"""Reads a file of the design's folder, or raises FileTrouble."""
 Said = tuple[str, str, str]
 """Title, edition and place of a reference."""
 NO_BASIS: Final = Basis("")
-
-
-class Expanded(Frozen, frozen=True):
-    """A design text with its methods written out."""
-
-    document: Document
-    sheets: Mapping[str, SourceFile]
-    """Every sheet it applies, by the path that places in it name."""
-    files: Mapping[str, bytes]
-    """The sheets of the project, by name."""
 
 
 def expand(document: Document, read: Reader) -> tuple[Expanded, tuple[Finding, ...]]:

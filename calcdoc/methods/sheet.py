@@ -164,7 +164,9 @@ def _not_given(sheet: Sheet, document: Document) -> Iterator[Finding]:
         yield error(
             "sheet-form",
             "this sheet gives nothing",
-            document.title.span if document.title.span.end else sheet.source.span(0, 1),
+            document.title.span
+            if document.title.span.end
+            else sheet.source.span(0, min(1, len(sheet.source.text))),
             help="name in a `gives` block what a design may use: V_res | residual voltage",
         )
     for each in sheet.gives:

@@ -180,6 +180,7 @@ PIECES: Final = (
     "open:", "closed:", "supply", "stored", "through", "by test:", "{V_a:least}", "[A, 2]",
     "cases", "mode dim: ", "fault ", "crosschecks", "K: measured ", "against", "any of ",
     "accept R ", "until 2027-06-30", "in every fault", "when ", "dim", "as normal k=3", "bias ",
+    "takes", "gives", "use residual-voltage as m", "m.tau", "m.", "C = ", "R = ", "V_0 = ",
     "each of ", "shared ", "R: V_a <= 5 V ", "R: ", "normal", "not below",
     "\u2028", "\u00a0", "\x00", "\x1b", "\u202e", "\U0001f600", 'number = "1"', "[[history]]",
 )  # fmt: skip
@@ -202,6 +203,9 @@ def texts() -> SearchStrategy[str]:
                 "cases",
                 "crosschecks",
                 "conditions",
+                "takes",
+                "gives",
+                "use residual-voltage as m",
             )
         ),
         soup,

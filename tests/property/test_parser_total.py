@@ -6,11 +6,14 @@ import time
 import pytest
 from hypothesis import given
 
+from calcdoc.methods.apply import expand
+from calcdoc.methods.library import method
+from calcdoc.methods.sheet import read_sheet
 from calcdoc.model.build import build
 from calcdoc.problems.views import full
 from calcdoc.source import SourceFile
-from calcdoc.text.document import read_document
-from tests.helpers.checking import TITLE, codes, rendered
+from calcdoc.text.document import LARGEST, read_document
+from tests.helpers.checking import TITLE, codes, reader, rendered
 from tests.property.strategies import texts
 
 HEADLINE = re.compile(r"lamp\.md:[0-9]+:[0-9]+: (error|warning)\[[a-z-]+\]: .+")
@@ -24,14 +27,31 @@ def test_any_text_is_answered(text: str) -> None:
         source = SourceFile("lamp.md", whole)
         document, findings = read_document(source)
         assert document is not None
-        model, more = build(document)
-        for finding in (*findings, *more):
+        expanded, wrong = expand(document, reader({}))
+        model, more = build(expanded.document)
+        sources = {**expanded.sheets, "lamp.md": source}
+        for finding in (*findings, *wrong, *more):
             for place in (finding.place, *finding.related):
-                assert 0 <= place.span.start <= place.span.end <= len(whole)
-            first, *_ = full(finding, {"lamp.md": source}).split("\n")
+                length = len(sources[place.span.path].text)
+                assert 0 <= place.span.start <= place.span.end <= length
+            first, *_ = full(finding, sources).split("\n")
             assert HEADLINE.fullmatch(first)
         if model is not None:
             assert set(model.order) == set(model.variables)
+
+
+@pytest.mark.property
+@given(texts())
+def test_any_sheet_is_answered(text: str) -> None:
+    """Nothing is raised for a sheet either; places lie inside of it."""
+    head = '```document\ntitle = "A sheet"\nrevision = "1"\n```\n'
+    for whole in (text, head + text):
+        sheet, findings = read_sheet(SourceFile("lamp.md", whole))
+        assert sheet is not None or findings
+        for finding in findings:
+            assert 0 <= finding.place.span.start <= finding.place.span.end <= len(whole)
+            first, *_ = full(finding, {"lamp.md": SourceFile("lamp.md", whole)}).split("\n")
+            assert HEADLINE.fullmatch(first)
 
 
 def derive(formula: str) -> str:
@@ -54,6 +74,8 @@ def criteria(clauses: str) -> str:
     return f"{TITLE}```criteria\nR: 1 <= 2 {clauses}\n```\n"
 
 
+FITTING = LARGEST // len(method("residual-voltage").source.text)
+"""How often a design may apply the method."""
 HOSTILE = {
     "ten thousand parentheses": (derive("(" * 10_000), ("formula-size",)),
     "ten thousand signs": (derive("-" * 10_000 + "1"), ("formula-size",)),
@@ -86,6 +108,19 @@ HOSTILE = {
         f"{TITLE}```criteria\nR: 1 <= 2\n" + "accept R | r | until 2027-06-30\n" * 10_000 + "```\n",
         ("acceptance",) * 9999,
     ),
+    "two thousand uses": (
+        TITLE
+        + "".join(
+            f"```use residual-voltage as m{k}\nC = 1 µF\nR = 1 MΩ\nV_0 = 40\n```\n"
+            for k in range(2000)
+        ),
+        ("take-kind",) * FITTING + ("text-size",) * (2000 - FITTING),
+    ),
+    "a use of ten thousand lines": (
+        TITLE + "```use residual-voltage as m\n" + "C = 1 µF\n" * 10_000 + "```\n",
+        ("missing-take", *("defined-twice",) * 9999),
+    ),
+    "a name of ten thousand dots": (derive("a" + ".a" * 9000), ("method-symbol",)),
     "nested quotations": (TITLE + ">" * 100_000, ()),
     "nested lists": (TITLE + "- " * 100_000, ()),
     "open brackets in prose": (TITLE + "[" * 50_000, ()),
