@@ -11,7 +11,7 @@ from calcdoc.text.passage import passage_of
 from calcdoc.text.statements import Definition, Inequality
 from calcdoc.text.unparse import unparse
 from tests.helpers.checking import TITLE
-from tests.helpers.design import worked
+from tests.helpers.design import worked, worked_with
 
 NAMING = Naming("m", frozenset({"V", "V_1", "a", "τ", "n", "R1"}), {"K": "sheet:K"})
 
@@ -89,3 +89,16 @@ def test_caution_of_two_uses_is_said_once() -> None:
     use = "use residual-voltage as {}\nC = 1 µF\nR = 1 MΩ\nV_0 = 40 V"
     found = worked(use.format("one"), use.format("two"))
     assert len([each for each in found.record.cautions if each.origin == "author"]) == 1
+
+
+def test_readme() -> None:
+    """The README's use and sheet are what they are said to be."""
+    text = (Path(__file__).parents[3] / "README.md").read_text("utf-8")
+    _, use, sheet, *_ = text[text.index("## Methods") :].split("````markdown\n")
+    use, sheet = use.partition("````")[0], sheet.partition("````")[0]
+    inputs = "C_x = 100 nF ± 20 %\nR_bleed = 1 MΩ\nV_line = 230 V"
+    lines = use.removeprefix("```").removesuffix("```\n")
+    assert worked(lines, inputs=inputs)["discharge.V_res"].kind == "method"
+    own = lines.replace("residual-voltage as discharge", "./sheets/bleed.md as bleed")
+    found = worked_with({"sheets/bleed.md": sheet}, own, inputs=inputs)
+    assert found["bleed.t_safe"].greatest_text == "0.2032 s"
