@@ -21,6 +21,7 @@ from calcdoc.folder import Folder, read_bytes, write_whole
 from calcdoc.frozen import Frozen
 from calcdoc.model.accepting import expired
 from calcdoc.model.build import build
+from calcdoc.model.cases import undone
 from calcdoc.model.judging import outside_band
 from calcdoc.model.model import Model
 from calcdoc.problems import Finding, error
@@ -128,7 +129,8 @@ def evaluate(design: Design, progress: Progress | None = None) -> Evaluated:
         findings += (
             *hazard_warning(evaluation),
             *outside_band(design.model),
-            *expired(design.model),
+            *expired(design.model, today()),
+            *undone(design.model),
             *_doubts(evaluation),
         )
     return Evaluated(design, evaluation, in_order((*design.findings, *findings)))
@@ -155,7 +157,11 @@ def record(evaluated: Evaluated) -> Record:
     versions = {name: import_module(module).__version__ for name, module in LIBRARIES.items()}
     tool = Tool(version=__version__, libraries=versions)
     made = Circumstances(
-        tool, evaluated.findings, evaluated.design.beside.pictures, evaluated.design.beside.files
+        tool,
+        evaluated.findings,
+        evaluated.design.beside.pictures,
+        evaluated.design.beside.files,
+        today(),
     )
     return build_record(evaluated.evaluation, made)
 
@@ -191,6 +197,11 @@ def write(
     return tuple(written[form] for form in forms)
 
 
+def today() -> str:
+    """Today as YYYY-MM-DD, or the day of SOURCE_DATE_EPOCH."""
+    return (_epoch() or datetime.now(UTC)).date().isoformat()
+
+
 def file_stem(made: Record) -> str:
     """``NUMBER-REVISION`` with only letters, digits, point, dash and underscore."""
     text = f"{made.document.number}-{made.document.revision}"
@@ -214,15 +225,21 @@ def _rendered(form: str, made: Record, data: bytes, design: Design) -> bytes:
 
 def _issued(made: Record) -> datetime:
     """The date of every stamp in a file: SOURCE_DATE_EPOCH, else the document's, else 1980."""
-    epoch = os.environ.get("SOURCE_DATE_EPOCH", "")
-    if epoch:
-        try:
-            return datetime.fromtimestamp(int(epoch), UTC)
-        except (ValueError, OverflowError, OSError) as trouble:
-            raise CalcdocError("SOURCE_DATE_EPOCH is no number of seconds since 1970") from trouble
+    if epoch := _epoch():
+        return epoch
     if made.document.date:
         return datetime.fromisoformat(made.document.date).replace(tzinfo=UTC)
     return datetime(1980, 1, 1, tzinfo=UTC)
+
+
+def _epoch() -> datetime | None:
+    epoch = os.environ.get("SOURCE_DATE_EPOCH", "")
+    if not epoch:
+        return None
+    try:
+        return datetime.fromtimestamp(int(epoch), UTC)
+    except (ValueError, OverflowError, OSError) as trouble:
+        raise CalcdocError("SOURCE_DATE_EPOCH is no number of seconds since 1970") from trouble
 
 
 def _decoded(name: str, data: bytes) -> tuple[SourceFile, tuple[Finding, ...]]:

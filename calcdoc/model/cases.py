@@ -5,17 +5,17 @@ from typing import Final
 
 from calcdoc.frozen import Frozen
 from calcdoc.model import blame, series
-from calcdoc.model.model import Case, Variable
+from calcdoc.model.model import Case, Judged, Model, Variable
 from calcdoc.model.quantities import typed_as
 from calcdoc.model.typing import Checker, Unknown
-from calcdoc.problems import Finding, Mistake, Place, error
+from calcdoc.problems import Finding, Mistake, Place, error, warning
 from calcdoc.text.cases import NORMAL
 from calcdoc.text.document import Document
 from calcdoc.text.given import Given
 from calcdoc.text.names import fold, nearest
 from calcdoc.text.nodes import Node
 from calcdoc.text.scan import shown
-from calcdoc.text.statements import CaseStatement, Change, Label, Scope
+from calcdoc.text.statements import CaseStatement, Change, Label, PointValue, Scope
 
 MOST_CASES: Final = 200
 MODE: Final = "mode"
@@ -56,30 +56,42 @@ def stated(document: Document) -> tuple[Stated, list[Finding]]:
                     help="give one of them another name",
                 )
             )
-    findings += [
-        error(
-            "case-form",
-            f"a design has at most {MOST_CASES} cases",
-            cases.pop(name).name.span,
-            help="split the design into several texts",
+    beyond = list(cases)[MOST_CASES:]
+    if beyond:
+        findings.append(
+            error(
+                "case-form",
+                f"a design has at most {MOST_CASES} cases, this one has {len(cases)}",
+                cases[beyond[0]].name.span,
+                help="split the design into several texts",
+            )
         )
-        for name in list(cases)[MOST_CASES:]
-    ]
+    for name in beyond:
+        del cases[name]
     return Stated(cases, document.broken), findings
 
 
 # --- which cases -------------------------------------------------------------------------------
 
 
-def judged_in(scope: Scope | None, known: Stated) -> tuple[str, ...]:
+def judged_in(scope: Scope | None, known: Stated, stated: Collection[str] = ()) -> tuple[str, ...]:
     """The names of the cases a criterion is judged in.
+
+    Unless the criterion says so, it is not judged in a mode that would be undone by the operating
+    point it states: nothing is different there.
+
+    Args:
+        scope: What the criterion says.
+        known: Every case.
+        stated: Keys of the quantities its operating point sets.
 
     Raises:
         Mistake: when there is no such case, or when nothing would be checked.
         Unknown: when the case may stand in a line that could not be read.
     """
     if scope is None:
-        return (NORMAL, *known.of_kind(MODE))
+        modes = known.of_kind(MODE)
+        return (NORMAL, *(name for name in modes if not _undone(known.cases[name], stated)))
     if not scope.every:
         return named(scope.names, known)
     faults = known.of_kind(FAULT)
@@ -98,6 +110,36 @@ def judged_in(scope: Scope | None, known: Stated) -> tuple[str, ...]:
             )
         )
     return found
+
+
+def _undone(case: CaseStatement, stated: Collection[str]) -> bool:
+    return all(each.symbol.key in stated for each in case.changes)
+
+
+def undone(model: Model) -> tuple[Finding, ...]:
+    """Criteria whose operating point sets what a case changes: there the operating point counts."""
+    cases = {each.name: each for each in model.cases}
+    findings = []
+    for judged in model.criteria:
+        if not isinstance(judged, Judged):
+            continue
+        points = {point.symbol.key: point for point in judged.statement.clauses.at}
+        for name in judged.cases:
+            both = [key for key in points if name in cases and key in cases[name].changes]
+            if both:
+                findings.append(_undoes(points[both[0]], cases[name]))
+    return tuple(findings)
+
+
+def _undoes(point: PointValue, case: Case) -> Finding:
+    return warning(
+        "case-undone",
+        f"the case {shown(case.name)} changes {shown(point.symbol.name)}, this operating point sets"
+        " it: here the operating point counts",
+        point.symbol.span,
+        related=(Place(case.statement.name.span, "the case"),),
+        help="leave it out of the operating point, or judge the criterion in other cases",
+    )
 
 
 def named(labels: tuple[Label, ...], known: Stated) -> tuple[str, ...]:

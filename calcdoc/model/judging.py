@@ -94,7 +94,7 @@ class Judging:
                     self._check_series(each.operands, index)
         self._check_margin(statement, typed)
         self._check_points(clauses.at)
-        cases = judged_in(clauses.scope, self.cases)
+        cases = judged_in(clauses.scope, self.cases, {p.symbol.key for p in clauses.at})
         running = {index.name.key} if index else set()
         return Judged(statement, typed, direct_uses(trees, self.space, running), cases)
 

@@ -5,7 +5,7 @@ from typing import Final
 
 from msgspec.structs import replace
 
-from calcdoc.model.accepting import expired_on
+from calcdoc.model.accepting import ended
 from calcdoc.model.model import Accepted, Chosen, Model
 from calcdoc.records import record as r
 from calcdoc.text.statements import AnyOf
@@ -63,7 +63,7 @@ def _any_of(
     )
 
 
-def accepted(model: Model, made: Mapping[str, r.Criterion]) -> dict[str, r.Criterion]:
+def accepted(model: Model, made: Mapping[str, r.Criterion], today: str) -> dict[str, r.Criterion]:
     """Failing criteria whose failure is accepted in every case in which they fail, by key.
 
     One with a case that is not decided is not among them.
@@ -71,7 +71,7 @@ def accepted(model: Model, made: Mapping[str, r.Criterion]) -> dict[str, r.Crite
     found: dict[str, r.Criterion] = {}
     for each in model.acceptances:
         criterion = found.get(each.criterion, made[each.criterion])
-        if not expired_on(model, each):
+        if not ended(model, each, today):
             found[each.criterion] = _accepted(criterion, each)
     return found
 
