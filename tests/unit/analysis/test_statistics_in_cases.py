@@ -39,7 +39,7 @@ def test_sampling_under_a_condition_that_is_seldom_true(
     """A draw that the condition leaves out does not count: the quantile is of the others."""
     found = judged(f"V <= {limit} by sampling {share} when V > 250.7 V", inputs="V = 230 V ± 10 %")
     assert found.verdict == verdict
-    assert found.value == pytest.approx(value, abs=0.01)
+    assert found.value == pytest.approx(value, abs=0.04)
     assert found.share is not None
     assert found.share.met == float(verdict == "pass")
     assert any(" of 100\u202f000 draws; the shares are of these." in each
