@@ -25,6 +25,7 @@ from calcdoc.model.judging import outside_band
 from calcdoc.model.model import Model
 from calcdoc.problems import Finding, error
 from calcdoc.problems.views import full, has_errors, in_order
+from calcdoc.records.accepting import unused
 from calcdoc.records.build import Circumstances, build_record
 from calcdoc.records.cautions import hazard_warning
 from calcdoc.records.record import Record, Tool
@@ -129,6 +130,7 @@ def evaluate(design: Design, progress: Progress | None = None) -> Evaluated:
             *hazard_warning(evaluation),
             *outside_band(design.model),
             *expired(design.model),
+            *unused(evaluation),
             *_doubts(evaluation),
         )
     return Evaluated(design, evaluation, in_order((*design.findings, *findings)))

@@ -6,6 +6,7 @@ from calcdoc.model.build import build
 from calcdoc.model.judging import outside_band
 from calcdoc.problems import Finding
 from calcdoc.problems.views import full, has_errors, in_order
+from calcdoc.records.accepting import unused
 from calcdoc.source import SourceFile
 from calcdoc.text.document import read_document
 
@@ -21,7 +22,9 @@ def findings_of(text: str, path: str = "lamp.md") -> tuple[Finding, ...]:
         findings += more
         if model is not None and not has_errors(findings):
             evaluation, trouble = evaluate_model(model)
-            findings += trouble if evaluation is None else (*outside_band(model), *expired(model))
+            if evaluation is not None:
+                trouble = (*outside_band(model), *expired(model), *unused(evaluation))
+            findings += trouble
     return in_order(findings)
 
 
