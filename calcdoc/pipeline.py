@@ -23,6 +23,7 @@ from calcdoc.model.accepting import expired
 from calcdoc.model.build import build
 from calcdoc.model.judging import outside_band
 from calcdoc.model.model import Model
+from calcdoc.model.varying import nothing_random
 from calcdoc.problems import Finding, error
 from calcdoc.problems.views import full, has_errors, in_order
 from calcdoc.records.accepting import unused
@@ -131,6 +132,7 @@ def evaluate(design: Design, progress: Progress | None = None) -> Evaluated:
             *outside_band(design.model),
             *expired(design.model),
             *unused(evaluation),
+            *nothing_random(design.model),
             *_doubts(evaluation),
         )
     return Evaluated(design, evaluation, in_order((*design.findings, *findings)))
