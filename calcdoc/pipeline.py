@@ -24,8 +24,10 @@ from calcdoc.model.build import build
 from calcdoc.model.cases import undone
 from calcdoc.model.judging import outside_band
 from calcdoc.model.model import Model
+from calcdoc.model.varying import nothing_random
 from calcdoc.problems import Finding, error
 from calcdoc.problems.views import full, has_errors, in_order
+from calcdoc.records.accepting import unused
 from calcdoc.records.build import Circumstances, build_record
 from calcdoc.records.cautions import hazard_warning
 from calcdoc.records.record import Record, Tool
@@ -131,6 +133,8 @@ def evaluate(design: Design, progress: Progress | None = None) -> Evaluated:
             *outside_band(design.model),
             *expired(design.model, today()),
             *undone(design.model),
+            *unused(evaluation, today()),
+            *nothing_random(design.model),
             *_doubts(evaluation),
         )
     return Evaluated(design, evaluation, in_order((*design.findings, *findings)))

@@ -6,13 +6,14 @@ from typing import Final
 from calcdoc.frozen import Frozen
 from calcdoc.model import blame, series
 from calcdoc.model.model import Case, Judged, Model, Variable
+from calcdoc.model.namespace import Namespace
 from calcdoc.model.quantities import typed_as
 from calcdoc.model.typing import Checker, Unknown
 from calcdoc.problems import Finding, Mistake, Place, error, warning
 from calcdoc.text.cases import NORMAL
 from calcdoc.text.document import Document
 from calcdoc.text.given import Given
-from calcdoc.text.names import fold, nearest
+from calcdoc.text.names import CLAUSE_WORDS, fold, nearest
 from calcdoc.text.nodes import Node
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import CaseStatement, Change, Label, PointValue, Scope
@@ -20,6 +21,10 @@ from calcdoc.text.statements import CaseStatement, Change, Label, PointValue, Sc
 MOST_CASES: Final = 200
 MODE: Final = "mode"
 FAULT: Final = "fault"
+
+
+_KINDS: Final = frozenset({"cases", "modes", "mode", "faults", "fault", "everywhere", "any"})
+"""Words that are meant for several cases."""
 
 
 class Stated(Frozen, frozen=True):
@@ -69,6 +74,44 @@ def stated(document: Document) -> tuple[Stated, list[Finding]]:
     for name in beyond:
         del cases[name]
     return Stated(cases, document.broken), findings
+
+
+_WORDS: Final = frozenset({
+    *CLAUSE_WORDS, "nominal", "extremes", "sampling", "margin", "until", "accept", "case", "cases",
+    "mode", "modes", "fault", "faults", "all", "any",
+})  # fmt: skip
+
+
+def check_names(known: Stated, space: Namespace) -> list[Finding]:
+    """Names that would be read as something else where a record says ``in NAME``."""
+    findings = []
+    firsts: dict[str, CaseStatement | None] = {NORMAL.casefold(): None}
+    for name, each in known.cases.items():
+        key = fold(name)
+        first = firsts.setdefault(name.casefold(), each)
+        related: tuple[Place, ...] = ()
+        if key in space.labels:
+            what = space.ids.get(key, "symbol")
+            message = f"{shown(name)} is also the name of a {what}"
+            related = (Place(space.labels[key].span, "defined here"),)
+        elif name.casefold() in _WORDS:
+            message = f"{shown(name)} alone is a word of the language"
+        elif first is not each:
+            other = first.name.name if first else NORMAL
+            message = f"{shown(name)} and {shown(other)} differ only in capitals"
+            related = (Place(first.name.span, "first here"),) if first else ()
+        else:
+            continue
+        findings.append(
+            error(
+                "case-form",
+                message,
+                each.name.span,
+                related=related,
+                help="give the case another name, which says what happens",
+            )
+        )
+    return findings
 
 
 # --- which cases -------------------------------------------------------------------------------
@@ -166,6 +209,15 @@ def _unknown_case(label: Label, known: Stated) -> Mistake | Unknown:
         return Unknown()
     near = nearest(label.name, (NORMAL, *known.cases))
     advice = "state it in a `cases` block: fault one LED shorted: n_LED = n_LED - 1"
+    words = label.name.split()
+    if together := _several(words, (NORMAL, *known.cases)):
+        near, advice = None, f"names are separated by commas: {', '.join(together)}"
+    elif words[0] == "all" or (len(words) == 1 and words[0] in _KINDS):
+        near = None
+        advice = (
+            "without `in` it counts in normal and in every mode; write in every case, in every"
+            " fault, or the names after commas"
+        )
     return Mistake(
         error(
             "unknown-case",
@@ -174,6 +226,19 @@ def _unknown_case(label: Label, known: Stated) -> Mistake | Unknown:
             help=f"did you mean {near}?" if near else advice,
         )
     )
+
+
+def _several(words: list[str], names: Collection[str]) -> list[str]:
+    """The names that words written without commas consist of; empty when they are others."""
+    found: list[str] = []
+    while words:
+        ends = (end for end in range(len(words), 0, -1) if " ".join(words[:end]) in names)
+        end = next(ends, 0)
+        if not end:
+            return []
+        found.append(" ".join(words[:end]))
+        words = words[end:]
+    return found
 
 
 # --- what they change --------------------------------------------------------------------------

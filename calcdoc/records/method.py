@@ -60,8 +60,8 @@ def _paragraphs(
     if "sampling" in said:
         yield (
             "Sampling: conditions are never drawn; they stand at the worst, to first order, of"
-            " their corners and of where they govern at extremes, biases at their worse end or as new."
-            " Parts are drawn on their own. Every part has"
+            " their corners and of where they govern at extremes, biases at their worse end or as"
+            " new. Parts are drawn on their own. Every part has"
             " a stream of its own, keyed by seed and symbol, and the same draws in every case. A"
             " criterion passes when the one-sided bound of the share of draws that meet it, with"
             f" {typeset('95 %')} confidence, is at least the share asked for."

@@ -3,9 +3,12 @@
 from calcdoc.analysis.evaluate import evaluate_model
 from calcdoc.model.accepting import expired
 from calcdoc.model.build import build
+from calcdoc.model.cases import undone
 from calcdoc.model.judging import outside_band
+from calcdoc.model.varying import nothing_random
 from calcdoc.problems import Finding
 from calcdoc.problems.views import full, has_errors, in_order
+from calcdoc.records.accepting import unused
 from calcdoc.source import SourceFile
 from calcdoc.text.document import read_document
 
@@ -21,7 +24,15 @@ def findings_of(text: str, path: str = "lamp.md") -> tuple[Finding, ...]:
         findings += more
         if model is not None and not has_errors(findings):
             evaluation, trouble = evaluate_model(model)
-            findings += trouble if evaluation is None else (*outside_band(model), *expired(model))
+            if evaluation is not None:
+                trouble = (
+                    *outside_band(model),
+                    *expired(model),
+                    *undone(model),
+                    *unused(evaluation),
+                    *nothing_random(model),
+                )
+            findings += trouble
     return in_order(findings)
 
 
