@@ -22,10 +22,13 @@ from calcdoc.frozen import Frozen, replace
 from calcdoc.methods.expanded import Expanded, Reader
 from calcdoc.model.accepting import expired
 from calcdoc.model.build import build
+from calcdoc.model.cases import undone
 from calcdoc.model.judging import outside_band
 from calcdoc.model.model import Model
+from calcdoc.model.varying import nothing_random
 from calcdoc.problems import Finding
 from calcdoc.problems.views import full, has_errors, in_order
+from calcdoc.records.accepting import unused
 from calcdoc.records.build import Circumstances, build_record
 from calcdoc.records.cautions import hazard_warning
 from calcdoc.records.methods import outside_validity
@@ -152,7 +155,10 @@ def evaluate(design: Design, progress: Progress | None = None) -> Evaluated:
         findings += (
             *hazard_warning(evaluation),
             *outside_band(design.model),
-            *expired(design.model),
+            *expired(design.model, today()),
+            *undone(design.model),
+            *unused(evaluation, today()),
+            *nothing_random(design.model),
             *outside_validity(evaluation),
             *_doubts(evaluation),
         )
@@ -184,6 +190,7 @@ def record(evaluated: Evaluated) -> Record:
         evaluated.findings,
         evaluated.design.beside.pictures,
         evaluated.design.beside.files,
+        today(),
         evaluated.design.sheets,
     )
     return build_record(evaluated.evaluation, made)
@@ -220,6 +227,11 @@ def write(
     return tuple(written[form] for form in forms)
 
 
+def today() -> str:
+    """Today as YYYY-MM-DD, or the day of SOURCE_DATE_EPOCH."""
+    return (_epoch() or datetime.now(UTC)).date().isoformat()
+
+
 def file_stem(made: Record) -> str:
     """``NUMBER-REVISION`` with only letters, digits, point, dash and underscore."""
     text = f"{made.document.number}-{made.document.revision}"
@@ -243,12 +255,18 @@ def _rendered(form: str, made: Record, data: bytes, design: Design) -> bytes:
 
 def _issued(made: Record) -> datetime:
     """The date of every stamp in a file: SOURCE_DATE_EPOCH, else the document's, else 1980."""
-    epoch = os.environ.get("SOURCE_DATE_EPOCH", "")
-    if epoch:
-        try:
-            return datetime.fromtimestamp(int(epoch), UTC)
-        except (ValueError, OverflowError, OSError) as trouble:
-            raise CalcdocError("SOURCE_DATE_EPOCH is no number of seconds since 1970") from trouble
+    if epoch := _epoch():
+        return epoch
     if made.document.date:
         return datetime.fromisoformat(made.document.date).replace(tzinfo=UTC)
     return datetime(1980, 1, 1, tzinfo=UTC)
+
+
+def _epoch() -> datetime | None:
+    epoch = os.environ.get("SOURCE_DATE_EPOCH", "")
+    if not epoch:
+        return None
+    try:
+        return datetime.fromtimestamp(int(epoch), UTC)
+    except (ValueError, OverflowError, OSError) as trouble:
+        raise CalcdocError("SOURCE_DATE_EPOCH is no number of seconds since 1970") from trouble

@@ -1,6 +1,6 @@
 """All questions about extremes in one list, answered together, and read off as bands."""
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from typing import Final
 
 import numpy as np
@@ -109,11 +109,22 @@ class Asker:
         """Where the inputs that matter stand."""
         return self.stands(extreme, map(int, np.flatnonzero(extreme.matters)))
 
-    def stands(self, extreme: Extreme, columns: "map[int] | list[int]") -> Combination:
-        """Where some inputs stand."""
+    def stands(
+        self,
+        extreme: Extreme,
+        columns: Iterable[int],
+        point: FloatArray | None = None,
+        box: Box | None = None,
+    ) -> Combination:
+        """Where some inputs stand: at an extreme, or at another point of a box."""
+        if point is None or box is None:
+            return {
+                self.keys[at]: Stand(float(extreme.point[at]), bool(extreme.interior[at]))
+                for at in columns
+            }
         return {
-            self.keys[column]: Stand(float(extreme.point[column]), bool(extreme.interior[column]))
-            for column in columns
+            self.keys[at]: Stand(float(point[at]), bool(box.low[at] < point[at] < box.high[at]))
+            for at in columns
         }
 
 

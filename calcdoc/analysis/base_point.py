@@ -14,9 +14,9 @@ def base_point(
 ) -> FloatArray:
     """Parts at nominal, each bias at its worse end, all else where it governs.
 
-    The worse end is the one with the lower requirement. The search starts on the side the
-    governing point is on and turns one bias at a time, so that it ends where no single bias makes
-    it worse.
+    The worse end is the one with the lower requirement; a part as it is when new counts as well,
+    where that is worse than both ends. The search starts on the side the governing point is on and
+    turns one bias at a time, so that it ends where no single bias makes it worse.
 
     Args:
         program: Computes the requirements.
@@ -34,14 +34,16 @@ def base_point(
         ends = part.nominal + part.bias_low, part.nominal + part.bias_high
         point[part.column] = ends[above]
         if ends[0] < ends[1]:
-            biased.append((part.column, ends))
+            biased.append((part.column, sorted({*ends, part.nominal})))
     rows = [program.row[requirement] for requirement in requirements]
-    for _ in range(len(biased) + 1 if biased else 0):
+    for _ in range(2 * len(biased) + 1 if biased else 0):
         points = [point]
-        for column, ends in biased:
-            other = point.copy()
-            other[column] = ends[0] if point[column] == ends[1] else ends[1]
-            points.append(other)
+        for column, options in biased:
+            for option in options:
+                if option != point[column]:
+                    other = point.copy()
+                    other[column] = option
+                    points.append(other)
         found = program.evaluate(np.stack(points, axis=1))[rows]
         least = np.where(np.isfinite(found), found, np.inf).min(axis=0)
         worst = int(np.argmin(least))

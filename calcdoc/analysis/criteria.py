@@ -15,10 +15,12 @@ from calcdoc.analysis.evaluation import (
     Outcome,
     Progress,
     PutBack,
+    Stand,
     Unjudged,
 )
 from calcdoc.analysis.extremes import extremes
 from calcdoc.analysis.judging import Found, Hearing, Ready, Weighed
+from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import plain
 from calcdoc.analysis.putting_back import Solutions, put_back, solutions
 from calcdoc.analysis.sides import Side
@@ -205,7 +207,7 @@ class Criteria:
             ready.found,
             weighed.rows,
             weighed.requirements,
-            self._governing(ready, which),
+            self._governing(ready, which, weighed.bases[which] if weighed.bases else None),
             which,
             _named(hearing, ready.found[which]),
             running,
@@ -214,14 +216,33 @@ class Criteria:
         outcome = weighed.outcome or made.outcome
         return replace(made, outcome=_with_loops(outcome, running, back))
 
-    def _governing(self, ready: Ready, which: int) -> Combination:
-        """Where the inputs stand; parts that vary on their own stand nowhere in particular."""
+    def _governing(self, ready: Ready, which: int, base: FloatArray | None) -> Combination:
+        """Where the inputs stand; parts that vary on their own stand nowhere in particular.
+
+        Of those only where a bias has put them is said; what a case changes stands at its value in
+        that case.
+        """
         extreme, columns = ready.found[which].extreme, self.compiled.columns
-        random = {part.column for part in ready.parts}
+        random = {part.column for part in ready.parts if part.bias_low == part.bias_high}
         matters = [int(at) for at in np.flatnonzero(extreme.matters) if at not in random]
         stated = [point.symbol.key for point in ready.hearing.judged.statement.clauses.at]
         own = [columns[key] for key in stated if columns[key] not in random]
-        return self.asker.stands(extreme, [*matters, *own])
+        stands = self.asker.stands(extreme, [*matters, *own], base, ready.hearing.box)
+        point = extreme.point if base is None else base
+        return {**stands, **self._changed(ready.hearing, stands, point)}
+
+    def _changed(self, hearing: Hearing, stands: Combination, point: FloatArray) -> Combination:
+        """Inputs of a combination that the case changes by a formula, at their value there."""
+        known = hearing.known
+        keys = [key for key in stands if key in known.changes and key in known.variables]
+        if not keys:
+            return {}
+        part = plain(self.compiled.tape, [known.variables[key] for key in keys])
+        values = part.evaluate(point[:, None])[:, 0]
+        return {
+            key: Stand(float(values[part.row[known.variables[key]]]), stands[key].inside)
+            for key in keys
+        }
 
     def _found(self, hearing: Hearing) -> list[Found]:
         """The extremes of all sides, with the values there."""

@@ -68,6 +68,8 @@ class Weighed(Frozen, frozen=True):
     """Over all limits, for sampling; None where each limit is judged on its own."""
     statistics: "tuple[Combined | Drawn, ...]"
     """For each limit; empty by extremes."""
+    bases: tuple[FloatArray, ...] = ()
+    """For each limit where its parts vary around, shape (n_columns,)."""
 
 
 class Ready(Frozen, frozen=True):

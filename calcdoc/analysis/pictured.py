@@ -34,6 +34,8 @@ class Curve(Frozen, frozen=True):
     drawn: Track
     limit: Track | None
     meetings: tuple[Meeting, ...]
+    partial: str
+    """Why a part of the bands cannot be computed somewhere along the axis; else empty."""
 
 
 class Bound(Frozen, frozen=True):

@@ -23,6 +23,7 @@ from calcdoc.analysis.pictured import (
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import plain
 from calcdoc.analysis.spreading import spread
+from calcdoc.analysis.trouble import out_of_reach, said
 from calcdoc.frozen import replace
 from calcdoc.model.model import Pictured
 from calcdoc.problems import Mistake, error
@@ -165,7 +166,20 @@ def _curve(compiled: Compiled, evaluation: Evaluation, number: int) -> Curve:
         rows = drawn - along if moved.still(against.limit) else moved.all(against.difference, axis)
         meetings = _meetings(moved, against.difference, axis, rows)
     places = tuple(float(each) for each in axis)
-    return Curve(pictured, places, _track(drawn), limit, meetings)
+    partial = _partial(compiled, evaluation, moved, compiled.variables[statement.symbol.key], axis)
+    return Curve(pictured, places, _track(drawn), limit, meetings, partial)
+
+
+def _partial(
+    compiled: Compiled, evaluation: Evaluation, moved: "_Axis", target: int, axis: FloatArray
+) -> str:
+    """Why a part of the bands cannot be computed somewhere along the axis."""
+    box = compiled.box
+    low, nominal, high = box.low.copy(), box.nominal.copy(), box.high.copy()
+    low[moved.column], high[moved.column] = axis[0], axis[-1]
+    nominal[moved.column] = np.clip(nominal[moved.column], axis[0], axis[-1])
+    found = out_of_reach(compiled, evaluation.model, Box(low, nominal, high), [target], None)
+    return said(found[target]) if target in found else ""
 
 
 def _check(values: FloatArray, what: str, statement: FigureStatement) -> None:

@@ -1,12 +1,17 @@
 """Criteria by root sum square and by sampling: parts vary on their own, all else at its worst."""
 
 from collections.abc import Mapping, Sequence
-from math import isfinite
+from itertools import product
+from math import isfinite, sqrt
+from statistics import NormalDist
 from typing import Final
+
+import numpy as np
 
 from calcdoc.analysis.compile import Compiled
 from calcdoc.analysis.evaluation import Drawn, Outcome, Progress, Row, Unjudged
 from calcdoc.analysis.judging import EQUAL, Found, Hearing, Ready, Weighed, holds
+from calcdoc.analysis.looking_up import reached
 from calcdoc.analysis.parts import Part, part_of, random_parts
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import plain
@@ -20,6 +25,10 @@ from calcdoc.text.titleblock import TitleBlock
 
 Key = tuple[int, str]
 """Number and case of a criterion."""
+MOST_CORNERS: Final = 6
+"""Conditions of which all corners are tried: 64 of them."""
+SQRT_3: Final = sqrt(3.0)
+"""Half the band of a rectangular part in standard deviations."""
 DRAWS: Final = 100_000
 SEED: Final = 1
 """Both where the title block does not say."""
@@ -70,9 +79,8 @@ def _counts(compiled: Compiled, model: Model, hearing: Hearing) -> dict[str, int
     rows = [hearing.known.variables[key] for key in moved]
     part = plain(compiled.tape, rows)
     values = part.evaluate(hearing.box.nominal[:, None])[:, 0]
-    return {
-        key: max(1, round(float(values[part.row[at]]))) for key, at in zip(moved, rows, strict=True)
-    }
+    found = {key: float(values[part.row[at]]) for key, at in zip(moved, rows, strict=True)}
+    return {key: max(1, round(number)) for key, number in found.items()}
 
 
 def weighed(
@@ -90,6 +98,73 @@ def weighed(
     return found
 
 
+def worst_conditions(compiled: Compiled, ready: Ready, found: Found, spread: float) -> FloatArray:
+    """Where conditions stand: the worst for this method of their corners and where they govern.
+
+    What governs at extremes has all parts at their limits, and need not be worst where parts vary
+    on their own. Each corner is weighed to first order: the requirement with parts at nominal, less
+    ``spread`` times the root of the sum of squares of what their limits do.
+
+    Returns:
+        Shape (n_columns,): the governing point with other conditions, when those are worse.
+    """
+    points = _corners(compiled, ready, found)
+    if len(points) == 1:
+        return points[0]
+    drawn = [part for part in ready.parts if part.is_random]
+    program = plain(compiled.tape, _instructions(found.side))
+    values = program.evaluate(
+        np.concatenate([_moved(point, ready.parts, drawn) for point in points], axis=1)
+    )
+    shape = (len(points), 1 + 2 * len(drawn))
+    requirement = values[program.row[found.side.requirement]].reshape(shape)
+    effects = np.minimum(requirement[:, 1:].reshape(len(points), -1, 2).min(axis=2, initial=np.inf)
+                         - requirement[:, :1], 0.0)  # fmt: skip
+    score = requirement[:, 0] - spread * np.sqrt(np.sum(effects**2, axis=1))
+    if found.side.when is not None:
+        applies = values[program.row[found.side.when]].reshape(shape)[:, 0] != 0.0
+        score = np.where(applies, score, np.inf)
+    score = np.where(np.isfinite(score), score, np.inf)
+    return points[int(np.argmin(score))]
+
+
+def _instructions(side: Side) -> tuple[int, ...]:
+    return (side.requirement,) if side.when is None else (side.requirement, side.when)
+
+
+def _corners(compiled: Compiled, ready: Ready, found: Found) -> list[FloatArray]:
+    """The governing point, then all corners of what is not random; of many one is turned each."""
+    box, point = ready.hearing.box, found.extreme.point
+    random = {part.column for part in ready.parts}
+    rests = reached(compiled.tape, found.side.requirement) - random
+    columns = [at for at in sorted(rests) if box.low[at] < box.high[at]]
+    if len(columns) > MOST_CORNERS:
+        choices = [{at: end} for at in columns for end in (box.low[at], box.high[at])]
+    else:
+        ends = product(*((box.low[at], box.high[at]) for at in columns))
+        choices = [dict(zip(columns, each, strict=True)) for each in ends]
+    corners = [point]
+    for choice in choices if columns else ():
+        corner = point.copy()
+        for at, end in choice.items():
+            corner[at] = end
+        corners.append(corner)
+    return corners
+
+
+def _moved(point: FloatArray, parts: Sequence[Part], drawn: Sequence[Part]) -> FloatArray:
+    """A point with parts at nominal, then each at its limits; biases stay where they govern."""
+    base = point.copy()
+    for part in parts:
+        above = bool(point[part.column] > part.nominal)
+        base[part.column] = part.nominal + (part.bias_high if above else part.bias_low)
+    points = np.repeat(base[:, None], 1 + 2 * len(drawn), axis=1)
+    for number, part in enumerate(drawn):
+        for end, change in enumerate(part.limits):
+            points[part.column, 1 + 2 * number + end] += change
+    return points
+
+
 def combine(compiled: Compiled, ready: Ready) -> Weighed | Unjudged:
     """Judge by root sum square: every limit on its own.
 
@@ -98,11 +173,14 @@ def combine(compiled: Compiled, ready: Ready) -> Weighed | Unjudged:
     """
     combined = [
         root_sum_square(
-            compiled.tape, (each.side.requirement,), ready.parts, each.extreme.point,
+            compiled.tape,
+            (each.side.requirement,),
+            ready.parts,
+            worst_conditions(compiled, ready, each, 1.0),
             each.extreme.value,
         )
         for each in ready.found
-    ]  # fmt: skip
+    ]
     rows, requirements = [], []
     for found, each in zip(ready.found, combined, strict=True):
         base = _At(compiled, found.side, each.point)
@@ -115,25 +193,33 @@ def combine(compiled: Compiled, ready: Ready) -> Weighed | Unjudged:
             )
         rows.append(base.row(each.requirement, None))
         requirements.append(each.requirement)
-    return Weighed(tuple(rows), tuple(requirements), None, tuple(combined))
+    bases = tuple(each.point for each in combined)
+    return Weighed(tuple(rows), tuple(requirements), None, tuple(combined), bases)
 
 
 def sample(
     compiled: Compiled, ready: Sequence[Ready], setting: Setting, progress: Progress | None
 ) -> list[Weighed | Unjudged]:
     """Judge by sampling, all criteria with the same draws."""
-    results = sampled(compiled.tape, [_job(each) for each in ready], setting, progress)
+    jobs = [_job(compiled, each) for each in ready]
+    results = sampled(compiled.tape, jobs, setting, progress)
     return [_weighed(compiled, one, result) for one, result in zip(ready, results, strict=True)]
 
 
-def _job(ready: Ready) -> Job:
+def _job(compiled: Compiled, ready: Ready) -> Job:
     share = ready.hearing.judged.statement.clauses.share
     assert share is not None
+    deviations = NormalDist().inv_cdf(float(share)) / SQRT_3
     asked = tuple(
-        Asked(each.side.requirement, "=" not in each.side.relation, _tolerance(each),
-              each.extreme.point, each.side.when)
+        Asked(
+            each.side.requirement,
+            "=" not in each.side.relation,
+            _tolerance(each),
+            worst_conditions(compiled, ready, each, deviations),
+            each.side.when,
+        )
         for each in ready.found
-    )  # fmt: skip
+    )
     return Job(asked, ready.parts, share)
 
 
@@ -166,14 +252,15 @@ def _weighed(compiled: Compiled, ready: Ready, result: Sampled) -> Weighed | Unj
         rows.append(base.row(spread.quantile, outcome if len(ready.found) == 1 else None))
         requirements.append(spread.quantile)
     drawn = tuple(Drawn(share, result, each) for each in result.spreads)
-    return Weighed(tuple(rows), tuple(requirements), outcome, drawn)
+    bases = tuple(each.base for each in result.spreads)
+    return Weighed(tuple(rows), tuple(requirements), outcome, drawn, bases)
 
 
 def _no_value(result: Sampled, outcome: Outcome, why: str) -> str:
     """The verdict of the draws, without the value of one of them."""
     more = ": more draws decide" if outcome is Outcome.NOT_DECIDED else ""
     return (
-        f"{result.met} of {result.draws} draws meet it; {why}, so there is no value to show{more}"
+        f"{result.met} of {result.counted} draws meet it; {why}, so there is no value to show{more}"
     )
 
 

@@ -199,7 +199,9 @@ class _Teller:
             )
         ends = ""
         if hazard.kind == NO_CHANGE and hazard.ends is not None and not hazard.inner:
-            one, other = (self._left(end, implicit.dimension) for end in
+            # Of a loop the author writes the quantity left of its formula.
+            sign = -1.0 if implicit.is_loop else 1.0
+            one, other = (self._left(sign * end, implicit.dimension) for end in
                           (hazard.ends.low, hazard.ends.high))  # fmt: skip
             ends = f": left less right is {one} at {low} and {other} at {high}"
         message = (

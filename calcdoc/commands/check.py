@@ -38,7 +38,7 @@ def check(files: tuple[str, ...], form: str, accepted: bool) -> int:
 def _status(checked: Checked, *, accepted: bool) -> int:
     if checked.record is None:
         return checked.status
-    return status_of(checked.record, accepted=accepted)
+    return status_of(checked.record, accepted=accepted, lapsed=checked.lapsed)
 
 
 def _all_checked(files: tuple[str, ...]) -> list[Checked]:

@@ -20,7 +20,7 @@ from typing import Final
 from xml.etree.ElementTree import Element, SubElement, indent, tostring
 
 from calcdoc.commands.checked import Checked
-from calcdoc.commands.verdicts import criterion_said, crosscheck_said, named
+from calcdoc.commands.verdicts import criterion_said, crosscheck_said, named, stated
 from calcdoc.problems import Severity
 from calcdoc.problems.views import full, headline
 from calcdoc.records.record import Criterion, Crosscheck, Record
@@ -83,14 +83,15 @@ def _case(suite: Element, record: Record, entry: Criterion | Crosscheck) -> Elem
 def _criterion(case: Element, criterion: Criterion) -> None:
     element = None if criterion.route_of else _ELEMENTS.get(criterion.verdict)
     if criterion.value is None and element:
-        _say(case, element, criterion.verdict, f"{criterion.verdict}: {criterion_said(criterion)}")
+        said = f"{criterion.verdict}: {criterion_said(criterion)}"
+        text = f"{stated(criterion)}\n{said}" if criterion.by_case else ""
+        _say(case, element, criterion.verdict, said, text)
         return
     said = criterion_said(criterion)
     if element is None:
         SubElement(case, "system-out").text = _plain(said)
         return
-    clauses = f" {criterion.clauses}" if criterion.clauses else ""
-    _say(case, element, criterion.verdict, said, f"{criterion.text}{clauses}\n{said}")
+    _say(case, element, criterion.verdict, said, f"{stated(criterion)}\n{said}")
 
 
 def _crosscheck(case: Element, crosscheck: Crosscheck) -> None:

@@ -134,5 +134,7 @@ def _plain(inline: prose.Inline) -> str:
             return name
         case prose.Break():
             return " "
+        case prose.Brace():
+            return "{"
         case prose.Picture():
             return inline.alternative

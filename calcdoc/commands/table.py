@@ -21,12 +21,12 @@ def verdict_table(record: Record) -> str:
 
 
 def _row(criterion: Criterion) -> Row:
-    what = criterion.description or criterion.text
+    what = criterion.description or " ".join(filter(None, (criterion.text, criterion.clauses)))
     if criterion.value is None and criterion.method in ("test", "inspection", "none"):
         return (criterion.id, _verdict(criterion), "", "", "", "", criterion.text)
     if criterion.value is None:
         return (criterion.id, _verdict(criterion), "", "", "", "", what)
-    if "margin" in criterion.clauses:
+    if criterion.description and "margin" in criterion.clauses:
         what += f" {typeset(criterion.clauses)}"
     at = ", ".join(f"{symbol} {typeset(text)}" for symbol, text in criterion.governing.items())
     where = "; ".join(filter(None, (_case(criterion), f"at {at}" if at else "")))

@@ -15,9 +15,9 @@ def named(entry: Criterion | Crosscheck) -> str:
 
 
 def stated(entry: Criterion | Crosscheck) -> str:
-    """The inequality, the text of a test, or the comparison, as written."""
+    """The inequality with its clauses, the text of a test, or the comparison, as written."""
     if isinstance(entry, Criterion):
-        return entry.text
+        return f"{entry.text} {entry.clauses}".rstrip()
     return f"{entry.first} {entry.form} {entry.second}"
 
 

@@ -80,7 +80,7 @@ def _renamed(piece: object, naming: Naming) -> object:  # noqa: PLR0911  (one fo
             return piece
         case tuple():
             return tuple(_renamed(each, naming) for each in piece)
-        case nodes.Name() | Label() | prose.Mention():
+        case nodes.Name() | Label() | prose.Mention() | prose.Brace():
             return replace(piece, name=naming.symbol(piece.name))
         case nodes.Element():
             index = _renamed(piece.index, naming)

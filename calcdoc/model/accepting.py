@@ -18,26 +18,46 @@ Stating = Mapping[str, Inequality | Uncalculated | AnyOf]
 """The statements of criteria by key."""
 
 
-def expired(model: Model) -> tuple[Finding, ...]:
-    """Acceptances that ended before the date of the document; today is not looked at."""
+def expired(model: Model, today: str = "") -> tuple[Finding, ...]:
+    """Acceptances that ended before the date of the document.
+
+    Args:
+        model: The design.
+        today: As YYYY-MM-DD: counts where the document has no date.
+    """
     day = model.document.title.date
+    dated = f"this document is of {day}" if day else f"today is {today}"
+    return tuple(_expired(each, dated) for each in model.acceptances if ended(model, each, today))
+
+
+def ended_since(model: Model, today: str) -> tuple[Accepted, ...]:
+    """Acceptances that held on the date of the document and have ended since."""
     return tuple(
-        warning(
-            "acceptance-expired",
-            f"the failure of {shown(each.statement.criterion.name)} is accepted until"
-            f" {each.statement.until}, this document is of {day}",
-            each.statement.until_span,
-            help="have it accepted anew, or remove the line",
-        )
+        each
         for each in model.acceptances
-        if expired_on(model, each)
+        if each.statement.until < today and not ended(model, each, today)
     )
 
 
-def expired_on(model: Model, accepted: Accepted) -> bool:
-    """Whether an acceptance ended before the date of the document."""
-    day = model.document.title.date
-    return bool(day) and accepted.statement.until < day
+def ended(model: Model, accepted: Accepted, today: str) -> bool:
+    """Whether an acceptance ended before the date of the document, or else before today."""
+    return accepted.statement.until < (model.document.title.date or today)
+
+
+def since_then(accepted: Accepted, today: str) -> Finding:
+    """What to say of an acceptance that has ended since the document was dated."""
+    return _expired(accepted, f"today is {today}")
+
+
+def _expired(accepted: Accepted, dated: str) -> Finding:
+    statement = accepted.statement
+    return warning(
+        "acceptance-expired",
+        f"the failure of {shown(statement.criterion.name)} is accepted until {statement.until},"
+        f" {dated}",
+        statement.until_span,
+        help="have it accepted anew, or remove the line",
+    )
 
 
 def criteria_of(statements: tuple[Statement, ...]) -> Stating:

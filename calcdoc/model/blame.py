@@ -1,17 +1,20 @@
 """Where unlike quantities meet: the smallest wrong piece, and what set the expectation."""
 
 from collections.abc import Mapping
-from typing import NoReturn
+from fractions import Fraction
+from typing import Final, NoReturn
 
 from calcdoc.model.model import Typed, Variable
 from calcdoc.problems import Mistake, Place, error
 from calcdoc.source import Span
+from calcdoc.text import literal
 from calcdoc.text.names import fold
-from calcdoc.text.nodes import Binary, Group, Name, Node, Quantity, walk
+from calcdoc.text.nodes import Binary, Group, Name, Negate, Node, Number, Quantity, walk
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import Label
-from calcdoc.text.unparse import unparse
+from calcdoc.text.unparse import unit_text, unparse
 from calcdoc.units import ONE
+from calcdoc.units.choose import choose_unit
 from calcdoc.units.dimension import TEMPERATURE
 
 Places = Mapping[str, Span]
@@ -42,6 +45,11 @@ def unlike(  # noqa: PLR0913  (both sides, and how to say it)
             f"multiply {shown(unparse(right[0]))} by {needed.in_words()} to get"
             f" {one.dimension.in_words()}"
         )
+    for (node, _), (_, typed) in ((left, right), (right, left)):
+        number = bare(node)
+        if isinstance(number, Number):
+            unit = choose_unit(typed.dimension, 1.0, celsius=bool(typed.weight)).text
+            advice = f"write {number.digits} with its unit, as in {number.digits} {unit}"
     raise Mistake(
         error(
             "unit-mismatch",
@@ -49,6 +57,38 @@ def unlike(  # noqa: PLR0913  (both sides, and how to say it)
             at or left[0].span.to(right[0].span),
             label=f"{_bare(one)} {joint} {_bare(other)}",
             related=(*defined(*left, places), *defined(*right, places)),
+            help=advice,
+        )
+    )
+
+
+def bare(node: Node) -> Node:
+    """What stands inside of parentheses and behind a minus."""
+    while isinstance(node, Group | Negate):
+        node = node.inner if isinstance(node, Group) else node.operand
+    return node
+
+
+_COLDEST: Final = 100
+"""Kelvin; what is less is meant as a difference."""
+
+
+def unlike_temperatures(left: Side, right: Side) -> NoReturn:
+    """A temperature on the Celsius scale stands against a difference."""
+    advice = "a temperature is in °C, a difference in K"
+    for node, typed in (left, right):
+        value = bare(node)
+        if isinstance(value, Quantity) and not typed.weight:
+            kelvin = literal.resolve(value.unit).to_si(Fraction(value.digits))
+            if kelvin >= _COLDEST:
+                celsius = float(kelvin - Fraction("273.15"))
+                written = f"{value.digits} {unit_text(value.unit)}"
+                advice = f"write {celsius:.10g} °C, which is {written}; a difference is in K"
+    raise Mistake(
+        error(
+            "temperature",
+            "cannot compare a temperature with a difference of temperatures",
+            left[0].span.to(right[0].span),
             help=advice,
         )
     )

@@ -6,7 +6,7 @@ from contextlib import contextmanager
 from calcdoc.frozen import Working, replace
 from calcdoc.model import namespace
 from calcdoc.model.accepting import Accepting, check_once, criteria_of, key_of
-from calcdoc.model.cases import Stated, build_cases, stated
+from calcdoc.model.cases import Stated, build_cases, check_names, stated
 from calcdoc.model.citations import CHECKS
 from calcdoc.model.judging import Judging, discharge
 from calcdoc.model.model import (
@@ -73,6 +73,7 @@ def build(
     cases, wrong = build_cases(known, quantities.checker, quantities.variables)
     quantities.check_counts(cases)
     judged = _judge(document, space, quantities, known)
+    twice += check_names(known, space)
     findings += [*found, *quantities.findings, *twice, *wrong, *judged.findings]
     figures, unfit = pictured(document, quantities.checker, quantities.variables)
     findings += unfit

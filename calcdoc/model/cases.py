@@ -5,21 +5,26 @@ from typing import Final
 
 from calcdoc.frozen import Frozen
 from calcdoc.model import blame, series
-from calcdoc.model.model import Case, Variable
+from calcdoc.model.model import Case, Judged, Model, Variable
+from calcdoc.model.namespace import Namespace
 from calcdoc.model.quantities import typed_as
 from calcdoc.model.typing import Checker, Unknown
-from calcdoc.problems import Finding, Mistake, Place, error
+from calcdoc.problems import Finding, Mistake, Place, error, warning
 from calcdoc.text.cases import NORMAL
 from calcdoc.text.document import Document
 from calcdoc.text.given import Given
-from calcdoc.text.names import fold, nearest
+from calcdoc.text.names import CLAUSE_WORDS, fold, nearest
 from calcdoc.text.nodes import Node
 from calcdoc.text.scan import shown
-from calcdoc.text.statements import CaseStatement, Change, Label, Scope
+from calcdoc.text.statements import CaseStatement, Change, Label, PointValue, Scope
 
 MOST_CASES: Final = 200
 MODE: Final = "mode"
 FAULT: Final = "fault"
+
+
+_KINDS: Final = frozenset({"cases", "modes", "mode", "faults", "fault", "everywhere", "any"})
+"""Words that are meant for several cases."""
 
 
 class Stated(Frozen, frozen=True):
@@ -56,30 +61,80 @@ def stated(document: Document) -> tuple[Stated, list[Finding]]:
                     help="give one of them another name",
                 )
             )
-    findings += [
-        error(
-            "case-form",
-            f"a design has at most {MOST_CASES} cases",
-            cases.pop(name).name.span,
-            help="split the design into several texts",
+    beyond = list(cases)[MOST_CASES:]
+    if beyond:
+        findings.append(
+            error(
+                "case-form",
+                f"a design has at most {MOST_CASES} cases, this one has {len(cases)}",
+                cases[beyond[0]].name.span,
+                help="split the design into several texts",
+            )
         )
-        for name in list(cases)[MOST_CASES:]
-    ]
+    for name in beyond:
+        del cases[name]
     return Stated(cases, document.broken), findings
+
+
+_WORDS: Final = frozenset({
+    *CLAUSE_WORDS, "nominal", "extremes", "sampling", "margin", "until", "accept", "case", "cases",
+    "mode", "modes", "fault", "faults", "all", "any",
+})  # fmt: skip
+
+
+def check_names(known: Stated, space: Namespace) -> list[Finding]:
+    """Names that would be read as something else where a record says ``in NAME``."""
+    findings = []
+    firsts: dict[str, CaseStatement | None] = {NORMAL.casefold(): None}
+    for name, each in known.cases.items():
+        key = fold(name)
+        first = firsts.setdefault(name.casefold(), each)
+        related: tuple[Place, ...] = ()
+        if key in space.labels:
+            what = space.ids.get(key, "symbol")
+            message = f"{shown(name)} is also the name of a {what}"
+            related = (Place(space.labels[key].span, "defined here"),)
+        elif name.casefold() in _WORDS:
+            message = f"{shown(name)} alone is a word of the language"
+        elif first is not each:
+            other = first.name.name if first else NORMAL
+            message = f"{shown(name)} and {shown(other)} differ only in capitals"
+            related = (Place(first.name.span, "first here"),) if first else ()
+        else:
+            continue
+        findings.append(
+            error(
+                "case-form",
+                message,
+                each.name.span,
+                related=related,
+                help="give the case another name, which says what happens",
+            )
+        )
+    return findings
 
 
 # --- which cases -------------------------------------------------------------------------------
 
 
-def judged_in(scope: Scope | None, known: Stated) -> tuple[str, ...]:
+def judged_in(scope: Scope | None, known: Stated, stated: Collection[str] = ()) -> tuple[str, ...]:
     """The names of the cases a criterion is judged in.
+
+    Unless the criterion says so, it is not judged in a mode that would be undone by the operating
+    point it states: nothing is different there.
+
+    Args:
+        scope: What the criterion says.
+        known: Every case.
+        stated: Keys of the quantities its operating point sets.
 
     Raises:
         Mistake: when there is no such case, or when nothing would be checked.
         Unknown: when the case may stand in a line that could not be read.
     """
     if scope is None:
-        return (NORMAL, *known.of_kind(MODE))
+        modes = known.of_kind(MODE)
+        return (NORMAL, *(name for name in modes if not _undone(known.cases[name], stated)))
     if not scope.every:
         return named(scope.names, known)
     faults = known.of_kind(FAULT)
@@ -98,6 +153,36 @@ def judged_in(scope: Scope | None, known: Stated) -> tuple[str, ...]:
             )
         )
     return found
+
+
+def _undone(case: CaseStatement, stated: Collection[str]) -> bool:
+    return all(each.symbol.key in stated for each in case.changes)
+
+
+def undone(model: Model) -> tuple[Finding, ...]:
+    """Criteria whose operating point sets what a case changes: there the operating point counts."""
+    cases = {each.name: each for each in model.cases}
+    findings = []
+    for judged in model.criteria:
+        if not isinstance(judged, Judged):
+            continue
+        points = {point.symbol.key: point for point in judged.statement.clauses.at}
+        for name in judged.cases:
+            both = [key for key in points if name in cases and key in cases[name].changes]
+            if both:
+                findings.append(_undoes(points[both[0]], cases[name]))
+    return tuple(findings)
+
+
+def _undoes(point: PointValue, case: Case) -> Finding:
+    return warning(
+        "case-undone",
+        f"the case {shown(case.name)} changes {shown(point.symbol.name)}, this operating point sets"
+        " it: here the operating point counts",
+        point.symbol.span,
+        related=(Place(case.statement.name.span, "the case"),),
+        help="leave it out of the operating point, or judge the criterion in other cases",
+    )
 
 
 def named(labels: tuple[Label, ...], known: Stated) -> tuple[str, ...]:
@@ -124,6 +209,15 @@ def _unknown_case(label: Label, known: Stated) -> Mistake | Unknown:
         return Unknown()
     near = nearest(label.name, (NORMAL, *known.cases))
     advice = "state it in a `cases` block: fault one LED shorted: n_LED = n_LED - 1"
+    words = label.name.split()
+    if together := _several(words, (NORMAL, *known.cases)):
+        near, advice = None, f"names are separated by commas: {', '.join(together)}"
+    elif words[0] == "all" or (len(words) == 1 and words[0] in _KINDS):
+        near = None
+        advice = (
+            "without `in` it counts in normal and in every mode; write in every case, in every"
+            " fault, or the names after commas"
+        )
     return Mistake(
         error(
             "unknown-case",
@@ -132,6 +226,19 @@ def _unknown_case(label: Label, known: Stated) -> Mistake | Unknown:
             help=f"did you mean {near}?" if near else advice,
         )
     )
+
+
+def _several(words: list[str], names: Collection[str]) -> list[str]:
+    """The names that words written without commas consist of; empty when they are others."""
+    found: list[str] = []
+    while words:
+        ends = (end for end in range(len(words), 0, -1) if " ".join(words[:end]) in names)
+        end = next(ends, 0)
+        if not end:
+            return []
+        found.append(" ".join(words[:end]))
+        words = words[end:]
+    return found
 
 
 # --- what they change --------------------------------------------------------------------------

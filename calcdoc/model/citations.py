@@ -6,8 +6,9 @@ from typing import Final
 from calcdoc.model.methods import out_of_sight
 from calcdoc.model.namespace import MEASURED, Namespace
 from calcdoc.problems import Finding, Place, error
-from calcdoc.text.document import Document, mentions
+from calcdoc.text.document import Document, inlines, mentions
 from calcdoc.text.names import fold, nearest
+from calcdoc.text.prose import Brace
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
     Basis,
@@ -112,6 +113,29 @@ def check_mentions(document: Document, space: Namespace) -> list[Finding]:
     return findings
 
 
+def check_braces(document: Document, space: Namespace) -> list[Finding]:
+    """Braces that begin with a known name are a mention, not text that prints as it stands."""
+    findings = []
+    for brace in inlines(document.body):
+        if not isinstance(brace, Brace) or fold(brace.name) not in space.labels:
+            continue
+        key, name = fold(brace.name), brace.name
+        forms = ""
+        if space.ids.get(key) == "criterion":
+            forms = f"write {{{name}}}; "
+        elif key in space.quantities:
+            forms = f"write {{{name}}}, {{{name}:value}}, {{{name}:least}} or {{{name}:greatest}}; "
+        findings.append(
+            error(
+                "unknown-name",
+                f"{shown(brace.written)} is no form in which prose names a value",
+                brace.span,
+                help=f"{forms}for a plain brace write \\{{",
+            )
+        )
+    return findings
+
+
 Check = Callable[[Document, Namespace], list[Finding]]
-CHECKS: Final[tuple[Check, ...]] = (check_references, check_mentions)
+CHECKS: Final[tuple[Check, ...]] = (check_references, check_mentions, check_braces)
 """Extend by adding a line."""

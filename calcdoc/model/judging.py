@@ -18,7 +18,8 @@ from calcdoc.model.quantities import typed_as
 from calcdoc.model.typing import Checker, Unknown
 from calcdoc.problems import Finding, Mistake, Place, error, warning
 from calcdoc.text.given import Given
-from calcdoc.text.nodes import Comparison, Node, walk
+from calcdoc.text.names import fold
+from calcdoc.text.nodes import Comparison, Name, Node, names, walk
 from calcdoc.text.scan import shown
 from calcdoc.text.statements import (
     CrosscheckStatement,
@@ -92,9 +93,11 @@ class Judging:
             for each in walk(clauses.when):
                 if isinstance(each, Comparison):
                     self._check_series(each.operands, index)
+        if index is not None:
+            self._check_index(trees, index)
         self._check_margin(statement, typed)
         self._check_points(clauses.at)
-        cases = judged_in(clauses.scope, self.cases)
+        cases = judged_in(clauses.scope, self.cases, {p.symbol.key for p in clauses.at})
         running = {index.name.key} if index else set()
         return Judged(statement, typed, direct_uses(trees, self.space, running), cases)
 
@@ -156,6 +159,26 @@ class Judging:
                         help="name the element and add `for n in ...`, or take max(...)",
                     )
                 )
+
+    def _check_index(self, trees: list[Node], index: Index) -> None:
+        """A criterion over a series depends on its index, or judges one thing many times."""
+        used = any(fold(each.name) == index.name.key for tree in trees for each in names(tree))
+        sides = (side for tree in trees for side in (tree, *walk(tree)))
+        if used or any(isinstance(each, Name) and self._is_series(each) for each in sides):
+            return
+        raise Mistake(
+            error(
+                "series-form",
+                f"{shown(index.name.name)} stands nowhere in this criterion, which would be judged"
+                f" {len(index.values)} times alike",
+                index.name.span,
+                help=f"name an element, as in limit[{index.name.name}], or leave `for` out",
+            )
+        )
+
+    def _is_series(self, name: Name) -> bool:
+        variable = self.variables.get(fold(name.name))
+        return variable is not None and variable.index is not None
 
     def _check_margin(self, statement: Inequality, typed: Typed) -> None:
         margin = statement.clauses.margin

@@ -96,14 +96,7 @@ class Checker:
                     self.places,
                 )
             if other.weight != typed.weight:
-                raise Mistake(
-                    error(
-                        "temperature",
-                        "cannot compare a temperature with a difference of temperatures",
-                        before.span.to(side.span),
-                        help="a temperature is in °C, a difference in K",
-                    )
-                )
+                blame.unlike_temperatures((before, typed), (side, other))
         return typed
 
     def of(self, node: Node) -> Typed:

@@ -12,6 +12,7 @@ from calcdoc.page.lines import (
     both_limits,
     given_value,
     gives_limits,
+    inequality,
     made_of,
     remark,
     subject,
@@ -57,7 +58,7 @@ def clauses(view: View) -> str:
 
 def _requirement(view: View, criterion: Criterion) -> str:
     what = subject(criterion)
-    shown = view.words(what) if what else view.math(criterion.text, room=17)
+    shown = view.words(what) if what else inequality(view, criterion, 17)
     return f"{view.place(criterion.id)}: {shown}"
 
 
@@ -75,7 +76,7 @@ def _result(view: View, criterion: Criterion) -> str:
 
 
 def _verdict(criterion: Criterion) -> str:
-    return verdict(criterion.verdict, criterion.accepted)
+    return verdict(criterion.verdict, criterion.accepted, criterion.route_of)
 
 
 def inputs(view: View) -> str:

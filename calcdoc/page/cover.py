@@ -6,7 +6,7 @@ from typing import Final
 
 from calcdoc.page import typeset
 from calcdoc.page.incase import case_tables
-from calcdoc.page.lines import assumed, remark, subject
+from calcdoc.page.lines import assumed, inequality, remark, subject
 from calcdoc.page.markup import Column, margin_bar, table, verdict
 from calcdoc.page.measure import SCRIPT, text_width
 from calcdoc.page.prose import caution
@@ -90,12 +90,13 @@ def _verdict_row(view: View, criterion: Criterion) -> tuple[str, ...]:
     by = "; ".join(filter(None, (case, _governing(view, criterion))))
     return (
         view.place(criterion.id),
-        view.opening(what) if what else view.math(criterion.text, room=14),
+        view.opening(what) if what else inequality(view, criterion, 14),
         typeset.quantity(criterion.value_text),
         typeset.quantity(criterion.limit_text),
         typeset.quantity(criterion.margin_text),
         margin_bar(criterion),
-        verdict(criterion.verdict) + ("<br>accepted" if criterion.accepted else ""),
+        verdict(criterion.verdict, route_of=criterion.route_of)
+        + ("<br>accepted" if criterion.accepted else ""),
         by or _why(view, criterion),
     )
 
@@ -133,7 +134,7 @@ def _open(view: View) -> str:
     record = view.record
     waiting = [each for each in record.assumptions if each.state == "open"]
     tests = [each for each in record.criteria if each.verdict in NOT_COMPUTED]
-    accepted = [each for each in record.criteria if each.accepted]
+    accepted = [each for each in record.criteria if each.accepted or _accepted_cases(each)]
     resting = [each.unverified for each in record.criteria]
     used = [each.unverified for each in record.quantities]
     unverified = dict.fromkeys(name for each in (*resting, *used) for name in each)
@@ -199,7 +200,24 @@ def _why(view: View, criterion: Criterion) -> str:
 
 
 def _accepted(view: View, criterion: Criterion) -> str:
-    return f"{view.place(criterion.id)}: {view.words(criterion.accepted or '')}"
+    """What is accepted and until when; where only some failures are, also which are not."""
+    place = view.place(criterion.id)
+    if criterion.accepted:
+        return f"{place}: {view.words(criterion.accepted)}"
+    cases = _accepted_cases(criterion)
+    names = ", ".join(cases)
+    said = "; ".join(dict.fromkeys(cases.values())).replace(f" in {names},", ",", 1)
+    rest = []
+    for word, verdict_ in (("not accepted", "fail"), ("not decided", "not decided")):
+        others = [name for name, each in criterion.by_case.items()
+                  if each.verdict == verdict_ and name not in cases]  # fmt: skip
+        rest += [escape(f"{word} in {', '.join(others)}")] if others else []
+    return f"{place} in {escape(names)}: {'; '.join([view.words(said), *rest])}"
+
+
+def _accepted_cases(criterion: Criterion) -> dict[str, str]:
+    """Cases in which the failure is accepted, with the words."""
+    return {name: each.accepted for name, each in criterion.by_case.items() if each.accepted}
 
 
 # --- cautions and signatures ------------------------------------------------------------------

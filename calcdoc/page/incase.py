@@ -8,10 +8,12 @@ from calcdoc.page import typeset
 from calcdoc.page.lines import aside
 from calcdoc.page.markup import Column, table, verdict
 from calcdoc.page.view import View
-from calcdoc.records.record import Case, CaseChange, Criterion, CriterionCase
+from calcdoc.records.record import Case, CaseChange, Criterion
 
 _BESIDE: Final = 8
 """Criteria that find room beside the names of cases; more go into a further table."""
+_WHOLE: Final = 25
+"""Rows of a table that one sheet can hold whole beside the rest of the cover."""
 _NAME: Final = 22.0
 """Width of the column of names, in per cent."""
 
@@ -53,12 +55,15 @@ def case_tables(view: View) -> str:
 
 
 def _reasons(view: View, criterion: Criterion) -> str:
-    """Why a criterion is not decided in a case, where its own line does not say it."""
+    """Why a criterion is not decided in cases, where its own line does not say it."""
+    cases: dict[tuple[str, str], list[str]] = {}
+    for name, here in criterion.by_case.items():
+        if here.reason and name != criterion.case:
+            cases.setdefault((here.verdict, here.reason), []).append(name)
     return "".join(
-        f'<p class="band"><span class="cl">{escape(criterion.id)} in {escape(name)}:</span>'
-        f" {verdict(here.verdict)}, {view.sentence(here.reason)}</p>\n"
-        for name, here in criterion.by_case.items()
-        if here.reason and name != criterion.case
+        f'<p class="band"><span class="cl">{escape(criterion.id)} in {escape(", ".join(names))}:'
+        f"</span> {verdict(words)}, {view.sentence(reason)}</p>\n"
+        for (words, reason), names in cases.items()
     )
 
 
@@ -74,10 +79,10 @@ def _table(view: View, criteria: list[Criterion]) -> str:
     width = (100 - _NAME) / max(len(criteria), _BESIDE // 2)
     columns = [Column("case", _NAME), *(Column(each.id, width) for each in criteria)]
     rows = [
-        (_name(case), *(_cell(each.by_case.get(case.name)) for each in criteria))
-        for case in view.record.cases
+        (_name(case), *(_cell(each, case.name) for each in criteria)) for case in view.record.cases
     ]
-    return table("cases", "Each case with the verdict of each criterion", columns, rows)
+    kind = "cases whole" if len(rows) <= _WHOLE else "cases"
+    return table(kind, "Each case with the verdict of each criterion", columns, rows)
 
 
 def _name(case: Case) -> str:
@@ -86,10 +91,20 @@ def _name(case: Case) -> str:
     return f"{kind}{link or escape(case.name)}"
 
 
-def _cell(here: CriterionCase | None) -> str:
-    """Verdict and margin; a dash where the criterion is not judged."""
+def _cell(criterion: Criterion, case: str) -> str:
+    """Verdict and margin; a dash where the criterion is not judged.
+
+    The verdict of one of several routes does not count on its own and stands in brackets.
+    """
+    here = criterion.by_case.get(case)
     if here is None:
         return '<span class="cl" title="not judged in this case">–</span>'
-    words = verdict(here.verdict) + (" accepted" if here.accepted else "")
-    margin = f" <small>{typeset.quantity(here.margin_text)}</small>" if here.margin_text else ""
-    return f'<span class="nb">{words}{margin}</span>'
+    route = criterion.route_of
+    words = f"({escape(here.verdict)})" if route else verdict(here.verdict)
+    words += " accepted" if here.accepted else ""
+    margin = (
+        f' <small class="nb">{typeset.quantity(here.margin_text)}</small>'
+        if here.margin_text
+        else ""
+    )
+    return f"{words}{margin}"

@@ -44,12 +44,9 @@ def quantity_line(view: View, quantity: Quantity) -> str:
 def criterion_line(view: View, criterion: Criterion) -> str:
     """A criterion: inequality, numbers, bar against the limit, verdict in words."""
     what = subject(criterion)
-    clauses = (
-        f' <span class="cl">{view.clauses(criterion.clauses)}</span>' if criterion.clauses else ""
-    )
     work = ""
     if criterion.method not in UNCALCULATED:
-        work = f'<div class="eq">{view.math(criterion.text)}{clauses}</div>'
+        work = f'<div class="eq">{inequality(view, criterion)}</div>'
     elif criterion.method == "any of" and what:
         routes = criterion.text.removeprefix("any of ").split(", ")
         work = f'<p class="step">any of {view.places(tuple(routes))}</p>'
@@ -74,6 +71,14 @@ def _rows(criterion: Criterion) -> str:
         for each in criterion.rows
     )
     return f'<table class="grid rows"><thead><tr>{head}</tr></thead><tbody>{rows}</tbody></table>'
+
+
+def inequality(view: View, criterion: Criterion, room: float | None = None) -> str:
+    """The comparison of a criterion with its clauses."""
+    shown = view.math(criterion.text) if room is None else view.math(criterion.text, room=room)
+    if not criterion.clauses:
+        return shown
+    return f'{shown} <span class="cl">{view.clauses(criterion.clauses)}</span>'
 
 
 def subject(criterion: Criterion) -> str:
@@ -405,7 +410,7 @@ def _parts(shown: Picture) -> tuple[Picture, ...]:
 
 def _decided(view: View, criterion: Criterion) -> str:
     """The bar, the verdict in words, the margin, the remark."""
-    words = verdict(criterion.verdict, criterion.accepted)
+    words = verdict(criterion.verdict, criterion.accepted, criterion.route_of)
     why = view.reason(remark(criterion))
     margin = f"margin {typeset.quantity(criterion.margin_text)}" if criterion.margin_text else ""
     if criterion.verdict == "fail" and criterion.remark:

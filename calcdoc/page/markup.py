@@ -78,7 +78,7 @@ def margin_bar(criterion: Criterion) -> str:
     filled, limit = BAR * used, BAR
     if used > 1 + EQUAL:
         filled, limit = 100.0, max(SHORTEST, 100 / used)
-    kind = " bad" if criterion.verdict == "fail" else ""
+    kind = " bad" if criterion.verdict == "fail" and not criterion.route_of else ""
     return (
         f'<span class="mb{kind}" aria-hidden="true"><span class="fill" style="width:{filled:.1f}%">'
         f'</span><span class="tick" style="left:{limit:.1f}%"></span></span>'
@@ -97,7 +97,9 @@ def _used(criterion: Criterion) -> float | None:
     return limit / value if value > 0 else float("inf")
 
 
-def verdict(words: str, accepted: str | None = None) -> str:
-    """A verdict in words; a failure also in the ink kept for it."""
+def verdict(words: str, accepted: str | None = None, route_of: str = "") -> str:
+    """A verdict in words; a failure that counts also in the ink kept for it."""
     reason = f" (accepted: {escape(accepted)})" if accepted else ""
-    return f'<span class="v{" bad" if words in BAD else ""}">{escape(words)}</span>{reason}'
+    reason += f", a route of {escape(route_of)}" if route_of else ""
+    bad = " bad" if words in BAD and not route_of else ""
+    return f'<span class="v{bad}">{escape(words)}</span>{reason}'

@@ -45,16 +45,17 @@ def error(  # noqa: PLR0913  (a finding has that many parts)
     return Finding(code, Severity.ERROR, message, Place(span, label), related, help)
 
 
-def warning(
+def warning(  # noqa: PLR0913  (a finding has that many parts)
     code: str,
     message: str,
     span: Span,
     *,
     label: str = "",
+    related: tuple[Place, ...] = (),
     help: str = "",  # noqa: A002  (the word a reader knows)
 ) -> Finding:
     """A finding the record is written in spite of."""
-    return Finding(code, Severity.WARNING, message, Place(span, label), (), help)
+    return Finding(code, Severity.WARNING, message, Place(span, label), related, help)
 
 
 class Mistake(Exception):

@@ -78,6 +78,8 @@ def _inline(node: prose.Inline, fill: Fill) -> r.Inline:
     match node:
         case prose.Words(text):
             return r.Words(text=text)
+        case prose.Brace():
+            return r.Words("{")
         case prose.Code(text):
             return r.Code(text=text)
         case prose.Break():

@@ -47,6 +47,8 @@ class Circumstances(Frozen, frozen=True):
     """By path as written in the text."""
     files: Mapping[str, bytes] = {}
     """Every file of the design's folder that was used, by name."""
+    today: str = ""
+    """As YYYY-MM-DD: counts for acceptances where the document has no date."""
     sheets: Mapping[str, SourceFile] = {}
     """The sheets of methods, by the path that places in them name."""
 
@@ -60,7 +62,7 @@ def build_record(evaluation: Evaluation, made: Circumstances) -> r.Record:
     parts = prose_body.divide(document.body, _no_values(made))
     naming = name_lines(model, parts.blocks)
     lines = quantities(numbers, naming)
-    judged = criteria(numbers, naming)
+    judged = criteria(numbers, naming, made.today)
     fill = _fill(lines, judged, made)
     parts = prose_body.divide(document.body, fill)
     body = prose_body.blocks(parts.blocks, naming, fill)

@@ -1,6 +1,7 @@
 """Criteria with value, limit, margin and verdict at their governing point."""
 
 from calcdoc.analysis.evaluation import Conclusion, Judgement, Outcome, Row, Unjudged
+from calcdoc.analysis.extremes import Proof
 from calcdoc.frozen import replace
 from calcdoc.model.accepting import key_of
 from calcdoc.model.model import Judged, Typed
@@ -24,8 +25,11 @@ from calcdoc.units.choose import choose_unit
 _PER_CENT = 100
 
 
-def criteria(numbers: Numbers, naming: Naming) -> tuple[r.Criterion, ...]:
-    """Every criterion of the record, in the author's order."""
+def criteria(numbers: Numbers, naming: Naming, today: str) -> tuple[r.Criterion, ...]:
+    """Every criterion of the record, in the author's order.
+
+    ``today`` counts for acceptances where the document has no date.
+    """
     conclusions = {each.judged.statement.id.key: each for each in numbers.evaluation.conclusions}
     made: dict[str, r.Criterion] = {}
     for each in numbers.model.criteria:
@@ -35,7 +39,7 @@ def criteria(numbers: Numbers, naming: Naming) -> tuple[r.Criterion, ...]:
         elif isinstance(each, Uncalculated):
             made[each.id.key] = _uncalculated(naming, each)
     made |= routes(numbers.model, made, lambda statement: _blank(naming, statement))
-    made |= accepted(numbers.model, made)
+    made |= accepted(numbers.model, made, today)
     return tuple(made[key_of(each)] for each in numbers.model.criteria)
 
 
@@ -288,6 +292,8 @@ def _remark(judgement: Judgement, unit: Unit, share: float | None) -> str:
         return f"short by {short}{of_limit}"
     if judgement.equal:
         return "equal to the limit with its margin" if margin else "equal to the limit"
+    if judgement.proof is Proof.SEARCHED and judgement.statistics is None:
+        return "the value was searched: it may lie a little nearer to the limit, not beyond it"
     return _other_side(judgement, share)
 
 

@@ -8,7 +8,7 @@ from msgspec.structs import replace
 from calcdoc.records import record as r
 from calcdoc.records.rounding import significant, trimmed
 from calcdoc.records.shapes import NO_BREAK
-from calcdoc.records.wording import counted, typeset
+from calcdoc.records.wording import counted, ranges, typeset
 
 _DIGITS = 4
 _FEW = 3
@@ -17,19 +17,26 @@ _FAR = 6
 Some = TypeVar("Some", r.Curve, r.Spread, r.Sensitivities, r.Margins)
 
 
-def said(figure: Some) -> Some:
-    """The figure with its text alternative and its notes."""
+def said(figure: Some, *, in_cases: bool) -> Some:
+    """The figure with its text alternative and its notes.
+
+    Args:
+        figure: With its numbers.
+        in_cases: Whether the design has modes or faults, of which figures show none.
+    """
     text: list[str]
     notes: list[str] = []
     match figure:
         case r.Curve():
-            text, notes = _curve(figure), _meeting(figure)
+            text, notes = _curve(figure), _curve_notes(figure)
         case r.Spread():
             text, notes = _spread(figure), _assumed(figure)
         case r.Sensitivities():
             text, notes = _sensitivities(figure), _left_out(figure)
         case r.Margins():
             text = _margins(figure)
+    if in_cases and not isinstance(figure, r.Margins):
+        notes.append("The normal case is shown, no mode or fault.")
     return replace(figure, alternative=" ".join((*text, *notes)), notes=tuple(notes))
 
 
@@ -67,7 +74,25 @@ def _curve(figure: r.Curve) -> list[str]:
             f"The nominal {figure.against} of {typeset(figure.at_nominal_text)} is marked:"
             f" {figure.symbol} is {_value(value, figure.unit)} there."
         )
-    return text + _gaps(figure)
+    return text
+
+
+def _curve_notes(figure: r.Curve) -> list[str]:
+    return [*_meeting(figure), *_gaps(figure), *_partial(figure)]
+
+
+def _partial(figure: r.Curve) -> list[str]:
+    """A band of which a part cannot be computed is narrower than it seems."""
+    if not figure.partial:
+        return []
+    why = wording_of(figure.partial)
+    said = f"For some values within the bands {figure.symbol} cannot be computed ({why})"
+    return [f"{said}: the band is that of the others."]
+
+
+def wording_of(reason: str) -> str:
+    """A reason without the marks of a formula."""
+    return ranges(reason).replace("`", "")
 
 
 def _course(figure: r.Curve) -> str:

@@ -32,15 +32,16 @@ def figures(numbers: Numbers, judged: tuple[r.Criterion, ...]) -> tuple[r.AnyFig
 def _figure(
     numbers: Numbers, judged: tuple[r.Criterion, ...], number: int, done: p.Picture
 ) -> r.AnyFigure:
+    in_cases = bool(numbers.model.cases)
     match done:
         case p.Curve():
-            return words.said(_curve(numbers, number, done))
+            return words.said(_curve(numbers, number, done), in_cases=in_cases)
         case p.Spread():
-            return words.said(_spread(numbers, number, done))
+            return words.said(_spread(numbers, number, done), in_cases=in_cases)
         case p.Drives():
-            return words.said(_sensitivities(numbers, number, done))
+            return words.said(_sensitivities(numbers, number, done), in_cases=in_cases)
         case p.Margins():
-            return words.said(_margins(judged, number, done))
+            return words.said(_margins(judged, number, done), in_cases=in_cases)
 
 
 def _in_unit(values: Iterable[float | None], unit: Unit) -> tuple[float | None, ...]:
@@ -95,6 +96,7 @@ def _curve(numbers: Numbers, number: int, done: p.Curve) -> r.Curve:
         ),
         at_nominal=at,
         at_nominal_text=given_nominal(given) if at else "",
+        partial=done.partial,
     )
 
 

@@ -51,15 +51,17 @@ def _paragraphs(
     )
     if "root sum square" in said:
         yield (
-            "Root sum square: conditions stand where they govern the criterion at extremes, biases"
-            " at their worse end, like parts that are stated vary on their own. The effects of the"
+            "Root sum square: conditions stand at the worst for this method of their corners and of"
+            " where they govern at extremes, biases at their worse end or as new, and like parts"
+            " that are stated vary on their own. The effects of the"
             " limits of all parts, to first order, are combined as the root of the sum of their"
             " squares, as if the parts were independent; the result is never beyond the extremes."
         )
     if "sampling" in said:
         yield (
-            "Sampling: conditions stand where they govern the criterion at extremes and are never"
-            " drawn, biases stand at their worse end, parts are drawn on their own. Every part has"
+            "Sampling: conditions are never drawn; they stand at the worst, to first order, of"
+            " their corners and of where they govern at extremes, biases at their worse end or as"
+            " new. Parts are drawn on their own. Every part has"
             " a stream of its own, keyed by seed and symbol, and the same draws in every case. A"
             " criterion passes when the one-sided bound of the share of draws that meet it, with"
             f" {typeset('95 %')} confidence, is at least the share asked for."

@@ -599,6 +599,8 @@ class Curve(Figure, frozen=True, tag="curve"):
     at_nominal: tuple[float, float] | None
     """The nominal value of the input and of the quantity, where the axis holds it."""
     at_nominal_text: str
+    partial: str
+    """Why a part of the bands cannot be computed somewhere along the axis; else empty."""
 
 
 class SpreadLimit(Plain, frozen=True):

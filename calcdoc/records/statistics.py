@@ -37,9 +37,19 @@ def with_statistics(
         share=share(judgement),
         contributions=contributions(numbers, judgement, unit),
         statistics=said(numbers, judgement, unit),
+        remark=_remark(criterion, judgement),
         reason=criterion.reason or undecided(judgement),
         proof="",
     )
+
+
+def _remark(criterion: r.Criterion, judgement: Judgement) -> str:
+    """A limit may be met by the share asked for, and the criterion not, as it has two of them."""
+    margin = judgement.judged.statement.clauses.margin
+    several = len(judgement.rows) > 1
+    if judgement.outcome is Outcome.FAIL and judgement.slack >= 0 and not margin and several:
+        return "each limit by itself is met by enough draws, all limits together are not"
+    return criterion.remark
 
 
 def interval(judgement: Judgement, unit: Unit) -> tuple[float | None, float | None] | None:
@@ -80,7 +90,7 @@ def share(judgement: Judgement) -> r.Share | None:
     found = drawn.sampled
     return r.Share(
         asked=drawn.share,
-        met=found.met / found.draws,
+        met=found.met / max(found.counted, 1),
         lower=stored(found.lower),
         upper=stored(found.upper),
         lost=found.lost,
@@ -149,14 +159,17 @@ def _symbol(numbers: Numbers, key: str) -> str:
 
 def _drawn(numbers: Numbers, judgement: Judgement, drawn: Drawn, unit: Unit) -> Iterator[str]:
     sampled = drawn.sampled
-    met = _share(sampled.met / sampled.draws)
+    met = _share(sampled.met / max(sampled.counted, 1))
     yield (
         f"Worst over conditions and biases, parts by sampling: {met} of"
-        f" {typeset(str(sampled.draws))} draws meet it, at least {_share(sampled.lower)} with"
+        f" {typeset(str(sampled.counted))} draws meet it, at least {_share(sampled.lower)} with"
         f" 95\u00a0% confidence; asked for {_share(drawn.share)}."
     )
     if judgement.judged.statement.clauses.when is not None:
-        yield "Draws for which its condition is false count as meeting it."
+        yield (
+            f"Its condition is true for {typeset(str(sampled.counted))} of"
+            f" {typeset(str(sampled.draws))} draws; the shares are of these."
+        )
     if sampled.lost:
         yield f"{counted(sampled.lost, 'draw')} could not be computed and count as not meeting it."
     ends = interval(judgement, unit)

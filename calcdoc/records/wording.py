@@ -85,12 +85,14 @@ def clauses(text: str) -> str:
 
     >>> print(clauses("at V_line = 230 V ± 2 %, T_a = -25 °C").replace("\u00a0", "_"))
     at V_line = 230_V_×_(1_±_2_%), T_a = −25_°C
+    >>> clauses("when V_line >= 100 V") == "when V_line ≥ 100\u00a0V"
+    True
     >>> clauses("for n in 3..39 odd")
     'for n in 3 to 39 odd'
     """
     times = f"{NO_BREAK}×{NO_BREAK}(1{NO_BREAK}±{NO_BREAK}"
     text = _FACTOR.sub(lambda found: f"{found[1]}{times}{found[2]})", text)
-    return sentence(ranges(text))
+    return sentence(ranges(text.replace("<=", "≤").replace(">=", "≥")))
 
 
 def ranges(text: str) -> str:

@@ -13,9 +13,11 @@ from calcdoc.text.scan import Scanner
 from calcdoc.text.statements import Acceptance, AnyOf, Basis, Label
 
 ACCEPT: Final = re.compile(rf"accept[ \n]+(?=[{LETTER}])")
+NEARLY_ACCEPT: Final = re.compile(rf"(accept[a-z]+)[ \n]+(?:of[ \n]+)?(?=[{LETTER}])")
 ANY_OF: Final = re.compile(r"any[ \n]+of\b")
 ACCEPT_COLUMNS: Final = ("accept", "reason", "basis")
 _COMMA: Final = re.compile(r",")
+_JOINT: Final = re.compile(r"(or|and)\b")
 _IN: Final = re.compile(r"in\b")
 _EVERY: Final = re.compile(r"every\b")
 _UNTIL: Final = re.compile(r"(?:^|(?<=[ \n]))until\b[ \n]*")
@@ -27,6 +29,8 @@ def any_of(scanner: Scanner, name: Label, description: str, source: Basis) -> An
     members = [used(scanner, "the id of a criterion")]
     while scanner.take(_COMMA):
         members.append(used(scanner, "the id of a further criterion"))
+    if scanner.look(_JOINT):
+        scanner.refuse("`,` and a further criterion", advice="write any of H1, H2")
     if not scanner.ended:
         scanner.refuse("`,` and a further criterion, or the end of the criterion")
     if len(members) == 1:
@@ -94,7 +98,16 @@ def _until(cell: Passage, first: Passage) -> tuple[Passage, Passage]:
             )
         )
     day = cell.part(found.end(), len(cell.text))
-    if not _DATE.fullmatch(day.text) or not _exists(day.text):
+    if _DATE.fullmatch(day.text) and not _exists(day.text):
+        raise Mistake(
+            error(
+                "acceptance",
+                f"there is no day {day.text}",
+                day.whole,
+                help="write a day of the calendar, as in until 2027-06-30",
+            )
+        )
+    if not _DATE.fullmatch(day.text):
         raise Mistake(
             error(
                 "acceptance",

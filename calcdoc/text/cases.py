@@ -9,7 +9,7 @@ from calcdoc.text.cells import basis, columns, plain, used
 from calcdoc.text.formula import LONGEST, formula
 from calcdoc.text.given import MAKEUP_WORD, Given, Style, given
 from calcdoc.text.makeup import with_makeup
-from calcdoc.text.names import CLAUSE_WORDS
+from calcdoc.text.names import CLAUSE_WORDS, SYMBOL
 from calcdoc.text.nodes import Node
 from calcdoc.text.passage import Passage
 from calcdoc.text.scan import Scanner, not_yet, shown
@@ -26,12 +26,14 @@ _NAME: Final = re.compile(r"[^:]*")
 _COLON: Final = re.compile(r":")
 _EQUALS: Final = re.compile(r"=(?!=)")
 _BRACKET: Final = re.compile(r"\[")
+_JOINT: Final = re.compile(rf"(;|\band\b(?=[ \n]+{SYMBOL.pattern}[ \n]*=(?!=)))")
 _QUOTE: Final = re.compile(r'"')
 _SEPARATES: Final = re.compile(r'[,|{"]')
 _MARK: Final = re.compile(r'"[^"]*"|[(),\[\]]')
 _COMMA: Final = re.compile(r",")
 _EVERY: Final = re.compile(r"every(?![^ \n,])")
 _EVERY_WHAT: Final = re.compile(r"(case|fault)(?![^ \n,])")
+_MODE: Final = re.compile(r"modes?\b")
 _WORD: Final = re.compile(r"\s*([^\s,]+)")
 _VALUE: Final = re.compile(r"[+-]?[ \n]*[0-9]")
 _BAND: Final = re.compile(r"±|\+/-|\.\.")
@@ -123,7 +125,12 @@ def scope(scanner: Scanner) -> Scope:
     if scanner.take(_EVERY):
         what = scanner.take(_EVERY_WHAT)
         if what is None:
-            scanner.refuse("`case` or `fault` after `every`")
+            scanner.refuse(
+                "`case` or `fault` after `every`",
+                advice="without `in` a criterion counts in normal and in every mode"
+                if scanner.look(_MODE)
+                else "",
+            )
         if scanner.look(_COMMA):
             raise Mistake(_alone(scanner, start))
         return Scope(what[1], (), scanner.span(start, scanner.at))
@@ -206,6 +213,15 @@ def _between_digits(text: str, at: int) -> bool:
 def _change(piece: Passage) -> Change:
     """``SYMBOL "=" (given | sum)``; a number with its unit and band is a value."""
     scanner = Scanner(piece)
+    if found := _JOINT.search(piece.text):
+        raise Mistake(
+            error(
+                "case-form",
+                f"{shown(found[1])} stands between changes, which are separated by commas",
+                piece.span(*found.span(1)),
+                help="write them as in I_2 = 0 mA, n_LED = n_LED - 1",
+            )
+        )
     symbol = used(scanner, "a symbol and what it becomes, as in n_LED = n_LED - 1")
     if scanner.look(_BRACKET):
         scanner.refuse("`=` (the unit of a value stands after its number)")

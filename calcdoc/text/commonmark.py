@@ -14,6 +14,7 @@ from calcdoc.frozen import Frozen, Working
 from calcdoc.problems import Finding, error, warning
 from calcdoc.source import SourceFile, Span
 from calcdoc.text import prose
+from calcdoc.text.names import SYMBOL
 
 if TYPE_CHECKING:
     from markdown_it import MarkdownIt
@@ -21,6 +22,8 @@ if TYPE_CHECKING:
     from markdown_it.token import Token
 
 MENTION: Final = re.compile(r"\{([^{}\s:]+)(?::([a-z]+))?\}")
+_BRACE: Final = re.compile(rf"\{{[ \t\n]*({SYMBOL.pattern})[^{{}}\n]*")
+"""What begins like a mention and is none."""
 _SAFE: Final = ("http://", "https://", "mailto:", "#")
 _CELL_ENDS: Final = ("th_close", "td_close")
 _DEEPEST: Final = 20
@@ -52,6 +55,7 @@ def _reader() -> "MarkdownIt":
     markdown.enable("table")
     # Escapes must stay apart from text, or `\{` would look like the begin of a mention.
     markdown.inline.ruler.before("link", "mention", _mention_rule)
+    markdown.inline.ruler.after("mention", "brace", _brace_rule)
     return markdown
 
 
@@ -64,6 +68,19 @@ def _mention_rule(state: "StateInline", silent: bool) -> bool:
         token.content = found.group()
         token.meta = {"at": state.pos}
     state.pos = found.end()
+    return True
+
+
+def _brace_rule(state: "StateInline", silent: bool) -> bool:
+    """The brace alone; what follows it is text like other text."""
+    found = _BRACE.match(state.src, state.pos)
+    if found is None:
+        return False
+    if not silent:
+        token = state.push("brace", "", 0)
+        token.content = found.group() + state.src[found.end() : found.end() + 1].strip("\n{")
+        token.meta = {"at": state.pos, "name": found[1]}
+    state.pos += 1
     return True
 
 
@@ -284,6 +301,9 @@ class _InlineBuilder(Working):
                 return (prose.Picture(path, token.content, self.places.find(path)),)
             case "mention":
                 return (self.mention(token.content, token.meta["at"]),)
+            case "brace":
+                span = self.places.span(token.meta["at"], token.content)
+                return (prose.Brace(token.meta["name"], token.content, span),)
             case _:
                 return ()
 

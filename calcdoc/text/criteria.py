@@ -6,7 +6,7 @@ from typing import Final
 
 from calcdoc.frozen import replace
 from calcdoc.problems import Mistake, error
-from calcdoc.text.accepting import ACCEPT, ANY_OF, acceptance, any_of
+from calcdoc.text.accepting import ACCEPT, ANY_OF, NEARLY_ACCEPT, acceptance, any_of
 from calcdoc.text.cases import CLAUSE_STARTS, scope
 from calcdoc.text.cells import basis, columns, labelled, plain
 from calcdoc.text.derivation import index_set
@@ -16,7 +16,7 @@ from calcdoc.text.literal import resolve
 from calcdoc.text.nodes import Node
 from calcdoc.text.passage import Passage
 from calcdoc.text.points import point
-from calcdoc.text.scan import Scanner
+from calcdoc.text.scan import Scanner, shown
 from calcdoc.text.statements import (
     Acceptance,
     AnyOf,
@@ -28,7 +28,10 @@ from calcdoc.text.statements import (
 from calcdoc.units import ONE
 
 _UNCALCULATED: Final = re.compile(r"(by test|by inspection|not applicable)\s*:\s*")
-_NEARLY: Final = re.compile(r"(by|not)\s+[a-z]+(?=\s*(:|$))")
+_NEARLY: Final = re.compile(
+    r"(by|not)\s+[a-z]+(?=\s*(:|$))|(test|inspection|tested|inspected)(?=\s*:)"
+)
+_NO_COLON: Final = re.compile(r"(?:by test\b|by inspection\b|not applicable\b)(?=\s+\S)")
 _DIGIT: Final = re.compile(r"[0-9]")
 _COMPARE: Final = re.compile(r"<=|>=|<|>")
 _NOMINAL: Final = re.compile(r"nominal\b")
@@ -42,6 +45,15 @@ def criterion(statement: Passage) -> Inequality | Uncalculated | AnyOf | Accepta
     """``ID ":" (inequality clause* | "any of" ids | verdict ":" text) | description | basis``"""
     if ACCEPT.match(statement.text):
         return acceptance(statement)
+    if found := NEARLY_ACCEPT.match(statement.text):
+        raise Mistake(
+            error(
+                "acceptance",
+                f"expected `accept` and the id of a criterion, found {shown(found[1])}",
+                statement.span(*found.span(1)),
+                help="write accept R3 | reason | [DEV-3] until 2027-06-30",
+            )
+        )
     first, description, source = columns(statement, CRITERION_COLUMNS)
     name, scanner = labelled(first, "the id of the criterion and a colon, as in R1:")
     if found := scanner.take(_UNCALCULATED):
@@ -49,6 +61,11 @@ def criterion(statement: Passage) -> Inequality | Uncalculated | AnyOf | Accepta
         if not text:
             scanner.refuse(f"what `{found[1]}` is about")
         return Uncalculated(name, found[1], text, plain(description), basis(source), first.whole)
+    if found := scanner.look(_NO_COLON):
+        scanner.at = found.end()
+        scanner.refuse(
+            f"`:` after `{found.group()}`", advice=f"write {found.group()}: and what it is about"
+        )
     if found := scanner.look(_NEARLY):
         raise Mistake(
             error(
@@ -148,7 +165,9 @@ def _clause(scanner: Scanner, clauses: Clauses, word: str, start: int) -> Clause
         if found is None:
             scanner.refuse("`extremes`, `root sum square` or `sampling`")
         share = _share(scanner) if found[1] == "sampling" else None
-        return replace(clauses, by=found[1], share=share)
+        end = len(scanner.passage.text[: scanner.at].rstrip())
+        by_span = scanner.span(start, end)
+        return replace(clauses, by=found[1], share=share, by_span=by_span)
     if word == "with":
         scanner.expect(_MARGIN, "`margin` after `with`")
         return replace(clauses, margin=_margin(scanner))

@@ -14,6 +14,9 @@ from calcdoc.text.scan import Scanner
 from calcdoc.text.statements import Basis, CrosscheckStatement, Label, Measurement
 
 _FORM: Final = re.compile(r"(against|not[ \n]+below|not[ \n]+above)\b")
+_NOT: Final = re.compile(r"not\b")
+_MEASURE: Final = re.compile(rf"meas[a-z]*[ \n]+(?=[{LETTER}][^|]*=)")
+_MEASURED_SO: Final = "write measured P_m = 4.61 W ± 1 % against P_in"
 _WITHIN: Final = re.compile(r"within\b")
 _MEASURED: Final = re.compile(rf"measured[ \n]+(?=[{LETTER}])")
 _EQUALS: Final = re.compile(r"=(?!=)")
@@ -30,8 +33,12 @@ def crosscheck(statement: Passage) -> CrosscheckStatement | Measurement:
     begin = scanner.at
     if scanner.take(_MEASURED):
         return _measurement(scanner, name, begin, plain(description), basis(source))
+    if scanner.look(_MEASURE):
+        scanner.refuse("`measured` before a measured value", advice=_MEASURED_SO)
     left = formula(scanner)
     form = scanner.take(_FORM)
+    if form is None and scanner.take(_NOT):
+        scanner.refuse("`below` or `above` after `not`")
     if form is None:
         scanner.refuse("`against`, `not below` or `not above`")
     right = formula(scanner)

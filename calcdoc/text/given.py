@@ -15,12 +15,13 @@ from calcdoc.problems import Mistake, error
 from calcdoc.source import Span
 from calcdoc.text import literal
 from calcdoc.text.nodes import Name, Number, Quantity, UnitText
-from calcdoc.text.scan import Scanner
+from calcdoc.text.scan import Scanner, shown
 from calcdoc.text.unparse import unit_text
 from calcdoc.units import ONE, PLAIN, Unit
 
 _SIGN: Final = re.compile(r"[+-]")
 _PLUS_MINUS: Final = re.compile(r"±|\+/-")
+_SIGNS: Final = re.compile(r"\+[ ]?-")
 _RANGE: Final = re.compile(r"\.\.")
 _LARGEST: Final = 10**300
 _INSTEAD: Final = (
@@ -182,6 +183,12 @@ def _unit(part: Part) -> Unit:
 
 def _with_tolerance(scanner: Scanner, first: Part) -> Given:
     """``tolerance = ("±" | "+/-") part | sign part sign part``"""
+    if found := scanner.look(_SIGNS):
+        _refuse(
+            f"{shown(found.group())} is no sign of a tolerance",
+            scanner.span(*found.span()),
+            "write ± or +/-, as in 230 V ± 10 %",
+        )
     if found := scanner.take(_PLUS_MINUS):
         part = signed(scanner)
         if part.value <= 0 or scanner.passage.text[found.end() :].lstrip()[:1] in ("+", "-"):

@@ -20,7 +20,7 @@ from calcdoc.text.given import (
     signed,
     unparsed,
 )
-from calcdoc.text.names import SYMBOL
+from calcdoc.text.names import LETTER, SYMBOL
 from calcdoc.text.nodes import Name, Number, Quantity, UnitText
 from calcdoc.text.scan import Scanner
 from calcdoc.units import ONE, PLAIN
@@ -29,6 +29,7 @@ _SHAPE: Final = re.compile(r"normal\b|triangular\b|rectangular\b")
 _K: Final = re.compile(r"k[ \n]*=")
 _RANGE: Final = re.compile(r"\.\.")
 _LABEL: Final = re.compile(r"\(([^()]*)\)")
+_BARE_LABEL: Final = re.compile(rf"[{LETTER}]")
 _OF: Final = re.compile(r"of\b")
 _SHARED: Final = re.compile(r"shared\b")
 _PART: Final = re.compile(r"[+-]?[ \n]*[0-9]")
@@ -84,7 +85,10 @@ def _shape(scanner: Scanner, made: MakeUp) -> MakeUp:
     """``shape = "normal" "k" "=" number | "triangular" | "rectangular"``"""
     found = scanner.take(_SHAPE)
     if found is None:
-        scanner.refuse("`normal k=3`, `triangular` or `rectangular`")
+        scanner.refuse(
+            "`normal k=3`, `triangular` or `rectangular`",
+            advice="normal k=3 puts the limits at three standard deviations",
+        )
     k = None
     if found.group() == "normal":
         scanner.expect(_K, "`k=` and how many standard deviations the limits stand for")
@@ -107,6 +111,11 @@ def _bias(scanner: Scanner, base: Part, units: list[UnitText]) -> Bias:
     units += [part.unit for part in (low, high) if part.unit]
     low = replace(low, unit=high.unit) if low.unit is None else low
     span = low.span.to(high.span)
+    if scanner.look(_BARE_LABEL) and not scanner.look(MAKEUP_WORD):
+        scanner.refuse(
+            "the end of the bias, or its cause in parentheses",
+            advice="write the cause as in bias -12 % .. 0 % (temperature)",
+        )
     label = scanner.take(_LABEL)
     text = " ".join(scanner.passage.text[begin : scanner.at].split())
     ends = (change_of(base, low, _INSTEAD), change_of(base, high, _INSTEAD))

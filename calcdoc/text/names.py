@@ -98,5 +98,15 @@ def nearest(name: str, known: Iterable[str]) -> str | None:
         candidates = list(islice(alike, _COMPARED_MOST))
     import difflib  # noqa: PLC0415  (needed only for a mistake)
 
-    close = difflib.get_close_matches(name, candidates, n=1, cutoff=0.6)
-    return close[0] if close else None
+    close = difflib.get_close_matches(name, candidates, n=3, cutoff=0.6)
+    return next(
+        (each for each in close if each.startswith(name) or _changes(name, each) < len(name)), None
+    )
+
+
+def _changes(name: str, other: str) -> int:
+    """Letters to change, add or leave out; as many as there are make another name of it."""
+    import difflib  # noqa: PLC0415  (needed only for a mistake)
+
+    steps = difflib.SequenceMatcher(None, name, other).get_opcodes()
+    return sum(max(b - a, d - c) for kind, a, b, c, d in steps if kind != "equal")

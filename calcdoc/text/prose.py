@@ -52,7 +52,16 @@ class Mention(Frozen, frozen=True):
     span: Span
 
 
-Inline = Words | Emphasis | Code | Link | Picture | Break | Mention
+class Brace(Frozen, frozen=True):
+    """A brace before a name that may have been meant as a mention; the rest follows as text."""
+
+    name: str
+    written: str
+    """From the brace to its end, or to the end of the line."""
+    span: Span
+
+
+Inline = Words | Emphasis | Code | Link | Picture | Break | Mention | Brace
 
 
 class Heading(Frozen, frozen=True):

@@ -59,6 +59,8 @@ def _given(  # noqa: PLR0913  (the parts of a statement)
     symbol = label(scanner, "a symbol, as in V_line = 230 V ± 10 %")
     if scanner.look(_BRACKET):
         scanner.refuse("`=` (the unit of a given value stands after its number)")
+    if scanner.look(_COLON):
+        scanner.refuse("`=`", advice=f"write {symbol.name} = and the value behind it")
     scanner.expect(_EQUALS, "`=`")
     if scanner.look(re.compile('"')):
         raise Mistake(not_yet("a text value", scanner.span(scanner.at, scanner.at + 1)))

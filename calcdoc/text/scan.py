@@ -15,6 +15,7 @@ from calcdoc.text.names import LETTER, MARK
 from calcdoc.text.passage import Passage
 
 _FAMILIAR: Final = re.compile(rf"[{LETTER}]")
+_IN_SYMBOL: Final = re.compile(rf"[{LETTER}{MARK}0-9_]")
 _BLANKS: Final = re.compile(r"[ \n]*")
 _DOTTED: Final = re.compile(rf"(?:\.[{LETTER}][{LETTER}{MARK}0-9_]*)+")
 _PIECE: Final = rf"(?s)[{LETTER}][{LETTER}{MARK}0-9_]*|[0-9][0-9.]*|."
@@ -87,8 +88,8 @@ class Scanner(Working):
         self.blanks()
         return self.at >= len(self.passage.text)
 
-    def refuse(self, wanted: str, *, related: tuple[Place, ...] = ()) -> NoReturn:
-        """Say what was wanted here and what stands here instead."""
+    def refuse(self, wanted: str, *, related: tuple[Place, ...] = (), advice: str = "") -> NoReturn:
+        """Say what was wanted here, what stands here instead, and perhaps what to write."""
         self.blanks()
         text = self.passage.text
         piece = re.compile(_PIECE).match(text, self.at)
@@ -100,6 +101,7 @@ class Scanner(Working):
                     f"expected {wanted}, found the end of the statement",
                     self.span(max(0, end - 1), end),
                     related=related,
+                    help=advice,
                 )
             )
         pair = text[self.at : self.at + 2]
@@ -110,13 +112,20 @@ class Scanner(Working):
                 f"expected {wanted}, found {shown(found)}",
                 self.span(self.at, self.at + len(found)),
                 related=related,
-                help=_advice(wanted, found),
+                help=advice or _advice(wanted, found, text, self.at),
             )
         )
 
 
-def _advice(wanted: str, found: str) -> str:
+def _advice(wanted: str, found: str, text: str, at: int) -> str:
     """What to write in place of what stands there."""
+    before, after = text[at - 1 : at] if at else "", text[at + 1 : at + 2]
+    if found == "," and not (before.isdecimal() and after.isdecimal()):
+        alone = "end of the figure" in wanted or "along the axis" in wanted
+        return "a figure shows one symbol: write a line for each" if alone else ""
+    odd = after if found == "_" else found
+    if before and _IN_SYMBOL.fullmatch(before) and odd.isalpha() and not _FAMILIAR.match(odd):
+        return "a symbol and its subscript hold Latin and Greek letters, digits and _, as in V_in"
     if found == "=" and wanted.startswith("<="):
         return "a comparison is written <=, >=, < or >"
     implied = found == "(" or found[0].isalnum()

@@ -216,6 +216,8 @@ class Clauses(Frozen, frozen=True):
     index: Index | None = None
     text: str = ""
     """As written, for the record."""
+    by_span: Span | None = None
+    """Where the method stands; None where none is named."""
 
 
 class Inequality(Frozen, frozen=True):

@@ -8,9 +8,12 @@ from calcdoc.errors import FileTrouble
 from calcdoc.methods.apply import expand
 from calcdoc.model.accepting import expired
 from calcdoc.model.build import build
+from calcdoc.model.cases import undone
 from calcdoc.model.judging import outside_band
+from calcdoc.model.varying import nothing_random
 from calcdoc.problems import Finding
 from calcdoc.problems.views import full, has_errors, in_order
+from calcdoc.records.accepting import unused
 from calcdoc.records.methods import outside_validity
 from calcdoc.source import SourceFile
 from calcdoc.text.document import read_document
@@ -39,7 +42,14 @@ def _checked(
         findings += (
             trouble
             if evaluation is None
-            else (*outside_band(model), *expired(model), *outside_validity(evaluation))
+            else (
+                *outside_band(model),
+                *expired(model),
+                *undone(model),
+                *unused(evaluation),
+                *nothing_random(model),
+                *outside_validity(evaluation),
+            )
         )
     return in_order(findings), {**expanded.sheets, path: source}
 

@@ -16,7 +16,11 @@ def test_two_hundred_cases() -> None:
         criteria="R: z <= 1e9 in every case\nS: y >= 1 in every case",
     )
     found = done.criterion("R")
-    assert (found.verdict, found.case, len(found.by_case)) == ("pass", f"f{N_CASES - 1}", N_CASES + 1)
+    assert (found.verdict, found.case, len(found.by_case)) == (
+        "pass",
+        f"f{N_CASES - 1}",
+        N_CASES + 1,
+    )
     assert found.value == pytest.approx((202 * 2.02) ** 2 + 202)
     assert done["z"].by_case["f7"].nominal == 264
     assert done.criterion("S").by_case["f1"].value == pytest.approx(2 * 2 * 0.99**2)

@@ -164,17 +164,17 @@ def test_strictness_where_nothing_varies() -> None:
     assert not equal.spreads[0].disagree
 
 
-def test_where_the_condition_is_false_the_criterion_is_met() -> None:
-    """Half of the draws are not asked; the others stand above the limit."""
+def test_where_the_condition_is_false_a_draw_does_not_count() -> None:
+    """Half of the draws are not asked; of the others none meets it, and they are spread evenly."""
     made = varied(inputs="x = 0 V ± 1 V", criteria="R1: x <= -1 V when x >= 0 V")
     (found,) = made.sampled("0.4")
-    assert found.met / found.draws == pytest.approx(0.5, abs=0.01)
-    assert found.lost == 0
+    assert found.counted / found.draws == pytest.approx(0.5, abs=0.01)
+    assert (found.met, found.lost, found.lower) == (0, 0, 0.0)
     (spread,) = found.spreads
     assert spread.mean == pytest.approx(-1.5, abs=0.01)
+    assert spread.quantile == pytest.approx(-1.4, abs=0.02)
     (easy,) = made.sampled("0.6")[0].spreads
-    assert spread.quantile is None, "the quantile is among the draws that are not asked"
-    assert easy.quantile == pytest.approx(-1.2, abs=0.02)
+    assert easy.quantile == pytest.approx(-1.6, abs=0.02)
 
 
 def test_what_cannot_be_computed_is_not_met() -> None:
