@@ -183,7 +183,7 @@ def crosschecks(view: View) -> str:
     )
     rows = [
         (
-            view.place(each.id),
+            view.ident(each.id),
             view.math(each.first, room=14),
             view.math(each.second, room=14),
             escape(each.form),

@@ -1,5 +1,6 @@
 """The cover: title block, purpose, verdicts, what is open, cautions, signatures."""
 
+from dataclasses import replace
 from html import escape
 from itertools import accumulate
 from typing import Final
@@ -29,6 +30,10 @@ LONG: Final = 24
 """Characters of a field of the title block that ask for the width of two."""
 COMBINATION: Final = 34.0
 """Width of what the last column holds in two lines, in em of its type."""
+SHORT: Final = 4
+"""Letters of a method's name that fit the column of ids; each further one asks for its share."""
+PER_LETTER: Final = 0.55
+MOST_MORE: Final = 8.0
 ROLES: Final = ("prepared", "checked", "approved")
 SIGNALS: Final = ("danger", "warning", "caution", "notice")
 NOT_COMPUTED: Final = ("by test", "by inspection")
@@ -79,8 +84,20 @@ def _verdicts(view: View) -> str:
     rows = (_verdict_row(view, each) for each in view.record.criteria)
     return (
         head
-        + table("verdicts", "Each criterion with its verdict", VERDICTS, rows)
+        + table("verdicts", "Each criterion with its verdict", _columns(view), rows)
         + case_tables(view)
+    )
+
+
+def _columns(view: View) -> tuple[Column, ...]:
+    """The columns of verdicts, with room for ids that begin with the name of a method."""
+    ids, criteria, *others = VERDICTS
+    longest = max(len(each.id.rpartition(".")[0]) for each in view.record.criteria)
+    more = min(max(0.0, (longest - SHORT) * PER_LETTER), MOST_MORE)
+    return (
+        replace(ids, share=ids.share + more),
+        replace(criteria, share=criteria.share - more),
+        *others,
     )
 
 
@@ -89,7 +106,7 @@ def _verdict_row(view: View, criterion: Criterion) -> tuple[str, ...]:
     case = "" if criterion.case in ("", "normal") else f"case {escape(criterion.case)}"
     by = "; ".join(filter(None, (case, _governing(view, criterion))))
     return (
-        view.place(criterion.id),
+        view.ident(criterion.id),
         view.opening(what) if what else inequality(view, criterion, 14),
         typeset.quantity(criterion.value_text),
         typeset.quantity(criterion.limit_text),

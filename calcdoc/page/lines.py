@@ -4,7 +4,7 @@ import re
 from html import escape
 
 from calcdoc.page import typeset
-from calcdoc.page.markup import band_bar, margin_bar, verdict
+from calcdoc.page.markup import band_bar, ident, margin_bar, verdict
 from calcdoc.page.measure import measure, text_width
 from calcdoc.page.pieces import ROOM, read
 from calcdoc.page.view import View
@@ -52,7 +52,7 @@ def criterion_line(view: View, criterion: Criterion) -> str:
         work = f'<p class="step">any of {view.places(tuple(routes))}</p>'
     return (
         f'<div class="wl cr" id="c-{escape(criterion.id)}">'
-        f'<span class="no">{escape(criterion.id)}</span>{_criterion_side(view, criterion)}'
+        f'<span class="no">{ident(criterion.id)}</span>{_criterion_side(view, criterion)}'
         f"{opened(view, what)}{work}{_compared(view, criterion)}{_decided(view, criterion)}"
         f"{_governed(view, criterion)}{_rows(criterion)}</div>\n"
     )

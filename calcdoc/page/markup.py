@@ -59,6 +59,14 @@ def _class(kind: str) -> str:
     return f' class="{kind}"' if kind else ""
 
 
+def ident(name: str) -> str:
+    """An id or a line where room is narrow: the name of a method small and before a break."""
+    owner, dot, own = name.rpartition(".")
+    if not dot or not owner[0].isalpha():
+        return escape(name)
+    return f"<small>{escape(owner)}.</small><wbr>{escape(own)}"
+
+
 def band_bar(least: float, nominal: float, greatest: float) -> str:
     """A rule from least to greatest with a tick at the nominal value; decoration beside numbers."""
     width = greatest - least

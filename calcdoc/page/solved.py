@@ -4,7 +4,7 @@ from html import escape
 
 from calcdoc.page import typeset
 from calcdoc.page.lines import BESIDE, aside, opened, worked_rows
-from calcdoc.page.markup import verdict
+from calcdoc.page.markup import ident, verdict
 from calcdoc.page.view import View
 from calcdoc.records.pictures import symbol
 from calcdoc.records.record import (
@@ -138,6 +138,6 @@ def agreement(check: Crosscheck) -> str:
 
 def _line(anchor: str, number: str, inner: str, names: str = "wl") -> str:
     return (
-        f'<div class="{names}" id="{escape(anchor)}"><span class="no">{escape(number)}</span>'
+        f'<div class="{names}" id="{escape(anchor)}"><span class="no">{ident(number)}</span>'
         f"{inner}</div>\n"
     )

@@ -6,6 +6,7 @@ from functools import cached_property
 from html import escape
 
 from calcdoc.page import boxes, typeset
+from calcdoc.page.markup import ident
 from calcdoc.page.pieces import ROOM, Draw, is_formula, no_links, pieces, read
 from calcdoc.records import wording
 from calcdoc.records.pictures import symbol
@@ -207,6 +208,11 @@ class View:
         if not anchor:
             return escape(label)
         return f'<a href="#{escape(anchor)}">{escape(label)}</a>'
+
+    def ident(self, name: str) -> str:
+        """An id in a column of ids, linked."""
+        label, anchor = self._places.get(fold(name), (name, ""))
+        return f'<a href="#{escape(anchor)}">{ident(label)}</a>' if anchor else ident(label)
 
     def places(self, names: tuple[str, ...]) -> str:
         """Several of them, each once, in order."""
