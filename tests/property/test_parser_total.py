@@ -80,7 +80,7 @@ HOSTILE = {
         f"{TITLE}```inputs\nx = 1\n```\n```cases\n"
         + "".join(f"mode m{k}: x = {k}\n" for k in range(2000))
         + "```\n",
-        ("case-form",) * 1000,
+        ("case-form",) * 1800,
     ),
     "ten thousand acceptances": (
         f"{TITLE}```criteria\nR: 1 <= 2\n" + "accept R | r | until 2027-06-30\n" * 10_000 + "```\n",
