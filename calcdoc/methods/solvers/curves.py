@@ -1,0 +1,130 @@
+"""What every voltage and current is between two events: one form, its value, slope and root.
+
+In a linear circuit fed by a sinusoid, between two events,
+
+    f(θ) = c + r·x + s·sin θ + k·cos θ + d·exp(−x/T),        x = θ − start.
+
+A curve is an array of shape (7, n): the rows c, r, s, k, d, start and T (radians), one column for
+each operating point. What a root is to rounding is decided here and nowhere else.
+"""
+
+from typing import Final
+
+import numpy as np
+
+from calcdoc.methods.solvers.circuit import BoolArray, FloatArray
+
+CONST, RAMP, SIN, COS, DECAY, START, REACH = range(7)
+TERMS: Final = 5
+"""Rows that are coefficients; the other two are the start and the reach T of the decay."""
+
+CLOSE: Final = 1e-9
+"""A Newton step below this share of the shorter of a radian and T is the last: the error left is
+its square over T."""
+ROUNDING: Final = 4e-16
+MOST_STEPS: Final = 200
+"""More than bisection needs for any interval of phases."""
+
+
+def curve(start: FloatArray, reach: FloatArray | float = 1.0, **terms: FloatArray) -> FloatArray:
+    """Put a curve together from the terms that are not zero; names in small letters."""
+    made = np.zeros((7, len(start)))
+    made[START] = start
+    made[REACH] = reach
+    for name, row in (("const", CONST), ("ramp", RAMP), ("sin", SIN), ("cos", COS), ("decay", DECAY)):
+        if name in terms:
+            made[row] = terms[name]
+    return made
+
+
+def value(of: FloatArray, phase: FloatArray) -> FloatArray:
+    """The value of curves (7, ...) at phases (...)."""
+    along = phase - of[START]
+    found: FloatArray = of[CONST] + of[RAMP] * along + of[SIN] * np.sin(phase)
+    found += of[COS] * np.cos(phase)
+    found += of[DECAY] * np.exp(-along / of[REACH])
+    return found
+
+
+def derivative(of: FloatArray) -> FloatArray:
+    """The curves of the slopes over θ."""
+    made = of.copy()
+    made[CONST] = of[RAMP]
+    made[RAMP] = 0.0
+    made[SIN] = -of[COS]
+    made[COS] = of[SIN]
+    made[DECAY] = -of[DECAY] / of[REACH]
+    return made
+
+
+def lowered(of: FloatArray, level: FloatArray) -> FloatArray:
+    """The curves less a constant."""
+    made = of.copy()
+    made[CONST] -= level
+    return made
+
+
+def _value_and_slope(of: FloatArray, phase: FloatArray) -> tuple[FloatArray, FloatArray]:
+    along = phase - of[START]
+    sin, cos = np.sin(phase), np.cos(phase)
+    decay = of[DECAY] * np.exp(-along / of[REACH])
+    found = of[CONST] + of[RAMP] * along + of[SIN] * sin + of[COS] * cos + decay
+    slope = of[RAMP] + of[SIN] * cos - of[COS] * sin - decay / of[REACH]
+    return found, slope
+
+
+def rising_root(
+    of: FloatArray, low: FloatArray, high: FloatArray, guess: FloatArray
+) -> FloatArray:
+    """Where each curve turns from negative to positive between two phases, to rounding.
+
+    Newton's rule, kept inside the bracket: a step that leaves it, or that is not half of the one
+    before the last, is replaced by halving. Where the curve is positive from the beginning the
+    result is ``low``, where it is negative to the end it is ``high``.
+
+    Args:
+        of: Curves, shape (7, n), each with one change of sign at most.
+        low: Where to begin, shape (n,).
+        high: Where to end, shape (n,), no less than ``low``.
+        guess: First phase to try, shape (n,).
+
+    Returns:
+        Phases in radians, shape (n,).
+    """
+    found = np.clip(guess, low, high)
+    rest = np.arange(len(low))
+    phase, before = found.copy(), high - low
+    enough = np.maximum(CLOSE * np.minimum(1.0, of[REACH]), ROUNDING)
+    for _ in range(MOST_STEPS):
+        at, slope = _value_and_slope(of, phase)
+        low, high = np.where(at < 0.0, phase, low), np.where(at < 0.0, high, phase)
+        step = at / slope
+        moved = phase - step
+        size = np.abs(step)
+        trusted = (moved >= low) & (moved <= high) & (2.0 * size <= np.maximum(before, enough))
+        before = np.where(trusted, size, 0.5 * (high - low))
+        phase = np.where(trusted, moved, low + 0.5 * (high - low))
+        done = (trusted & (size <= enough)) | (high - low <= ROUNDING * high)
+        found[rest] = phase
+        if done.all():
+            break
+        if 4 * np.count_nonzero(done) > len(done):
+            keep = ~done
+            rest, of, phase, before = rest[keep], of[:, keep], phase[keep], before[keep]
+            low, high, enough = low[keep], high[keep], enough[keep]
+    return found
+
+
+def falling_root(
+    of: FloatArray, low: FloatArray, high: FloatArray, guess: FloatArray
+) -> FloatArray:
+    """Where each curve turns from positive to negative; otherwise as :func:`rising_root`."""
+    turned = of.copy()
+    turned[:TERMS] *= -1.0
+    return rising_root(turned, low, high, guess)
+
+
+def straddles(first: FloatArray, last: FloatArray) -> BoolArray:
+    """Whether two values lie on either side of zero."""
+    either: BoolArray = (first < 0.0) != (last < 0.0)
+    return either
