@@ -98,7 +98,7 @@ def circuit(  # noqa: PLR0913  (the nine quantities that make a circuit)
 ) -> Circuit:
     """Combine the quantities a designer gives, all of shape (n,) in SI units and valid."""
     amplitude = np.sqrt(2.0) * V_s
-    least = np.where(I_set > 0.0, LEAST_SLOPE * amplitude / np.where(I_set > 0.0, I_set, 1.0), 0.0)
+    least = LEAST_SLOPE * amplitude / np.where(I_set > 0.0, I_set, 1.0)
     return Circuit(
         amplitude=amplitude,
         diodes=2.0 * V_D,
@@ -106,6 +106,6 @@ def circuit(  # noqa: PLR0913  (the nine quantities that make a circuit)
         drop=V_drop,
         source=R_s,
         susceptance=2.0 * np.pi * f_s * C,
-        string=np.maximum(np.maximum(R_string, least), np.finfo(float).tiny),
+        string=np.maximum(R_string, least),
         current=I_set,
     )

@@ -181,10 +181,13 @@ def _hold(course: _Course, holds: BoolArray) -> BoolArray:
     first = np.maximum(start, CREST)
     crest = falling_root(derivative(y), first, last, first)
     course.put("crest", rows, crest, value(y, crest))
-    lost = falling_root(lowered(y, some.regulates), crest, last, 0.5 * (crest + last))
-    line = line_current(some, True, y)
-    falls[rows] = under = (value(line, lost) > 0.0) & (value(y, last) < some.regulates)
+    lost, line = last.copy(), line_current(some, True, y)
+    under = value(y, last) < some.regulates
+    sinking = lowered(y[:, under], some.regulates[under])
+    lost[under] = falling_root(sinking, crest[under], last[under], last[under])
     end = falling_root(line, crest, lost, 0.5 * (crest + lost))
+    under &= value(line, lost) > 0.0
+    falls[rows] = under
     course.put("drops", rows, end, value(y, end))
     course.put("end", rows, end, value(y, end))
     course.put("drops", rows[under], lost[under], some.regulates[under])

@@ -18,10 +18,10 @@ CONST, RAMP, SIN, COS, DECAY, START, REACH = range(7)
 TERMS: Final = 5
 """Rows that are coefficients; the other two are the start and the reach T of the decay."""
 
-CLOSE: Final = 1e-9
-"""A Newton step below this share of the shorter of a radian and T is the last: the error left is
-its square over T."""
-ROUNDING: Final = 4e-16
+CLOSE: Final = 1e-8
+"""A Newton step below this times √T (T no more than a radian) is the last: what it leaves is about
+its square over T, which is the rounding of a phase."""
+ROUNDING: Final = 1e-15
 MOST_STEPS: Final = 200
 """More than bisection needs for any interval of phases."""
 
@@ -94,7 +94,7 @@ def rising_root(
     found = np.clip(guess, low, high)
     rest = np.arange(len(low))
     phase, before = found.copy(), high - low
-    enough = np.maximum(CLOSE * np.minimum(1.0, of[REACH]), ROUNDING)
+    enough = np.maximum(CLOSE * np.sqrt(np.minimum(1.0, of[REACH])), ROUNDING)
     for _ in range(MOST_STEPS):
         at, slope = _value_and_slope(of, phase)
         low, high = np.where(at < 0.0, phase, low), np.where(at < 0.0, high, phase)

@@ -16,7 +16,7 @@ from calcdoc.methods.solvers.circuit import Circuit, FloatArray
 from calcdoc.methods.solvers.conducting import Conduction, conduction
 
 MOST_ROUNDS: Final = 100
-SETTLED: Final = 1e-9
+SETTLED: Final = 1e-12
 """A Newton step below this share of the peak offered is the last."""
 
 
@@ -57,7 +57,7 @@ def steady_begin(circuit: Circuit) -> FloatArray:
         moved = begin + step
         inside = (moved >= low) & (moved <= high)
         moved = np.where(inside, moved, 0.5 * (low + high))
-        done = (inside & (np.abs(step) <= SETTLED * peak)) | (high - low <= SETTLED**2 * peak)
+        done = (inside & (np.abs(step) <= SETTLED * peak)) | (high - low <= 1e-15 * peak)
         found[rest[done]] = moved[done]
         if done.all():
             break
