@@ -185,9 +185,10 @@ def _hold(course: _Course, holds: BoolArray) -> BoolArray:
     under = value(y, last) < some.regulates
     sinking = lowered(y[:, under], some.regulates[under])
     lost[under] = falling_root(sinking, crest[under], last[under], last[under])
-    end = falling_root(line, crest, lost, 0.5 * (crest + lost))
-    under &= value(line, lost) > 0.0
-    falls[rows] = under
+    falls[rows] = under = under & (value(line, lost) > 0.0)
+    end, held = lost.copy(), ~under
+    crest, lost_held = crest[held], lost[held]
+    end[held] = falling_root(line[:, held], crest, lost_held, 0.5 * (crest + lost_held))
     course.put("drops", rows, end, value(y, end))
     course.put("end", rows, end, value(y, end))
     course.put("drops", rows[under], lost[under], some.regulates[under])
