@@ -1,7 +1,7 @@
 """The bridge blocks: the reservoir alone feeds the string, and falls until the mains meets it.
 
-    regulated:  ω·C·dy/dθ = −I_set               y falls along a straight line to R_string·I_set
-    slope:      ω·C·dy/dθ = −y/R_string          y decays with T = ω·C·R_string
+regulated:  ω·C·dy/dθ = −I_set               y falls along a straight line to R_string·I_set
+slope:      ω·C·dy/dθ = −y/R_string          y decays with T = ω·C·R_string
 """
 
 from dataclasses import dataclass

@@ -56,9 +56,7 @@ class Conduction:
     y_crest: FloatArray
 
 
-def voltage(
-    circuit: Circuit, regulated: bool, start: FloatArray, begin: FloatArray
-) -> FloatArray:
+def voltage(circuit: Circuit, regulated: bool, start: FloatArray, begin: FloatArray) -> FloatArray:
     """The curves of y from a start, shape (7, n)."""
     share = 1.0 if regulated else circuit.string / (circuit.source + circuit.string)
     reach = circuit.susceptance * circuit.source * share

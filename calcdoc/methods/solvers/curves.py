@@ -31,7 +31,13 @@ def curve(start: FloatArray, reach: FloatArray | float = 1.0, **terms: FloatArra
     made = np.zeros((7, len(start)))
     made[START] = start
     made[REACH] = reach
-    for name, row in (("const", CONST), ("ramp", RAMP), ("sin", SIN), ("cos", COS), ("decay", DECAY)):
+    for name, row in (
+        ("const", CONST),
+        ("ramp", RAMP),
+        ("sin", SIN),
+        ("cos", COS),
+        ("decay", DECAY),
+    ):
         if name in terms:
             made[row] = terms[name]
     return made
@@ -73,9 +79,7 @@ def _value_and_slope(of: FloatArray, phase: FloatArray) -> tuple[FloatArray, Flo
     return found, slope
 
 
-def rising_root(
-    of: FloatArray, low: FloatArray, high: FloatArray, guess: FloatArray
-) -> FloatArray:
+def rising_root(of: FloatArray, low: FloatArray, high: FloatArray, guess: FloatArray) -> FloatArray:
     """Where each curve turns from negative to positive between two phases, to rounding.
 
     Newton's rule, kept inside the bracket: a step that leaves it, or that is not half of the one

@@ -47,13 +47,15 @@ def _segment(of: FloatArray, end: FloatArray) -> ComplexArray:
     """What one segment (7, n) adds to the amplitudes."""
     start, reach = of[START], of[REACH]
     length = end - start
-    from_start, half = np.exp(-1j * start), np.exp(-0.5j * length)
-    middle, turned = from_start * half, half * half
+    from_start: ComplexArray = np.exp(-1j * start)
+    half: ComplexArray = np.exp(-0.5j * length)
+    middle: ComplexArray = from_start * half
+    turned: ComplexArray = half * half
     square_start, square_middle = from_start * from_start, middle * middle
     square_half, square_turned = half * half, turned * turned
     at, at_middle, at_half, at_turn = from_start, middle, half, turned
     left = np.exp(-length / reach)
-    even_before = length.astype(complex)
+    even_before: ComplexArray = length.astype(complex)
     found = np.empty((len(ORDERS), len(start)), dtype=complex)
     for row, order in enumerate(ORDERS):
         odd = at_middle * (-2.0 * at_half.imag / order)

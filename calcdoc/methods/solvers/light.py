@@ -31,7 +31,11 @@ def flicker_index(steady: Steady, mean: FloatArray) -> FloatArray:
     """
     above = _held(steady, mean)
     for segment, low, high in (
-        (1, steady.string[START, 1], np.clip(steady.valley, steady.string[START, 1], steady.end[1])),
+        (
+            1,
+            steady.string[START, 1],
+            np.clip(steady.valley, steady.string[START, 1], steady.end[1]),
+        ),
         (1, np.clip(steady.valley, steady.string[START, 1], steady.end[1]), steady.end[1]),
         (3, steady.string[START, 3], steady.end[3]),
         (5, steady.string[START, 5], steady.end[5]),

@@ -49,11 +49,21 @@ class Steady:
 
 def empty(count: int) -> Steady:
     """A table to be filled by :func:`put`."""
-    curves = [np.zeros((7, SEGMENTS, count)) for _ in range(4)]
-    for each in curves:
-        each[REACH] = 1.0
-    phases = [np.zeros(count) for _ in range(4)]
-    return Steady(np.zeros((SEGMENTS, count)), *curves, *phases, np.zeros(count, dtype=bool))
+    voltage = np.zeros((7, SEGMENTS, count))
+    voltage[REACH] = 1.0
+    none = np.zeros(count)
+    return Steady(
+        end=np.zeros((SEGMENTS, count)),
+        voltage=voltage,
+        string=voltage.copy(),
+        line=voltage.copy(),
+        capacitor=voltage.copy(),
+        valley=none,
+        crest=none.copy(),
+        y_valley=none.copy(),
+        y_crest=none.copy(),
+        dark=np.zeros(count, dtype=bool),
+    )
 
 
 def put(table: Steady, rows: IntArray, part: Steady) -> None:

@@ -107,5 +107,3 @@ def _at(phase: FloatArray, given: dict[str, FloatArray]) -> Waveform:
         string,
         Reason.NONE if finite else Reason.NOT_BALANCED,
     )
-
-

@@ -15,8 +15,10 @@ from calcdoc.methods.solvers.circuit import Circuit, FloatArray, IntArray, circu
 from calcdoc.methods.solvers.given import COLUMNS, Reason, columns, refused
 from calcdoc.methods.solvers.steady import steady
 
-MOST_ROUNDS: Final = 100
-CLOSE: Final = 1e-12
+MOST_ROUNDS: Final = 200
+HALVING: Final = 5
+"""Every so many rounds the bracket is halved, whatever false position says: this always ends."""
+CLOSE: Final = 1e-10
 """A bound is found when the level there, or the bound, is known to this share of the bound."""
 
 Level = Callable[[Circuit], FloatArray]
@@ -136,20 +138,19 @@ def _crossing(given: dict[str, FloatArray], above: FloatArray, level: Level) -> 
         difference: FloatArray = level(point) - point.regulates - above[rows]
         return difference
 
-    found = np.full_like(low, np.nan)
+    found: FloatArray = np.full_like(low, np.nan)
     rows = np.flatnonzero((low > 0.0) & (low < high))
     low, high = low[rows], high[rows]
     below, over = excess(low, rows), excess(high, rows)
     side = np.zeros_like(low)
     keep = over >= 0.0
-    for _ in range(MOST_ROUNDS):
-        rows, low, high, below, over, side = (
-            each[keep] for each in (rows, low, high, below, over, side)
-        )
+    for turn in range(1, MOST_ROUNDS):
+        rows, side = rows[keep], side[keep]
+        low, high, below, over = low[keep], high[keep], below[keep], over[keep]
         if not len(rows):
             break
         straight = high - over * (high - low) / (over - below)
-        inside = (straight > low) & (straight < high)
+        inside = (straight > low) & (straight < high) & (turn % HALVING > 0)
         tried = np.where(inside, straight, 0.5 * (low + high))
         at = excess(tried, rows)
         up = at < 0.0
