@@ -45,7 +45,7 @@ def regulated_for(circuit: Circuit, begin: FloatArray) -> FloatArray:
     return lasts
 
 
-def meets(circuit: Circuit, begin: FloatArray) -> FloatArray:
+def meets(circuit: Circuit, begin: FloatArray, near: FloatArray | None = None) -> FloatArray:
     """The phase at which the rising mains meets the falling reservoir, radians, shape (n,).
 
     What the mains offers bends down and the discharge bends up, so that their difference has one
@@ -54,11 +54,12 @@ def meets(circuit: Circuit, begin: FloatArray) -> FloatArray:
     Args:
         circuit: Operating points with a reservoir whose mains peak passes V_0.
         begin: Voltage above V_0 at the zero crossing, from 0 V to the peak offered, shape (n,).
+        near: Where they met from voltages nearby, to begin the search at.
     """
     lasts = np.minimum(regulated_for(circuit, begin), CREST)
     left = np.minimum(begin, circuit.regulates)
     still = circuit.offered(lasts) >= np.where(lasts < CREST, left, -np.inf)
-    guess = circuit.rises_past(np.where(still, begin, left))
+    guess = circuit.rises_past(np.where(still, begin, left)) if near is None else near
     difference = curve(
         np.where(still, 0.0, lasts),
         circuit.susceptance * circuit.string,

@@ -12,7 +12,7 @@ that of the mains, so y has one valley at most before the crest of the mains and
 behind it. And the line current begins at zero, and falls back to zero once.
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 
 import numpy as np
 
@@ -55,6 +55,10 @@ class Conduction:
     y_valley: FloatArray
     y_crest: FloatArray
 
+    def take(self, which: BoolArray) -> "Conduction":
+        """Some of the columns."""
+        return Conduction(*(getattr(self, each.name)[which] for each in fields(self)))
+
 
 def voltage(circuit: Circuit, regulated: bool, start: FloatArray, begin: FloatArray) -> FloatArray:
     """The curves of y from a start, shape (7, n)."""
@@ -87,8 +91,10 @@ def line_current(circuit: Circuit, regulated: bool, of: FloatArray) -> FloatArra
 class _Course:
     """Working arrays of one conduction, filled for those columns an event concerns."""
 
-    def __init__(self, circuit: Circuit, start: FloatArray, begin: FloatArray) -> None:
-        self.circuit = circuit
+    def __init__(
+        self, circuit: Circuit, start: FloatArray, begin: FloatArray, near: Conduction | None
+    ) -> None:
+        self.circuit, self.near = circuit, near
         self.limit = np.pi - circuit.rises_past(np.zeros_like(start))
         """Here the mains falls past V_0; no later than this the line current ends."""
         self.phase = {"start": start, "leaves": start.copy()}
@@ -101,6 +107,13 @@ class _Course:
     def put(self, name: str, rows: IntArray, phase: FloatArray, level: FloatArray) -> None:
         self.phase[name][rows], self.level[name][rows] = phase, level
 
+    def guess(self, name: str, rows: IntArray, otherwise: FloatArray) -> FloatArray:
+        """Where an event was on a course nearby."""
+        if self.near is None:
+            return otherwise
+        guess: FloatArray = getattr(self.near, name)[rows]
+        return guess
+
     def from_event(
         self, name: str, rows: IntArray, regulated: bool
     ) -> tuple[Circuit, FloatArray, FloatArray]:
@@ -109,15 +122,18 @@ class _Course:
         return some, start, voltage(some, regulated, start, self.level[name][rows])
 
 
-def conduction(circuit: Circuit, start: FloatArray, begin: FloatArray) -> Conduction:
+def conduction(
+    circuit: Circuit, start: FloatArray, begin: FloatArray, near: Conduction | None = None
+) -> Conduction:
     """Follow one conduction from its start to its end.
 
     Args:
         circuit: Operating points with a reservoir and a series resistance.
         start: Where the mains meets the reservoir, radians, up to the crest, shape (n,).
         begin: Voltage above V_0 there, shape (n,), not negative.
+        near: A course of the same circuits from voltages nearby, to begin the searches at.
     """
-    course = _Course(circuit, start, begin)
+    course = _Course(circuit, start, begin, near)
     dips = _fall(course)
     rises = _rise(course, dips)
     falls = _hold(course, ~dips | rises)
@@ -134,7 +150,8 @@ def _fall(course: _Course) -> BoolArray:
     course.open("valley", "start")
     rows = np.flatnonzero(~dips)
     some, start, y = course.from_event("start", rows, regulated=True)
-    valley = rising_root(derivative(y), start, np.full_like(start, CREST), start)
+    guess = course.guess("valley", rows, start)
+    valley = rising_root(derivative(y), start, np.full_like(start, CREST), guess)
     level = value(y, valley)
     course.put("valley", rows, valley, level)
     course.put("leaves", rows, valley, level)
@@ -154,16 +171,18 @@ def _rise(course: _Course, dips: BoolArray) -> BoolArray:
     rows = np.flatnonzero(dips)
     some, start, y = course.from_event("leaves", rows, regulated=False)
     middle, slope = np.full_like(start, CREST), derivative(y)
-    valley = rising_root(slope, start, middle, start)
+    valley = rising_root(slope, start, middle, course.guess("valley", rows, start))
     course.put("valley", rows, valley, value(y, valley))
-    crest = falling_root(slope, middle, course.limit[rows], middle)
+    guess = course.guess("crest", rows, middle)
+    crest = falling_root(slope, middle, course.limit[rows], guess)
     level = value(y, crest)
     course.put("crest", rows, crest, level)
     course.put("enters", rows, crest, level)
     up = level > some.regulates
     rises[rows] = up
     rising = lowered(y[:, up], some.regulates[up])
-    crossing = rising_root(rising, valley[up], crest[up], 0.5 * (valley[up] + crest[up]))
+    guess = course.guess("enters", rows, 0.5 * (valley + crest))[up]
+    crossing = rising_root(rising, valley[up], crest[up], guess)
     course.put("enters", rows[up], crossing, some.regulates[up])
     return rises
 
@@ -177,7 +196,7 @@ def _hold(course: _Course, holds: BoolArray) -> BoolArray:
     some, start, y = course.from_event("enters", rows, regulated=True)
     last = np.pi - some.rises_past(some.regulates)
     first = np.maximum(start, CREST)
-    crest = falling_root(derivative(y), first, last, first)
+    crest = falling_root(derivative(y), first, last, course.guess("crest", rows, first))
     course.put("crest", rows, crest, value(y, crest))
     lost, line = last.copy(), line_current(some, True, y)
     under = value(y, last) < some.regulates
@@ -185,8 +204,8 @@ def _hold(course: _Course, holds: BoolArray) -> BoolArray:
     lost[under] = falling_root(sinking, crest[under], last[under], last[under])
     falls[rows] = under = under & (value(line, lost) > 0.0)
     end, held = lost.copy(), ~under
-    crest, lost_held = crest[held], lost[held]
-    end[held] = falling_root(line[:, held], crest, lost_held, 0.5 * (crest + lost_held))
+    guess = course.guess("end", rows, 0.5 * (crest + lost))[held]
+    end[held] = falling_root(line[:, held], crest[held], lost[held], guess)
     course.put("drops", rows, end, value(y, end))
     course.put("end", rows, end, value(y, end))
     course.put("drops", rows[under], lost[under], some.regulates[under])
@@ -198,5 +217,6 @@ def _end(course: _Course, slopes: BoolArray) -> None:
     rows = np.flatnonzero(slopes)
     some, start, y = course.from_event("drops", rows, regulated=False)
     limit = course.limit[rows]
-    end = falling_root(line_current(some, False, y), start, limit, 0.5 * (start + limit))
+    guess = course.guess("end", rows, 0.5 * (start + limit))
+    end = falling_root(line_current(some, False, y), start, limit, guess)
     course.put("end", rows, end, value(y, end))

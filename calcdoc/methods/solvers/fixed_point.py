@@ -12,7 +12,7 @@ from typing import Final
 import numpy as np
 
 from calcdoc.methods.solvers.blocking import discharge, meets
-from calcdoc.methods.solvers.circuit import Circuit, FloatArray
+from calcdoc.methods.solvers.circuit import CREST, Circuit, FloatArray
 from calcdoc.methods.solvers.conducting import Conduction, conduction
 
 MOST_ROUNDS: Final = 100
@@ -20,19 +20,22 @@ SETTLED: Final = 1e-12
 """A Newton step below this share of the peak offered is the last."""
 
 
-def half_period(circuit: Circuit, begin: FloatArray) -> tuple[Conduction, FloatArray, FloatArray]:
+def half_period(
+    circuit: Circuit, begin: FloatArray, near: Conduction | None = None
+) -> tuple[Conduction, FloatArray, FloatArray]:
     """Follow half a period from one zero crossing to the next.
 
     Args:
         circuit: Operating points with a reservoir and a series resistance.
         begin: Voltage above V_0 at the zero crossing, shape (n,).
+        near: The conduction from voltages nearby, to begin the searches at.
 
     Returns:
         The conduction, the voltage at the next zero crossing, and −ln of the map's slope.
     """
-    start = meets(circuit, begin)
+    start = meets(circuit, begin, None if near is None else near.start)
     before = discharge(circuit, begin, start)
-    course = conduction(circuit, start, np.maximum(circuit.offered(start), 0.0))
+    course = conduction(circuit, start, np.maximum(circuit.offered(start), 0.0), near)
     after = discharge(circuit, course.y_end, np.pi - course.end)
     slope = course.enters - course.leaves + course.end - course.drops
     reach = circuit.susceptance * circuit.source
@@ -48,9 +51,9 @@ def steady_begin(circuit: Circuit) -> FloatArray:
     peak = circuit.amplitude - circuit.offset
     found = np.full_like(peak, np.nan)
     rest, low, high = np.arange(len(peak)), np.zeros_like(peak), peak
-    begin = peak.copy()
+    begin, near = discharge(circuit, peak, np.full_like(peak, CREST)).end, None
     for _ in range(MOST_ROUNDS):
-        _, after, damping = half_period(circuit, begin)
+        course, after, damping = half_period(circuit, begin, near)
         change = after - begin
         low, high = np.where(change > 0.0, begin, low), np.where(change > 0.0, high, begin)
         step = change / -np.expm1(-damping)
@@ -63,5 +66,5 @@ def steady_begin(circuit: Circuit) -> FloatArray:
             break
         keep = ~done
         rest, begin, low, high = rest[keep], moved[keep], low[keep], high[keep]
-        peak, circuit = peak[keep], circuit.take(keep)
+        peak, circuit, near = peak[keep], circuit.take(keep), course.take(keep)
     return found

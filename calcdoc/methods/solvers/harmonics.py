@@ -51,21 +51,22 @@ def _segment(of: FloatArray, end: FloatArray) -> ComplexArray:
     half: ComplexArray = np.exp(-0.5j * length)
     middle: ComplexArray = from_start * half
     turned: ComplexArray = half * half
-    square_start, square_middle = from_start * from_start, middle * middle
-    square_half, square_turned = half * half, turned * turned
-    at, at_middle, at_half, at_turn = from_start, middle, half, turned
+    squares: list[ComplexArray] = [each * each for each in (from_start, middle, half, turned)]
+    powers = [from_start, middle, half, turned]
     left = np.exp(-length / reach)
     even_before: ComplexArray = length.astype(complex)
     found = np.empty((len(ORDERS), len(start)), dtype=complex)
     for row, order in enumerate(ORDERS):
+        at, at_middle, at_half, at_turn = powers
         odd = at_middle * (-2.0 * at_half.imag / order)
-        even_after = (at_middle * middle) * (-2.0 * (at_half * half).imag / (order + 1))
+        even_after: ComplexArray = (at_middle * middle) * (
+            -2.0 * (at_half * half).imag / (order + 1)
+        )
         decay = at * (1.0 - left * at_turn) / (1.0 / reach + 1j * order)
         found[row] = of[CONST] * odd + of[DECAY] * decay
         found[row] += 0.5 * of[COS] * (even_before + even_after)
         found[row] += -0.5j * of[SIN] * (even_before - even_after)
         even_before = even_after
-        at, at_middle = at * square_start, at_middle * square_middle
-        at_half, at_turn = at_half * square_half, at_turn * square_turned
+        powers = [each * square for each, square in zip(powers, squares, strict=True)]
     result: ComplexArray = found * (2.0 / np.pi)
     return result
