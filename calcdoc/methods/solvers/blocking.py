@@ -9,7 +9,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from calcdoc.methods.solvers.circuit import CREST, Circuit, FloatArray
-from calcdoc.methods.solvers.curves import curve, rising_root
+from calcdoc.methods.solvers.curves import CLOSE, curve, rising_root
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,7 +45,9 @@ def regulated_for(circuit: Circuit, begin: FloatArray) -> FloatArray:
     return lasts
 
 
-def meets(circuit: Circuit, begin: FloatArray, near: FloatArray | None = None) -> FloatArray:
+def meets(
+    circuit: Circuit, begin: FloatArray, near: FloatArray | None = None, close: float = CLOSE
+) -> FloatArray:
     """The phase at which the rising mains meets the falling reservoir, radians, shape (n,).
 
     What the mains offers bends down and the discharge bends up, so that their difference has one
@@ -55,6 +57,7 @@ def meets(circuit: Circuit, begin: FloatArray, near: FloatArray | None = None) -
         circuit: Operating points with a reservoir whose mains peak passes V_0.
         begin: Voltage above V_0 at the zero crossing, from 0 V to the peak offered, shape (n,).
         near: Where they met from voltages nearby, to begin the search at.
+        close: How closely to find it.
     """
     lasts = np.minimum(regulated_for(circuit, begin), CREST)
     left = np.minimum(begin, circuit.regulates)
@@ -69,4 +72,4 @@ def meets(circuit: Circuit, begin: FloatArray, near: FloatArray | None = None) -
         decay=np.where(still, 0.0, -left),
     )
     low, high = np.where(still, 0.0, lasts), np.where(still, lasts, CREST)
-    return rising_root(difference, low, high, guess)
+    return rising_root(difference, low, high, guess, close)

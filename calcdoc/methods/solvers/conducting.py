@@ -18,6 +18,7 @@ import numpy as np
 
 from calcdoc.methods.solvers.circuit import CREST, BoolArray, Circuit, FloatArray, IntArray
 from calcdoc.methods.solvers.curves import (
+    CLOSE,
     COS,
     DECAY,
     REACH,
@@ -59,6 +60,11 @@ class Conduction:
         """Some of the columns."""
         return Conduction(*(getattr(self, each.name)[which] for each in fields(self)))
 
+    def put(self, rows: IntArray, part: "Conduction") -> None:
+        """Write the columns of a part."""
+        for each in fields(self):
+            getattr(self, each.name)[rows] = getattr(part, each.name)
+
 
 def voltage(circuit: Circuit, regulated: bool, start: FloatArray, begin: FloatArray) -> FloatArray:
     """The curves of y from a start, shape (7, n)."""
@@ -92,9 +98,14 @@ class _Course:
     """Working arrays of one conduction, filled for those columns an event concerns."""
 
     def __init__(
-        self, circuit: Circuit, start: FloatArray, begin: FloatArray, near: Conduction | None
+        self,
+        circuit: Circuit,
+        start: FloatArray,
+        begin: FloatArray,
+        near: Conduction | None,
+        close: float,
     ) -> None:
-        self.circuit, self.near = circuit, near
+        self.circuit, self.near, self.close = circuit, near, close
         self.limit = np.pi - circuit.rises_past(np.zeros_like(start))
         """Here the mains falls past V_0; no later than this the line current ends."""
         self.phase = {"start": start, "leaves": start.copy()}
@@ -123,7 +134,11 @@ class _Course:
 
 
 def conduction(
-    circuit: Circuit, start: FloatArray, begin: FloatArray, near: Conduction | None = None
+    circuit: Circuit,
+    start: FloatArray,
+    begin: FloatArray,
+    near: Conduction | None = None,
+    close: float = CLOSE,
 ) -> Conduction:
     """Follow one conduction from its start to its end.
 
@@ -132,8 +147,9 @@ def conduction(
         start: Where the mains meets the reservoir, radians, up to the crest, shape (n,).
         begin: Voltage above V_0 there, shape (n,), not negative.
         near: A course of the same circuits from voltages nearby, to begin the searches at.
+        close: How closely to find events.
     """
-    course = _Course(circuit, start, begin, near)
+    course = _Course(circuit, start, begin, near, close)
     dips = _fall(course)
     rises = _rise(course, dips)
     falls = _hold(course, ~dips | rises)
@@ -151,14 +167,14 @@ def _fall(course: _Course) -> BoolArray:
     rows = np.flatnonzero(~dips)
     some, start, y = course.from_event("start", rows, regulated=True)
     guess = course.guess("valley", rows, start)
-    valley = rising_root(derivative(y), start, np.full_like(start, CREST), guess)
+    valley = rising_root(derivative(y), start, np.full_like(start, CREST), guess, course.close)
     level = value(y, valley)
     course.put("valley", rows, valley, level)
     course.put("leaves", rows, valley, level)
     lost = level < some.regulates
     dips[rows] = lost
     falling = lowered(y[:, lost], some.regulates[lost])
-    crossing = falling_root(falling, start[lost], valley[lost], start[lost])
+    crossing = falling_root(falling, start[lost], valley[lost], start[lost], course.close)
     course.put("leaves", rows[lost], crossing, some.regulates[lost])
     return dips
 
@@ -171,10 +187,10 @@ def _rise(course: _Course, dips: BoolArray) -> BoolArray:
     rows = np.flatnonzero(dips)
     some, start, y = course.from_event("leaves", rows, regulated=False)
     middle, slope = np.full_like(start, CREST), derivative(y)
-    valley = rising_root(slope, start, middle, course.guess("valley", rows, start))
+    valley = rising_root(slope, start, middle, course.guess("valley", rows, start), course.close)
     course.put("valley", rows, valley, value(y, valley))
     guess = course.guess("crest", rows, middle)
-    crest = falling_root(slope, middle, course.limit[rows], guess)
+    crest = falling_root(slope, middle, course.limit[rows], guess, course.close)
     level = value(y, crest)
     course.put("crest", rows, crest, level)
     course.put("enters", rows, crest, level)
@@ -182,7 +198,7 @@ def _rise(course: _Course, dips: BoolArray) -> BoolArray:
     rises[rows] = up
     rising = lowered(y[:, up], some.regulates[up])
     guess = course.guess("enters", rows, 0.5 * (valley + crest))[up]
-    crossing = rising_root(rising, valley[up], crest[up], guess)
+    crossing = rising_root(rising, valley[up], crest[up], guess, course.close)
     course.put("enters", rows[up], crossing, some.regulates[up])
     return rises
 
@@ -196,16 +212,18 @@ def _hold(course: _Course, holds: BoolArray) -> BoolArray:
     some, start, y = course.from_event("enters", rows, regulated=True)
     last = np.pi - some.rises_past(some.regulates)
     first = np.maximum(start, CREST)
-    crest = falling_root(derivative(y), first, last, course.guess("crest", rows, first))
+    crest = falling_root(
+        derivative(y), first, last, course.guess("crest", rows, first), course.close
+    )
     course.put("crest", rows, crest, value(y, crest))
     lost, line = last.copy(), line_current(some, True, y)
     under = value(y, last) < some.regulates
     sinking = lowered(y[:, under], some.regulates[under])
-    lost[under] = falling_root(sinking, crest[under], last[under], last[under])
+    lost[under] = falling_root(sinking, crest[under], last[under], last[under], course.close)
     falls[rows] = under = under & (value(line, lost) > 0.0)
     end, held = lost.copy(), ~under
     guess = course.guess("end", rows, 0.5 * (crest + lost))[held]
-    end[held] = falling_root(line[:, held], crest[held], lost[held], guess)
+    end[held] = falling_root(line[:, held], crest[held], lost[held], guess, course.close)
     course.put("drops", rows, end, value(y, end))
     course.put("end", rows, end, value(y, end))
     course.put("drops", rows[under], lost[under], some.regulates[under])
@@ -218,5 +236,5 @@ def _end(course: _Course, slopes: BoolArray) -> None:
     some, start, y = course.from_event("drops", rows, regulated=False)
     limit = course.limit[rows]
     guess = course.guess("end", rows, 0.5 * (start + limit))
-    end = falling_root(line_current(some, False, y), start, limit, guess)
+    end = falling_root(line_current(some, False, y), start, limit, guess, course.close)
     course.put("end", rows, end, value(y, end))

@@ -21,6 +21,9 @@ TERMS: Final = 5
 CLOSE: Final = 1e-8
 """A Newton step below this times √T (T no more than a radian) is the last: what it leaves is about
 its square over T, which is the rounding of a phase."""
+LOOSE: Final = 1e-3
+"""The same where only the way to a fixed point is wanted: each round then improves its roots by
+about one Newton step, while the fixed point does the same."""
 ROUNDING: Final = 1e-15
 MOST_STEPS: Final = 200
 """More than bisection needs for any interval of phases."""
@@ -79,7 +82,13 @@ def _value_and_slope(of: FloatArray, phase: FloatArray) -> tuple[FloatArray, Flo
     return found, slope
 
 
-def rising_root(of: FloatArray, low: FloatArray, high: FloatArray, guess: FloatArray) -> FloatArray:
+def rising_root(
+    of: FloatArray,
+    low: FloatArray,
+    high: FloatArray,
+    guess: FloatArray,
+    close: float = CLOSE,
+) -> FloatArray:
     """Where each curve turns from negative to positive between two phases, to rounding.
 
     Newton's rule, kept inside the bracket: a step that leaves it, or that is not half of the one
@@ -91,6 +100,7 @@ def rising_root(of: FloatArray, low: FloatArray, high: FloatArray, guess: FloatA
         low: Where to begin, shape (n,).
         high: Where to end, shape (n,), no less than ``low``.
         guess: First phase to try, shape (n,).
+        close: The last Newton step, :data:`CLOSE` or :data:`LOOSE`.
 
     Returns:
         Phases in radians, shape (n,).
@@ -98,7 +108,7 @@ def rising_root(of: FloatArray, low: FloatArray, high: FloatArray, guess: FloatA
     found = np.clip(guess, low, high)
     rest = np.arange(len(low))
     phase, before = found.copy(), high - low
-    enough = np.maximum(CLOSE * np.sqrt(np.minimum(1.0, of[REACH])), ROUNDING)
+    enough = np.maximum(close * np.sqrt(np.minimum(1.0, of[REACH])), ROUNDING)
     for _ in range(MOST_STEPS):
         at, slope = _value_and_slope(of, phase)
         low, high = np.where(at < 0.0, phase, low), np.where(at < 0.0, high, phase)
@@ -120,12 +130,16 @@ def rising_root(of: FloatArray, low: FloatArray, high: FloatArray, guess: FloatA
 
 
 def falling_root(
-    of: FloatArray, low: FloatArray, high: FloatArray, guess: FloatArray
+    of: FloatArray,
+    low: FloatArray,
+    high: FloatArray,
+    guess: FloatArray,
+    close: float = CLOSE,
 ) -> FloatArray:
     """Where each curve turns from positive to negative; otherwise as :func:`rising_root`."""
     turned = of.copy()
     turned[:TERMS] *= -1.0
-    return rising_root(turned, low, high, guess)
+    return rising_root(turned, low, high, guess, close)
 
 
 def straddles(first: FloatArray, last: FloatArray) -> BoolArray:

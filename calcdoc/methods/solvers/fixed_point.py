@@ -7,6 +7,7 @@ exp(−Σ Δθ/T) over the pieces. Newton's rule with it settles in a few rounds
 zero and the peak offered.
 """
 
+from dataclasses import fields
 from typing import Final
 
 import numpy as np
@@ -14,14 +15,17 @@ import numpy as np
 from calcdoc.methods.solvers.blocking import discharge, meets
 from calcdoc.methods.solvers.circuit import CREST, Circuit, FloatArray
 from calcdoc.methods.solvers.conducting import Conduction, conduction
+from calcdoc.methods.solvers.curves import CLOSE, LOOSE
 
 MOST_ROUNDS: Final = 100
+LOOSE_ROUNDS: Final = 2
+NEARLY: Final = 1e-3
 SETTLED: Final = 1e-12
 """A Newton step below this share of the peak offered is the last."""
 
 
 def half_period(
-    circuit: Circuit, begin: FloatArray, near: Conduction | None = None
+    circuit: Circuit, begin: FloatArray, near: Conduction | None, close: float
 ) -> tuple[Conduction, FloatArray, FloatArray]:
     """Follow half a period from one zero crossing to the next.
 
@@ -29,13 +33,14 @@ def half_period(
         circuit: Operating points with a reservoir and a series resistance.
         begin: Voltage above V_0 at the zero crossing, shape (n,).
         near: The conduction from voltages nearby, to begin the searches at.
+        close: How closely to find events.
 
     Returns:
         The conduction, the voltage at the next zero crossing, and −ln of the map's slope.
     """
-    start = meets(circuit, begin, None if near is None else near.start)
+    start = meets(circuit, begin, None if near is None else near.start, close)
     before = discharge(circuit, begin, start)
-    course = conduction(circuit, start, np.maximum(circuit.offered(start), 0.0), near)
+    course = conduction(circuit, start, np.maximum(circuit.offered(start), 0.0), near, close)
     after = discharge(circuit, course.y_end, np.pi - course.end)
     slope = course.enters - course.leaves + course.end - course.drops
     reach = circuit.susceptance * circuit.source
@@ -43,28 +48,41 @@ def half_period(
     return course, after.end, before.damping + damping + after.damping
 
 
-def steady_begin(circuit: Circuit) -> FloatArray:
-    """The voltage above V_0 at a zero crossing that comes back half a period later, shape (n,).
+def steady_conduction(circuit: Circuit) -> Conduction:
+    """The conduction that comes back half a period later.
 
-    NaN where it does not settle, which the caller reports.
+    The first guess is a reservoir charged to the peak offered. Events are searched loosely until
+    the voltage is nearly settled, from where they were the round before.
+
+    Args:
+        circuit: Operating points with a reservoir, a series resistance and a string that conducts.
+
+    Returns:
+        The events; NaN where it does not settle, which the caller reports.
     """
     peak = circuit.amplitude - circuit.offset
-    found = np.full_like(peak, np.nan)
+    found = Conduction(*(np.full_like(peak, np.nan) for _ in fields(Conduction)))
     rest, low, high = np.arange(len(peak)), np.zeros_like(peak), peak
-    begin, near = discharge(circuit, peak, np.full_like(peak, CREST)).end, None
-    for _ in range(MOST_ROUNDS):
-        course, after, damping = half_period(circuit, begin, near)
+    begin = discharge(circuit, peak, np.full_like(peak, CREST)).end
+    near, close = None, LOOSE
+    for turn in range(MOST_ROUNDS):
+        near, after, damping = half_period(circuit, begin, near, close)
         change = after - begin
-        low, high = np.where(change > 0.0, begin, low), np.where(change > 0.0, high, begin)
-        step = change / -np.expm1(-damping)
-        moved = begin + step
+        if close == CLOSE:
+            low, high = np.where(change > 0.0, begin, low), np.where(change > 0.0, high, begin)
+        moved = begin + change / -np.expm1(-damping)
         inside = (moved >= low) & (moved <= high)
+        step = np.where(inside, np.abs(moved - begin), peak)
         moved = np.where(inside, moved, 0.5 * (low + high))
-        done = (inside & (np.abs(step) <= SETTLED * peak)) | (high - low <= 1e-15 * peak)
-        found[rest[done]] = moved[done]
+        if close == LOOSE:
+            close = CLOSE if turn >= LOOSE_ROUNDS or (step <= NEARLY * peak).all() else LOOSE
+            begin = moved
+            continue
+        done = (step <= SETTLED * peak) | (high - low <= 1e-15 * peak)
+        found.put(rest[done], near.take(done))
         if done.all():
             break
         keep = ~done
         rest, begin, low, high = rest[keep], moved[keep], low[keep], high[keep]
-        peak, circuit, near = peak[keep], circuit.take(keep), course.take(keep)
+        peak, circuit, near = peak[keep], circuit.take(keep), near.take(keep)
     return found

@@ -36,11 +36,11 @@ def amplitudes(line: FloatArray, end: FloatArray) -> ComplexArray:
     Returns:
         Peak values as phasors to exp(jnθ), shape (20, n), in amperes.
     """
-    used = np.flatnonzero((end > line[START]).any(axis=1))
-    return sum(
-        (_segment(line[:, each], end[each]) for each in used),
-        start=np.zeros((len(ORDERS), line.shape[-1]), dtype=complex),
-    )
+    found: ComplexArray = np.zeros((len(ORDERS), line.shape[-1]), dtype=complex)
+    for each in range(len(end)):
+        columns = np.flatnonzero(end[each] > line[START, each])
+        found[:, columns] += _segment(line[:, each, columns], end[each, columns])
+    return found
 
 
 def _segment(of: FloatArray, end: FloatArray) -> ComplexArray:
@@ -59,14 +59,12 @@ def _segment(of: FloatArray, end: FloatArray) -> ComplexArray:
     for row, order in enumerate(ORDERS):
         at, at_middle, at_half, at_turn = powers
         odd = at_middle * (-2.0 * at_half.imag / order)
-        even_after: ComplexArray = (at_middle * middle) * (
-            -2.0 * (at_half * half).imag / (order + 1)
-        )
+        even_after = (at_middle * middle) * (-2.0 * (at_half * half).imag / (order + 1))
         decay = at * (1.0 - left * at_turn) / (1.0 / reach + 1j * order)
         found[row] = of[CONST] * odd + of[DECAY] * decay
         found[row] += 0.5 * of[COS] * (even_before + even_after)
         found[row] += -0.5j * of[SIN] * (even_before - even_after)
         even_before = even_after
         powers = [each * square for each, square in zip(powers, squares, strict=True)]
-    result: ComplexArray = found * (2.0 / np.pi)
-    return result
+    whole: ComplexArray = found.astype(complex) * (2.0 / np.pi)
+    return whole

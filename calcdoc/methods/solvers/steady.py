@@ -17,7 +17,7 @@ from calcdoc.methods.solvers.blocking import discharge, meets
 from calcdoc.methods.solvers.circuit import CREST, Circuit, FloatArray
 from calcdoc.methods.solvers.conducting import line_current, voltage
 from calcdoc.methods.solvers.curves import curve
-from calcdoc.methods.solvers.fixed_point import half_period, steady_begin
+from calcdoc.methods.solvers.fixed_point import steady_conduction
 from calcdoc.methods.solvers.segments import (
     Steady,
     assemble,
@@ -115,8 +115,7 @@ def _ideal_end(circuit: Circuit, falls: FloatArray) -> FloatArray:
 
 
 def _resistive(circuit: Circuit) -> Steady:
-    begin = steady_begin(circuit)
-    course, _, _ = half_period(circuit, begin)
+    course = steady_conduction(circuit)
     length = np.pi - course.end + course.start
     regulated = discharge(circuit, course.y_end, length).regulated
     conducting = [
@@ -133,5 +132,5 @@ def _resistive(circuit: Circuit) -> Steady:
     ends = [course.leaves, course.enters, course.drops, course.end]
     ends += [course.end + regulated, np.pi + course.start]
     extremes = (course.valley, course.crest, course.y_valley, course.y_crest)
-    dark = np.zeros(len(begin), dtype=bool)
+    dark = np.zeros(len(length), dtype=bool)
     return assemble(circuit, np.stack(ends), curves, np.stack(lines, axis=1), extremes, dark)
