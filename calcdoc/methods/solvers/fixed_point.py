@@ -20,6 +20,11 @@ from calcdoc.methods.solvers.curves import CLOSE, LOOSE
 MOST_ROUNDS: Final = 100
 LOOSE_ROUNDS: Final = 2
 NEARLY: Final = 1e-3
+"""Rounds with loosely searched events end after so many, or when all steps are below this share
+of the peak offered."""
+REPEATS: Final = 2e-15
+"""A change over half a period below this share of the mains is rounding: with a very large
+reservoir the map's slope is nearly 1, and no step would be small enough."""
 SETTLED: Final = 1e-12
 """A Newton step below this share of the peak offered is the last."""
 
@@ -78,7 +83,8 @@ def steady_conduction(circuit: Circuit) -> Conduction:
             close = CLOSE if turn >= LOOSE_ROUNDS or (step <= NEARLY * peak).all() else LOOSE
             begin = moved
             continue
-        done = (step <= SETTLED * peak) | (high - low <= 1e-15 * peak)
+        repeats = np.abs(change) <= REPEATS * circuit.amplitude
+        done = (step <= SETTLED * peak) | repeats | (high - low <= REPEATS * peak)
         found.put(rest[done], near.take(done))
         if done.all():
             break

@@ -55,7 +55,7 @@ def _segment(of: FloatArray, end: FloatArray) -> ComplexArray:
     powers = [from_start, middle, half, turned]
     left = np.exp(-length / reach)
     even_before: ComplexArray = length.astype(complex)
-    found = np.empty((len(ORDERS), len(start)), dtype=complex)
+    found: ComplexArray = np.empty((len(ORDERS), len(start)), dtype=np.complex128)
     for row, order in enumerate(ORDERS):
         at, at_middle, at_half, at_turn = powers
         odd = at_middle * (-2.0 * at_half.imag / order)
@@ -66,5 +66,5 @@ def _segment(of: FloatArray, end: FloatArray) -> ComplexArray:
         found[row] += -0.5j * of[SIN] * (even_before - even_after)
         even_before = even_after
         powers = [each * square for each, square in zip(powers, squares, strict=True)]
-    whole: ComplexArray = found.astype(complex) * (2.0 / np.pi)
-    return whole
+    found *= 2.0 / np.pi
+    return found
