@@ -135,7 +135,7 @@ def _powers(
     return {
         "P_in": power,
         "S_in": apparent,
-        "power_factor": _share(power, apparent),
+        "power_factor": np.minimum(_share(power, apparent), 1.0),
         "P_string": (circuit.begin - circuit.drop) * mean + circuit.string * square,
         "P_reg": circuit.drop * mean + circuit.current * _mean(above),
     }

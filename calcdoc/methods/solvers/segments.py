@@ -14,6 +14,7 @@ from typing import Final
 
 import numpy as np
 
+from calcdoc.methods.solvers.blocking import regulated_for
 from calcdoc.methods.solvers.circuit import BoolArray, Circuit, FloatArray, IntArray
 from calcdoc.methods.solvers.curves import CONST, REACH, TERMS, curve, derivative
 
@@ -106,17 +107,23 @@ def assemble(  # noqa: PLR0913  (the parts of a table)
 
 
 def discharging(
-    circuit: Circuit, start: FloatArray, regulated: FloatArray, begin: FloatArray
-) -> tuple[FloatArray, FloatArray]:
-    """Curves of y over the two blocking segments, each of shape (7, n).
+    circuit: Circuit, start: FloatArray, begin: FloatArray, stop: FloatArray
+) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """Curves of y over the two blocking segments, shape (7, n), and where the second begins.
+
+    Where regulation lasts, the second segment is empty to the last digit: on a steep slope a
+    rounding of its length would count.
 
     Args:
         circuit: Operating points with a reservoir.
         start: Where blocking starts, radians.
-        regulated: How long it is regulated, radians.
         begin: Voltage above V_0 at the start.
+        stop: Where blocking stops, radians.
     """
+    lasts = regulated_for(circuit, begin)
+    regulated = np.minimum(lasts, stop - start)
+    turn = np.where(lasts < stop - start, start + regulated, stop)
     first = curve(start, const=begin, ramp=-circuit.current / circuit.susceptance)
     left = begin - regulated * circuit.current / circuit.susceptance
-    second = curve(start + regulated, circuit.susceptance * circuit.string, decay=left)
-    return first, second
+    second = curve(turn, circuit.susceptance * circuit.string, decay=left)
+    return first, second, turn

@@ -87,12 +87,11 @@ def _ideal_source(circuit: Circuit) -> Steady:
     enters = np.maximum(start, np.pi - falls)
     drops = np.clip(falls, enters, end)
     level = np.maximum(circuit.offered(end), 0.0)
-    regulated = discharge(circuit, level, np.pi - end + start).regulated
     mains = curve(start, const=-circuit.offset, sin=circuit.amplitude)
-    blocking = discharging(circuit, end, regulated, level)
-    curves = np.stack([mains] * 4 + list(blocking), axis=1)
+    *blocking, turn = discharging(circuit, end, level, np.pi + start)
+    curves = np.stack([mains] * 4 + blocking, axis=1)
     curves[5, :4] = np.stack([start, start, enters, drops])
-    ends = np.stack([start, enters, drops, end, end + regulated, np.pi + start])
+    ends = np.stack([start, enters, drops, end, turn, np.pi + start])
     crest = np.full_like(start, CREST)
     extremes = (start, crest, circuit.offered(start), circuit.offered(crest))
     return assemble(circuit, ends, curves, None, extremes, np.zeros(len(start), dtype=bool))
@@ -116,21 +115,20 @@ def _ideal_end(circuit: Circuit, falls: FloatArray) -> FloatArray:
 
 def _resistive(circuit: Circuit) -> Steady:
     course = steady_conduction(circuit)
-    length = np.pi - course.end + course.start
-    regulated = discharge(circuit, course.y_end, length).regulated
+    stop = np.pi + course.start
     conducting = [
         voltage(circuit, True, course.start, course.y_start),
         voltage(circuit, False, course.leaves, course.y_leaves),
         voltage(circuit, True, course.enters, course.y_enters),
         voltage(circuit, False, course.drops, course.y_drops),
     ]
-    blocking = discharging(circuit, course.end, regulated, course.y_end)
+    *blocking, turn = discharging(circuit, course.end, course.y_end, stop)
     curves = np.stack([*conducting, *blocking], axis=1)
     lines = [
         line_current(circuit, at % 2 == 0, each) for at, each in enumerate([*conducting, *blocking])
     ]
     ends = [course.leaves, course.enters, course.drops, course.end]
-    ends += [course.end + regulated, np.pi + course.start]
+    ends += [turn, stop]
     extremes = (course.valley, course.crest, course.y_valley, course.y_crest)
-    dark = np.zeros(len(length), dtype=bool)
+    dark = np.zeros(len(stop), dtype=bool)
     return assemble(circuit, np.stack(ends), curves, np.stack(lines, axis=1), extremes, dark)

@@ -239,3 +239,12 @@ def test_without_a_reservoir_in_closed_form() -> None:
     orders = np.arange(1, 40, 2)
     square = 2**1.5 / np.pi * 0.04 * np.abs(np.cos(orders * on)) / orders
     assert done.I_h[:, 0] == pytest.approx(square, abs=1e-7)
+
+
+def test_empty_segments_count_for_nothing() -> None:
+    """A steep string that stays regulated adds no rounding of its slope to the ripple current."""
+    for R_s in (0.0, 1.0):
+        done = lamp(R_string=0.0, V_knee=0.0, V_drop=2.0, C=556.7e-6, I_set=1.0, R_s=R_s)
+        assert done.percent_flicker[0] == 0.0
+        expected = np.sqrt(done.I_s_rms[0] ** 2 - 1.0)
+        assert done.I_C_rms[0] == pytest.approx(expected, rel=1e-9)
