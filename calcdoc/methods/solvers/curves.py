@@ -12,7 +12,7 @@ from typing import Final
 
 import numpy as np
 
-from calcdoc.methods.solvers.circuit import BoolArray, FloatArray
+from calcdoc.methods.solvers.circuit import BoolArray, FloatArray, IntArray
 
 CONST, RAMP, SIN, COS, DECAY, START, REACH = range(7)
 TERMS: Final = 5
@@ -25,6 +25,7 @@ LOOSE: Final = 1e-3
 """The same where only the way to a fixed point is wanted: each round then improves its roots by
 about one Newton step, while the fixed point does the same."""
 ROUNDING: Final = 1e-15
+PLAIN_STEPS: Final = 5
 MOST_STEPS: Final = 200
 """More than bisection needs for any interval of phases."""
 
@@ -73,6 +74,15 @@ def lowered(of: FloatArray, level: FloatArray) -> FloatArray:
     return made
 
 
+def primitive(of: FloatArray, phase: FloatArray) -> FloatArray:
+    """An antiderivative of curves (7, ...) at phases (...); only its differences mean something."""
+    along = phase - of[START]
+    found: FloatArray = along * (of[CONST] + 0.5 * along * of[RAMP])
+    found += of[COS] * np.sin(phase) - of[SIN] * np.cos(phase)
+    found -= of[DECAY] * of[REACH] * np.exp(-along / of[REACH])
+    return found
+
+
 def _value_and_slope(of: FloatArray, phase: FloatArray) -> tuple[FloatArray, FloatArray]:
     along = phase - of[START]
     sin, cos = np.sin(phase), np.cos(phase)
@@ -91,8 +101,9 @@ def rising_root(
 ) -> FloatArray:
     """Where each curve turns from negative to positive between two phases, to rounding.
 
-    Newton's rule, kept inside the bracket: a step that leaves it, or that is not half of the one
-    before the last, is replaced by halving. Where the curve is positive from the beginning the
+    A few steps of Newton's rule settle most columns; the rest is kept inside the bracket: a step
+    that leaves it, or that is not half of the one before, is replaced by halving. Where the curve
+    is positive from the beginning the
     result is ``low``, where it is negative to the end it is ``high``.
 
     Args:
@@ -106,15 +117,55 @@ def rising_root(
         Phases in radians, shape (n,).
     """
     found = np.clip(guess, low, high)
-    rest = np.arange(len(low))
-    phase, before = found.copy(), high - low
     enough = np.maximum(close * np.sqrt(np.minimum(1.0, of[REACH])), ROUNDING)
+    rest = _plain_newton(of, low, high, found, enough)
+    if len(rest):
+        some, first, last = of[:, rest], low[rest], high[rest]
+        late, never = value(some, first) >= 0.0, value(some, last) < 0.0
+        inside = ~(late | never)
+        reached = found[rest][inside]
+        found[rest] = np.where(late, first, last)
+        some, first, last, rest = some[:, inside], first[inside], last[inside], rest[inside]
+        found[rest] = _guarded_newton(some, first, last, reached, enough[rest])
+    return found
+
+
+def _plain_newton(
+    of: FloatArray, low: FloatArray, high: FloatArray, found: FloatArray, enough: FloatArray
+) -> IntArray:
+    """Improve roots in place by Newton's rule; the columns that do not settle in a few steps.
+
+    A bracket holds one root, so a step that is small and stays inside has found it.
+    """
+    rest, phase = np.arange(len(low)), found
+    for _ in range(PLAIN_STEPS):
+        at, slope = _value_and_slope(of, phase)
+        moved = phase - at / slope
+        phase = np.minimum(np.maximum(moved, low), high)
+        done = np.abs(moved - found[rest]) <= enough
+        done &= moved == phase
+        found[rest] = phase
+        keep = np.flatnonzero(~done)
+        if 4 * len(keep) < 3 * len(done):
+            rest, of, phase = rest[keep], of[:, keep], phase[keep]
+            low, high, enough = low[keep], high[keep], enough[keep]
+            done = np.zeros(len(rest), dtype=bool)
+        if not len(rest):
+            break
+    return rest[~done] if len(rest) else rest
+
+
+def _guarded_newton(
+    of: FloatArray, low: FloatArray, high: FloatArray, phase: FloatArray, enough: FloatArray
+) -> FloatArray:
+    """Newton's rule that halves its bracket where a step leaves it or does not shrink."""
+    found, rest = phase.copy(), np.arange(len(low))
+    before = high - low
     for _ in range(MOST_STEPS):
         at, slope = _value_and_slope(of, phase)
         low, high = np.where(at < 0.0, phase, low), np.where(at < 0.0, high, phase)
-        step = at / slope
-        moved = phase - step
-        size = np.abs(step)
+        moved = phase - at / slope
+        size = np.abs(moved - phase)
         trusted = (moved >= low) & (moved <= high) & (2.0 * size <= np.maximum(before, enough))
         before = np.where(trusted, size, 0.5 * (high - low))
         phase = np.where(trusted, moved, low + 0.5 * (high - low))

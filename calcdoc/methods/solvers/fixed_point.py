@@ -18,7 +18,7 @@ from calcdoc.methods.solvers.conducting import Conduction, conduction
 from calcdoc.methods.solvers.curves import CLOSE, LOOSE
 
 MOST_ROUNDS: Final = 100
-LOOSE_ROUNDS: Final = 2
+LOOSE_ROUNDS: Final = 1
 NEARLY: Final = 1e-3
 """Rounds with loosely searched events end after so many, or when all steps are below this share
 of the peak offered."""

@@ -8,8 +8,8 @@ from numpy.typing import ArrayLike
 
 from calcdoc.methods.solvers.circuit import FloatArray, IntArray
 
-COLUMNS: Final = 8192
-"""Operating points solved together: enough to hide what a call of NumPy costs, some 40 MB."""
+COLUMNS: Final = 5000
+"""Operating points solved together: enough to hide what a call of NumPy costs, some 25 MB."""
 
 
 class Reason(IntEnum):

@@ -9,8 +9,7 @@ Definitions: CIE e-ILV term 39 and IEV 845-22-094 (seen, see the facts of the me
 import numpy as np
 
 from calcdoc.methods.solvers.circuit import FloatArray
-from calcdoc.methods.solvers.curves import START, lowered, rising_root, straddles, value
-from calcdoc.methods.solvers.integrals import integral, over
+from calcdoc.methods.solvers.curves import START, lowered, primitive, rising_root, straddles, value
 from calcdoc.methods.solvers.segments import REGULATED, Steady
 
 
@@ -70,7 +69,7 @@ def _area_above(
     crossing = rising_root(some, begin, stop, 0.5 * (begin + stop))
     low[crosses] = np.where(rises, crossing, begin)
     high[crosses] = np.where(rises, stop, crossing)
-    until = integral(excess, over(excess, high)) - integral(excess, over(excess, low))
+    until = primitive(excess, high) - primitive(excess, low)
     lit = (np.maximum(first, last) > 0.0) & (high > low)
     area: FloatArray = np.where(lit, until, 0.0)
     return area
