@@ -91,8 +91,7 @@ def resistive(point: Point, rtol: float = 1e-8) -> Sampled:
     phase = _phases()
     voltage = follow(begin, phase)
     line = [
-        max((point.offered(at) - v) / point.R_s, 0.0)
-        for at, v in zip(phase, voltage, strict=True)
+        max((point.offered(at) - v) / point.R_s, 0.0) for at, v in zip(phase, voltage, strict=True)
     ]
     return _sampled(point, phase, voltage, np.array(line))
 
@@ -122,6 +121,8 @@ def ideal_source(point: Point) -> Sampled:
         events=meets,
         dense_output=True,
     )
+    assert fall.t_events is not None
+    assert fall.sol is not None
     start = fall.t_events[0][-1] - np.pi
     phase = _phases()
     conducts = (phase >= start) & (phase <= end)
@@ -158,7 +159,7 @@ def settled(half_period: Callable[[float], float], point: Point) -> float:
 
 
 def _phases() -> FloatArray:
-    made: FloatArray = (np.arange(GRID) + 0.5) * (np.pi / GRID)
+    made: FloatArray = (np.arange(GRID, dtype=float) + 0.5) * (np.pi / GRID)
     return made
 
 

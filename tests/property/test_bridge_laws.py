@@ -1,6 +1,7 @@
 """Laws of the steady state of bridge, reservoir, string and regulator."""
 
-from typing import Any, Final
+from collections.abc import Iterable
+from typing import Final
 
 import numpy as np
 import pytest
@@ -52,7 +53,9 @@ def scaled(circuit: Circuit, **by: float) -> Circuit:
     return {name: value * by.get(name, 1.0) for name, value in circuit.items()}
 
 
-def same(first: BridgeSteadyState, second: BridgeSteadyState, names: Any, factor: float) -> None:
+def same(
+    first: BridgeSteadyState, second: BridgeSteadyState, names: Iterable[str], factor: float
+) -> None:
     """Results of the second are those of the first times a factor."""
     for name in names:
         one, other = getattr(first, name) * factor, getattr(second, name)

@@ -1,5 +1,6 @@
 """Edges of the steady state: what is zero, never, huge, scalar, or not a number."""
 
+import re
 from dataclasses import fields
 from typing import Final
 
@@ -66,12 +67,8 @@ def test_more_points_than_a_chunk() -> None:
     done = lamp(V_s=line)
     few = lamp(V_s=line[:3])
     assert done.V_min == pytest.approx(np.resize(few.V_min, COLUMNS + 5), rel=1e-12)
-    assert done.I_h[:, -5:] == pytest.approx(
-        np.resize(few.I_h[:, [0, 1, 2]], (20, 3))[:, [0, 1, 2, 0, 1]][
-            :, np.arange(COLUMNS, COLUMNS + 5) % 3
-        ],
-        rel=1e-9,
-    )
+    last = few.I_h[:, np.arange(COLUMNS, COLUMNS + 5) % 3]
+    assert done.I_h[:, -5:] == pytest.approx(last, rel=1e-9)
 
 
 def test_no_points() -> None:
@@ -85,16 +82,17 @@ def test_no_points() -> None:
         ({"V_s": np.ones((2, 2))}, "one axis of operating points at most, found the shape (2, 2)"),
         (
             {"V_s": np.ones(2), "C": np.ones(3)},
-            "the quantities do not have a common shape: V_s (2,), f_s (), R_s (), V_D (), C (3,), "
-            "I_set (), V_knee (), R_string (), V_drop ()",
+            (
+                "the quantities do not have a common shape: V_s (2,), f_s (), R_s (), V_D (), "
+                "C (3,), I_set (), V_knee (), R_string (), V_drop ()"
+            ),
         ),
     ],
 )
 def test_shapes_that_do_not_fit(given: dict[str, object], message: str) -> None:
     """Two axes, and lengths that differ, are refused with the shapes."""
-    with pytest.raises(ValueError, match=".") as raised:
+    with pytest.raises(ValueError, match=f"^{re.escape(message)}$"):
         lamp(**given)
-    assert str(raised.value) == message
 
 
 @pytest.mark.parametrize("name", list(LAMP))
