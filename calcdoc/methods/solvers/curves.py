@@ -74,12 +74,14 @@ def lowered(of: FloatArray, level: FloatArray) -> FloatArray:
     return made
 
 
-def primitive(of: FloatArray, phase: FloatArray) -> FloatArray:
-    """An antiderivative of curves (7, ...) at phases (...); only its differences mean something."""
-    along = phase - of[START]
-    found: FloatArray = along * (of[CONST] + 0.5 * along * of[RAMP])
-    found += of[COS] * np.sin(phase) - of[SIN] * np.cos(phase)
-    found -= of[DECAY] * of[REACH] * np.exp(-along / of[REACH])
+def between(of: FloatArray, low: FloatArray, high: FloatArray) -> FloatArray:
+    """The integrals of curves (7, ...) between two phases (...) of their own."""
+    length, middle = high - low, 0.5 * (low + high)
+    found: FloatArray = length * (of[CONST] + of[RAMP] * (middle - of[START]))
+    chord = 2.0 * np.sin(0.5 * length)
+    found += chord * (of[SIN] * np.sin(middle) + of[COS] * np.cos(middle))
+    left = of[DECAY] * np.exp(-(low - of[START]) / of[REACH])
+    found -= left * of[REACH] * np.expm1(-length / of[REACH])
     return found
 
 

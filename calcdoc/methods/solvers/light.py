@@ -9,7 +9,7 @@ Definitions: CIE e-ILV term 39 and IEV 845-22-094 (seen, see the facts of the me
 import numpy as np
 
 from calcdoc.methods.solvers.circuit import FloatArray
-from calcdoc.methods.solvers.curves import START, lowered, primitive, rising_root, straddles, value
+from calcdoc.methods.solvers.curves import START, between, lowered, rising_root, straddles, value
 from calcdoc.methods.solvers.segments import REGULATED, Steady
 
 
@@ -17,9 +17,9 @@ def percent_flicker(least: FloatArray, greatest: FloatArray) -> FloatArray:
     """Percent flicker of a current between two extremes, shape (n,); NaN without current."""
     both = greatest + least
     share: FloatArray = np.divide(
-        100.0 * (greatest - least), both, out=np.full_like(both, np.nan), where=both > 0.0
+        greatest - least, both, out=np.full_like(both, np.nan), where=both > 0.0
     )
-    return share
+    return 100.0 * share
 
 
 def flicker_index(steady: Steady, mean: FloatArray) -> FloatArray:
@@ -69,7 +69,7 @@ def _area_above(
     crossing = rising_root(some, begin, stop, 0.5 * (begin + stop))
     low[crosses] = np.where(rises, crossing, begin)
     high[crosses] = np.where(rises, stop, crossing)
-    until = primitive(excess, high) - primitive(excess, low)
+    until = between(excess, low, high)
     lit = (np.maximum(first, last) > 0.0) & (high > low)
     area: FloatArray = np.where(lit, until, 0.0)
     return area
