@@ -1,0 +1,1 @@
+"""The library of methods: what designs apply by name."""
