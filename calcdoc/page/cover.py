@@ -17,13 +17,13 @@ from calcdoc.records.wording import counted
 
 VERDICTS: Final = (
     Column("id", 4),
-    Column("criterion", 25.5),
-    Column("value", 12, "num"),
-    Column("limit", 10.5, "num"),
+    Column("criterion", 26.5),
+    Column("value", 11, "num"),
+    Column("limit", 9.5, "num"),
     Column("margin", 6.5, "num"),
     Column("", 6),
-    Column("verdict", 11),
-    Column("governed by", 24.5, "gov"),
+    Column("verdict", 11.5),
+    Column("governed by", 25, "gov"),
 )
 KIND: Final = "Calculation record"
 LONG: Final = 24

@@ -28,7 +28,7 @@ from calcdoc import pipeline  # noqa: E402
 from calcdoc.page.html import html  # noqa: E402
 from calcdoc.page.pdf import pdf, sheet_html  # noqa: E402
 from calcdoc.records.store import to_json  # noqa: E402
-from tests.bench import sampling  # noqa: E402
+from tests.bench import bridge, sampling  # noqa: E402
 from tests.bench.designs import CLOSED, DEMO, DROP, MEAN, repeated, toleranced  # noqa: E402
 
 CHECK = ("-c", "from calcdoc.commands import main; main()", "check")
@@ -46,10 +46,16 @@ class Setting:
     copies: int
     quantities: int
     draws: int
+    points: int
+    by_scipy: int
 
 
-FULL = Setting(processes=15, documents=5, copies=4, quantities=60, draws=1_000_000)
-QUICK = Setting(processes=1, documents=1, copies=1, quantities=10, draws=10_000)
+FULL = Setting(
+    processes=15, documents=5, copies=4, quantities=60, draws=1_000_000, points=10_000, by_scipy=24
+)
+QUICK = Setting(
+    processes=1, documents=1, copies=1, quantities=10, draws=10_000, points=500, by_scipy=2
+)
 
 
 @dataclass(frozen=True)
@@ -113,6 +119,11 @@ def timed(work: Callable[[], object]) -> Callable[[], float]:
     return run
 
 
+def times(factor: float, cost: Callable[[], float]) -> Callable[[], float]:
+    """A cost scaled."""
+    return lambda: factor * cost()
+
+
 def design(text: str, folder: Path) -> pipeline.Design:
     """Read a generated text; it must be without mistakes."""
     path = folder / "bench.md"
@@ -138,6 +149,7 @@ def rows(setting: Setting) -> Iterator[Row]:
         yield extremes_row(setting, Path(name))
     yield from sampling_rows(setting)
     yield memory_row(setting)
+    yield from bridge_rows(setting)
 
 
 def check_row(setting: Setting, cache: str, what: str, path: Path, imports: str) -> Row:
@@ -215,6 +227,29 @@ def sampling_rows(setting: Setting) -> Iterator[Row]:
             setting.documents,
             timed(partial(sampling.sample, *made, setting.draws)),
             timed(partial(by_hand, setting.draws)),
+        )
+
+
+def bridge_rows(setting: Setting) -> Iterator[Row]:
+    """Steady states at once, 500 times their cost, against a loop over scipy's solver.
+
+    The loop runs over some of the points, and its cost is scaled to all of them.
+    """
+    points = bridge.points(setting.points)
+    columns, few = bridge.columns(points), points[: setting.by_scipy]
+    at_once = timed(partial(bridge.solved, columns))
+    for name, way, limit in (
+        ("default method", bridge.DEFAULT, "<= 1.0"),
+        ("cheapest method", bridge.FASTEST, "none"),
+    ):
+        loop = timed(partial(bridge.by_scipy, few, way))
+        share = len(points) / len(few)
+        yield paired(
+            f"500 x steady state : loop over scipy, {name}",
+            limit,
+            setting.documents,
+            times(500.0, at_once),
+            times(share, loop),
         )
 
 
