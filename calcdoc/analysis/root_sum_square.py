@@ -88,13 +88,14 @@ def root_sum_square(
         tape: The formulas, in coherent SI.
         requirements: Instructions that must not be negative; the least one at the base counts.
         parts: The columns that vary.
-        governing: Shape (n_columns,): the combination that governs at the extremes.
-        worst: The requirement there.
+        governing: Shape (n_columns,): where conditions stand, and on which side of nominal a bias
+            is looked for first.
+        worst: The requirement at the extremes.
     """
     program = plain(tape, requirements)
     base = base_point(program, requirements, parts, governing)
     drawn = [part for part in parts if part.is_random]
-    values = program.evaluate(_at_limits(base, drawn))
+    values = program.evaluate(at_limits(base, drawn))
     rows = [program.row[at] for at in requirements]
     which = int(np.argmin(values[rows, 0]))  # the first that is no number, if there is one
     found = values[rows[which]]
@@ -124,7 +125,7 @@ def root_sum_square(
     )
 
 
-def _at_limits(base: FloatArray, parts: Sequence[Part]) -> FloatArray:
+def at_limits(base: FloatArray, parts: Sequence[Part]) -> FloatArray:
     """The base, then every part by itself at its low and its high limit: one column each."""
     points = np.repeat(base[:, None], 1 + 2 * len(parts), axis=1)
     for number, part in enumerate(parts):

@@ -36,7 +36,8 @@ class Asked(Frozen, frozen=True):
     equal: float
     """Size up to which it counts as zero."""
     governing: FloatArray
-    """Shape (n_columns,): the combination that governs this limit at the extremes."""
+    """Shape (n_columns,): where conditions stand for this limit, and on which side of nominal a
+    bias is looked for first."""
     when: int | None = None
     """Instruction of a condition; where it does not hold, the limit is met."""
 

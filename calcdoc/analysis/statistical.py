@@ -15,7 +15,7 @@ from calcdoc.analysis.looking_up import reached
 from calcdoc.analysis.parts import Part, part_of, random_parts
 from calcdoc.analysis.points import FloatArray
 from calcdoc.analysis.program import plain
-from calcdoc.analysis.root_sum_square import root_sum_square
+from calcdoc.analysis.root_sum_square import at_limits, root_sum_square
 from calcdoc.analysis.sampling import Asked, Job, Sampled, Setting, sampled
 from calcdoc.analysis.sides import Side
 from calcdoc.model.model import Model
@@ -158,11 +158,7 @@ def _moved(point: FloatArray, parts: Sequence[Part], drawn: Sequence[Part]) -> F
     for part in parts:
         above = bool(point[part.column] > part.nominal)
         base[part.column] = part.nominal + (part.bias_high if above else part.bias_low)
-    points = np.repeat(base[:, None], 1 + 2 * len(drawn), axis=1)
-    for number, part in enumerate(drawn):
-        for end, change in enumerate(part.limits):
-            points[part.column, 1 + 2 * number + end] += change
-    return points
+    return at_limits(base, drawn)
 
 
 def combine(compiled: Compiled, ready: Ready) -> Weighed | Unjudged:
