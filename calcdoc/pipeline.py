@@ -40,7 +40,7 @@ from calcdoc.text.document import Document, read_document, walk
 from calcdoc.text.prose import Use
 
 FORMS: Final = ("html", "pdf", "json")
-LIBRARIES: Final = {
+LIBRARIES: Final[Mapping[str, str]] = {
     "markdown-it-py": "markdown_it",
     "msgspec": "msgspec",
     "numpy": "numpy",
@@ -183,7 +183,10 @@ def record(evaluated: Evaluated) -> Record:
         raise TextHasErrors(
             f"{evaluated.design.source.path} has errors, so there is no record of it"
         )
-    versions = {name: import_module(module).__version__ for name, module in LIBRARIES.items()}
+    used = LIBRARIES
+    if evaluated.evaluation.setting is not None:
+        used = {**LIBRARIES, "scipy": "scipy"}  # bounds of shares, and quasi-random draws
+    versions = {name: import_module(module).__version__ for name, module in used.items()}
     tool = Tool(version=__version__, libraries=versions)
     made = Circumstances(
         tool,

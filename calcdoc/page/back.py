@@ -72,11 +72,13 @@ def _result(view: View, criterion: Criterion) -> str:
     case = criterion.case if criterion.case not in ("", "normal") else ""
     parts += [escape(f"case {case}") if case else "", view.sentence(criterion.remark)]
     parts.append(view.reason(remark(criterion)))
+    parts.append(f"accepted: {view.words(criterion.accepted)}" if criterion.accepted else "")
     return "; ".join(filter(None, parts))
 
 
 def _verdict(criterion: Criterion) -> str:
-    return verdict(criterion.verdict, criterion.accepted, criterion.route_of)
+    accepted = criterion.accepted is not None
+    return verdict(criterion.verdict, accepted=accepted, route_of=criterion.route_of)
 
 
 def inputs(view: View) -> str:

@@ -112,8 +112,11 @@ def _verdict_row(view: View, criterion: Criterion) -> tuple[str, ...]:
         typeset.quantity(criterion.limit_text),
         typeset.quantity(criterion.margin_text),
         margin_bar(criterion),
-        verdict(criterion.verdict, route_of=criterion.route_of)
-        + ("<br>accepted" if criterion.accepted else ""),
+        verdict(
+            criterion.verdict,
+            accepted=criterion.accepted is not None,
+            route_of=criterion.route_of,
+        ),
         by or _why(view, criterion),
     )
 

@@ -100,8 +100,9 @@ def _cell(criterion: Criterion, case: str) -> str:
     if here is None:
         return '<span class="cl" title="not judged in this case">–</span>'
     route = criterion.route_of
-    words = f"({escape(here.verdict)})" if route else verdict(here.verdict)
-    words += " accepted" if here.accepted else ""
+    words = f"({escape(here.verdict)})"
+    if not route:
+        words = verdict(here.verdict, accepted=here.accepted is not None)
     margin = (
         f' <small class="nb">{typeset.quantity(here.margin_text)}</small>'
         if here.margin_text

@@ -410,7 +410,9 @@ def _parts(shown: Picture) -> tuple[Picture, ...]:
 
 def _decided(view: View, criterion: Criterion) -> str:
     """The bar, the verdict in words, the margin, the remark."""
-    words = verdict(criterion.verdict, criterion.accepted, criterion.route_of)
+    accepted = criterion.accepted
+    words = verdict(criterion.verdict, accepted=accepted is not None, route_of=criterion.route_of)
+    words += f": {view.words(accepted)}" if accepted else ""
     why = view.reason(remark(criterion))
     margin = f"margin {typeset.quantity(criterion.margin_text)}" if criterion.margin_text else ""
     if criterion.verdict == "fail" and criterion.remark:

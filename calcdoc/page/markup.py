@@ -105,9 +105,9 @@ def _used(criterion: Criterion) -> float | None:
     return limit / value if value > 0 else float("inf")
 
 
-def verdict(words: str, accepted: str | None = None, route_of: str = "") -> str:
+def verdict(words: str, *, accepted: bool = False, route_of: str = "") -> str:
     """A verdict in words; a failure that counts also in the ink kept for it."""
-    reason = f" (accepted: {escape(accepted)})" if accepted else ""
-    reason += f", a route of {escape(route_of)}" if route_of else ""
-    bad = " bad" if words in BAD and not route_of else ""
-    return f'<span class="v{bad}">{escape(words)}</span>{reason}'
+    said = f"{words}, accepted" if accepted else words
+    route = f", a route of {escape(route_of)}" if route_of else ""
+    bad = " bad" if words.partition(",")[0] in BAD and not route_of else ""
+    return f'<span class="v{bad}">{escape(said)}</span>{route}'

@@ -183,7 +183,9 @@ def _fill(
             text = texts.get(node.form, quantity.result)
             return r.Value(symbol=quantity.symbol, form=node.form or "equation", text=text)
         if key in by_id:
-            return r.Verdict(id=by_id[key].id, text=by_id[key].verdict)
+            found = by_id[key]
+            said = f"{found.verdict}, accepted" if found.accepted else found.verdict
+            return r.Verdict(id=found.id, text=said)
         return r.Words(text=node.name)
 
     def picture(node: prose.Picture) -> r.Inline:
